@@ -1,0 +1,100 @@
+//! What may be typed. Parsing never acts.
+
+use std::path::PathBuf;
+
+use clap::{Parser, Subcommand};
+
+/// Which of the planetary systems that the data allow would abide?
+#[derive(Debug, Parser)]
+#[command(version, propagate_version = true)]
+pub struct Args {
+    #[command(subcommand)]
+    pub command: Command,
+}
+
+#[derive(Debug, Subcommand)]
+pub enum Command {
+    /// Look at a system without integrating it
+    Inspect(InspectArgs),
+    /// Follow one configuration: series, verdict, figure
+    Follow(FollowArgs),
+    /// Survey many configurations: a study → a run with its stability map
+    Survey(SurveyArgs),
+    /// Draw figures again from a stored run
+    Draw(DrawArgs),
+}
+
+#[derive(Debug, clap::Args)]
+pub struct InspectArgs {
+    /// System file (TOML)
+    pub system: PathBuf,
+    /// Print JSON to standard output instead of text
+    #[arg(long)]
+    pub json: bool,
+}
+
+#[derive(Debug, clap::Args)]
+pub struct FollowArgs {
+    /// System file (TOML)
+    pub system: PathBuf,
+    /// How long: "1e5 orbits" of the innermost planet, or a time such as "2 Myr"
+    #[arg(long, default_value = "1e4 orbits")]
+    pub span: String,
+    /// Folder for series.ecsv and series.png (default: reports/runs/NAME)
+    #[arg(long, value_name = "DIR")]
+    pub into: Option<PathBuf>,
+    /// How many rows the series has at most
+    #[arg(long, default_value_t = 2000)]
+    pub rows: usize,
+    /// Step, e.g. "0.5 d" (default: auto)
+    #[arg(long)]
+    pub step: Option<String>,
+    /// Print nothing but errors
+    #[arg(long)]
+    pub quiet: bool,
+    /// Print the verdict as JSON to standard output
+    #[arg(long)]
+    pub json: bool,
+}
+
+#[derive(Debug, clap::Args)]
+pub struct SurveyArgs {
+    /// Study file, or a system file together with --vary
+    pub study: PathBuf,
+    /// With a system file: the key to vary over ±3σ of its stated uncertainty (once or twice)
+    #[arg(long, value_name = "KEY")]
+    pub vary: Vec<String>,
+    /// With --vary: how long each cell is followed
+    #[arg(long)]
+    pub span: Option<String>,
+    /// With --vary: cells along each axis
+    #[arg(long)]
+    pub cells: Option<usize>,
+    /// Folder of the run (default: reports/runs/NAME)
+    #[arg(long, value_name = "DIR")]
+    pub into: Option<PathBuf>,
+    /// Worker threads (default: all cores)
+    #[arg(long)]
+    pub threads: Option<usize>,
+    /// Confirm a survey of more than 10 million cells
+    #[arg(long)]
+    pub really: bool,
+    /// Print nothing but errors
+    #[arg(long)]
+    pub quiet: bool,
+    /// Print the summary as JSON to standard output
+    #[arg(long)]
+    pub json: bool,
+}
+
+#[derive(Debug, clap::Args)]
+pub struct DrawArgs {
+    /// Folder of a run
+    pub run: PathBuf,
+    /// Column to show as colour
+    #[arg(long, value_name = "COLUMN")]
+    pub column: Option<String>,
+    /// Picture file (default: map.png in the run, or map-COLUMN.png)
+    #[arg(long, value_name = "FILE")]
+    pub into: Option<PathBuf>,
+}

@@ -1,0 +1,1 @@
+//! Files written so that nothing is lost: beside, then renamed.

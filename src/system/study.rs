@@ -1,0 +1,121 @@
+//! A study: what varies, how long to follow each cell, what to measure.
+
+use std::path::PathBuf;
+
+use super::Key;
+
+/// Which body or bodies a path names.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum BodyRef {
+    Star,
+    /// Index into `System::planets`.
+    Planet(usize),
+    /// Every planet.
+    All,
+}
+
+/// One key of one body (or of all planets), as `c.period` or `all.inclination`.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Target {
+    pub body: BodyRef,
+    pub key: Key,
+}
+
+/// What an axis counts.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Quantity {
+    /// The key itself, in its unit.
+    Value,
+    /// A factor on the stated value (`as = "factor"`).
+    Factor,
+    /// The target's key over another body's key (`c.period / b.period`); the target moves, the other stays.
+    RatioTo(Target),
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Spacing {
+    #[default]
+    Linear,
+    Log,
+}
+
+/// One axis of a study: the cell centres run from `from` to `to` inclusive.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Axis {
+    /// As written, e.g. `c.period / b.period`: the name of the column.
+    pub path: String,
+    pub target: Target,
+    pub quantity: Quantity,
+    /// In `unit`, not in inner units.
+    pub from: f64,
+    pub to: f64,
+    /// The unit of `from`, `to` and of the column; empty for plain numbers.
+    pub unit: &'static str,
+    /// One `unit` in inner units.
+    pub scale: f64,
+    pub cells: usize,
+    pub spacing: Spacing,
+}
+
+/// How long each cell is followed.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Span {
+    /// Periods of the innermost planet of the *stated* system (the same time for every cell).
+    Orbits(f64),
+    Days(f64),
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Measure {
+    Megno,
+    Lyapunov,
+    Extent,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Encounter {
+    /// Stop when two planets come closer than this many mutual Hill radii.
+    Stop { hill: f64 },
+    /// Go on through encounters; only collisions end a cell.
+    Off,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Limits {
+    /// Distance from the star beyond which a planet has escaped, au. Absent: 20 times the largest
+    /// apocentre of the configuration.
+    pub escape_au: Option<f64>,
+    pub encounter: Encounter,
+}
+
+/// Absent means auto.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Step {
+    Auto,
+    Days(f64),
+    /// Steps per period of the innermost planet.
+    PerOrbit(f64),
+}
+
+#[derive(Clone, Debug, PartialEq)]
+pub struct Engine {
+    /// As in the file: "auto", "(2,2)", …
+    pub scheme: String,
+    pub step: Step,
+    pub energy_error: f64,
+}
+
+/// A study as described by a file.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Study {
+    /// Title of the figure; absent: the system's.
+    pub title: Option<String>,
+    /// Path of the system file, resolved against the study's folder.
+    pub system_path: PathBuf,
+    pub span: Span,
+    pub measure: Vec<Measure>,
+    /// One or two.
+    pub axes: Vec<Axis>,
+    pub limits: Limits,
+    pub engine: Engine,
+}
