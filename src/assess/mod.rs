@@ -6,4 +6,4 @@ mod plan;
 
 pub use assessment::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{assess, run_batch};
-pub use plan::{Plan, StepWhy};
+pub use plan::{Plan, StepWhy, auto_step_day};

@@ -25,3 +25,10 @@ pub struct Plan {
     pub extent: bool,
     pub megno: bool,
 }
+
+/// The step that the plan gives a configuration when none is asked: 1/20 of the shortest pericentre
+/// passage time scale of its planets, day.
+pub fn auto_step_day(configuration: &crate::coords::Configuration) -> f64 {
+    let _ = configuration;
+    f64::NAN
+}
