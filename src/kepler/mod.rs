@@ -1,1 +1,7 @@
-//! (being built)
+//! Two-body motion on numbers.
+
+mod drift;
+mod stumpff;
+mod universal;
+
+pub use drift::{Body, Midway, drift};

@@ -17,12 +17,7 @@ pub const WIDTH: usize = 8;
 
 /// One `f64` or eight of them, lane by lane.
 pub trait Real:
-    Copy
-    + Add<Output = Self>
-    + Sub<Output = Self>
-    + Mul<Output = Self>
-    + Div<Output = Self>
-    + Neg<Output = Self>
+    Copy + Add<Output = Self> + Sub<Output = Self> + Mul<Output = Self> + Div<Output = Self> + Neg<Output = Self>
 {
     /// One truth value per lane.
     type Mask: Mask;

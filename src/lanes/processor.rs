@@ -343,9 +343,7 @@ mod x86 {
         fn round(self) -> Self {
             const NEAREST: i32 = _MM_FROUND_TO_NEAREST_INT | _MM_FROUND_NO_EXC;
             // SAFETY: see above.
-            unsafe {
-                Pair([_mm256_round_pd::<NEAREST>(self.0[0]), _mm256_round_pd::<NEAREST>(self.0[1])])
-            }
+            unsafe { Pair([_mm256_round_pd::<NEAREST>(self.0[0]), _mm256_round_pd::<NEAREST>(self.0[1])]) }
         }
         #[inline(always)]
         fn mul_add(self, factor: Self, term: Self) -> Self {
