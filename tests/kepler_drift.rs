@@ -2,7 +2,7 @@
 //! its own mirror image and against finite differences.
 
 use abide::kepler::{Body, Midway, drift};
-use abide::lanes::{Job, Level, Real, WIDTH, run_eight_at, run_one};
+use abide::lanes::{Job, Level, Real, WIDTH, run_one, run_wide_at};
 use proptest::prelude::*;
 
 /// One orbit as plain numbers: μ, r, v, δr, δv.
@@ -96,7 +96,11 @@ fn carried_error(start: Start, time: f64, pos: f64, vel: f64) -> f64 {
     let mut total = 0.0;
     for k in 0..6 {
         let mut s = Start { d_pos: [0.0; 3], d_vel: [0.0; 3], ..start };
-        if k < 3 { s.d_pos[k] = pos } else { s.d_vel[k - 3] = vel }
+        if k < 3 {
+            s.d_pos[k] = pos
+        } else {
+            s.d_vel[k - 3] = vel
+        }
         total += norm(&one(s, time)[6..9]);
     }
     total
@@ -223,8 +227,8 @@ proptest! {
     /// Eight different orbits and steps, every level: the bits of the scalar path.
     #[test]
     fn lanes_have_scalar_bits(starts in prop::collection::vec(orbit(), 8), times in prop::collection::vec(time(), 8)) {
-        for level in Level::available() {
-            let wide = run_eight_at(level, Drift { starts: &starts, times: &times, repeat: 3 });
+        for level in Level::available().into_iter().filter(|l| l.width() == WIDTH) {
+            let wide = run_wide_at(level, Drift { starts: &starts, times: &times, repeat: 3 });
             for lane in 0..WIDTH {
                 let scalar = run_one(Drift { starts: &starts[lane..=lane], times: &times[lane..=lane], repeat: 3 })[0];
                 for k in 0..12 {

@@ -111,8 +111,7 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
         for m in midway.iter_mut() {
             let wanted = active.and(m.good.not());
             if wanted.any() {
-                let robust = universal::solve_robust(&m.orbit, h, wanted);
-                m.solved = universal::merge(wanted.not(), &m.solved, &robust);
+                m.solved = universal::mend(&m.orbit, h, wanted, &m.solved);
             }
         }
     }

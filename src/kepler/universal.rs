@@ -4,7 +4,7 @@
 //! (Stumpff 1962; Battin 1987). Good for ellipse, parabola and hyperbola alike.
 
 use super::stumpff::{self, Gs, SERIES_REACH};
-use crate::lanes::{Mask, Real};
+use crate::lanes::{Mask, Piece, Real};
 
 /// What Kepler's equation needs to know of an orbit.
 #[derive(Clone, Copy)]
@@ -104,7 +104,7 @@ pub(super) fn solve_fast<R: Real>(o: &Orbit<R>, s: R, h: R) -> (Solved<R>, R::Ma
 /// Whole periods are taken off; then Laguerre steps (Conway 1986, n = 5) inside a shrinking bracket. A lane that
 /// has converged is frozen, so no lane's bits depend on its neighbours.
 #[inline(always)]
-pub(super) fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
+fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
     let (zero, one, half) = (R::splat(0.0), R::splat(1.0), R::splat(0.5));
     let two_pi = R::splat(2.0 * std::f64::consts::PI);
     let bound = zero.lt(o.beta);
@@ -182,9 +182,30 @@ pub(super) fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solv
     }
 }
 
+/// [`solve_robust`] in the lanes of `wanted`, in a function of its own; `fast` is kept in the others.
+#[inline(always)]
+pub(super) fn mend<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask, fast: &Solved<R>) -> Solved<R> {
+    let robust = R::apart(Robust { orbit: *o, h, wanted });
+    merge::<R>(wanted.not(), fast, &robust)
+}
+
+struct Robust<R: Real> {
+    orbit: Orbit<R>,
+    h: R,
+    wanted: R::Mask,
+}
+
+impl<R: Real> Piece for Robust<R> {
+    type Output = Solved<R>;
+    #[inline(always)]
+    fn run(self) -> Solved<R> {
+        solve_robust(&self.orbit, self.h, self.wanted)
+    }
+}
+
 /// Takes `robust` where `fast` was not good enough.
 #[inline(always)]
-pub(super) fn merge<R: Real>(good: R::Mask, fast: &Solved<R>, robust: &Solved<R>) -> Solved<R> {
+fn merge<R: Real>(good: R::Mask, fast: &Solved<R>, robust: &Solved<R>) -> Solved<R> {
     Solved {
         s: R::select(good, fast.s, robust.s),
         g: stumpff::blend::<R>(good, &fast.g, &robust.g),

@@ -1,18 +1,17 @@
 //! The one place that asks what the processor can do, and the wide numbers it then offers.
 //!
-//! The wide types cannot be named outside this file: a [`Job`] meets them only through [`run_eight_at`],
+//! The wide types cannot be named outside this file: a [`Job`] meets them only through [`run_wide_at`],
 //! below a function that carries the processor features they need. That is what makes the `unsafe` here sound.
 
 use std::sync::OnceLock;
 
-use super::plain::Plain;
-use super::{Job, Real};
+use super::{Job, WIDTH};
 
 /// What a wide number is made of.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Level {
-    /// Eight `f64` in an array, on any processor.
-    Plain,
+    /// One `f64`, on any processor.
+    Scalar,
     /// Two registers of four: AVX2 and FMA.
     Avx2,
     /// One register of eight: AVX-512 F, DQ and VL.
@@ -22,24 +21,32 @@ pub enum Level {
 impl Level {
     /// The levels this processor has, lowest first.
     pub fn available() -> Vec<Level> {
-        [Level::Plain, Level::Avx2, Level::Avx512].into_iter().filter(|l| l.is_available()).collect()
+        [Level::Scalar, Level::Avx2, Level::Avx512].into_iter().filter(|l| l.is_available()).collect()
     }
 
     /// The level in use: the highest, or the one named by the environment variable `ABIDE_LANES`
-    /// (`plain`, `avx2`, `avx512`; meant for tests; ignored where the processor lacks it).
+    /// (`scalar`, `avx2`, `avx512`; meant for tests; ignored where the processor lacks it).
     pub fn chosen() -> Level {
         static CHOSEN: OnceLock<Level> = OnceLock::new();
         *CHOSEN.get_or_init(|| {
             let asked = std::env::var("ABIDE_LANES").ok();
-            let best = Level::available().pop().unwrap_or(Level::Plain);
+            let best = Level::available().pop().unwrap_or(Level::Scalar);
             Level::available().into_iter().find(|l| asked.as_deref() == Some(l.word())).unwrap_or(best)
         })
+    }
+
+    /// How many lanes a wide number has.
+    pub fn width(self) -> usize {
+        match self {
+            Level::Scalar => 1,
+            Level::Avx2 | Level::Avx512 => WIDTH,
+        }
     }
 
     /// The word that `ABIDE_LANES` and reports use.
     pub fn word(self) -> &'static str {
         match self {
-            Level::Plain => "plain",
+            Level::Scalar => "scalar",
             Level::Avx2 => "avx2",
             Level::Avx512 => "avx512",
         }
@@ -49,7 +56,7 @@ impl Level {
     fn is_available(self) -> bool {
         let avx2 = is_x86_feature_detected!("avx2") && is_x86_feature_detected!("fma");
         match self {
-            Level::Plain => true,
+            Level::Scalar => true,
             Level::Avx2 => avx2,
             Level::Avx512 => {
                 avx2 && is_x86_feature_detected!("avx512f")
@@ -61,7 +68,7 @@ impl Level {
 
     #[cfg(not(target_arch = "x86_64"))]
     fn is_available(self) -> bool {
-        self == Level::Plain
+        self == Level::Scalar
     }
 }
 
@@ -75,13 +82,13 @@ pub fn run_one<J: Job>(job: J) -> J::Output {
     job.run::<f64>()
 }
 
-/// Runs `job` with eight numbers per operation, at the level in use.
-pub fn run_eight<J: Job>(job: J) -> J::Output {
-    run_eight_at(Level::chosen(), job)
+/// Runs `job` with [`Level::width`] numbers per operation, at the level in use.
+pub fn run_wide<J: Job>(job: J) -> J::Output {
+    run_wide_at(Level::chosen(), job)
 }
 
-/// Runs `job` with eight numbers per operation at `level`; falls back to arrays where the processor lacks it.
-pub fn run_eight_at<J: Job>(level: Level, job: J) -> J::Output {
+/// Runs `job` with wide numbers of that level; with single ones where the processor lacks it.
+pub fn run_wide_at<J: Job>(level: Level, job: J) -> J::Output {
     #[cfg(target_arch = "x86_64")]
     match level {
         // SAFETY: `is_available` has seen every feature that the function is compiled for.
@@ -91,13 +98,12 @@ pub fn run_eight_at<J: Job>(level: Level, job: J) -> J::Output {
         _ => {}
     }
     let _ = level;
-    job.run::<Plain>()
+    run_one(job)
 }
 
 #[cfg(target_arch = "x86_64")]
 mod x86 {
-    use super::{Job, Real};
-    use crate::lanes::{Mask, WIDTH};
+    use crate::lanes::{Job, Mask, Piece, Real, WIDTH};
     use std::arch::x86_64::*;
     use std::ops::{Add, Div, Mul, Neg, Sub};
 
@@ -114,6 +120,18 @@ mod x86 {
     #[target_feature(enable = "avx2,fma,avx512f,avx512dq,avx512vl")]
     pub(super) fn eight_avx512<J: Job>(job: J) -> J::Output {
         job.run::<Whole>()
+    }
+
+    #[target_feature(enable = "avx2,fma")]
+    #[inline(never)]
+    fn apart_avx2<P: Piece>(piece: P) -> P::Output {
+        piece.run()
+    }
+
+    #[target_feature(enable = "avx2,fma,avx512f,avx512dq,avx512vl")]
+    #[inline(never)]
+    fn apart_avx512<P: Piece>(piece: P) -> P::Output {
+        piece.run()
     }
 
     /// Eight numbers in one AVX-512 register.
@@ -248,6 +266,11 @@ mod x86 {
             unsafe { _mm512_storeu_pd(to.as_mut_ptr(), self.0) }
         }
         #[inline(always)]
+        fn apart<P: Piece>(piece: P) -> P::Output {
+            // SAFETY: see above.
+            unsafe { apart_avx512(piece) }
+        }
+        #[inline(always)]
         fn sqrt(self) -> Self {
             // SAFETY: see above.
             Whole(unsafe { _mm512_sqrt_pd(self.0) })
@@ -325,6 +348,11 @@ mod x86 {
                 _mm256_storeu_pd(low.as_mut_ptr(), self.0[0]);
                 _mm256_storeu_pd(high.as_mut_ptr(), self.0[1]);
             }
+        }
+        #[inline(always)]
+        fn apart<P: Piece>(piece: P) -> P::Output {
+            // SAFETY: see above.
+            unsafe { apart_avx2(piece) }
         }
         #[inline(always)]
         fn sqrt(self) -> Self {
