@@ -335,9 +335,30 @@ fn vary_complaint(error: &VaryError, wish: &AxisWish) -> Complaint {
     }
 }
 
-/// Whether two axes hinder each other: the index of the axis to point at, and why.
+/// Whether axes hinder each other, and whether every corner of the map can be had: the index of the axis to point
+/// at, and why.
 pub(crate) fn check_together(axes: &[Axis], system: &System) -> Result<(), (usize, Complaint)> {
-    let [first, second] = axes else { return Ok(()) };
+    if let [first, second] = axes {
+        check_pair(first, second)?;
+    }
+    for corner in 0..1_usize << axes.len() {
+        let place = |index: usize| if corner >> index & 1 == 0 { axes[index].from } else { axes[index].to };
+        let Some(fault) = corner_fault(axes, place, system) else { continue };
+        let places: Vec<String> = (axes.iter().enumerate())
+            .map(|(index, axis)| {
+                format!("{} = {} {}", axis.path, place(index), axis.unit).trim_end().to_string()
+            })
+            .collect();
+        let found = format!("at the corner {}: {fault}", places.join(", "));
+        let complaint = Complaint::new(Fault::OutOfRange, found)
+            .allowed("bound orbits and finite masses on the whole map")
+            .advice("narrow an axis");
+        return Err((axes.len() - 1, complaint));
+    }
+    Ok(())
+}
+
+fn check_pair(first: &Axis, second: &Axis) -> Result<(), (usize, Complaint)> {
     if first.target.body.overlaps(&second.target.body) && same_question(first.target.key, second.target.key) {
         let found = format!("\"{}\" and \"{}\"", first.path, second.path);
         let complaint = Complaint::new(Fault::Conflict, found).allowed("axes that move different things");
@@ -347,33 +368,27 @@ pub(crate) fn check_together(axes: &[Axis], system: &System) -> Result<(), (usiz
         && other.body.overlaps(&second.target.body)
         && other.key.group() == second.target.key.group()
     {
-        let complaint = Complaint::new(
-            Fault::Conflict,
-            format!("the second axis moves what \"{}\" divides by", first.path),
-        )
-        .allowed("axes that are applied in the order of the file");
+        let found = format!("the second axis moves what \"{}\" divides by", first.path);
+        let complaint =
+            Complaint::new(Fault::Conflict, found).allowed("axes that are applied in the order of the file");
         return Err((0, complaint.advice("put this [[axis]] after the other one")));
     }
-    for (x, y) in
-        [(first.from, second.from), (first.from, second.to), (first.to, second.from), (first.to, second.to)]
-    {
-        let mut corner = system.clone();
-        let moved = first.apply(x, &mut corner, system).and_then(|()| second.apply(y, &mut corner, system));
-        let found = match moved {
-            Err(error) => error.to_string(),
-            Ok(()) => match corner.planets.iter().find_map(|planet| planet.stated.check_together().err()) {
-                Some(unsound) => unsound.to_string(),
-                None => continue,
-            },
-        };
-        let place = format!("{} = {x} {}, {} = {y} {}", first.path, first.unit, second.path, second.unit);
-        let complaint = Complaint::new(Fault::OutOfRange, format!("at the corner {place}: {found}"));
-        return Err((
-            1,
-            complaint.allowed("bound orbits and finite masses on the whole map").advice("narrow an axis"),
-        ));
-    }
     Ok(())
+}
+
+/// What is wrong with one corner of the map.
+fn corner_fault(axes: &[Axis], place: impl Fn(usize) -> f64, system: &System) -> Option<String> {
+    let mut corner = system.clone();
+    for (index, axis) in axes.iter().enumerate() {
+        if let Err(error) = axis.apply(place(index), &mut corner, system) {
+            return Some(error.to_string());
+        }
+    }
+    corner
+        .planets
+        .iter()
+        .find_map(|planet| planet.stated.check_together().err())
+        .map(|unsound| unsound.to_string())
 }
 
 /// Whether one of the keys undoes the other.
