@@ -127,7 +127,13 @@ fn units() {
 fn ranges() {
     check(&changed("= 0.05", "= 1.0"), Fault::OutOfRange, 17, 16, &["0 <= eccentricity < 1", "percentage"]);
     check(&changed("= 0.05", "= -0.05"), Fault::OutOfRange, 17, 16, &["-0.05"]);
-    check(&changed("\"6.1 ±", "\"-6.1 ±"), Fault::OutOfRange, 16, 17, &["-6.1 Mearth", "a mass of 0 or more"]);
+    check(
+        &changed("\"6.1 ±", "\"-6.1 ±"),
+        Fault::OutOfRange,
+        16,
+        17,
+        &["-6.1 Mearth", "a mass of 0 or more"],
+    );
     check(&changed("\"0.87 ±", "\"0 ±"), Fault::OutOfRange, 4, 9, &["star, mass", "a mass above 0"]);
     check(&changed("\"11.862 +", "\"-11.862 +"), Fault::OutOfRange, 15, 11, &["a period above 0"]);
     check(&changed("\"89.4 ±", "\"189.4 ±"), Fault::OutOfRange, 20, 16, &["180 deg"]);
@@ -167,7 +173,13 @@ fn names() {
 #[test]
 fn alternatives_and_pairs() {
     let text = changed("semi_major_axis = ", "period = \"20 d\"\nsemi_major_axis = ");
-    check(&text, Fault::Conflict, 24, 1, &["both period and semi_major_axis", "one of period, semi_major_axis"]);
+    check(
+        &text,
+        Fault::Conflict,
+        24,
+        1,
+        &["both period and semi_major_axis", "one of period, semi_major_axis"],
+    );
     let text = changed("rv_semi_amplitude", "mass = \"1 Mjup\"\nrv_semi_amplitude");
     check(&text, Fault::Conflict, 25, 1, &["both mass and rv_semi_amplitude"]);
     let text = changed("sqrt_e_cos_w", "eccentricity = 0.1\nsqrt_e_cos_w");
@@ -178,7 +190,8 @@ fn alternatives_and_pairs() {
     check(&changed("sqrt_e_sin_w = \"-0.1\"\n", ""), Fault::MissingPartner, 25, 1, &["add sqrt_e_sin_w"]);
     let text = changed("mean_longitude", "mean_anomaly = \"0 deg\"\nmean_longitude");
     check(&text, Fault::Conflict, 28, 1, &["both mean_anomaly and mean_longitude"]);
-    let text = changed("argument_of_pericentre", "longitude_of_pericentre = \"1 deg\"\nargument_of_pericentre");
+    let text =
+        changed("argument_of_pericentre", "longitude_of_pericentre = \"1 deg\"\nargument_of_pericentre");
     check(&text, Fault::Conflict, 19, 1, &["both longitude_of_pericentre and argument_of_pericentre"]);
 }
 
@@ -186,7 +199,13 @@ fn alternatives_and_pairs() {
 fn needed_keys() {
     check(&changed("semi_major_axis = \"0.2 au\"\n", ""), Fault::MissingKey, 22, 8, &["size", "period"]);
     check(&changed("rv_semi_amplitude = \"2.3 ± 0.2 m/s\"\n", ""), Fault::MissingKey, 22, 8, &["no mass"]);
-    check(&changed("mean_longitude = \"1 rad\"\n", ""), Fault::MissingKey, 22, 8, &["no phase", "transit_time"]);
+    check(
+        &changed("mean_longitude = \"1 rad\"\n", ""),
+        Fault::MissingKey,
+        22,
+        8,
+        &["no phase", "transit_time"],
+    );
     check(&changed("mass = \"0.87 ± 0.03 Msun\"\n", ""), Fault::MissingKey, 3, 2, &["no mass of the star"]);
     check("title = \"x\"\n", Fault::MissingKey, 1, 1, &["star"]);
     check("[star]\nmass = \"1 Msun\"\n", Fault::MissingKey, 1, 1, &["no planet"]);
@@ -220,7 +239,10 @@ fn files() {
     let folder = tempfile::tempdir().expect("a folder");
     let absent = folder.path().join("absent.toml");
     let message = abide::input::read_system(&absent).expect_err("absent").to_string();
-    assert!(message.contains("absent.toml: the file cannot be read") && message.contains("to do:"), "{message}");
+    assert!(
+        message.contains("absent.toml: the file cannot be read") && message.contains("to do:"),
+        "{message}"
+    );
     let latin = folder.path().join("latin.toml");
     std::fs::write(&latin, b"title = \"a\"\nepoch = \"2460310.5 \xb1 1 JD\"\n").expect("written");
     let error = abide::input::read_system(&latin).expect_err("not UTF-8");
