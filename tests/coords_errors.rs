@@ -19,7 +19,8 @@ fn refusal(keys: &[(Key, f64)]) -> String {
 
 #[test]
 fn each_message_names_the_planet_what_was_found_and_what_to_do() {
-    let cases: [(&[(Key, f64)], &str, &str); 10] = [
+    type Case<'a> = (&'a [(Key, f64)], &'a str, &'a str);
+    let cases: [Case; 10] = [
         (&[(Key::Period, 9.0)], "states no mass", "minimum_mass"),
         (&[(Key::Mass, 1e-9)], "no size", "semi_major_axis"),
         (&[(Key::Mass, -1e-9), (Key::Period, 9.0)], "-1e-9", "zero or positive"),
