@@ -4,6 +4,7 @@ use std::path::PathBuf;
 
 use crate::coords::CoordsError;
 use crate::disk::DiskError;
+use crate::system::VaryError;
 
 /// Why a survey cannot start, go on or end.
 #[derive(Debug, thiserror::Error)]
@@ -15,6 +16,8 @@ pub enum SurveyError {
     NotStated { path: String, body: String, key: &'static str },
     #[error("axis {path}: {body} has no {key} that an axis could count from in this configuration")]
     Underivable { path: String, body: String, key: &'static str, source: CoordsError },
+    #[error("axis {path}")]
+    Vary { path: String, source: VaryError },
     #[error("axis {path}: a ratio moves one body and leaves the other; a body cannot be on both sides. \
              Name one planet on each side")]
     RatioToItself { path: String },
