@@ -25,10 +25,8 @@ pub enum SurveyError {
     Circular { first: String, second: String },
     #[error("axes {first} and {second} both set the {key} of one body; keep one of them")]
     SameTarget { first: String, second: String, key: &'static str },
-    #[error("the system as stated is not a configuration")]
+    #[error("the system as stated cannot be surveyed")]
     Nominal(#[source] CoordsError),
-    #[error("the system as stated starts inside: {what}; correct the radius or the orbit in the system file")]
-    NominalOverlap { what: String },
     #[error(
         "{} holds a run of other input, so its cells cannot be mixed with these:\n{}\n\
          Give the new study its own folder with --into, or delete that folder to start afresh",

@@ -1,10 +1,11 @@
 //! The cells of a study as the pool draws them.
 //!
 //! A cell that cannot be followed never ends a night's run; it becomes a record at time 0:
-//! - two planets at one place or touching: `lost`, `collision`;
-//! - a planet inside the star: `lost`, `star`;
-//! - no configuration at all (a mass that would be infinite, an orbit that is not bound, a key outside its
-//!   range): `undecided`, with no evidence and no steps.
+//! - two planets at one place or touching: `lost`, `collision` (of the later in the file);
+//! - a pericentre inside the star: `lost`, `star`;
+//! - an orbit that is not bound: `lost`, `escape`;
+//! - no configuration at all (a mass that would be infinite, a key outside its range): `undecided`, with no
+//!   evidence and no steps.
 //!
 //! The same in the system as stated is an error before the long part, since then every figure would be about
 //! nothing.
@@ -33,9 +34,7 @@ impl Grid {
     pub fn new(system: System, study: Study) -> Result<Grid, SurveyError> {
         let order = order_of_axes(&study)?;
         let nominal = coords::configure(&system).map_err(SurveyError::Nominal)?;
-        if let Some(loss) = overlap(&nominal) {
-            return Err(SurveyError::NominalOverlap { what: words(&nominal, &loss) });
-        }
+        coords::check_start(&nominal).map_err(SurveyError::Nominal)?;
         let grid = Grid { system, study, order };
         // What is wrong with every cell alike (a key to count from that is not stated) shows in the first.
         match cell_system(&grid.system, &grid.study, &grid.order, 0) {
@@ -60,23 +59,29 @@ impl Grid {
 
     fn configuration(&self, cell: u64) -> Result<Configuration, Settled> {
         let system = cell_system(&self.system, &self.study, &self.order, cell).map_err(|error| match error {
-            SurveyError::Underivable { source, .. } => self.no_configuration(&source),
+            SurveyError::Underivable { source, .. } => self.impossible(&source),
             other => Settled { loss: None, text: chain(&other) },
         })?;
-        let configuration = coords::configure(&system).map_err(|error| self.no_configuration(&error))?;
-        match overlap(&configuration) {
-            Some(loss) => Err(Settled { text: words(&configuration, &loss), loss: Some(loss) }),
-            None => Ok(configuration),
-        }
+        let started = coords::configure(&system).and_then(|configuration| {
+            coords::check_start(&configuration)?;
+            Ok(configuration)
+        });
+        started.map_err(|error| self.impossible(&error))
     }
 
-    fn no_configuration(&self, error: &CoordsError) -> Settled {
+    fn impossible(&self, error: &CoordsError) -> Settled {
         let index = |name: &str| self.system.planet_index(name);
+        let at_start = |planet, other, how| Loss { time_day: 0.0, planet, other, how };
         let loss = match error {
-            CoordsError::Coincident { first, second, .. } => {
-                index(first).zip(index(second)).map(|(first, second)| collision(second, first))
+            CoordsError::Coincident { first, second, .. } => index(first)
+                .zip(index(second))
+                .map(|(first, second)| at_start(second, Some(first), LostHow::Collision)),
+            CoordsError::InsideStar { planet, .. } => {
+                index(planet).map(|planet| at_start(planet, None, LostHow::Star))
             }
-            #[allow(unreachable_patterns, reason = "the room coords may learn more reasons")]
+            CoordsError::NotBound { planet, .. } => {
+                index(planet).map(|planet| at_start(planet, None, LostHow::Escape))
+            }
             _ => None,
         };
         Settled { loss, text: chain(error) }
@@ -123,40 +128,6 @@ impl Settled {
             steps: 0,
             redone: 0,
         }
-    }
-}
-
-fn collision(planet: usize, other: usize) -> Loss {
-    Loss { time_day: 0.0, planet, other: Some(other), how: LostHow::Collision }
-}
-
-/// The first planet that starts inside the star or touching another planet.
-fn overlap(configuration: &Configuration) -> Option<Loss> {
-    let planets = &configuration.planets;
-    for (index, planet) in planets.iter().enumerate() {
-        if distance(planet.position_au, [0.0; 3]) < configuration.star_radius_au {
-            return Some(Loss { time_day: 0.0, planet: index, other: None, how: LostHow::Star });
-        }
-        for (earlier, other) in planets[..index].iter().enumerate() {
-            if distance(planet.position_au, other.position_au) < planet.radius_au + other.radius_au {
-                let lighter = if other.gm < planet.gm { (earlier, index) } else { (index, earlier) };
-                return Some(collision(lighter.0, lighter.1));
-            }
-        }
-    }
-    None
-}
-
-fn distance(a: [f64; 3], b: [f64; 3]) -> f64 {
-    let d = [a[0] - b[0], a[1] - b[1], a[2] - b[2]];
-    (d[0] * d[0] + d[1] * d[1] + d[2] * d[2]).sqrt()
-}
-
-fn words(configuration: &Configuration, loss: &Loss) -> String {
-    let name = |index: usize| configuration.planets[index].name.as_str();
-    match loss.other {
-        Some(other) => format!("planets {} and {} touch at the epoch", name(loss.planet), name(other)),
-        None => format!("planet {} is inside the star at the epoch", name(loss.planet)),
     }
 }
 
