@@ -152,13 +152,13 @@ mod tests {
         assert!(apart(GM_SUN, gaussian * gaussian) < 4e-9, "{}", apart(GM_SUN, gaussian * gaussian));
     }
 
-    /// Reciprocal masses: Sun/Jupiter 1047.348644 (planet alone 1047.57 in some lists; the system with its moons is
-    /// 1047.3486, and B3 rounds to 8 digits for Jupiter alone: 1.2668653e17), Sun/(Earth alone) 332946.0487
-    /// (IAU 2009 system of constants, from memory). Limits are the rounding of the nominal values.
+    /// Sun / Earth without the Moon is 332946.0487 (IAU 2009 system of constants, from memory). Sun / Jupiter
+    /// with its moons is 1047.348644 (the same list), and the four large moons hold 3.931e23 kg against the
+    /// 1.89813e27 kg of the planet (planetary fact sheets, from memory). Limits: rounding of the nominal values.
     #[test]
     fn mass_ratios_are_the_published_ones() {
         assert!(apart(GM_SUN / GM_EARTH, 332_946.048_7) < 2e-7);
-        assert!(apart(GM_SUN / GM_JUPITER, 1_047.565) < 1e-6);
+        assert!(apart(GM_SUN / GM_JUPITER, 1_047.348_644 * (1.0 + 3.931e23 / 1.898_13e27)) < 1e-6);
     }
 
     /// Light needs 499.004784 s for one au (IAU 2009 system: 499.004 783 84 s, from memory).

@@ -82,10 +82,10 @@ impl System {
             "" => return Err(form()),
             STAR => BodyRef::Star,
             ALL => BodyRef::All,
-            name => BodyRef::Planet(self.planet_index(name).ok_or_else(|| PathError::NoBody {
-                found: name.to_string(),
-                known: self.body_words(),
-            })?),
+            name => BodyRef::Planet(
+                self.planet_index(name)
+                    .ok_or_else(|| PathError::NoBody { found: name.to_string(), known: self.body_words() })?,
+            ),
         };
         let allowed = || Key::stated_by(body.holder()).map(Key::word).collect::<Vec<_>>();
         let key = Key::from_word(key_word)

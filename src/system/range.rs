@@ -84,9 +84,7 @@ impl Key {
             Key::Age => above_zero("an age above 0"),
             Key::Period => above_zero("a period above 0"),
             Key::SemiMajorAxis => above_zero("a semi-major axis above 0 (a bound orbit)"),
-            Key::Eccentricity => {
-                Allowed { high: 1.0, ..from_zero("0 <= eccentricity < 1 (a bound orbit)") }
-            }
+            Key::Eccentricity => Allowed { high: 1.0, ..from_zero("0 <= eccentricity < 1 (a bound orbit)") },
             Key::ECosW | Key::ESinW | Key::SqrtECosW | Key::SqrtESinW => {
                 Allowed { low: -1.0, high: 1.0, words: "-1 < component < 1 (a bound orbit)", ..ANY }
             }
