@@ -4,27 +4,12 @@ use std::path::PathBuf;
 
 use crate::coords::CoordsError;
 use crate::disk::DiskError;
-use crate::system::VaryError;
 
 /// Why a survey cannot start, go on or end.
 #[derive(Debug, thiserror::Error)]
 pub enum SurveyError {
     #[error(transparent)]
     Disk(#[from] DiskError),
-    #[error("axis {path}: {body} states no {key}, and it does not follow from what is stated; \
-             state {key} in the system file or vary another key")]
-    NotStated { path: String, body: String, key: &'static str },
-    #[error("axis {path}: {body} has no {key} that an axis could count from in this configuration")]
-    Underivable { path: String, body: String, key: &'static str, source: CoordsError },
-    #[error("axis {path}")]
-    Vary { path: String, source: VaryError },
-    #[error("axis {path}: a ratio moves one body and leaves the other; a body cannot be on both sides. \
-             Name one planet on each side")]
-    RatioToItself { path: String },
-    #[error("axes {first} and {second} each need the other one first; state one of them as a value")]
-    Circular { first: String, second: String },
-    #[error("axes {first} and {second} both set the {key} of one body; keep one of them")]
-    SameTarget { first: String, second: String, key: &'static str },
     #[error("the system as stated cannot be surveyed")]
     Nominal(#[source] CoordsError),
     #[error(

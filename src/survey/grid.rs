@@ -10,7 +10,7 @@
 //! The same in the system as stated is an error before the long part, since then every figure would be about
 //! nothing.
 
-use super::axis::{cell_count, cell_system, cell_values, order_of_axes};
+use super::axis::{cell_count, cell_system, cell_values};
 use super::pool::{Made, Source};
 use super::SurveyError;
 use crate::assess::{Assessment, Loss};
@@ -23,24 +23,17 @@ use crate::verdict::{LostHow, Verdict};
 pub struct Grid {
     system: System,
     study: Study,
-    order: Vec<usize>,
 }
 
 impl Grid {
-    /// Checks the axes and the system as stated.
+    /// Checks the system as stated.
     ///
-    /// Errors: axes that cannot be set together, a nominal system that is no configuration or that starts inside
-    /// a collision.
+    /// Errors: it is no configuration, or starts with planets touching each other or the star.
     pub fn new(system: System, study: Study) -> Result<Grid, SurveyError> {
-        let order = order_of_axes(&study)?;
-        let nominal = coords::configure(&system).map_err(SurveyError::Nominal)?;
-        coords::check_start(&nominal).map_err(SurveyError::Nominal)?;
-        let grid = Grid { system, study, order };
-        // What is wrong with every cell alike (a key to count from that is not stated) shows in the first.
-        match cell_system(&grid.system, &grid.study, &grid.order, 0) {
-            Err(error @ SurveyError::NotStated { .. }) => Err(error),
-            _ => Ok(grid),
-        }
+        coords::configure(&system)
+            .and_then(|nominal| coords::check_start(&nominal))
+            .map_err(SurveyError::Nominal)?;
+        Ok(Grid { system, study })
     }
 
     /// The cells that cannot be followed, among those that `which` yields: how many, and the first with its reason.
@@ -58,10 +51,8 @@ impl Grid {
     }
 
     fn configuration(&self, cell: u64) -> Result<Configuration, Settled> {
-        let system = cell_system(&self.system, &self.study, &self.order, cell).map_err(|error| match error {
-            SurveyError::Underivable { source, .. } => self.impossible(&source),
-            other => Settled { loss: None, text: chain(&other) },
-        })?;
+        let system = cell_system(&self.system, &self.study, cell)
+            .map_err(|error| Settled { loss: None, text: chain(&error) })?;
         let started = coords::configure(&system).and_then(|configuration| {
             coords::check_start(&configuration)?;
             Ok(configuration)

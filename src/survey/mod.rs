@@ -13,7 +13,7 @@ mod record;
 mod run;
 mod tally;
 
-pub use axis::{cell_count, cell_indices, cell_system, cell_values, order_of_axes};
+pub use axis::{cell_count, cell_indices, cell_system, cell_values};
 pub use bitmap::Bitmap;
 pub use error::{Failure, SurveyError};
 pub use grid::Grid;
