@@ -4,7 +4,7 @@ use std::f64::consts::TAU;
 use std::path::PathBuf;
 
 use abide::coords::configure;
-use abide::survey::{Grid, Made, Source, cell_count, cell_system, cell_values, order_of_axes};
+use abide::survey::{Grid, Made, Source, cell_count, cell_system, cell_values};
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Frame, Key, Limits, Measure, Measured, Quantity, Spacing,
     Span, Stated, Step, Study, System, Target,
