@@ -6,8 +6,8 @@ use std::path::PathBuf;
 use abide::coords::configure;
 use abide::survey::{Grid, Made, Source, cell_count, cell_system, cell_values};
 use abide::system::{
-    Axis, Body, BodyRef, Convention, Encounter, Engine, Frame, Key, Limits, Measure, Measured, Quantity, Spacing,
-    Span, Stated, Step, Study, System, Target,
+    Axis, Body, BodyRef, Convention, Encounter, Engine, Frame, Key, Limits, Measure, Measured, Quantity,
+    Spacing, Span, Stated, Step, Study, System, Target,
 };
 use abide::units::{DEGREE, GM_EARTH, GM_SUN};
 use abide::verdict::{LostHow, Verdict};
@@ -25,7 +25,10 @@ fn system(frame: Frame) -> System {
         epoch_jd: Some(2_460_310.5),
         star: body("star", &[(Key::Mass, 0.9 * GM_SUN), (Key::Radius, 0.004)]),
         planets: vec![
-            body("b", &[(Key::MinimumMass, 5.0 * GM_EARTH), (Key::Period, 10.0), (Key::TransitTime, 2_460_312.0)]),
+            body(
+                "b",
+                &[(Key::MinimumMass, 5.0 * GM_EARTH), (Key::Period, 10.0), (Key::TransitTime, 2_460_312.0)],
+            ),
             body("c", &[(Key::Mass, 2000.0 * GM_EARTH), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 3.0)]),
         ],
         convention: Convention { elements: frame, ..Convention::default() },
@@ -92,7 +95,11 @@ fn the_first_axis_runs_fastest_and_both_ends_are_met() {
     assert_eq!(values[3], [10.7, 1e-10]);
     assert_eq!(values[4][0], 10.1);
     assert_eq!(values[11], [10.7, 1e-8]);
-    assert!((values[5][0] - 10.3).abs() < 1e-14 && (values[5][1] / 1e-9 - 1.0).abs() < 1e-14, "{:?}", values[5]);
+    assert!(
+        (values[5][0] - 10.3).abs() < 1e-14 && (values[5][1] / 1e-9 - 1.0).abs() < 1e-14,
+        "{:?}",
+        values[5]
+    );
 }
 
 #[test]
@@ -128,7 +135,14 @@ fn a_ratio_moves_the_target_whatever_key_states_its_size() {
     for frame in [Frame::Astrocentric, Frame::Jacobi, Frame::Barycentric] {
         let system = system(frame);
         // c states a semi-major axis; the period ratio must come out all the same.
-        let over_b = axis("c.period / b.period", C, Key::Period, Quantity::RatioTo(target(B, Key::Period)), [1.5, 2.5], 3);
+        let over_b = axis(
+            "c.period / b.period",
+            C,
+            Key::Period,
+            Quantity::RatioTo(target(B, Key::Period)),
+            [1.5, 2.5],
+            3,
+        );
         let cell = moved(&system, &study(vec![over_b]), 1);
         assert!((period(&cell, 1) / period(&cell, 0) - 2.0).abs() < 1e-13, "{frame:?}");
         assert_eq!(cell.planets[0], system.planets[0]);
@@ -149,7 +163,8 @@ fn a_factor_counts_from_what_was_stated() {
 fn a_ratio_counts_from_the_other_body_of_its_own_cell() {
     let system = system(Frame::Astrocentric);
     let value = axis("b.period", B, Key::Period, Quantity::Value, [10.0, 20.0], 2);
-    let ratio = axis("c.period / b.period", C, Key::Period, Quantity::RatioTo(target(B, Key::Period)), [2.0, 3.0], 2);
+    let ratio =
+        axis("c.period / b.period", C, Key::Period, Quantity::RatioTo(target(B, Key::Period)), [2.0, 3.0], 2);
     let cell = moved(&system, &study(vec![value, ratio]), 3);
     assert_eq!(cell.planets[0].stated.value(Key::Period), Some(20.0));
     assert_eq!(cell.planets[1].stated.value(Key::Period), Some(60.0));
@@ -164,7 +179,10 @@ fn cells_that_cannot_be_become_records_at_time_zero() {
     assert!(matches!(grid.make(0), Made::ToFollow(_)));
     let Made::Settled(record) = grid.make(3) else { panic!("0.2 au × 0.01 is inside 0.004 au") };
     let loss = record.loss.unwrap();
-    assert_eq!((record.verdict, loss.how, loss.planet, loss.time_day), (Verdict::Lost, LostHow::Star, 1, 0.0));
+    assert_eq!(
+        (record.verdict, loss.how, loss.planet, loss.time_day),
+        (Verdict::Lost, LostHow::Star, 1, 0.0)
+    );
     assert_eq!((record.energy_error, record.megno, record.steps), (None, None, 0));
     let (count, first, reason) = grid.settled(0..4).unwrap();
     assert_eq!((count, first), (2, 2));
@@ -175,7 +193,8 @@ fn cells_that_cannot_be_become_records_at_time_zero() {
 fn planets_at_one_place_are_lost_by_collision() {
     let mut system = system(Frame::Astrocentric);
     // c on b's orbit but for the phase, which the axis brings to b's.
-    system.planets[0] = body("b", &[(Key::Mass, GM_EARTH), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 1.0)]);
+    system.planets[0] =
+        body("b", &[(Key::Mass, GM_EARTH), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 1.0)]);
     let phase = axis("c.mean_anomaly", C, Key::MeanAnomaly, Quantity::Value, [1.0, 3.0], 2);
     let grid = Grid::new(system, study(vec![phase])).unwrap();
     let Made::Settled(record) = grid.make(0) else { panic!("both planets are at one place") };

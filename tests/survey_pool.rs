@@ -63,7 +63,9 @@ fn a_stop_keeps_what_was_finished_and_the_rest_follows_later() {
     assert!(found.resumed);
     assert_eq!((found.recovered.done.count(), found.recovered.dropped), (seen, 0));
     assert!((50..300).contains(&seen), "{seen}");
-    assert!(matches!(open.records(), Err(SurveyError::Incomplete { missing, total: 300 }) if missing == 300 - seen));
+    assert!(
+        matches!(open.records(), Err(SurveyError::Incomplete { missing, total: 300 }) if missing == 300 - seen)
+    );
     drop(open);
     run(folder.path(), 300, 2, engine(NONE, |_| {})).unwrap();
     assert_eq!(table(folder.path(), 300), right_table(300));
@@ -94,13 +96,14 @@ fn a_panic_costs_its_own_cell_only_and_is_named() {
 #[test]
 fn an_engine_that_forgets_a_cell_is_told() {
     let folder = tempfile::tempdir().unwrap();
-    let forgetful = |_: &abide::assess::Plan, next: abide::survey::Next<'_>, done: abide::survey::Done<'_>| {
-        while let Some((cell, _)) = next() {
-            if cell != 5 && !done(cell, survey_support::answer(cell)) {
-                return;
+    let forgetful =
+        |_: &abide::assess::Plan, next: abide::survey::Next<'_>, done: abide::survey::Done<'_>| {
+            while let Some((cell, _)) = next() {
+                if cell != 5 && !done(cell, survey_support::answer(cell)) {
+                    return;
+                }
             }
-        }
-    };
+        };
     let error = run(folder.path(), 20, 2, forgetful).unwrap_err();
     assert!(error.to_string().contains("cell 5") && error.to_string().contains("no answer"), "{error}");
 }

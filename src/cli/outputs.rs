@@ -59,6 +59,7 @@ impl Finished<'_> {
 
     pub fn summary_json(&self) -> Result<String, CliError> {
         let nominal = figure::nominal_cell(self.study, self.system);
-        report::summary_json(self.study, self.system, self.plan, self.records, nominal).map_err(CliError::working)
+        report::summary_json(self.study, self.system, self.plan, self.records, nominal)
+            .map_err(CliError::working)
     }
 }

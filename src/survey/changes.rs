@@ -59,7 +59,8 @@ fn label(index: usize, item: &Value) -> String {
 mod tests {
     use super::changes;
 
-    const BEFORE: &str = "span = \"1e4 orbits\"\n[[axis]]\nvary = \"c.period\"\ncells = 100\nfrom = \"16 d\"\n";
+    const BEFORE: &str =
+        "span = \"1e4 orbits\"\n[[axis]]\nvary = \"c.period\"\ncells = 100\nfrom = \"16 d\"\n";
 
     #[test]
     fn comments_and_layout_are_no_change() {
@@ -82,7 +83,10 @@ mod tests {
     #[test]
     fn an_axis_in_front_leaves_the_others_unchanged() {
         let now = BEFORE.replace("[[axis]]", "[[axis]]\nvary = \"b.mass\"\n[[axis]]");
-        assert_eq!(changes("study", BEFORE, &now), ["study: axis[b.mass].vary was absent, is now \"b.mass\""]);
+        assert_eq!(
+            changes("study", BEFORE, &now),
+            ["study: axis[b.mass].vary was absent, is now \"b.mass\""]
+        );
     }
 
     #[test]

@@ -36,7 +36,9 @@ pub enum SurveyError {
         failed.len(), failures(failed)
     )]
     Failed { total: u64, failed: Vec<Failure> },
-    #[error("the run is not complete: {missing} of {total} cells are missing; `abide survey` with the same study goes on")]
+    #[error(
+        "the run is not complete: {missing} of {total} cells are missing; `abide survey` with the same study goes on"
+    )]
     Incomplete { missing: u64, total: u64 },
 }
 

@@ -10,9 +10,9 @@
 //! The same in the system as stated is an error before the long part, since then every figure would be about
 //! nothing.
 
+use super::SurveyError;
 use super::axis::{cell_count, cell_system, cell_values};
 use super::pool::{Made, Source};
-use super::SurveyError;
 use crate::assess::{Assessment, Loss};
 use crate::coords::{self, Configuration, CoordsError};
 use crate::system::{Study, System};

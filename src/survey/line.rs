@@ -192,11 +192,9 @@ fn decode_approach(fields: &mut Fields) -> Option<Option<Approach>> {
     let (au, hill) = (fields.number()?, fields.number()?);
     let (first, second) = (fields.whole()?, fields.whole()?);
     Some(match (au, hill, first, second) {
-        (Some(au), Some(hill), Some(first), Some(second)) => Some(Approach {
-            au,
-            hill,
-            pair: (usize::try_from(first).ok()?, usize::try_from(second).ok()?),
-        }),
+        (Some(au), Some(hill), Some(first), Some(second)) => {
+            Some(Approach { au, hill, pair: (usize::try_from(first).ok()?, usize::try_from(second).ok()?) })
+        }
         _ => None,
     })
 }

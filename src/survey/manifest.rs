@@ -120,7 +120,8 @@ impl Manifest {
     }
 
     pub fn write(&self, path: &Path) -> Result<(), SurveyError> {
-        let text = serde_json::to_string_pretty(self).expect("a manifest has only string keys and finite numbers");
+        let text =
+            serde_json::to_string_pretty(self).expect("a manifest has only string keys and finite numbers");
         Ok(disk::write_beside_then_rename(path, format!("{text}\n").as_bytes())?)
     }
 }

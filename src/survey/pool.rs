@@ -188,7 +188,8 @@ impl<S: Source, E: Engine> Work<S, E> {
         let mut once = Some(cell);
         let broken = self.batch(&mut || once.take(), &flight, send).err();
         if !self.stopped() && !flight.borrow().is_empty() {
-            let what = broken.map_or_else(|| "the engine gave no answer".to_string(), |payload| panic_text(&payload));
+            let what = broken
+                .map_or_else(|| "the engine gave no answer".to_string(), |payload| panic_text(&payload));
             let what = format!("at {:?} on the axes: {what}", self.source.values(cell));
             self.post(send, Message::Failed(Failure { cell, what }));
         }

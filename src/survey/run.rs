@@ -122,7 +122,9 @@ fn complete(records: Vec<Record>, cells: u64) -> Result<Vec<Record>, SurveyError
 
 /// The manifest comes last: a folder with one has everything that goes before it.
 fn begin(folder: &Path, manifest: &Manifest, identity: &Identity) -> Result<(), SurveyError> {
-    for (file, text) in [(STUDY, Some(&identity.study_text)), (SYSTEM, Some(&identity.system_text)), (JOURNAL, None)] {
+    for (file, text) in
+        [(STUDY, Some(&identity.study_text)), (SYSTEM, Some(&identity.system_text)), (JOURNAL, None)]
+    {
         let path = folder.join(file);
         if path.exists() && std::fs::read_to_string(&path).ok().as_ref() != text {
             return Err(SurveyError::Foreign { folder: folder.to_path_buf(), file });
@@ -158,7 +160,12 @@ fn refuse_changed(
 }
 
 /// What differs between the stored file and the text read now.
-fn changed_file(folder: &Path, file: &str, stored_sha256: &str, now: &str) -> Result<Vec<String>, SurveyError> {
+fn changed_file(
+    folder: &Path,
+    file: &str,
+    stored_sha256: &str,
+    now: &str,
+) -> Result<Vec<String>, SurveyError> {
     if sha256(now) == stored_sha256 {
         return Ok(Vec::new());
     }

@@ -14,7 +14,8 @@ use abide::survey::{Desk, Done, Ended, Identity, Made, Next, Record, Run, Source
 use abide::system::Frame;
 use abide::verdict::{LostHow, Verdict};
 
-pub const STUDY: &str = "system = \"system.toml\"\nspan = \"10 orbits\"\n[[axis]]\nvary = \"c.period\"\ncells = 40\n";
+pub const STUDY: &str =
+    "system = \"system.toml\"\nspan = \"10 orbits\"\n[[axis]]\nvary = \"c.period\"\ncells = 40\n";
 pub const SYSTEM: &str = "title = \"Invented\"\n[star]\nmass = \"1 Msun\"\n";
 
 pub fn plan() -> Plan {
@@ -157,10 +158,14 @@ pub fn engine(pause: Duration, fault: impl Fn(u64) + Send + Sync + 'static) -> i
 }
 
 /// Opens the run in `folder` and fills it.
-pub fn run(folder: &Path, cells: u64, threads: usize, engine: impl abide::survey::Engine) -> Result<Ended, SurveyError> {
+pub fn run(
+    folder: &Path,
+    cells: u64,
+    threads: usize,
+    engine: impl abide::survey::Engine,
+) -> Result<Ended, SurveyError> {
     let (mut run, found) = Run::open(folder, &identity(cells))?;
-    let desk =
-        Desk { journal: &mut run.journal, stop: Arc::new(AtomicBool::new(false)), watch: &mut |_| {} };
+    let desk = Desk { journal: &mut run.journal, stop: Arc::new(AtomicBool::new(false)), watch: &mut |_| {} };
     fill(Arc::new(Fake { cells }), engine, &plan(), found.recovered.done, threads, desk)
 }
 
