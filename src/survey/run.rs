@@ -16,6 +16,8 @@ pub const JOURNAL: &str = "journal.csv";
 /// Made when every cell is done.
 pub const OUTPUTS: [&str; 3] = ["cells.ecsv", "map.png", "summary.txt"];
 const LOCK: &str = ".lock";
+/// Memory for so many records is taken at once at most; a run that is barely begun needs no more.
+const EXPECTED_CELLS: usize = 2_000_000;
 
 /// A run held by this process.
 #[derive(Debug)]
@@ -102,7 +104,7 @@ pub fn read_run(folder: &Path) -> Result<Stored, SurveyError> {
 
 /// The records of a journal by cell, each cell once; damaged lines are left out.
 fn read_records(folder: &Path, manifest: &Manifest) -> Result<Vec<Record>, SurveyError> {
-    let mut records = Vec::new();
+    let mut records = Vec::with_capacity(usize::try_from(manifest.cells).unwrap_or(0).min(EXPECTED_CELLS));
     journal::read(&folder.join(JOURNAL), &manifest.layout, |record| {
         let known = record.cell < manifest.cells;
         if known {
@@ -110,7 +112,8 @@ fn read_records(folder: &Path, manifest: &Manifest) -> Result<Vec<Record>, Surve
         }
         known
     })?;
-    records.sort_by_key(|record: &Record| record.cell);
+    // Lines of one cell are equal, so that no order among them is to be kept.
+    records.sort_unstable_by_key(|record: &Record| record.cell);
     records.dedup_by_key(|record| record.cell);
     Ok(records)
 }
