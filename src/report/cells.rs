@@ -66,7 +66,7 @@ fn meta(study: &Study, plan: &Plan) -> Vec<(String, Meta)> {
     vec![
         ("title".to_owned(), Meta::Text(title)),
         ("version".to_owned(), Meta::Text(VERSION.to_owned())),
-        ("span".to_owned(), Meta::Text(words::span_words(study, plan))),
+        ("span".to_owned(), Meta::Text(words::span_words(study, plan, words::short))),
         ("span_d".to_owned(), Meta::Float(plan.span_day)),
         ("scheme".to_owned(), Meta::Text(plan.scheme.to_owned())),
         ("energy_error_target".to_owned(), Meta::Float(plan.energy_error)),

@@ -88,7 +88,7 @@ impl Summary {
                 cell,
                 assessment: records.iter().find(|r| r.cell == cell).map(|r| r.assessment.clone()),
             }),
-            span: words::span_words(study, plan),
+            span: words::span_words(study, plan, words::short),
             span_day: plan.span_day,
             scheme: plan.scheme,
             step: words::step_words(plan, records),

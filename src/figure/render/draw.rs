@@ -20,7 +20,7 @@ pub(super) fn picture(figure: &Figure, page: &Page) -> Result<Picture, RenderErr
         for mark in &panel.marks {
             draw_mark(&mut canvas, mark, panel, frame)?;
         }
-        axes(&mut canvas, panel, frame)?;
+        axes(&mut canvas, panel, frame);
     }
     if let Some((frame, bar)) = &page.bar {
         colour_bar(&mut canvas, frame, bar)?;
@@ -61,7 +61,10 @@ impl Places<'_> {
 fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> Result<(), RenderError> {
     let places = Places { frame, x: panel.x.scale(), y: panel.y.as_ref().map(Axis::scale) };
     match mark {
-        Mark::Raster { columns, rows, cells, scale } => raster(canvas, frame, (*columns, *rows), cells, *scale),
+        Mark::Raster { columns, rows, cells, scale } => {
+            raster(canvas, frame, (*columns, *rows), cells, *scale);
+            Ok(())
+        }
         Mark::Points { points } => {
             let radius = if points.len() > 120 { 1.0 } else { 1.5 };
             for (x, y, colour) in points {
@@ -79,7 +82,10 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
             Ok(())
         }
         Mark::Level { at } => match places.up(*at) {
-            Some(y) => canvas.rule((frame.left, y), (frame.right, y), THIN, Rgb(150, 150, 150)),
+            Some(y) => {
+                canvas.rule((frame.left, y), (frame.right, y), THIN, Rgb(150, 150, 150));
+                Ok(())
+            }
             None => Ok(()),
         },
         Mark::Nominal { x, y, x_bar, y_bar } => {
@@ -121,7 +127,7 @@ fn raster(
     (columns, rows): (usize, usize),
     cells: &[Paint],
     scale: Option<Scale>,
-) -> Result<(), RenderError> {
+) {
     let (left, right) = (canvas.snap(frame.left), canvas.snap(frame.right));
     let (top, bottom) = (canvas.snap(frame.top), canvas.snap(frame.bottom));
     // In kept pixels, so that an edge never lies inside of one.
@@ -140,12 +146,11 @@ fn raster(
                 Paint::Flat(region) => canvas.toned((from, high), (to, low), region.tone()),
                 Paint::Value(value) => {
                     let colour = scale.and_then(|s| s.colour(*value)).unwrap_or(WHITE);
-                    canvas.block((from, high), (to, low), colour)?;
+                    canvas.block((from, high), (to, low), colour);
                 }
             }
         }
     }
-    Ok(())
 }
 
 type Ends = Option<(f64, f64)>;
@@ -156,16 +161,16 @@ fn nominal(canvas: &mut Canvas, (x, y): (f64, f64), across: Ends, up: Ends) -> R
         let thick = 0.8 + 2.0 * edge;
         if let Some((from, to)) = across {
             let (from, to) = (from.min(to), from.max(to));
-            canvas.rule((from - edge, y), (to + edge, y), thick, colour)?;
+            canvas.rule((from - edge, y), (to + edge, y), thick, colour);
             for end in [from, to] {
-                canvas.rule((end, y - 2.0 - edge), (end, y + 2.0 + edge), thick, colour)?;
+                canvas.rule((end, y - 2.0 - edge), (end, y + 2.0 + edge), thick, colour);
             }
         }
         if let Some((from, to)) = up {
             let (from, to) = (from.min(to), from.max(to));
-            canvas.rule((x, from - edge), (x, to + edge), thick, colour)?;
+            canvas.rule((x, from - edge), (x, to + edge), thick, colour);
             for end in [from, to] {
-                canvas.rule((x - 2.0 - edge, end), (x + 2.0 + edge, end), thick, colour)?;
+                canvas.rule((x - 2.0 - edge, end), (x + 2.0 + edge, end), thick, colour);
             }
         }
     }
@@ -174,30 +179,29 @@ fn nominal(canvas: &mut Canvas, (x, y): (f64, f64), across: Ends, up: Ends) -> R
     canvas.disc((x, y), 1.7, WHITE)
 }
 
-fn axes(canvas: &mut Canvas, panel: &Panel, frame: &Frame) -> Result<(), RenderError> {
+fn axes(canvas: &mut Canvas, panel: &Panel, frame: &Frame) {
     let places = Places { frame, x: panel.x.scale(), y: panel.y.as_ref().map(Axis::scale) };
-    canvas.frame((frame.left, frame.top), (frame.right, frame.bottom), THIN)?;
+    canvas.frame((frame.left, frame.top), (frame.right, frame.bottom), THIN);
     let both = |ticks: &crate::figure::Ticks| {
         let major: Vec<(f64, f64)> = ticks.major.iter().map(|t| (t.at, MAJOR)).collect();
         major.into_iter().chain(ticks.minor.iter().map(|m| (*m, MINOR))).collect::<Vec<_>>()
     };
     for (at, length) in both(&frame.x) {
         if let Some(x) = places.across(at) {
-            canvas.rule((x, frame.bottom), (x, frame.bottom + length), THIN, BLACK)?;
+            canvas.rule((x, frame.bottom), (x, frame.bottom + length), THIN, BLACK);
         }
     }
     for (at, length) in both(&frame.y) {
         if let Some(y) = places.up(at) {
-            canvas.rule((frame.left - length, y), (frame.left, y), THIN, BLACK)?;
+            canvas.rule((frame.left - length, y), (frame.left, y), THIN, BLACK);
         }
     }
     for x in frame.top_pins.iter().filter_map(|at| places.across(*at)) {
-        canvas.rule((x, frame.top - MAJOR), (x, frame.top), THIN, BLACK)?;
+        canvas.rule((x, frame.top - MAJOR), (x, frame.top), THIN, BLACK);
     }
     for y in frame.right_pins.iter().filter_map(|at| places.up(*at)) {
-        canvas.rule((frame.right, y), (frame.right + MAJOR, y), THIN, BLACK)?;
+        canvas.rule((frame.right, y), (frame.right + MAJOR, y), THIN, BLACK);
     }
-    Ok(())
 }
 
 fn colour_bar(canvas: &mut Canvas, frame: &Frame, bar: &ColourBar) -> Result<(), RenderError> {
@@ -207,26 +211,28 @@ fn colour_bar(canvas: &mut Canvas, frame: &Frame, bar: &ColourBar) -> Result<(),
     let (y0, y1) = (canvas.snap(top), canvas.snap(bottom));
     for row in (y0..y1).step_by(FINER) {
         let place = 1.0 - (row as f64 + 0.5 * FINER as f64 - y0 as f64) / (y1 - y0) as f64;
-        canvas.block((x0, row), (x1, row + FINER as i64), even(place))?;
+        canvas.block((x0, row), (x1, row + FINER as i64), even(place));
     }
     let middle = 0.5 * (left + right);
     let ends = [(bar.after, top, -POINT, even(1.0)), (bar.before, bottom, POINT, even(0.0))];
-    canvas.rule((left, top), (left, bottom), THIN, BLACK)?;
-    canvas.rule((right, top), (right, bottom), THIN, BLACK)?;
+    canvas.rule((left, top), (left, bottom), THIN, BLACK);
+    canvas.rule((right, top), (right, bottom), THIN, BLACK);
     for (beyond, edge, out, colour) in ends {
         if beyond {
             let corners = [(left, edge), (middle, edge + out), (right, edge)];
-            canvas.polygon(&corners, colour)?;
+            // Filled from a little inside, so that no light line is left between the point and the body.
+            let inside = edge - 0.05 * out;
+            canvas.polygon(&[(left, inside), corners[0], corners[1], corners[2], (right, inside)], colour)?;
             canvas.path(&corners, THIN, BLACK)?;
         } else {
-            canvas.rule((left, edge), (right, edge), THIN, BLACK)?;
+            canvas.rule((left, edge), (right, edge), THIN, BLACK);
         }
     }
     let place = |at: f64| bar.scale.place(at).map(|p| bottom - p * (bottom - top));
     let major = frame.y.major.iter().map(|t| (t.at, MAJOR));
     for (at, length) in major.chain(frame.y.minor.iter().map(|m| (*m, MINOR))) {
         if let Some(y) = place(at) {
-            canvas.rule((right, y), (right + length, y), THIN, BLACK)?;
+            canvas.rule((right, y), (right + length, y), THIN, BLACK);
         }
     }
     Ok(())
@@ -240,7 +246,8 @@ fn sample(canvas: &mut Canvas, entry: &Legend, x: f64, y: f64) -> Result<(), Ren
             let corner = |x: f64, y: f64| (canvas.snap(x), canvas.snap(y));
             let (from, to) = (corner(x, y), corner(right, bottom));
             canvas.toned(from, to, region.tone());
-            canvas.frame((x, y), (right, bottom), THIN)
+            canvas.frame((x, y), (right, bottom), THIN);
+            Ok(())
         }
         Legend::Nominal(_) => {
             let ends = (middle_x - 7.5, middle_x + 7.5);

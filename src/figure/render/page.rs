@@ -72,7 +72,7 @@ struct Sizes {
 const MARGIN: f64 = 4.0;
 const TICK: f64 = 3.5;
 /// Width and height of the samples of the legend.
-pub(super) const SAMPLE: (f64, f64) = (17.0, 8.5);
+pub(super) const SAMPLE: (f64, f64) = (15.0, 8.0);
 
 /// Lays a figure out at a physical width.
 ///
@@ -299,7 +299,7 @@ impl Layout {
             let line = self.at + 0.5 * (SAMPLE.1 + CAPITAL * size);
             self.put(label, size, x + SAMPLE.0 + gap, line);
             self.page.samples.push((entry.clone(), x, self.at));
-            x += length + 11.0;
+            x += length + 9.0;
             any = true;
         }
         if any {
