@@ -21,7 +21,7 @@ impl Resonance {
 }
 
 /// Largest p of a resonance that is shown.
-const LARGEST_P: u32 = 12;
+const LARGEST_P: u32 = 9;
 
 /// Resonances inside the range of an axis (by index) of a study with their places in the axis's unit, lowest
 /// order first.

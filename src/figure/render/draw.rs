@@ -7,6 +7,7 @@ use crate::figure::colour::{Rgb, Scale, even};
 use crate::figure::model::{Axis, ColourBar, Figure, Legend, Mark, Paint, Panel};
 
 const BLACK: Rgb = Rgb(0, 0, 0);
+const GREY: Rgb = Rgb(150, 150, 150);
 const WHITE: Rgb = Rgb(255, 255, 255);
 /// Thickness of frames and ticks, pt.
 const THIN: f64 = 0.5;
@@ -52,9 +53,9 @@ impl Places<'_> {
         Some(self.frame.bottom - place * (self.frame.bottom - self.frame.top))
     }
 
-    fn holds(&self, (x, y): (f64, f64)) -> bool {
-        let f = self.frame;
-        (f.left..=f.right).contains(&x) && (f.top..=f.bottom).contains(&y)
+    /// Moved to the frame when outside.
+    fn inside(&self, (x, y): (f64, f64)) -> (f64, f64) {
+        (x.clamp(self.frame.left, self.frame.right), y.clamp(self.frame.top, self.frame.bottom))
     }
 }
 
@@ -75,23 +76,26 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
             Ok(())
         }
         Mark::Curve(curve) => {
-            let placed = curve.points.iter().map(|(x, y)| Some((places.across(*x)?, places.up(*y)?)));
-            for part in parts(placed, |p| places.holds(p)) {
+            let placed = curve.points.iter().map(|(x, y)| Some(places.inside((places.across(*x)?, places.up(*y)?))));
+            for part in parts(placed) {
                 canvas.path(&part, 0.6, curve.colour)?;
             }
             Ok(())
         }
         Mark::Level { at } => match places.up(*at) {
             Some(y) => {
-                canvas.rule((frame.left, y), (frame.right, y), THIN, Rgb(150, 150, 150));
+                canvas.rule((frame.left, y), (frame.right, y), THIN, GREY);
                 Ok(())
             }
             None => Ok(()),
         },
         Mark::Nominal { x, y, x_bar, y_bar } => {
             let Some(x) = places.across(*x) else { return Ok(()) };
-            // Without a height it stands in the middle.
-            let y = y.map_or(Some(0.5 * (frame.top + frame.bottom)), |y| places.up(y));
+            if y.is_none() {
+                canvas.rule((x, frame.top), (x, frame.bottom), THIN, GREY);
+            }
+            // Without a height it stands below the top edge, where it is read with the pins.
+            let y = y.map_or(Some(frame.top + 9.0), |y| places.up(y));
             let Some(y) = y else { return Ok(()) };
             let clip_x = |v: f64| places.across(v).map(|p| p.clamp(frame.left, frame.right));
             let clip_y = |v: f64| places.up(v).map(|p| p.clamp(frame.top, frame.bottom));
@@ -102,20 +106,15 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
     }
 }
 
-/// Runs of places that are there and inside; a point outside ends a run.
-fn parts(
-    points: impl Iterator<Item = Option<(f64, f64)>>,
-    inside: impl Fn((f64, f64)) -> bool,
-) -> Vec<Vec<(f64, f64)>> {
-    let mut found = Vec::new();
-    let mut part: Vec<(f64, f64)> = Vec::new();
+/// Runs of places that are there.
+fn parts(points: impl Iterator<Item = Option<(f64, f64)>>) -> Vec<Vec<(f64, f64)>> {
+    let mut found = vec![Vec::new()];
     for point in points {
-        match point.filter(|p| inside(*p)) {
-            Some(point) => part.push(point),
-            None => found.push(std::mem::take(&mut part)),
+        match (point, found.last_mut()) {
+            (Some(point), Some(part)) => part.push(point),
+            _ => found.push(Vec::new()),
         }
     }
-    found.push(part);
     found.retain(|p| !p.is_empty());
     found
 }

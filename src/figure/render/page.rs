@@ -101,7 +101,13 @@ pub fn page(figure: &Figure, width: Width) -> Result<Page, RenderError> {
         at: MARGIN,
     };
     layout.title(figure);
-    layout.panels(figure, if narrow { 1.12 } else { 1.0 });
+    let stretch = match (narrow, figure.panels.len()) {
+        (false, _) => 1.0,
+        (true, 1) => 1.12,
+        // Stacked panels stay tall enough for the names of their axes.
+        (true, _) => 1.4,
+    };
+    layout.panels(figure, stretch);
     layout.legend(&figure.legend);
     layout.caption(&figure.caption);
     layout.page.height = layout.at + MARGIN;
@@ -177,7 +183,8 @@ impl Layout {
         if let (Some(bar), Some(frame)) = (&figure.colour_bar, self.page.frames.first().cloned()) {
             self.bar(bar, &frame, sides.bar_gap);
         }
-        self.at += TICK + 1.9 * sizes.tick + 1.15 * sizes.label;
+        self.at = self.at - 0.9 * sizes.tick + TICK + 5.0 + sizes.tick * (CAPITAL + BELOW);
+        self.at += sizes.label * (CAPITAL + BELOW) + 6.0;
     }
 
     fn sides(&self, figure: &Figure, y_ticks: &[Ticks], height: f64) -> Sides {
