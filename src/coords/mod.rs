@@ -4,11 +4,17 @@ mod configure;
 mod convert;
 mod elements;
 mod error;
+mod masses;
+mod outline;
+mod restate;
+mod start;
 
-pub use configure::configure;
-pub use convert::{elements_in, star_centred};
+pub use configure::{StatedState, configure};
+pub use convert::{States, elements_in, star_centred};
 pub use elements::Elements;
 pub use error::CoordsError;
+pub use restate::restate;
+pub use start::check_start;
 
 use crate::system::Frame;
 

@@ -5,14 +5,20 @@
 //! statements into masses and orbits.
 
 mod key;
+mod path;
+mod range;
 mod stated;
 mod study;
+mod vary;
 
 pub use key::{Group, Key};
-pub use stated::{Body, Measured, Stated};
+pub use path::{PathError, is_planet_name};
+pub use range::{Allowed, Holder, Unsound};
+pub use stated::{Body, Measured, Pair, SetError, Stated};
 pub use study::{
     Axis, BodyRef, Encounter, Engine, Limits, Measure, Quantity, Spacing, Span, Step, Study, Target,
 };
+pub use vary::VaryError;
 
 /// In which frame the stated orbits are osculating.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]

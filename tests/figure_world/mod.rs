@@ -4,8 +4,8 @@
 use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range, StepWhy};
 use abide::survey::Record;
 use abide::system::{
-    Axis, Body, BodyRef, Convention, Encounter, Engine, Key, Limits, Measure, Measured, Quantity, Spacing, Span,
-    Stated, Step, Study, System, Target,
+    Axis, Body, BodyRef, Convention, Encounter, Engine, Key, Limits, Measure, Measured, Quantity, Spacing,
+    Span, Stated, Step, Study, System, Target,
 };
 use abide::units::{DEGREE, GM_EARTH, GM_SUN};
 use abide::verdict::{LostHow, Verdict};
@@ -49,7 +49,13 @@ pub fn system() -> System {
 
 pub fn axis(planet: usize, key: Key, (from, to, cells): (f64, f64, usize)) -> Axis {
     let name = ["b", "c"][planet];
-    let unit = if key == Key::Period { "d" } else if key == Key::SemiMajorAxis { "au" } else { "" };
+    let unit = if key == Key::Period {
+        "d"
+    } else if key == Key::SemiMajorAxis {
+        "au"
+    } else {
+        ""
+    };
     Axis {
         path: format!("{name}.{}", key.word()),
         target: Target { body: BodyRef::Planet(planet), key },
@@ -112,7 +118,8 @@ pub fn assessment(verdict: Verdict, how: Option<LostHow>, megno: f64, share_live
         end_time_day: SPAN_DAY * share_lived,
         loss: how.map(|how| Loss { time_day: SPAN_DAY * share_lived, planet: 0, other: Some(1), how }),
         megno: (verdict != Verdict::Lost).then_some(megno),
-        lyapunov: chaotic.then(|| Lyapunov { per_day: megno / SPAN_DAY, error_per_day: 0.1 * megno / SPAN_DAY }),
+        lyapunov: chaotic
+            .then(|| Lyapunov { per_day: megno / SPAN_DAY, error_per_day: 0.1 * megno / SPAN_DAY }),
         extent: vec![extent(0.0972, 0.06), extent(0.1274, 0.03 * megno)],
         smallest_approach: Some(Approach { au: 0.03 / megno, hill: 12.0 / megno, pair: (0, 1) }),
         energy_error: Some(1e-10 * megno * megno),

@@ -1,0 +1,118 @@
+//! What the files may one day say but this version cannot do. To widen the program, take the line out here and
+//! read the key where it belongs.
+
+use super::error::{Fault, InputError};
+use super::raw::{RawTable, RawValue};
+use super::source::{Complaint, Source};
+
+/// When a key is refused.
+enum When {
+    Present,
+    True,
+    /// The text is one of these.
+    Words(&'static [&'static str]),
+    /// The list holds this word.
+    Holds(&'static str),
+}
+
+struct Later {
+    /// Empty for the top of the file.
+    section: &'static str,
+    key: &'static str,
+    when: When,
+    what: &'static str,
+    advice: &'static str,
+}
+
+const TAKE_OUT: &str = "take it out";
+
+const LATER: [Later; 10] = [
+    Later {
+        section: "",
+        key: "companion",
+        when: When::Present,
+        what: "a second star ([companion])",
+        advice: TAKE_OUT,
+    },
+    Later {
+        section: "",
+        key: "samples",
+        when: When::Present,
+        what: "samples of a posterior ([samples])",
+        advice: "use one or two [[axis]] tables",
+    },
+    Later {
+        section: "",
+        key: "draws",
+        when: When::Present,
+        what: "draws from the stated uncertainties",
+        advice: "use one or two [[axis]] tables",
+    },
+    Later {
+        section: "",
+        key: "measure",
+        when: When::Holds("frequency_drift"),
+        what: "the measure \"frequency_drift\"",
+        advice: "use \"megno\", \"lyapunov\", \"extent\"",
+    },
+    Later {
+        section: "physics",
+        key: "relativity",
+        when: When::True,
+        what: "relativity",
+        advice: "write relativity = false, and keep in mind that close-in orbits then precess too slowly",
+    },
+    Later {
+        section: "physics",
+        key: "oblateness",
+        when: When::Present,
+        what: "the oblateness of the star",
+        advice: TAKE_OUT,
+    },
+    Later {
+        section: "limits",
+        key: "encounter",
+        when: When::Words(&["resolve"]),
+        what: "encounter = \"resolve\"",
+        advice: "use a distance such as \"1 hill\" to stop there, or \"off\"",
+    },
+    Later {
+        section: "engine",
+        key: "scheme",
+        when: When::Words(&["(4,2)", "(6,2)", "(8,2)", "(10,2)", "(8,4)", "(10,4)", "(8,6,4)", "(10,6,4)"]),
+        what: "this scheme",
+        advice: "use \"auto\" or \"(2,2)\"",
+    },
+    Later {
+        section: "engine",
+        key: "coordinates",
+        when: When::Words(&["jacobi", "auto"]),
+        what: "a choice of coordinates for the integration",
+        advice: "use \"heliocentric\"; elements may be stated in Jacobi coordinates all the same",
+    },
+    Later { section: "engine", key: "seed", when: When::Present, what: "random draws", advice: TAKE_OUT },
+];
+
+/// Refuses what is known but not there yet. `section` is the table's word, empty for the top of the file.
+pub(crate) fn refuse(source: &Source, section: &str, table: &RawTable) -> Result<(), InputError> {
+    for later in LATER.iter().filter(|later| later.section == section) {
+        let Some(entry) = table.get(later.key) else { continue };
+        let is_word = |value: &RawValue, word: &str| matches!(value, RawValue::Text(text) if text == word);
+        let at = match (&later.when, &entry.value) {
+            (When::Present, _) => Some(entry.key_at.clone()),
+            (When::True, RawValue::Flag(true)) => Some(entry.value_at.clone()),
+            (When::Words(words), value) if words.iter().any(|word| is_word(value, word)) => {
+                Some(entry.value_at.clone())
+            }
+            (When::Holds(word), RawValue::List(list)) => {
+                list.iter().find(|(value, _)| is_word(value, word)).map(|(_, at)| at.clone())
+            }
+            _ => None,
+        };
+        if let Some(at) = at {
+            let complaint = Complaint::new(Fault::NotYet, later.what).advice(later.advice);
+            return Err(source.at(at, complaint));
+        }
+    }
+    Ok(())
+}
