@@ -1,39 +1,54 @@
-//! Panels through time.
+//! Panels through time as data.
 
-use abide::figure::render::{self, Width};
-use abide::figure::{PlanetCurves, SeriesInput, series};
+use abide::figure::{FigureError, Legend, Mark, PlanetCurves, ScaleKind, SeriesInput, series};
 
-fn show(name: &str, bytes: &[u8]) {
-    if let Some(folder) = std::env::var_os("FIGURES_INTO") {
-        std::fs::write(std::path::Path::new(&folder).join(name), bytes).unwrap();
+fn input<'a>(
+    time: &'a [f64],
+    planets: &'a [PlanetCurves<'a>],
+    megno: &'a [f64],
+    energy: &'a [f64],
+) -> SeriesInput<'a> {
+    SeriesInput {
+        title: "Lanthorn",
+        time_day: time,
+        planets,
+        megno_mean: megno,
+        energy_error: energy,
+        caption: &[],
     }
 }
 
 #[test]
-fn pictures_for_the_eye() {
-    let count = 2000;
-    let time: Vec<f64> = (0..count).map(|i| f64::from(i) * 60.0).collect();
-    let wave = |middle: f64, height: f64, days: f64| -> Vec<f64> {
-        time.iter().map(|t| middle + height * (t * std::f64::consts::TAU / days).sin()).collect()
-    };
-    let (e_b, e_c) = (wave(0.05, 0.03, 31_000.0), wave(0.08, 0.02, 31_000.0));
-    let (a_b, a_c) = (wave(0.0972, 3e-5, 1130.0), wave(0.1274, 4e-5, 1130.0));
-    let megno: Vec<f64> = time.iter().map(|t| 2.0 * (1.0 - (-t / 9000.0).exp()) + 0.2 * (t / 4000.0).sin() / (1.0 + t / 9000.0)).collect();
-    let energy: Vec<f64> = time.iter().map(|t| 3e-10 * (t / 77.0).sin()).collect();
+fn four_panels_share_the_time_axis_in_the_unit_that_reads_best() {
+    let time = [0.0, 365.25e3, 730.5e3, 1095.75e3];
     let planets = [
-        PlanetCurves { name: "b", eccentricity: &e_b, semi_major_axis_au: &a_b },
-        PlanetCurves { name: "c", eccentricity: &e_c, semi_major_axis_au: &a_c },
+        PlanetCurves { name: "b", eccentricity: &[0.1; 4], semi_major_axis_au: &[1.0, 1.0002, 0.9998, 1.0] },
+        PlanetCurves { name: "c", eccentricity: &[0.2; 4], semi_major_axis_au: &[2.0; 4] },
     ];
-    let caption = ["Followed for 10⁴ inner orbits; scheme (2,2), step 0.42 d. abide 0.1.0.".to_owned()];
-    let figure = series(&SeriesInput {
-        title: "Lanthorn",
-        time_day: &time,
-        planets: &planets,
-        megno_mean: &megno,
-        energy_error: &energy,
-        caption: &caption,
-    })
-    .unwrap();
-    show("series.png", &render::png(&figure, Width::PAGE).unwrap());
-    show("series-88.png", &render::png(&figure, Width::COLUMN).unwrap());
+    let figure = series(&input(&time, &planets, &[0.0, 1.5, 1.9, 2.0], &[0.0, 1e-9, -3e-9, 2e-9])).unwrap();
+    let labels: Vec<String> = figure.panels.iter().map(|p| p.y.as_ref().unwrap().label.text()).collect();
+    assert_eq!(labels, ["eccentricity", "Δa/a0 [10−4]", "MEGNO ⟨Y⟩", "|ΔE/E|"]);
+    assert!(figure.panels.iter().all(|p| p.x == figure.panels[0].x));
+    assert_eq!(figure.panels[0].x.label.text(), "time [yr]");
+    assert_eq!(figure.panels[0].x.to, 3000.0);
+    let curves: Vec<_> = figure.panels[1].marks.iter().filter(|m| matches!(m, Mark::Curve(_))).collect();
+    let Mark::Curve(b) = curves[0] else { panic!() };
+    assert!((b.points[1].1 - 2.0).abs() < 1e-9 && (b.points[2].1 + 2.0).abs() < 1e-9);
+    let energy = figure.panels[3].y.as_ref().unwrap();
+    assert_eq!((energy.kind, energy.from, energy.to), (ScaleKind::Log, 1e-9, 1e-8));
+    let names: Vec<String> = figure
+        .legend
+        .iter()
+        .map(|l| if let Legend::Curve(name, _) = l { name.text() } else { panic!() })
+        .collect();
+    assert_eq!(names, ["b", "c"]);
+}
+
+#[test]
+fn what_was_not_measured_has_no_panel() {
+    let planets = [PlanetCurves { name: "b", eccentricity: &[0.1; 2], semi_major_axis_au: &[1.0; 2] }];
+    let figure = series(&input(&[0.0, 10.0], &planets, &[], &[])).unwrap();
+    assert_eq!(figure.panels.len(), 2);
+    assert_eq!(figure.panels[0].x.label.text(), "time [d]");
+    assert!(matches!(series(&input(&[], &[], &[], &[])), Err(FigureError::EmptySeries)));
 }

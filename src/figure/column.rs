@@ -74,9 +74,9 @@ impl Column {
             Column::SmallestApproachHill => cell.smallest_approach.map(|a| a.hill),
             Column::EMax(planet) => extent(planet).map(|x| x.eccentricity.max),
             Column::EMin(planet) => extent(planet).map(|x| x.eccentricity.min),
-            Column::ARange(planet) => extent(planet).map(|x| x.semi_major_axis_au).map(|range| {
-                (range.max - range.min) / (0.5 * (range.max + range.min))
-            }),
+            Column::ARange(planet) => extent(planet)
+                .map(|x| x.semi_major_axis_au)
+                .map(|range| (range.max - range.min) / (0.5 * (range.max + range.min))),
             Column::IMax(planet) => extent(planet).map(|x| x.inclination.max / DEGREE),
         }
         .filter(|v| v.is_finite())
@@ -109,9 +109,7 @@ impl Column {
             Column::EndTime => names::with_unit(Label::plain("time survived"), "yr"),
             Column::EnergyError => Label::plain("relative energy error"),
             Column::SmallestApproach => names::with_unit(Label::plain("closest approach"), "au"),
-            Column::SmallestApproachHill => {
-                Label::plain("closest approach [mutual Hill radii]")
-            }
+            Column::SmallestApproachHill => Label::plain("closest approach [mutual Hill radii]"),
             Column::EMax(planet) => Label::plain("largest ").italic("e").down(name(planet)),
             Column::EMin(planet) => Label::plain("smallest ").italic("e").down(name(planet)),
             Column::ARange(planet) => {
@@ -155,7 +153,8 @@ fn decades(values: &[f64]) -> Scale {
     }
     let (below, above) = (10f64.powi(low.log10().floor() as i32), 10f64.powi(high.log10().floor() as i32));
     let from = [5.0, 2.0].into_iter().map(|d| d * below).find(|v| *v <= low).unwrap_or(below);
-    let to = [1.0, 2.0, 5.0, 10.0].into_iter().map(|d| d * above).find(|v| *v >= high).unwrap_or(10.0 * above);
+    let to =
+        [1.0, 2.0, 5.0, 10.0].into_iter().map(|d| d * above).find(|v| *v >= high).unwrap_or(10.0 * above);
     Scale { from, to: if to > from { to } else { 2.0 * from }, kind: ScaleKind::Log }
 }
 
@@ -187,7 +186,12 @@ pub fn columns(system: &System, records: &[Record]) -> Vec<Column> {
         Column::SmallestApproachHill,
     ];
     for planet in 0..system.planets.len() {
-        all.extend([Column::EMax(planet), Column::EMin(planet), Column::ARange(planet), Column::IMax(planet)]);
+        all.extend([
+            Column::EMax(planet),
+            Column::EMin(planet),
+            Column::ARange(planet),
+            Column::IMax(planet),
+        ]);
     }
     all.retain(|c| records.iter().any(|r| c.value(&r.assessment).is_some()));
     all.insert(0, Column::Verdict);

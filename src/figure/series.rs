@@ -59,7 +59,7 @@ pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
     let mut panels = Vec::new();
     let shapes = input.planets.iter().map(|p| p.eccentricity.to_vec()).zip(inks()).collect();
     let label = Label::plain("eccentricity");
-    panels.extend(panel(&x, &time, shapes, label, None));
+    panels.extend(panel(&x, &time, shapes, label, None).map(|p| with_short(p, Label::default().italic("e"))));
     let sizes: Vec<Vec<f64>> = input.planets.iter().map(|p| relative(p.semi_major_axis_au)).collect();
     let label = Label::plain("Δ").italic("a").then("/").italic("a").down("0");
     let (sizes, label) = in_tenths(sizes, label);
@@ -74,8 +74,15 @@ pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
         return Err(FigureError::EmptySeries);
     }
 
-    let legend = input.planets.iter().zip(inks()).map(|(p, ink)| Legend::Curve(Label::plain(p.name), ink)).collect();
-    Ok(Figure { title: Label::plain(input.title), panels, colour_bar: None, legend, caption: input.caption.to_vec() })
+    let legend =
+        input.planets.iter().zip(inks()).map(|(p, ink)| Legend::Curve(Label::plain(p.name), ink)).collect();
+    Ok(Figure {
+        title: Label::plain(input.title),
+        panels,
+        colour_bar: None,
+        legend,
+        caption: input.caption.to_vec(),
+    })
 }
 
 /// A zero has no place on a logarithmic axis.
@@ -113,7 +120,13 @@ fn time_unit(span_day: f64) -> (&'static str, f64) {
 }
 
 /// Absent when nothing finite is there to draw.
-fn panel(x: &Axis, time: &[f64], curves: Vec<(Vec<f64>, Rgb)>, label: Label, level: Option<f64>) -> Option<Panel> {
+fn panel(
+    x: &Axis,
+    time: &[f64],
+    curves: Vec<(Vec<f64>, Rgb)>,
+    label: Label,
+    level: Option<f64>,
+) -> Option<Panel> {
     let finite = curves.iter().flat_map(|(v, _)| v).copied().filter(|v| v.is_finite());
     let mut values: Vec<f64> = finite.collect();
     if values.is_empty() {
@@ -136,6 +149,13 @@ fn panel(x: &Axis, time: &[f64], curves: Vec<(Vec<f64>, Rgb)>, label: Label, lev
         marks.push(Mark::Curve(Curve { points, colour }));
     }
     Some(Panel { x: x.clone(), y, marks, top: Vec::new(), right: Vec::new(), height: 0.2 })
+}
+
+fn with_short(mut panel: Panel, short: Label) -> Panel {
+    if let Some(y) = panel.y.as_mut() {
+        y.short = short;
+    }
+    panel
 }
 
 /// The same panel with a logarithmic height over whole decades.

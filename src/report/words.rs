@@ -101,9 +101,8 @@ pub(crate) fn held_words(study: &Study, system: &System) -> String {
             },
             BodyRef::All => ("all planets", system.planets.first().map(|p| &p.stated)),
         };
-        let moved = |group| {
-            study.axes.iter().any(|a| a.target.body == *body && a.target.key.group() == group)
-        };
+        let moved =
+            |group| study.axes.iter().any(|a| a.target.body == *body && a.target.key.group() == group);
         let kept: Vec<&str> = stated
             .into_iter()
             .flat_map(|s| s.iter())
@@ -133,7 +132,5 @@ pub(crate) fn convention_words(convention: Convention, epoch_jd: Option<f64>) ->
         Transit::Minus90 => "\u{2212}90",
     };
     let epoch = epoch_jd.map_or_else(String::new, |jd| format!(", epoch JD {jd} TDB"));
-    format!(
-        "{frame} elements, argument of pericentre {pericentre}, in transit at ν + ω = {transit}°{epoch}"
-    )
+    format!("{frame} elements, argument of pericentre {pericentre}, in transit at ν + ω = {transit}°{epoch}")
 }

@@ -123,7 +123,11 @@ impl Canvas {
     /// A line through points.
     pub(super) fn path(&mut self, points: &[Point], thickness: f64, colour: Rgb) -> Result<(), RenderError> {
         let scale = self.per_point;
-        let stroke = ShapeStyle { color: ink(colour).into(), filled: false, stroke_width: (thickness * scale).round().max(1.0) as u32 };
+        let stroke = ShapeStyle {
+            color: ink(colour).into(),
+            filled: false,
+            stroke_width: (thickness * scale).round().max(1.0) as u32,
+        };
         let mut last = None;
         for point in points {
             let place = ((point.0 * scale).round() as i32, (point.1 * scale).round() as i32);

@@ -76,7 +76,8 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
             Ok(())
         }
         Mark::Curve(curve) => {
-            let placed = curve.points.iter().map(|(x, y)| Some(places.inside((places.across(*x)?, places.up(*y)?))));
+            let placed =
+                curve.points.iter().map(|(x, y)| Some(places.inside((places.across(*x)?, places.up(*y)?))));
             for part in parts(placed) {
                 canvas.path(&part, 0.6, curve.colour)?;
             }

@@ -74,7 +74,10 @@ mod tests {
 
     #[test]
     fn a_number_keeps_its_unit() {
-        assert_eq!(words("step 0.42 d (95 % of 2 bodies)"), ["step", "0.42 d", "(95 %", "of", "2", "bodies)"]);
+        assert_eq!(
+            words("step 0.42 d (95 % of 2 bodies)"),
+            ["step", "0.42 d", "(95 %", "of", "2", "bodies)"]
+        );
     }
 
     #[test]

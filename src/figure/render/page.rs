@@ -162,8 +162,12 @@ impl Layout {
         let sizes = self.sizes;
         let guess = self.page.width * 0.72;
         let heights: Vec<f64> = figure.panels.iter().map(|p| p.height * stretch * guess).collect();
-        let y_ticks: Vec<Ticks> =
-            figure.panels.iter().zip(&heights).map(|(p, h)| upright_ticks(p.y.as_ref(), *h, sizes.tick)).collect();
+        let y_ticks: Vec<Ticks> = figure
+            .panels
+            .iter()
+            .zip(&heights)
+            .map(|(p, h)| upright_ticks(p.y.as_ref(), *h, sizes.tick))
+            .collect();
         let sides = self.sides(figure, &y_ticks, heights.iter().sum());
         let (left, right) = (sides.left, self.page.width - sides.right);
         let last = figure.panels.len().saturating_sub(1);
@@ -171,7 +175,9 @@ impl Layout {
             self.at += sizes.tick * CAPITAL + 5.0;
         }
         for (index, (panel, y)) in figure.panels.iter().zip(y_ticks).enumerate() {
-            let height = panel.height * stretch * (right - left);
+            // Tall enough for the shorter name of its axis.
+            let name = panel.y.as_ref().map_or(0.0, |y| text::length(&y.short, sizes.label) + 4.0);
+            let height = (panel.height * stretch * (right - left)).max(name);
             let mut frame =
                 Frame { left, top: self.at, right, bottom: self.at + height, y, ..Frame::default() };
             self.y_side(panel, &frame);
@@ -189,9 +195,8 @@ impl Layout {
 
     fn sides(&self, figure: &Figure, y_ticks: &[Ticks], height: f64) -> Sides {
         let sizes = self.sizes;
-        let longest = |ticks: &[Tick]| {
-            ticks.iter().map(|t| text::length(&t.label, sizes.tick)).fold(0.0, f64::max)
-        };
+        let longest =
+            |ticks: &[Tick]| ticks.iter().map(|t| text::length(&t.label, sizes.tick)).fold(0.0, f64::max);
         let numbers = y_ticks.iter().map(|t| longest(&t.major)).fold(0.0, f64::max);
         let names = if figure.panels.iter().any(|p| p.y.is_some()) { 1.45 * sizes.label } else { 0.0 };
         let left = MARGIN + names + numbers + TICK + 2.0;
@@ -217,7 +222,12 @@ impl Layout {
             self.put(label, sizes.tick, x, y + 0.5 * CAPITAL * sizes.tick);
         }
         let label = self.fitting(axis, frame.bottom - frame.top);
-        self.put_upwards(label, sizes.label, MARGIN + CAPITAL * sizes.label, 0.5 * (frame.top + frame.bottom));
+        self.put_upwards(
+            label,
+            sizes.label,
+            MARGIN + CAPITAL * sizes.label,
+            0.5 * (frame.top + frame.bottom),
+        );
     }
 
     /// The label, or what is left of it when it is longer than the axis.
@@ -364,7 +374,8 @@ fn level_ticks(axis: &Axis, width: f64, size: f64) -> Ticks {
 /// Ticks of the colour bar; an end that stands for more than itself says so.
 fn bar_ticks(bar: &ColourBar, height: f64, size: f64) -> Vec<Tick> {
     let scale = bar.scale;
-    let mut found = ticks(scale.from, scale.to, scale.kind, ((height / (3.2 * size)) as usize).clamp(2, 7)).major;
+    let mut found =
+        ticks(scale.from, scale.to, scale.kind, ((height / (3.2 * size)) as usize).clamp(2, 7)).major;
     let air = 1.6 * size / height;
     let signs = if scale.to > scale.from { ["≤", "≥"] } else { ["≥", "≤"] };
     for (beyond, end, sign) in [(bar.before, scale.from, signs[0]), (bar.after, scale.to, signs[1])] {
@@ -379,4 +390,3 @@ fn bar_ticks(bar: &ColourBar, height: f64, size: f64) -> Vec<Tick> {
     }
     found
 }
-
