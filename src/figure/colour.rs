@@ -140,7 +140,8 @@ impl Region {
         }
     }
 
-    /// Greys, which the scale never takes, each with a pattern of its own; the verdicts of bounded cells take the ends of the scale.
+    /// Greys for what is lost, blue-green and green for what is not known: the scale takes none of them. Each has a pattern
+    /// of its own. The verdicts of bounded cells take two colours of the scale.
     pub fn tone(self) -> Tone {
         let tone = |ground, pattern, stroke| Tone { ground, pattern, stroke };
         let grey = |level| Rgb(level, level, level);
@@ -152,8 +153,8 @@ impl Region {
             Region::Encounter => tone(grey(205), Pattern::Rising, grey(130)),
             Region::Collision => tone(grey(120), Pattern::Falling, grey(225)),
             Region::Lost => tone(grey(205), Pattern::Plain, grey(0)),
-            Region::Undecided => tone(grey(255), Pattern::Level, grey(120)),
-            Region::Untrusted => tone(grey(255), Pattern::Crossed, grey(90)),
+            Region::Undecided => tone(Rgb(196, 234, 242), Pattern::Level, Rgb(40, 110, 130)),
+            Region::Untrusted => tone(Rgb(84, 196, 128), Pattern::Crossed, Rgb(0, 70, 40)),
             Region::NoValue => tone(grey(255), Pattern::Upright, grey(170)),
             Region::Missing => tone(grey(255), Pattern::Plain, grey(0)),
         }

@@ -74,9 +74,9 @@ impl Column {
             Column::SmallestApproachHill => cell.smallest_approach.map(|a| a.hill),
             Column::EMax(planet) => extent(planet).map(|x| x.eccentricity.max),
             Column::EMin(planet) => extent(planet).map(|x| x.eccentricity.min),
-            Column::ARange(planet) => extent(planet).map(|x| x.semi_major_axis_au).map(|range| {
-                (range.max - range.min) / (0.5 * (range.max + range.min))
-            }),
+            Column::ARange(planet) => extent(planet)
+                .map(|x| x.semi_major_axis_au)
+                .map(|range| (range.max - range.min) / (0.5 * (range.max + range.min))),
             Column::IMax(planet) => extent(planet).map(|x| x.inclination.max / DEGREE),
         }
         .filter(|v| v.is_finite())
@@ -109,9 +109,7 @@ impl Column {
             Column::EndTime => names::with_unit(Label::plain("time survived"), "yr"),
             Column::EnergyError => Label::plain("relative energy error"),
             Column::SmallestApproach => names::with_unit(Label::plain("closest approach"), "au"),
-            Column::SmallestApproachHill => {
-                Label::plain("closest approach [mutual Hill radii]")
-            }
+            Column::SmallestApproachHill => Label::plain("closest approach [mutual Hill radii]"),
             Column::EMax(planet) => Label::plain("largest ").italic("e").down(name(planet)),
             Column::EMin(planet) => Label::plain("smallest ").italic("e").down(name(planet)),
             Column::ARange(planet) => {
@@ -134,13 +132,30 @@ impl Column {
                 let low = if low < 0.5 * span_yr { low } else { 0.1 * span_yr };
                 Scale { from: span_yr, to: low, kind: ScaleKind::Log }
             }
-            Column::LyapunovTime | Column::SmallestApproach | Column::SmallestApproachHill => {
-                let scale = covering(values);
-                Scale { from: scale.to, to: scale.from, kind: scale.kind }
-            }
+            Column::LyapunovTime => turned(decades(values)),
+            Column::SmallestApproach | Column::SmallestApproachHill => turned(covering(values)),
+            Column::EnergyError => decades(values),
             _ => covering(values),
         }
     }
+}
+
+fn turned(scale: Scale) -> Scale {
+    Scale { from: scale.to, to: scale.from, kind: scale.kind }
+}
+
+/// A logarithmic scale over all positive values; its ends are 1, 2 or 5 times a power of ten.
+fn decades(values: &[f64]) -> Scale {
+    let positive = || values.iter().copied().filter(|v| *v > 0.0);
+    let (low, high) = (positive().fold(f64::INFINITY, f64::min), positive().fold(0.0, f64::max));
+    if low > high {
+        return Scale { from: 0.1, to: 1.0, kind: ScaleKind::Log };
+    }
+    let (below, above) = (10f64.powi(low.log10().floor() as i32), 10f64.powi(high.log10().floor() as i32));
+    let from = [5.0, 2.0].into_iter().map(|d| d * below).find(|v| *v <= low).unwrap_or(below);
+    let to =
+        [1.0, 2.0, 5.0, 10.0].into_iter().map(|d| d * above).find(|v| *v >= high).unwrap_or(10.0 * above);
+    Scale { from, to: if to > from { to } else { 2.0 * from }, kind: ScaleKind::Log }
 }
 
 /// A scale with round ends over all values: logarithmic when they are positive and span more than a factor of 30.
@@ -151,9 +166,7 @@ pub(crate) fn covering(values: &[f64]) -> Scale {
         return Scale { from: 0.0, to: 1.0, kind: ScaleKind::Linear };
     }
     if low > 0.0 && high / low > 30.0 {
-        let from = 10f64.powi((low.log10() + 1e-9).floor() as i32);
-        let to = 10f64.powi((high.log10() - 1e-9).ceil() as i32);
-        return Scale { from, to, kind: ScaleKind::Log };
+        return decades(values);
     }
     let width = if high > low { high - low } else { low.abs().max(1e-12) };
     let step = 10f64.powf((0.25 * width).log10().floor());
@@ -173,7 +186,12 @@ pub fn columns(system: &System, records: &[Record]) -> Vec<Column> {
         Column::SmallestApproachHill,
     ];
     for planet in 0..system.planets.len() {
-        all.extend([Column::EMax(planet), Column::EMin(planet), Column::ARange(planet), Column::IMax(planet)]);
+        all.extend([
+            Column::EMax(planet),
+            Column::EMin(planet),
+            Column::ARange(planet),
+            Column::IMax(planet),
+        ]);
     }
     all.retain(|c| records.iter().any(|r| c.value(&r.assessment).is_some()));
     all.insert(0, Column::Verdict);

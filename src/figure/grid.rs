@@ -55,5 +55,7 @@ pub(crate) fn cell_of(axis: &system::Axis, value: f64) -> Option<usize> {
         Spacing::Log => ScaleKind::Log,
     };
     let place = super::Scale { from, to, kind }.place(value)?;
-    (0.0..=1.0).contains(&place).then(|| ((place * axis.cells as f64) as usize).min(axis.cells.saturating_sub(1)))
+    (0.0..=1.0)
+        .contains(&place)
+        .then(|| ((place * axis.cells as f64) as usize).min(axis.cells.saturating_sub(1)))
 }

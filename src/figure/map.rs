@@ -37,17 +37,23 @@ pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
     let column = Column::find(input.column, system, records)?;
     let cells = paint(study, records, column)?;
     let occurring = regions(&cells);
-    let values: Vec<f64> = cells.iter().filter_map(|c| if let Paint::Value(v) = c { Some(*v) } else { None }).collect();
+    let values: Vec<f64> =
+        cells.iter().filter_map(|c| if let Paint::Value(v) = c { Some(*v) } else { None }).collect();
     let two = study.axes.len() == 2;
     let (panel, colour_bar) = if two {
         let scale = column.scale(&values, input.span_day / YEAR_DAY);
-        (raster_panel(input, cells, scale), (!values.is_empty()).then(|| colour_bar(column, system, scale, &values)))
+        (
+            raster_panel(input, cells, scale),
+            (!values.is_empty()).then(|| colour_bar(column, system, scale, &values)),
+        )
     } else {
         (points_panel(input, column, cells, &values), None)
     };
     let title = study.title.clone().unwrap_or_else(|| system.title.clone());
     let mut legend: Vec<Legend> = occurring.into_iter().map(Legend::Region).collect();
-    if let Some(Mark::Nominal { x_bar, y_bar, .. }) = panel.marks.iter().find(|m| matches!(m, Mark::Nominal { .. })) {
+    if let Some(Mark::Nominal { x_bar, y_bar, .. }) =
+        panel.marks.iter().find(|m| matches!(m, Mark::Nominal { .. }))
+    {
         let words = if x_bar.is_some() || y_bar.is_some() { "as stated, ±1σ" } else { "as stated" };
         legend.push(Legend::Nominal(Label::plain(words)));
     }
@@ -101,12 +107,7 @@ fn raster_panel(input: &MapInput<'_>, cells: Vec<Paint>, scale: Scale) -> Panel 
         && inside(&x, across.value)
         && inside(&y, up.value)
     {
-        marks.push(Mark::Nominal {
-            x: across.value,
-            y: Some(up.value),
-            x_bar: bar(across),
-            y_bar: bar(up),
-        });
+        marks.push(Mark::Nominal { x: across.value, y: Some(up.value), x_bar: bar(across), y_bar: bar(up) });
     }
     Panel { x, y: Some(y), marks, top: pins(input, 0), right: pins(input, 1), height: 0.74 }
 }
@@ -190,13 +191,16 @@ fn pins(input: &MapInput<'_>, axis: usize) -> Vec<Pin> {
 /// Says what the pins at the edges are.
 fn pin_words(input: &MapInput<'_>, panel: &Panel) -> Option<String> {
     let words = |axis: usize, pins: &[Pin]| -> Option<String> {
-        let crate::system::BodyRef::Planet(planet) = input.study.axes.get(axis)?.target.body else { return None };
+        let crate::system::BodyRef::Planet(planet) = input.study.axes.get(axis)?.target.body else {
+            return None;
+        };
         let mut others: Vec<usize> = pins.iter().map(|p| p.resonance.other).collect();
         others.sort_unstable();
         others.dedup();
         let name = |i: &usize| input.system.planets.get(*i).map(|p| p.name.clone());
         let names: Vec<String> = others.iter().filter_map(name).collect();
-        (!names.is_empty()).then(|| format!("of {} with {}", name(&planet).unwrap_or_default(), names.join(" and ")))
+        (!names.is_empty())
+            .then(|| format!("of {} with {}", name(&planet).unwrap_or_default(), names.join(" and ")))
     };
     let top = words(0, &panel.top).map(|w| format!("top edge: mean-motion resonances {w}"));
     let right = words(1, &panel.right).map(|w| format!("right edge: mean-motion resonances {w}"));

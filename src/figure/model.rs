@@ -71,14 +71,28 @@ pub enum Paint {
 #[derive(Clone, Debug, PartialEq)]
 pub enum Mark {
     /// A raster over the whole panel, first row at the bottom, `columns` cells per row, even on the panel's axes.
-    Raster { columns: usize, rows: usize, cells: Vec<Paint>, scale: Option<Scale> },
+    Raster {
+        columns: usize,
+        rows: usize,
+        cells: Vec<Paint>,
+        scale: Option<Scale>,
+    },
     /// Points with colours of their own.
-    Points { points: Vec<(f64, f64, Rgb)> },
+    Points {
+        points: Vec<(f64, f64, Rgb)>,
+    },
     Curve(Curve),
     /// A level line over the whole panel.
-    Level { at: f64 },
+    Level {
+        at: f64,
+    },
     /// The stated configuration; low and high ends of its error bars where it has any.
-    Nominal { x: f64, y: Option<f64>, x_bar: Option<(f64, f64)>, y_bar: Option<(f64, f64)> },
+    Nominal {
+        x: f64,
+        y: Option<f64>,
+        x_bar: Option<(f64, f64)>,
+        y_bar: Option<(f64, f64)>,
+    },
 }
 
 /// A line through points; it is interrupted where a value is not finite.

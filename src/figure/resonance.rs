@@ -21,7 +21,7 @@ impl Resonance {
 }
 
 /// Largest p of a resonance that is shown.
-const LARGEST_P: u32 = 12;
+const LARGEST_P: u32 = 9;
 
 /// Resonances inside the range of an axis (by index) of a study with their places in the axis's unit, lowest
 /// order first.
@@ -108,12 +108,7 @@ fn neighbours(system: &System, planet: usize) -> Vec<usize> {
 }
 
 /// Where on the axis the period of the varied planet is `ratio` times that of the other.
-fn place(
-    axis: &Axis,
-    system: &System,
-    (planet, other): (usize, usize),
-    ratio: f64,
-) -> Option<f64> {
+fn place(axis: &Axis, system: &System, (planet, other): (usize, usize), ratio: f64) -> Option<f64> {
     let size = |period: f64, of: usize| -> Option<f64> {
         if axis.target.key == Key::Period {
             return Some(period);

@@ -58,22 +58,31 @@ pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
 
     let mut panels = Vec::new();
     let shapes = input.planets.iter().map(|p| p.eccentricity.to_vec()).zip(inks()).collect();
-    panels.extend(panel(&x, &time, shapes, Label::plain("eccentricity"), None));
-    let sizes = input.planets.iter().map(|p| relative(p.semi_major_axis_au)).zip(inks()).collect();
-    let label = Label::default().italic("a").then(" / ").italic("a").down("0").then(" − 1");
-    panels.extend(panel(&x, &time, sizes, label, None));
+    let label = Label::plain("eccentricity");
+    panels.extend(panel(&x, &time, shapes, label, None).map(|p| with_short(p, Label::default().italic("e"))));
+    let sizes: Vec<Vec<f64>> = input.planets.iter().map(|p| relative(p.semi_major_axis_au)).collect();
+    let label = Label::plain("Δ").italic("a").then("/").italic("a").down("0");
+    let (sizes, label) = in_tenths(sizes, label);
+    panels.extend(panel(&x, &time, sizes.into_iter().zip(inks()).collect(), label, None));
     let megno = vec![(input.megno_mean.to_vec(), BLACK)];
     let label = Label::plain("MEGNO ⟨").italic("Y").then("⟩");
     panels.extend(panel(&x, &time, megno, label, Some(2.0)));
     let errors = vec![(input.energy_error.iter().map(|e| positive(e.abs())).collect(), BLACK)];
-    let label = Label::plain("|Δ").italic("E").then(" / ").italic("E").then("|");
+    let label = Label::plain("|Δ").italic("E").then("/").italic("E").then("|");
     panels.extend(panel(&x, &time, errors, label, None).map(as_log));
     if panels.is_empty() {
         return Err(FigureError::EmptySeries);
     }
 
-    let legend = input.planets.iter().zip(inks()).map(|(p, ink)| Legend::Curve(Label::plain(p.name), ink)).collect();
-    Ok(Figure { title: Label::plain(input.title), panels, colour_bar: None, legend, caption: input.caption.to_vec() })
+    let legend =
+        input.planets.iter().zip(inks()).map(|(p, ink)| Legend::Curve(Label::plain(p.name), ink)).collect();
+    Ok(Figure {
+        title: Label::plain(input.title),
+        panels,
+        colour_bar: None,
+        legend,
+        caption: input.caption.to_vec(),
+    })
 }
 
 /// A zero has no place on a logarithmic axis.
@@ -84,6 +93,19 @@ fn positive(value: f64) -> f64 {
 fn relative(values: &[f64]) -> Vec<f64> {
     let first = values.first().copied().unwrap_or(f64::NAN);
     values.iter().map(|v| v / first - 1.0).collect()
+}
+
+/// Small numbers as multiples of a power of ten, which the label then names.
+fn in_tenths(mut curves: Vec<Vec<f64>>, label: Label) -> (Vec<Vec<f64>>, Label) {
+    let largest = curves.iter().flatten().map(|v| v.abs()).filter(|v| v.is_finite()).fold(0.0, f64::max);
+    if largest == 0.0 || largest >= 0.01 {
+        return (curves, label);
+    }
+    let power = largest.log10().floor() as i32;
+    for value in curves.iter_mut().flatten() {
+        *value *= 10f64.powi(-power);
+    }
+    (curves, label.then(" [").join(Label::power_of_ten(power)).then("]"))
 }
 
 /// Name and days of the unit in which a span reads best.
@@ -98,7 +120,13 @@ fn time_unit(span_day: f64) -> (&'static str, f64) {
 }
 
 /// Absent when nothing finite is there to draw.
-fn panel(x: &Axis, time: &[f64], curves: Vec<(Vec<f64>, Rgb)>, label: Label, level: Option<f64>) -> Option<Panel> {
+fn panel(
+    x: &Axis,
+    time: &[f64],
+    curves: Vec<(Vec<f64>, Rgb)>,
+    label: Label,
+    level: Option<f64>,
+) -> Option<Panel> {
     let finite = curves.iter().flat_map(|(v, _)| v).copied().filter(|v| v.is_finite());
     let mut values: Vec<f64> = finite.collect();
     if values.is_empty() {
@@ -121,6 +149,13 @@ fn panel(x: &Axis, time: &[f64], curves: Vec<(Vec<f64>, Rgb)>, label: Label, lev
         marks.push(Mark::Curve(Curve { points, colour }));
     }
     Some(Panel { x: x.clone(), y, marks, top: Vec::new(), right: Vec::new(), height: 0.2 })
+}
+
+fn with_short(mut panel: Panel, short: Label) -> Panel {
+    if let Some(y) = panel.y.as_mut() {
+        y.short = short;
+    }
+    panel
 }
 
 /// The same panel with a logarithmic height over whole decades.

@@ -17,10 +17,10 @@ pub struct Ticks {
     pub minor: Vec<f64>,
 }
 
-/// Ticks for the range `from`..`to`, about `wanted` labelled ones, never more than `wanted` + 1.
+/// Ticks for the range `from`..`to`, about `wanted` labelled ones, never more than `wanted` + 1 unless two could not be had.
 ///
 /// Linear steps are 1, 2 or 5 times a power of ten with 4 or 5 parts between labels. A logarithmic axis labels
-/// decades, thinned when there are many; below 1.3 decades it takes round digits, and below a factor of 2
+/// decades, thinned when there are many; below 1.3 decades it takes round digits, and below a factor of 4.5
 /// the ticks of a linear axis.
 pub fn ticks(from: f64, to: f64, kind: ScaleKind, wanted: usize) -> Ticks {
     let (low, high) = (from.min(to), from.max(to));
@@ -30,8 +30,12 @@ pub fn ticks(from: f64, to: f64, kind: ScaleKind, wanted: usize) -> Ticks {
     let wanted = wanted.max(2);
     match kind {
         ScaleKind::Log if low > 0.0 && high / low > 20.0 => decades(low, high, wanted),
-        ScaleKind::Log if low > 0.0 && high / low > 2.0 => digits(low, high, wanted),
-        _ => linear(low, high, wanted),
+        ScaleKind::Log if low > 0.0 && high / low > 4.5 => digits(low, high, wanted),
+        // A step that is too round can leave a short axis with a single label; a finer one is tried then.
+        _ => (wanted..wanted + 4)
+            .map(|w| linear(low, high, w))
+            .find(|t| t.major.len() >= 2)
+            .unwrap_or_else(|| linear(low, high, wanted)),
     }
 }
 

@@ -14,9 +14,9 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
         |s| {
             format!(
                 "relative energy error: median {}, 95 % below {}, largest {}",
-                words::short(s.median),
-                words::short(s.q95),
-                words::short(s.largest)
+                words::printed(s.median),
+                words::printed(s.q95),
+                words::printed(s.largest)
             )
         },
     );
@@ -27,7 +27,7 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
         format!("{total} cells")
     };
     vec![
-        format!("{cells}, each followed for {}.", words::span_words(study, plan)),
+        format!("{cells}, each followed for {}.", words::span_words(study, plan, words::printed)),
         format!("Scheme {}, {}; {energy}.", plan.scheme, words::step_words(plan, records)),
         format!("{}.", capital(&words::held_words(study, system))),
         format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),

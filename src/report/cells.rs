@@ -66,7 +66,7 @@ fn meta(study: &Study, plan: &Plan) -> Vec<(String, Meta)> {
     vec![
         ("title".to_owned(), Meta::Text(title)),
         ("version".to_owned(), Meta::Text(VERSION.to_owned())),
-        ("span".to_owned(), Meta::Text(words::span_words(study, plan))),
+        ("span".to_owned(), Meta::Text(words::span_words(study, plan, words::short))),
         ("span_d".to_owned(), Meta::Float(plan.span_day)),
         ("scheme".to_owned(), Meta::Text(plan.scheme.to_owned())),
         ("energy_error_target".to_owned(), Meta::Float(plan.energy_error)),
@@ -151,7 +151,6 @@ fn trust_columns(columns: &mut Columns<'_>) {
     columns.text("scheme", "integration scheme", |r| Some(r.assessment.scheme.to_owned()));
     columns.float("step", "d", "step of the final attempt", |r| Some(r.assessment.step_day));
     columns.count("steps", "steps of the final attempt", |r| r.assessment.steps);
-    columns.count("redone", "times the cell was redone with a smaller step", |r| {
-        u64::from(r.assessment.redone)
-    });
+    columns
+        .count("redone", "times the cell was redone with a smaller step", |r| u64::from(r.assessment.redone));
 }

@@ -1,7 +1,7 @@
 //! The table of one configuration followed through time.
 
-use super::table::{Column, Datatype, Entry, Meta, Table};
 use super::VERSION;
+use super::table::{Column, Datatype, Entry, Meta, Table};
 use crate::coords::Elements;
 use crate::units::{DEGREE, YEAR_DAY};
 

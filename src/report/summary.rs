@@ -25,7 +25,8 @@ impl Spread {
         let mut sorted: Vec<f64> = values.map(f64::abs).collect();
         sorted.sort_by(f64::total_cmp);
         let last = sorted.len().checked_sub(1)?;
-        let rank = |share: f64| sorted[((share * sorted.len() as f64).ceil() as usize).saturating_sub(1).min(last)];
+        let rank =
+            |share: f64| sorted[((share * sorted.len() as f64).ceil() as usize).saturating_sub(1).min(last)];
         Some(Spread { median: rank(0.5), q95: rank(0.95), largest: sorted[last] })
     }
 }
@@ -80,7 +81,9 @@ impl Summary {
             finished: records.len() as u64,
             verdicts: Verdict::ALL.map(|v| (v, count(&|a| a.verdict == v))).to_vec(),
             losses: LostHow::ALL
-                .map(|how| (how, count(&|a| a.verdict == Verdict::Lost && a.loss.is_some_and(|l| l.how == how))))
+                .map(|how| {
+                    (how, count(&|a| a.verdict == Verdict::Lost && a.loss.is_some_and(|l| l.how == how)))
+                })
                 .to_vec(),
             redone: count(&|a| a.redone > 0),
             energy_error: Spread::of(records.iter().filter_map(|r| r.assessment.energy_error)),
@@ -88,7 +91,7 @@ impl Summary {
                 cell,
                 assessment: records.iter().find(|r| r.cell == cell).map(|r| r.assessment.clone()),
             }),
-            span: words::span_words(study, plan),
+            span: words::span_words(study, plan, words::short),
             span_day: plan.span_day,
             scheme: plan.scheme,
             step: words::step_words(plan, records),

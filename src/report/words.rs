@@ -11,7 +11,7 @@ pub(crate) fn short(value: f64) -> String {
         return "0".to_owned();
     }
     let size = value.abs();
-    if !(1e-3..1e5).contains(&size) {
+    if !(1e-3..1e4).contains(&size) {
         let text = format!("{value:.2e}");
         return match text.split_once('e') {
             Some((digits, power)) if digits.contains('.') => {
@@ -25,21 +25,38 @@ pub(crate) fn short(value: f64) -> String {
     if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.').to_owned() } else { text }
 }
 
+/// The same as it is printed: 4.63×10⁻¹⁰ for 4.63e-10.
+pub(crate) fn printed(value: f64) -> String {
+    let text = short(value);
+    let Some((digits, power)) = text.split_once('e') else { return text };
+    let raised = |letter: char| match letter {
+        '-' => '⁻',
+        '1' => '¹',
+        '2' => '²',
+        '3' => '³',
+        '0' | '4'..='9' => char::from_u32(letter as u32 - '0' as u32 + '⁰' as u32).unwrap_or(letter),
+        other => other,
+    };
+    let power: String = power.chars().map(raised).collect();
+    if digits == "1" { format!("10{power}") } else { format!("{digits}×10{power}") }
+}
+
 /// A time in the unit that reads best.
 pub(crate) fn time_words(day: f64) -> String {
     let year = day / YEAR_DAY;
     match year {
         y if y >= 1e9 => format!("{} Gyr", short(y / 1e9)),
         y if y >= 1e6 => format!("{} Myr", short(y / 1e6)),
+        y if y >= 1e4 => format!("{} kyr", short(y / 1e3)),
         y if y >= 1.0 => format!("{} yr", short(y)),
         _ => format!("{} d", short(day)),
     }
 }
 
-pub(crate) fn span_words(study: &Study, plan: &Plan) -> String {
+pub(crate) fn span_words(study: &Study, plan: &Plan, number: fn(f64) -> String) -> String {
     match study.span {
         Span::Orbits(count) => {
-            format!("{} inner orbits ({})", short(count), time_words(plan.span_day))
+            format!("{} inner orbits ({})", number(count), time_words(plan.span_day))
         }
         Span::Days(_) => time_words(plan.span_day),
     }
@@ -84,9 +101,8 @@ pub(crate) fn held_words(study: &Study, system: &System) -> String {
             },
             BodyRef::All => ("all planets", system.planets.first().map(|p| &p.stated)),
         };
-        let moved = |group| {
-            study.axes.iter().any(|a| a.target.body == *body && a.target.key.group() == group)
-        };
+        let moved =
+            |group| study.axes.iter().any(|a| a.target.body == *body && a.target.key.group() == group);
         let kept: Vec<&str> = stated
             .into_iter()
             .flat_map(|s| s.iter())
@@ -116,7 +132,5 @@ pub(crate) fn convention_words(convention: Convention, epoch_jd: Option<f64>) ->
         Transit::Minus90 => "\u{2212}90",
     };
     let epoch = epoch_jd.map_or_else(String::new, |jd| format!(", epoch JD {jd} TDB"));
-    format!(
-        "{frame} elements, argument of pericentre {pericentre}, in transit at ν + ω = {transit}°{epoch}"
-    )
+    format!("{frame} elements, argument of pericentre {pericentre}, in transit at ν + ω = {transit}°{epoch}")
 }

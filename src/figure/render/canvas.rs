@@ -77,37 +77,40 @@ impl Canvas {
         draw(&mut backend).map_err(RenderError::Drawing)
     }
 
-    /// Fills fine pixels `x0..x1` × `y0..y1`.
-    pub(super) fn block(&mut self, (x0, y0): (i64, i64), (x1, y1): (i64, i64), colour: Rgb) -> Result<(), RenderError> {
-        if x1 <= x0 || y1 <= y0 {
-            return Ok(());
+    /// Fills fine pixels `x0..x1` × `y0..y1`, by hand: the library leaves out the last row and column, which shows as seams.
+    pub(super) fn block(&mut self, (x0, y0): (i64, i64), (x1, y1): (i64, i64), colour: Rgb) {
+        let (width, height) = (self.fine.width as i64, self.fine.height as i64);
+        let (x0, x1) = (x0.clamp(0, width), x1.clamp(0, width));
+        for row in y0.clamp(0, height)..y1.clamp(0, height) {
+            for column in x0..x1 {
+                let start = (row * width + column) as usize * 3;
+                self.fine.rgb[start..start + 3].copy_from_slice(&[colour.0, colour.1, colour.2]);
+            }
         }
-        let (upper_left, lower_right) = ((x0 as i32, y0 as i32), (x1 as i32 - 1, y1 as i32 - 1));
-        self.with_backend(|b| b.draw_rect(upper_left, lower_right, &ink(colour), true).map_err(|e| e.to_string()))
     }
 
     /// A level or upright line of a thickness in points, on whole pixels, centred on its place.
-    pub(super) fn rule(&mut self, from: Point, to: Point, thickness: f64, colour: Rgb) -> Result<(), RenderError> {
+    pub(super) fn rule(&mut self, from: Point, to: Point, thickness: f64, colour: Rgb) {
         let thick = self.thickness(thickness);
         let half = thick / 2 / FINER as i64 * FINER as i64;
-        let place = |p: Point| (self.snap(p.0), self.snap(p.1));
-        let ((x0, y0), (x1, y1)) = (place((from.0.min(to.0), from.1.min(to.1))), place((from.0.max(to.0), from.1.max(to.1))));
+        let (x0, y0) = (self.snap(from.0.min(to.0)), self.snap(from.1.min(to.1)));
+        let (x1, y1) = (self.snap(from.0.max(to.0)), self.snap(from.1.max(to.1)));
         if y0 == y1 {
-            self.block((x0, y0 - half), (x1, y0 - half + thick), colour)
+            self.block((x0, y0 - half), (x1, y0 - half + thick), colour);
         } else {
-            self.block((x0 - half, y0), (x0 - half + thick, y1), colour)
+            self.block((x0 - half, y0), (x0 - half + thick, y1), colour);
         }
     }
 
     /// A frame around a rectangle, outside of it.
-    pub(super) fn frame(&mut self, (left, top): Point, (right, bottom): Point, thickness: f64) -> Result<(), RenderError> {
+    pub(super) fn frame(&mut self, (left, top): Point, (right, bottom): Point, thickness: f64) {
         let black = Rgb(0, 0, 0);
         let thick = self.thickness(thickness);
         let (x0, y0, x1, y1) = (self.snap(left), self.snap(top), self.snap(right), self.snap(bottom));
-        self.block((x0 - thick, y0 - thick), (x1 + thick, y0), black)?;
-        self.block((x0 - thick, y1), (x1 + thick, y1 + thick), black)?;
-        self.block((x0 - thick, y0), (x0, y1), black)?;
-        self.block((x1, y0), (x1 + thick, y1), black)
+        self.block((x0 - thick, y0 - thick), (x1 + thick, y0), black);
+        self.block((x0 - thick, y1), (x1 + thick, y1 + thick), black);
+        self.block((x0 - thick, y0), (x0, y1), black);
+        self.block((x1, y0), (x1 + thick, y1), black);
     }
 
     pub(super) fn polygon(&mut self, corners: &[Point], colour: Rgb) -> Result<(), RenderError> {
@@ -120,7 +123,11 @@ impl Canvas {
     /// A line through points.
     pub(super) fn path(&mut self, points: &[Point], thickness: f64, colour: Rgb) -> Result<(), RenderError> {
         let scale = self.per_point;
-        let stroke = ShapeStyle { color: ink(colour).into(), filled: false, stroke_width: (thickness * scale).round().max(1.0) as u32 };
+        let stroke = ShapeStyle {
+            color: ink(colour).into(),
+            filled: false,
+            stroke_width: (thickness * scale).round().max(1.0) as u32,
+        };
         let mut last = None;
         for point in points {
             let place = ((point.0 * scale).round() as i32, (point.1 * scale).round() as i32);

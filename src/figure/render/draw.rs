@@ -7,6 +7,7 @@ use crate::figure::colour::{Rgb, Scale, even};
 use crate::figure::model::{Axis, ColourBar, Figure, Legend, Mark, Paint, Panel};
 
 const BLACK: Rgb = Rgb(0, 0, 0);
+const GREY: Rgb = Rgb(150, 150, 150);
 const WHITE: Rgb = Rgb(255, 255, 255);
 /// Thickness of frames and ticks, pt.
 const THIN: f64 = 0.5;
@@ -20,7 +21,7 @@ pub(super) fn picture(figure: &Figure, page: &Page) -> Result<Picture, RenderErr
         for mark in &panel.marks {
             draw_mark(&mut canvas, mark, panel, frame)?;
         }
-        axes(&mut canvas, panel, frame)?;
+        axes(&mut canvas, panel, frame);
     }
     if let Some((frame, bar)) = &page.bar {
         colour_bar(&mut canvas, frame, bar)?;
@@ -52,16 +53,19 @@ impl Places<'_> {
         Some(self.frame.bottom - place * (self.frame.bottom - self.frame.top))
     }
 
-    fn holds(&self, (x, y): (f64, f64)) -> bool {
-        let f = self.frame;
-        (f.left..=f.right).contains(&x) && (f.top..=f.bottom).contains(&y)
+    /// Moved to the frame when outside.
+    fn inside(&self, (x, y): (f64, f64)) -> (f64, f64) {
+        (x.clamp(self.frame.left, self.frame.right), y.clamp(self.frame.top, self.frame.bottom))
     }
 }
 
 fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> Result<(), RenderError> {
     let places = Places { frame, x: panel.x.scale(), y: panel.y.as_ref().map(Axis::scale) };
     match mark {
-        Mark::Raster { columns, rows, cells, scale } => raster(canvas, frame, (*columns, *rows), cells, *scale),
+        Mark::Raster { columns, rows, cells, scale } => {
+            raster(canvas, frame, (*columns, *rows), cells, *scale);
+            Ok(())
+        }
         Mark::Points { points } => {
             let radius = if points.len() > 120 { 1.0 } else { 1.5 };
             for (x, y, colour) in points {
@@ -72,20 +76,27 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
             Ok(())
         }
         Mark::Curve(curve) => {
-            let placed = curve.points.iter().map(|(x, y)| Some((places.across(*x)?, places.up(*y)?)));
-            for part in parts(placed, |p| places.holds(p)) {
+            let placed =
+                curve.points.iter().map(|(x, y)| Some(places.inside((places.across(*x)?, places.up(*y)?))));
+            for part in parts(placed) {
                 canvas.path(&part, 0.6, curve.colour)?;
             }
             Ok(())
         }
         Mark::Level { at } => match places.up(*at) {
-            Some(y) => canvas.rule((frame.left, y), (frame.right, y), THIN, Rgb(150, 150, 150)),
+            Some(y) => {
+                canvas.rule((frame.left, y), (frame.right, y), THIN, GREY);
+                Ok(())
+            }
             None => Ok(()),
         },
         Mark::Nominal { x, y, x_bar, y_bar } => {
             let Some(x) = places.across(*x) else { return Ok(()) };
-            // Without a height it stands in the middle.
-            let y = y.map_or(Some(0.5 * (frame.top + frame.bottom)), |y| places.up(y));
+            if y.is_none() {
+                canvas.rule((x, frame.top), (x, frame.bottom), THIN, GREY);
+            }
+            // Without a height it stands below the top edge, where it is read with the pins.
+            let y = y.map_or(Some(frame.top + 9.0), |y| places.up(y));
             let Some(y) = y else { return Ok(()) };
             let clip_x = |v: f64| places.across(v).map(|p| p.clamp(frame.left, frame.right));
             let clip_y = |v: f64| places.up(v).map(|p| p.clamp(frame.top, frame.bottom));
@@ -96,20 +107,15 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
     }
 }
 
-/// Runs of places that are there and inside; a point outside ends a run.
-fn parts(
-    points: impl Iterator<Item = Option<(f64, f64)>>,
-    inside: impl Fn((f64, f64)) -> bool,
-) -> Vec<Vec<(f64, f64)>> {
-    let mut found = Vec::new();
-    let mut part: Vec<(f64, f64)> = Vec::new();
+/// Runs of places that are there.
+fn parts(points: impl Iterator<Item = Option<(f64, f64)>>) -> Vec<Vec<(f64, f64)>> {
+    let mut found = vec![Vec::new()];
     for point in points {
-        match point.filter(|p| inside(*p)) {
-            Some(point) => part.push(point),
-            None => found.push(std::mem::take(&mut part)),
+        match (point, found.last_mut()) {
+            (Some(point), Some(part)) => part.push(point),
+            _ => found.push(Vec::new()),
         }
     }
-    found.push(part);
     found.retain(|p| !p.is_empty());
     found
 }
@@ -121,7 +127,7 @@ fn raster(
     (columns, rows): (usize, usize),
     cells: &[Paint],
     scale: Option<Scale>,
-) -> Result<(), RenderError> {
+) {
     let (left, right) = (canvas.snap(frame.left), canvas.snap(frame.right));
     let (top, bottom) = (canvas.snap(frame.top), canvas.snap(frame.bottom));
     // In kept pixels, so that an edge never lies inside of one.
@@ -140,12 +146,11 @@ fn raster(
                 Paint::Flat(region) => canvas.toned((from, high), (to, low), region.tone()),
                 Paint::Value(value) => {
                     let colour = scale.and_then(|s| s.colour(*value)).unwrap_or(WHITE);
-                    canvas.block((from, high), (to, low), colour)?;
+                    canvas.block((from, high), (to, low), colour);
                 }
             }
         }
     }
-    Ok(())
 }
 
 type Ends = Option<(f64, f64)>;
@@ -156,16 +161,16 @@ fn nominal(canvas: &mut Canvas, (x, y): (f64, f64), across: Ends, up: Ends) -> R
         let thick = 0.8 + 2.0 * edge;
         if let Some((from, to)) = across {
             let (from, to) = (from.min(to), from.max(to));
-            canvas.rule((from - edge, y), (to + edge, y), thick, colour)?;
+            canvas.rule((from - edge, y), (to + edge, y), thick, colour);
             for end in [from, to] {
-                canvas.rule((end, y - 2.0 - edge), (end, y + 2.0 + edge), thick, colour)?;
+                canvas.rule((end, y - 2.0 - edge), (end, y + 2.0 + edge), thick, colour);
             }
         }
         if let Some((from, to)) = up {
             let (from, to) = (from.min(to), from.max(to));
-            canvas.rule((x, from - edge), (x, to + edge), thick, colour)?;
+            canvas.rule((x, from - edge), (x, to + edge), thick, colour);
             for end in [from, to] {
-                canvas.rule((x - 2.0 - edge, end), (x + 2.0 + edge, end), thick, colour)?;
+                canvas.rule((x - 2.0 - edge, end), (x + 2.0 + edge, end), thick, colour);
             }
         }
     }
@@ -174,30 +179,29 @@ fn nominal(canvas: &mut Canvas, (x, y): (f64, f64), across: Ends, up: Ends) -> R
     canvas.disc((x, y), 1.7, WHITE)
 }
 
-fn axes(canvas: &mut Canvas, panel: &Panel, frame: &Frame) -> Result<(), RenderError> {
+fn axes(canvas: &mut Canvas, panel: &Panel, frame: &Frame) {
     let places = Places { frame, x: panel.x.scale(), y: panel.y.as_ref().map(Axis::scale) };
-    canvas.frame((frame.left, frame.top), (frame.right, frame.bottom), THIN)?;
+    canvas.frame((frame.left, frame.top), (frame.right, frame.bottom), THIN);
     let both = |ticks: &crate::figure::Ticks| {
         let major: Vec<(f64, f64)> = ticks.major.iter().map(|t| (t.at, MAJOR)).collect();
         major.into_iter().chain(ticks.minor.iter().map(|m| (*m, MINOR))).collect::<Vec<_>>()
     };
     for (at, length) in both(&frame.x) {
         if let Some(x) = places.across(at) {
-            canvas.rule((x, frame.bottom), (x, frame.bottom + length), THIN, BLACK)?;
+            canvas.rule((x, frame.bottom), (x, frame.bottom + length), THIN, BLACK);
         }
     }
     for (at, length) in both(&frame.y) {
         if let Some(y) = places.up(at) {
-            canvas.rule((frame.left - length, y), (frame.left, y), THIN, BLACK)?;
+            canvas.rule((frame.left - length, y), (frame.left, y), THIN, BLACK);
         }
     }
     for x in frame.top_pins.iter().filter_map(|at| places.across(*at)) {
-        canvas.rule((x, frame.top - MAJOR), (x, frame.top), THIN, BLACK)?;
+        canvas.rule((x, frame.top - MAJOR), (x, frame.top), THIN, BLACK);
     }
     for y in frame.right_pins.iter().filter_map(|at| places.up(*at)) {
-        canvas.rule((frame.right, y), (frame.right + MAJOR, y), THIN, BLACK)?;
+        canvas.rule((frame.right, y), (frame.right + MAJOR, y), THIN, BLACK);
     }
-    Ok(())
 }
 
 fn colour_bar(canvas: &mut Canvas, frame: &Frame, bar: &ColourBar) -> Result<(), RenderError> {
@@ -207,26 +211,28 @@ fn colour_bar(canvas: &mut Canvas, frame: &Frame, bar: &ColourBar) -> Result<(),
     let (y0, y1) = (canvas.snap(top), canvas.snap(bottom));
     for row in (y0..y1).step_by(FINER) {
         let place = 1.0 - (row as f64 + 0.5 * FINER as f64 - y0 as f64) / (y1 - y0) as f64;
-        canvas.block((x0, row), (x1, row + FINER as i64), even(place))?;
+        canvas.block((x0, row), (x1, row + FINER as i64), even(place));
     }
     let middle = 0.5 * (left + right);
     let ends = [(bar.after, top, -POINT, even(1.0)), (bar.before, bottom, POINT, even(0.0))];
-    canvas.rule((left, top), (left, bottom), THIN, BLACK)?;
-    canvas.rule((right, top), (right, bottom), THIN, BLACK)?;
+    canvas.rule((left, top), (left, bottom), THIN, BLACK);
+    canvas.rule((right, top), (right, bottom), THIN, BLACK);
     for (beyond, edge, out, colour) in ends {
         if beyond {
             let corners = [(left, edge), (middle, edge + out), (right, edge)];
-            canvas.polygon(&corners, colour)?;
+            // Filled from a little inside, so that no light line is left between the point and the body.
+            let inside = edge - 0.05 * out;
+            canvas.polygon(&[(left, inside), corners[0], corners[1], corners[2], (right, inside)], colour)?;
             canvas.path(&corners, THIN, BLACK)?;
         } else {
-            canvas.rule((left, edge), (right, edge), THIN, BLACK)?;
+            canvas.rule((left, edge), (right, edge), THIN, BLACK);
         }
     }
     let place = |at: f64| bar.scale.place(at).map(|p| bottom - p * (bottom - top));
     let major = frame.y.major.iter().map(|t| (t.at, MAJOR));
     for (at, length) in major.chain(frame.y.minor.iter().map(|m| (*m, MINOR))) {
         if let Some(y) = place(at) {
-            canvas.rule((right, y), (right + length, y), THIN, BLACK)?;
+            canvas.rule((right, y), (right + length, y), THIN, BLACK);
         }
     }
     Ok(())
@@ -240,7 +246,8 @@ fn sample(canvas: &mut Canvas, entry: &Legend, x: f64, y: f64) -> Result<(), Ren
             let corner = |x: f64, y: f64| (canvas.snap(x), canvas.snap(y));
             let (from, to) = (corner(x, y), corner(right, bottom));
             canvas.toned(from, to, region.tone());
-            canvas.frame((x, y), (right, bottom), THIN)
+            canvas.frame((x, y), (right, bottom), THIN);
+            Ok(())
         }
         Legend::Nominal(_) => {
             let ends = (middle_x - 7.5, middle_x + 7.5);

@@ -23,4 +23,3 @@ pub(super) fn png(picture: &Picture, pixels_per_inch: u32, title: &str) -> Resul
     writer.finish()?;
     Ok(bytes)
 }
-

@@ -3,20 +3,38 @@
 use super::text;
 use crate::figure::label::Label;
 
-/// Breaks a sentence at spaces into lines no longer than `width`; a word that is too long stays whole.
+/// Breaks a sentence at spaces into lines no longer than `width`; a word that is too long stays whole, and a number
+/// keeps its unit.
 pub(super) fn lines(sentence: &str, size: f64, width: f64) -> Vec<String> {
     let mut found = Vec::new();
     let mut line = String::new();
-    for word in sentence.split_whitespace() {
-        let longer = if line.is_empty() { word.to_owned() } else { format!("{line} {word}") };
+    for word in words(sentence) {
+        let longer = if line.is_empty() { word.clone() } else { format!("{line} {word}") };
         if !line.is_empty() && text::length(&Label::plain(longer.as_str()), size) > width {
-            found.push(std::mem::replace(&mut line, word.to_owned()));
+            found.push(std::mem::replace(&mut line, word));
         } else {
             line = longer;
         }
     }
     if !line.is_empty() {
         found.push(line);
+    }
+    found
+}
+
+/// The words of a sentence; a short word after a number is its unit and stays with it.
+fn words(sentence: &str) -> Vec<String> {
+    let mut found: Vec<String> = Vec::new();
+    for word in sentence.split_whitespace() {
+        let letters = word.trim_matches(|c: char| c.is_ascii_punctuation() && c != '%');
+        let unit = matches!(letters, "%" | "d" | "yr" | "kyr" | "Myr" | "Gyr" | "au" | "cells" | "TDB");
+        match found.last_mut().filter(|last| unit && last.ends_with(|c: char| c.is_ascii_digit())) {
+            Some(number) => {
+                number.push(' ');
+                number.push_str(word);
+            }
+            None => found.push(word.to_owned()),
+        }
     }
     found
 }
@@ -52,6 +70,14 @@ mod tests {
             assert!(found.iter().all(|l| text::length(&Label::plain(l.as_str()), 6.5) <= width), "{found:?}");
             assert_eq!(found.join(" "), sentence);
         }
+    }
+
+    #[test]
+    fn a_number_keeps_its_unit() {
+        assert_eq!(
+            words("step 0.42 d (95 % of 2 bodies)"),
+            ["step", "0.42 d", "(95 %", "of", "2", "bodies)"]
+        );
     }
 
     #[test]

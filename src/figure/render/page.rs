@@ -72,7 +72,7 @@ struct Sizes {
 const MARGIN: f64 = 4.0;
 const TICK: f64 = 3.5;
 /// Width and height of the samples of the legend.
-pub(super) const SAMPLE: (f64, f64) = (17.0, 8.5);
+pub(super) const SAMPLE: (f64, f64) = (15.0, 8.0);
 
 /// Lays a figure out at a physical width.
 ///
@@ -101,7 +101,13 @@ pub fn page(figure: &Figure, width: Width) -> Result<Page, RenderError> {
         at: MARGIN,
     };
     layout.title(figure);
-    layout.panels(figure, if narrow { 1.12 } else { 1.0 });
+    let stretch = match (narrow, figure.panels.len()) {
+        (false, _) => 1.0,
+        (true, 1) => 1.12,
+        // Stacked panels stay tall enough for the names of their axes.
+        (true, _) => 1.4,
+    };
+    layout.panels(figure, stretch);
     layout.legend(&figure.legend);
     layout.caption(&figure.caption);
     layout.page.height = layout.at + MARGIN;
@@ -156,8 +162,12 @@ impl Layout {
         let sizes = self.sizes;
         let guess = self.page.width * 0.72;
         let heights: Vec<f64> = figure.panels.iter().map(|p| p.height * stretch * guess).collect();
-        let y_ticks: Vec<Ticks> =
-            figure.panels.iter().zip(&heights).map(|(p, h)| upright_ticks(p.y.as_ref(), *h, sizes.tick)).collect();
+        let y_ticks: Vec<Ticks> = figure
+            .panels
+            .iter()
+            .zip(&heights)
+            .map(|(p, h)| upright_ticks(p.y.as_ref(), *h, sizes.tick))
+            .collect();
         let sides = self.sides(figure, &y_ticks, heights.iter().sum());
         let (left, right) = (sides.left, self.page.width - sides.right);
         let last = figure.panels.len().saturating_sub(1);
@@ -165,7 +175,9 @@ impl Layout {
             self.at += sizes.tick * CAPITAL + 5.0;
         }
         for (index, (panel, y)) in figure.panels.iter().zip(y_ticks).enumerate() {
-            let height = panel.height * stretch * (right - left);
+            // Tall enough for the shorter name of its axis.
+            let name = panel.y.as_ref().map_or(0.0, |y| text::length(&y.short, sizes.label) + 4.0);
+            let height = (panel.height * stretch * (right - left)).max(name);
             let mut frame =
                 Frame { left, top: self.at, right, bottom: self.at + height, y, ..Frame::default() };
             self.y_side(panel, &frame);
@@ -177,14 +189,14 @@ impl Layout {
         if let (Some(bar), Some(frame)) = (&figure.colour_bar, self.page.frames.first().cloned()) {
             self.bar(bar, &frame, sides.bar_gap);
         }
-        self.at += TICK + 1.9 * sizes.tick + 1.15 * sizes.label;
+        self.at = self.at - 0.9 * sizes.tick + TICK + 5.0 + sizes.tick * (CAPITAL + BELOW);
+        self.at += sizes.label * (CAPITAL + BELOW) + 6.0;
     }
 
     fn sides(&self, figure: &Figure, y_ticks: &[Ticks], height: f64) -> Sides {
         let sizes = self.sizes;
-        let longest = |ticks: &[Tick]| {
-            ticks.iter().map(|t| text::length(&t.label, sizes.tick)).fold(0.0, f64::max)
-        };
+        let longest =
+            |ticks: &[Tick]| ticks.iter().map(|t| text::length(&t.label, sizes.tick)).fold(0.0, f64::max);
         let numbers = y_ticks.iter().map(|t| longest(&t.major)).fold(0.0, f64::max);
         let names = if figure.panels.iter().any(|p| p.y.is_some()) { 1.45 * sizes.label } else { 0.0 };
         let left = MARGIN + names + numbers + TICK + 2.0;
@@ -210,7 +222,12 @@ impl Layout {
             self.put(label, sizes.tick, x, y + 0.5 * CAPITAL * sizes.tick);
         }
         let label = self.fitting(axis, frame.bottom - frame.top);
-        self.put_upwards(label, sizes.label, MARGIN + CAPITAL * sizes.label, 0.5 * (frame.top + frame.bottom));
+        self.put_upwards(
+            label,
+            sizes.label,
+            MARGIN + CAPITAL * sizes.label,
+            0.5 * (frame.top + frame.bottom),
+        );
     }
 
     /// The label, or what is left of it when it is longer than the axis.
@@ -299,7 +316,7 @@ impl Layout {
             let line = self.at + 0.5 * (SAMPLE.1 + CAPITAL * size);
             self.put(label, size, x + SAMPLE.0 + gap, line);
             self.page.samples.push((entry.clone(), x, self.at));
-            x += length + 11.0;
+            x += length + 9.0;
             any = true;
         }
         if any {
@@ -357,7 +374,8 @@ fn level_ticks(axis: &Axis, width: f64, size: f64) -> Ticks {
 /// Ticks of the colour bar; an end that stands for more than itself says so.
 fn bar_ticks(bar: &ColourBar, height: f64, size: f64) -> Vec<Tick> {
     let scale = bar.scale;
-    let mut found = ticks(scale.from, scale.to, scale.kind, ((height / (3.2 * size)) as usize).clamp(2, 7)).major;
+    let mut found =
+        ticks(scale.from, scale.to, scale.kind, ((height / (3.2 * size)) as usize).clamp(2, 7)).major;
     let air = 1.6 * size / height;
     let signs = if scale.to > scale.from { ["≤", "≥"] } else { ["≥", "≤"] };
     for (beyond, end, sign) in [(bar.before, scale.from, signs[0]), (bar.after, scale.to, signs[1])] {
@@ -372,4 +390,3 @@ fn bar_ticks(bar: &ColourBar, height: f64, size: f64) -> Vec<Tick> {
     }
     found
 }
-
