@@ -87,6 +87,8 @@ pub struct Stored {
 }
 
 /// Reads a run that may still be growing.
+///
+/// Errors: files that are missing, cannot be read, or were edited since the run was begun.
 pub fn read_run(folder: &Path) -> Result<Stored, SurveyError> {
     for file in [MANIFEST, STUDY, SYSTEM, JOURNAL] {
         if !folder.join(file).is_file() {
@@ -95,11 +97,20 @@ pub fn read_run(folder: &Path) -> Result<Stored, SurveyError> {
     }
     let manifest = Manifest::read(&folder.join(MANIFEST))?;
     Ok(Stored {
-        study_text: disk::read_text(&folder.join(STUDY))?,
-        system_text: disk::read_text(&folder.join(SYSTEM))?,
+        study_text: unedited(folder, STUDY, &manifest.study_sha256)?,
+        system_text: unedited(folder, SYSTEM, &manifest.system_sha256)?,
         records: read_records(folder, &manifest)?,
         manifest,
     })
+}
+
+/// The copy of an input: edited, it would lend the cells a meaning that they do not have.
+fn unedited(folder: &Path, file: &'static str, stored_sha256: &str) -> Result<String, SurveyError> {
+    let text = disk::read_text(&folder.join(file))?;
+    if sha256(&text) == stored_sha256 {
+        return Ok(text);
+    }
+    Err(SurveyError::Edited { folder: folder.to_path_buf(), file })
 }
 
 /// The records of a journal by cell, each cell once; damaged lines are left out.
