@@ -97,4 +97,7 @@ pub struct DrawArgs {
     /// Picture file (default: map.png in the run, or map-COLUMN.png)
     #[arg(long, value_name = "FILE")]
     pub into: Option<PathBuf>,
+    /// Width on paper, e.g. "88 mm" for one column; text keeps its size
+    #[arg(long, value_name = "WIDTH", default_value = "180 mm")]
+    pub width: String,
 }

@@ -3,6 +3,9 @@
 pub mod args;
 mod command;
 mod error;
+mod outputs;
+mod progress;
+mod vary;
 
 pub use command::run;
 pub use error::CliError;

@@ -1,1 +1,23 @@
-//! (being built)
+//! What a run found, as tables and in words.
+//!
+//! [`Table`] is the one shape of every table; it is written as Enhanced CSV. [`cells_table`] and [`series_table`]
+//! fill it, [`Summary`] counts and says it in words or JSON, [`caption`] is what stands under a figure.
+
+mod caption;
+mod cells;
+mod ecsv;
+mod error;
+mod series;
+mod summary;
+mod table;
+mod words;
+
+pub use caption::caption;
+pub use cells::cells_table;
+pub use error::ReportError;
+pub use series::{PlanetSeries, Series, series_table};
+pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};
+pub use table::{Column, Datatype, Entry, Meta, Table};
+
+/// The version that tables, summaries and figures name.
+pub const VERSION: &str = concat!("abide ", env!("CARGO_PKG_VERSION"));

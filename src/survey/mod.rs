@@ -1,5 +1,26 @@
 //! Many configurations: cells of a grid, a resumable run, the pool that fills it.
 
+mod axis;
+mod bitmap;
+mod changes;
+mod error;
+mod grid;
+mod journal;
+mod line;
+mod manifest;
+mod pool;
 mod record;
+mod run;
+mod tally;
 
+pub use axis::{cell_count, cell_indices, cell_system, cell_values};
+pub use bitmap::Bitmap;
+pub use error::{Failure, SurveyError};
+pub use grid::Grid;
+pub use journal::{Journal, Recovered};
+pub use line::Layout;
+pub use manifest::{Identity, Manifest, PlanWords, VERSION, utc};
+pub use pool::{Desk, Done, Ended, Engine, Made, Next, Source, fill};
 pub use record::Record;
+pub use run::{Found, OUTPUTS, Run, STUDY, SYSTEM, Stored, read_run};
+pub use tally::Tally;

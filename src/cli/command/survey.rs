@@ -1,9 +1,244 @@
-use std::process::ExitCode;
+//! `abide survey`: a study → a run with its tables and its map.
 
+use std::io::{ErrorKind, Write};
+use std::path::PathBuf;
+use std::process::ExitCode;
+use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, Ordering};
+
+use crate::assess::{self, Plan};
 use crate::cli::CliError;
 use crate::cli::args::SurveyArgs;
+use crate::cli::outputs::Finished;
+use crate::cli::progress::Progress;
+use crate::cli::vary;
+use crate::coords;
+use crate::input::{self, StudyFile};
+use crate::survey::{
+    Bitmap, Desk, Ended, Found, Grid, Identity, OUTPUTS, Run, Source, SurveyError, Tally, cell_count, fill,
+};
+
+/// More cells than this need `--really`.
+const MANY_CELLS: u64 = 10_000_000;
+/// Up to so many cells each is looked at before the work for whether it can be followed; of more, so many.
+const LOOKED_AT: u64 = 20_000;
+/// Interrupted and resumable.
+const INTERRUPTED: u8 = 130;
 
 pub fn run(args: SurveyArgs) -> Result<ExitCode, CliError> {
-    let _ = args;
-    Ok(ExitCode::SUCCESS)
+    let wish = Wish::check(&args)?;
+    let (mut run, found) = Run::open(&wish.folder, &wish.identity()).map_err(told)?;
+    wish.say_found(&found);
+    let stop = stop_on_signal()?;
+    let Found { recovered, .. } = found;
+    let complete = recovered.done.count() == wish.grid.cells();
+    if !complete {
+        wish.say_settled();
+        let ended = wish.fill(&mut run, recovered.done, recovered.tally, stop)?;
+        if ended == Ended::Interrupted {
+            return Ok(wish.say_interrupted());
+        }
+    }
+    wish.finish(&run, if complete { run.missing_outputs() } else { OUTPUTS.to_vec() })
+}
+
+/// What was asked for, checked.
+struct Wish {
+    file: StudyFile,
+    grid: Arc<Grid>,
+    plan: Plan,
+    folder: PathBuf,
+    threads: usize,
+    quiet: bool,
+    json: bool,
+}
+
+impl Wish {
+    fn check(args: &SurveyArgs) -> Result<Wish, CliError> {
+        let threads = threads(args.threads)?;
+        let (file, name) = read(args)?;
+        refuse_many(cell_count(&file.study), args.really)?;
+        let system = &file.system.system;
+        let grid = Grid::new(system.clone(), file.study.clone())
+            .map_err(|error| CliError::Input(format!("{}: {}", file.system.path.display(), chain(&error))))?;
+        let nominal = coords::configure(system).map_err(CliError::input)?;
+        let plan = Plan::for_study(&file.study, &nominal);
+        let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
+        Ok(Wish { grid: Arc::new(grid), plan, folder, threads, quiet: args.quiet, json: args.json, file })
+    }
+
+    fn identity(&self) -> Identity {
+        let system = &self.file.system.system;
+        let mut study = self.file.study.clone();
+        // Where the system file lies has no influence on the cells.
+        study.system_path = PathBuf::new();
+        Identity {
+            study_text: self.file.text.clone(),
+            system_text: self.file.system.text.clone(),
+            settings: format!("{study:?}\n{system:?}\n{:?}", self.plan),
+            plan: self.plan.clone(),
+            cells: self.grid.cells(),
+            axes: study.axes.iter().map(|axis| axis.path.clone()).collect(),
+            planets: system.planets.iter().map(|planet| planet.name.clone()).collect(),
+        }
+    }
+
+    fn fill(
+        &self,
+        run: &mut Run,
+        done: Bitmap,
+        tally: Tally,
+        stop: Arc<AtomicBool>,
+    ) -> Result<Ended, CliError> {
+        let mut progress = Progress::new(self.grid.cells(), tally, self.quiet);
+        let desk = Desk { journal: &mut run.journal, stop, watch: &mut |verdict| progress.note(verdict) };
+        let engine = |plan: &Plan, next: crate::survey::Next<'_>, done: crate::survey::Done<'_>| {
+            assess::run_batch(plan, next, done);
+        };
+        let ended = fill(Arc::clone(&self.grid), engine, &self.plan, done, self.threads, desk);
+        progress.finish();
+        ended.map_err(told)
+    }
+
+    /// The outputs named, and the summary where it was asked for.
+    fn finish(&self, run: &Run, names: Vec<&str>) -> Result<ExitCode, CliError> {
+        if names.is_empty() && !self.json {
+            return Ok(ExitCode::SUCCESS);
+        }
+        let records = run.records().map_err(told)?;
+        let (study, system) = (&self.file.study, &self.file.system.system);
+        let finished = Finished { study, system, plan: &self.plan, records: &records };
+        for name in names {
+            finished.write(&self.folder, name)?;
+            self.say(format_args!("wrote {}", self.folder.join(name).display()));
+        }
+        if self.json {
+            print(&finished.summary_json()?)?;
+        }
+        Ok(ExitCode::SUCCESS)
+    }
+
+    fn say(&self, words: std::fmt::Arguments<'_>) {
+        if !self.quiet {
+            eprintln!("{words}");
+        }
+    }
+
+    fn say_found(&self, found: &Found) {
+        let (folder, cells) = (self.folder.display(), self.grid.cells());
+        let done = found.recovered.done.count();
+        if found.recovered.dropped > 0 {
+            let lines = found.recovered.dropped;
+            self.say(format_args!(
+                "{lines} {} of the journal torn or damaged, dropped; the cells are done again",
+                if lines == 1 { "line was" } else { "lines were" }
+            ));
+        }
+        if found.only_layout {
+            self.say(format_args!("the files differ from those of the run in comments and layout only"));
+        }
+        if found.resumed && done == cells {
+            self.say(format_args!("{folder} is finished: all {cells} cells are done"));
+        } else if found.resumed {
+            self.say(format_args!("{folder}: goes on, {done} of {cells} cells are done"));
+        } else {
+            self.say(format_args!("{folder}: {cells} cells on {} threads", self.threads));
+        }
+    }
+
+    /// Cells that cannot be followed are told before the long part, not found after it.
+    fn say_settled(&self) {
+        if self.quiet {
+            return;
+        }
+        let cells = self.grid.cells();
+        let apart = cells.div_ceil(LOOKED_AT).max(1);
+        let looked = cells.div_ceil(apart);
+        let step = usize::try_from(apart).unwrap_or(usize::MAX);
+        if let Some((count, first, reason)) = self.grid.settled((0..cells).step_by(step)) {
+            eprintln!(
+                "note: {count} of {looked} cells looked at cannot start and are recorded at time 0; \
+                 the first is cell {first}: {reason}"
+            );
+        }
+    }
+
+    fn say_interrupted(&self) -> ExitCode {
+        self.say(format_args!(
+            "stopped; what was finished is kept in {}. The same command goes on from there",
+            self.folder.display()
+        ));
+        ExitCode::from(INTERRUPTED)
+    }
+}
+
+/// The study with the name of its run.
+fn read(args: &SurveyArgs) -> Result<(StudyFile, String), CliError> {
+    if !args.vary.is_empty() {
+        if input::is_study(&args.study).map_err(CliError::input)? {
+            return Err(CliError::Input(format!(
+                "{} is a study, which says itself what varies; leave --vary out, or give a system file",
+                args.study.display()
+            )));
+        }
+        return Ok((vary::study_of(args)?, vary::run_name(args)));
+    }
+    let unused = [("--span", args.span.is_some()), ("--cells", args.cells.is_some())];
+    if let Some((flag, _)) = unused.iter().find(|(_, given)| *given) {
+        return Err(CliError::Input(format!(
+            "{flag} goes with --vary; a study says it itself, so change it in {}",
+            args.study.display()
+        )));
+    }
+    let file = input::read_study(&args.study).map_err(CliError::input)?;
+    let name = args.study.file_stem().unwrap_or_default().to_string_lossy().into_owned();
+    Ok((file, name))
+}
+
+fn threads(wished: Option<usize>) -> Result<usize, CliError> {
+    match wished {
+        Some(0) => Err(CliError::Input("--threads is 0, but work needs 1 or more".to_string())),
+        Some(threads) => Ok(threads),
+        None => Ok(std::thread::available_parallelism().map_or(1, usize::from)),
+    }
+}
+
+fn refuse_many(cells: u64, really: bool) -> Result<(), CliError> {
+    if cells <= MANY_CELLS || really {
+        return Ok(());
+    }
+    Err(CliError::Input(format!(
+        "the study has {cells} cells, more than {MANY_CELLS}; \
+         if that is meant, confirm it with --really, else give its axes fewer cells"
+    )))
+}
+
+/// Set by the first Ctrl-C or termination signal; a second one ends the process at once.
+fn stop_on_signal() -> Result<Arc<AtomicBool>, CliError> {
+    let stop = Arc::new(AtomicBool::new(false));
+    let seen = Arc::clone(&stop);
+    let handler = move || {
+        if seen.swap(true, Ordering::SeqCst) {
+            std::process::exit(i32::from(INTERRUPTED));
+        }
+    };
+    ctrlc::set_handler(handler).map_err(CliError::working)?;
+    Ok(stop)
+}
+
+/// To standard output; a reader that has seen enough and left is no failure.
+fn print(text: &str) -> Result<(), CliError> {
+    match std::io::stdout().write_all(text.as_bytes()) {
+        Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(CliError::working(error)),
+        _ => Ok(()),
+    }
+}
+
+fn told(error: SurveyError) -> CliError {
+    if error.is_input() { CliError::input(error) } else { CliError::working(error) }
+}
+
+fn chain(error: &dyn std::error::Error) -> String {
+    let cause = error.source().map(|cause| format!(": {cause}")).unwrap_or_default();
+    format!("{error}{cause}")
 }

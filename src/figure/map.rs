@@ -1,0 +1,213 @@
+//! The stability map of a run.
+
+use super::colour::{Region, Scale, ScaleKind, even};
+use super::column::{Column, covering};
+use super::label::Label;
+use super::model::{Axis, ColourBar, Figure, Legend, Mark, Paint, Panel, Pin};
+use super::nominal::{Nominal, nominal};
+use super::resonance::resonances;
+use super::{FigureError, grid};
+use crate::survey::Record;
+use crate::system::{Study, System};
+use crate::units::YEAR_DAY;
+
+/// What a map is made from.
+#[derive(Clone, Copy, Debug)]
+pub struct MapInput<'a> {
+    pub study: &'a Study,
+    pub system: &'a System,
+    /// Finished cells; those that are missing stay gaps.
+    pub records: &'a [Record],
+    /// Name of the column shown as colour (with one axis: as height).
+    pub column: &'a str,
+    /// How long each cell was to be followed, day.
+    pub span_day: f64,
+    /// Sentences under the figure.
+    pub caption: &'a [String],
+}
+
+/// The map of a study with two axes as a raster, with one axis as points over the axis.
+///
+/// Errors: a column that the records do not have, a record of a cell that the study does not have.
+pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
+    let MapInput { study, system, records, .. } = *input;
+    if !(1..=2).contains(&study.axes.len()) {
+        return Err(FigureError::Axes { found: study.axes.len() });
+    }
+    let column = Column::find(input.column, system, records)?;
+    let cells = paint(study, records, column)?;
+    let occurring = regions(&cells);
+    let values: Vec<f64> =
+        cells.iter().filter_map(|c| if let Paint::Value(v) = c { Some(*v) } else { None }).collect();
+    let two = study.axes.len() == 2;
+    let (panel, colour_bar) = if two {
+        let scale = column.scale(&values, input.span_day / YEAR_DAY);
+        (
+            raster_panel(input, cells, scale),
+            (!values.is_empty()).then(|| colour_bar(column, system, scale, &values)),
+        )
+    } else {
+        (points_panel(input, column, cells, &values), None)
+    };
+    let title = study.title.clone().unwrap_or_else(|| system.title.clone());
+    let mut legend: Vec<Legend> = occurring.into_iter().map(Legend::Region).collect();
+    if let Some(Mark::Nominal { x_bar, y_bar, .. }) =
+        panel.marks.iter().find(|m| matches!(m, Mark::Nominal { .. }))
+    {
+        let words = if x_bar.is_some() || y_bar.is_some() { "as stated, ±1σ" } else { "as stated" };
+        legend.push(Legend::Nominal(Label::plain(words)));
+    }
+    let mut caption: Vec<String> = pin_words(input, &panel).into_iter().collect();
+    caption.extend_from_slice(input.caption);
+    Ok(Figure { title: Label::plain(title), panels: vec![panel], colour_bar, legend, caption })
+}
+
+/// One paint per cell of the study.
+fn paint(study: &Study, records: &[Record], column: Column) -> Result<Vec<Paint>, FigureError> {
+    let total: usize = study.axes.iter().map(|a| a.cells).product();
+    let mut cells = vec![Paint::Flat(Region::Missing); total];
+    for record in records {
+        let outside = FigureError::CellOutside { cell: record.cell, cells: total as u64 };
+        let index = usize::try_from(record.cell).ok().filter(|i| *i < total).ok_or(outside)?;
+        cells[index] = column.paint(&record.assessment);
+    }
+    Ok(cells)
+}
+
+fn regions(cells: &[Paint]) -> Vec<Region> {
+    let mut found: Vec<Region> =
+        cells.iter().filter_map(|c| if let Paint::Flat(r) = c { Some(*r) } else { None }).collect();
+    found.sort_unstable();
+    found.dedup();
+    found
+}
+
+fn colour_bar(column: Column, system: &System, scale: Scale, values: &[f64]) -> ColourBar {
+    let places = || values.iter().filter_map(|v| scale.place(*v));
+    // The scale of MEGNO is cut by custom, so its ends are named whether or not this map goes beyond them.
+    let always = column == Column::Megno;
+    // Cells that lived through the span would have lived longer.
+    let survivors = column == Column::EndTime && places().any(|p| p < 1e-9);
+    ColourBar {
+        label: column.label(system),
+        scale,
+        before: always || survivors || places().any(|p| p < -1e-9),
+        after: always || places().any(|p| p > 1.0 + 1e-9),
+    }
+}
+
+fn raster_panel(input: &MapInput<'_>, cells: Vec<Paint>, scale: Scale) -> Panel {
+    let MapInput { study, system, .. } = *input;
+    let (x, y) = (grid::panel_axis(&study.axes[0], system), grid::panel_axis(&study.axes[1], system));
+    let raster =
+        Mark::Raster { columns: study.axes[0].cells, rows: study.axes[1].cells, cells, scale: Some(scale) };
+    let mut marks = vec![raster];
+    let stated = (nominal(&study.axes[0], system), nominal(&study.axes[1], system));
+    if let (Some(across), Some(up)) = stated
+        && inside(&x, across.value)
+        && inside(&y, up.value)
+    {
+        marks.push(Mark::Nominal { x: across.value, y: Some(up.value), x_bar: bar(across), y_bar: bar(up) });
+    }
+    Panel { x, y: Some(y), marks, top: pins(input, 0), right: pins(input, 1), height: 0.74 }
+}
+
+/// With one axis: points where there is a number, else the tone of the cell over the whole height.
+fn points_panel(input: &MapInput<'_>, column: Column, cells: Vec<Paint>, values: &[f64]) -> Panel {
+    let MapInput { study, system, .. } = *input;
+    let x = grid::panel_axis(&study.axes[0], system);
+    let columns = cells.len();
+    let ink = even(0.05);
+    let mut points = Vec::new();
+    let mut strips = Vec::with_capacity(columns);
+    for (index, cell) in cells.into_iter().enumerate() {
+        if let Paint::Value(value) = cell {
+            points.push((grid::centre(&x, columns, index), value, ink));
+            strips.push(Paint::Empty);
+        } else {
+            strips.push(cell);
+        }
+    }
+    let mut marks = vec![Mark::Raster { columns, rows: 1, cells: strips, scale: None }];
+    let y = (!points.is_empty()).then(|| {
+        let scale = room_around(values);
+        let label = column.label(system);
+        Axis { short: label.clone(), label, from: scale.from, to: scale.to, kind: scale.kind }
+    });
+    if column == Column::Megno && y.as_ref().is_some_and(|y| inside(y, 2.0)) {
+        marks.push(Mark::Level { at: 2.0 });
+    }
+    let height = if y.is_some() { 0.5 } else { 0.15 };
+    marks.push(Mark::Points { points });
+    if let Some(found) = nominal(&study.axes[0], system).filter(|n| inside(&x, n.value)) {
+        marks.push(Mark::Nominal { x: found.value, y: None, x_bar: bar(found), y_bar: None });
+    }
+    Panel { x, y, marks, top: pins(input, 0), right: Vec::new(), height }
+}
+
+/// A scale over all values with some room at both ends.
+pub(crate) fn room_around(values: &[f64]) -> Scale {
+    let low = values.iter().copied().fold(f64::INFINITY, f64::min);
+    let high = values.iter().copied().fold(f64::NEG_INFINITY, f64::max);
+    let kind = covering(values).kind;
+    match kind {
+        ScaleKind::Log => {
+            let room = (high / low).powf(0.06);
+            Scale { from: low / room, to: high * room, kind }
+        }
+        ScaleKind::Linear => {
+            let size = if low <= high { low.abs().max(high.abs()) } else { 0.0 };
+            let width = if high > low { high - low } else { 0.0 };
+            let room = if width > 1e-12 * size { 0.06 * width } else { (0.05 * size).max(1e-12) };
+            let (low, high) = if low <= high { (low, high) } else { (0.0, 1.0) };
+            Scale { from: low - room, to: high + room, kind }
+        }
+    }
+}
+
+fn inside(axis: &Axis, value: f64) -> bool {
+    axis.scale().place(value).is_some_and(|p| (0.0..=1.0).contains(&p))
+}
+
+fn bar(found: Nominal) -> Option<(f64, f64)> {
+    (found.plus.is_some() || found.minus.is_some())
+        .then(|| (found.value - found.minus.unwrap_or(0.0), found.value + found.plus.unwrap_or(0.0)))
+}
+
+/// The resonances of an axis as pins; they name the other planet when there are two.
+fn pins(input: &MapInput<'_>, axis: usize) -> Vec<Pin> {
+    let found = resonances(input.study, axis, input.system);
+    let several = found.iter().any(|(_, r)| Some(r.other) != found.first().map(|(_, first)| first.other));
+    let label = |r: &super::Resonance| {
+        let label = Label::plain(format!("{}:{}", r.p, r.q));
+        match input.system.planets.get(r.other) {
+            Some(planet) if several => label.then("\u{2009}").italic(planet.name.as_str()),
+            _ => label,
+        }
+    };
+    found.iter().map(|(at, r)| Pin { at: *at, label: label(r), resonance: *r }).collect()
+}
+
+/// Says what the pins at the edges are.
+fn pin_words(input: &MapInput<'_>, panel: &Panel) -> Option<String> {
+    let words = |axis: usize, pins: &[Pin]| -> Option<String> {
+        let crate::system::BodyRef::Planet(planet) = input.study.axes.get(axis)?.target.body else {
+            return None;
+        };
+        let mut others: Vec<usize> = pins.iter().map(|p| p.resonance.other).collect();
+        others.sort_unstable();
+        others.dedup();
+        let name = |i: &usize| input.system.planets.get(*i).map(|p| p.name.clone());
+        let names: Vec<String> = others.iter().filter_map(name).collect();
+        (!names.is_empty())
+            .then(|| format!("of {} with {}", name(&planet).unwrap_or_default(), names.join(" and ")))
+    };
+    let top = words(0, &panel.top).map(|w| format!("top edge: mean-motion resonances {w}"));
+    let right = words(1, &panel.right).map(|w| format!("right edge: mean-motion resonances {w}"));
+    let all: Vec<String> = top.into_iter().chain(right).collect();
+    if all.is_empty() {
+        return None;
+    }
+    let text = all.join("; ");
+    Some(format!("{}{} (longer : shorter period).", text[..1].to_uppercase(), &text[1..]))
+}

@@ -1,0 +1,40 @@
+//! What stands under a figure: what was done, what was held fixed, how far the numbers can be trusted.
+
+use super::summary::Spread;
+use super::{VERSION, words};
+use crate::assess::Plan;
+use crate::survey::Record;
+use crate::system::{Study, System};
+
+/// Sentences for the foot of a figure, one per topic; the figure breaks them into lines.
+pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) -> Vec<String> {
+    let errors = records.iter().filter_map(|r| r.assessment.energy_error);
+    let energy = Spread::of(errors).map_or_else(
+        || "energy error not measured".to_owned(),
+        |s| {
+            format!(
+                "relative energy error: median {}, 95 % below {}, largest {}",
+                words::printed(s.median),
+                words::printed(s.q95),
+                words::printed(s.largest)
+            )
+        },
+    );
+    let total: usize = study.axes.iter().map(|a| a.cells).product();
+    let cells = if records.len() < total {
+        format!("Incomplete: {} of {total} cells done", records.len())
+    } else {
+        format!("{total} cells")
+    };
+    vec![
+        format!("{cells}, each followed for {}.", words::span_words(study, plan, words::printed)),
+        format!("Scheme {}, {}; {energy}.", plan.scheme, words::step_words(plan, records)),
+        format!("{}.", capital(&words::held_words(study, system))),
+        format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),
+    ]
+}
+
+fn capital(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+}

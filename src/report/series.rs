@@ -1,0 +1,90 @@
+//! The table of one configuration followed through time.
+
+use super::VERSION;
+use super::table::{Column, Datatype, Entry, Meta, Table};
+use crate::coords::Elements;
+use crate::units::{DEGREE, YEAR_DAY};
+
+/// One planet through time.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct PlanetSeries {
+    pub name: String,
+    /// Astrocentric osculating elements, one per time.
+    pub elements: Vec<Elements>,
+}
+
+/// One configuration through time: every list is as long as `time_day`, or empty when not measured.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Series {
+    pub title: String,
+    pub time_day: Vec<f64>,
+    pub planets: Vec<PlanetSeries>,
+    /// Relative.
+    pub energy_error: Vec<f64>,
+    pub angular_momentum_error: Vec<f64>,
+    /// MEGNO Y.
+    pub megno: Vec<f64>,
+    /// Its mean ⟨Y⟩.
+    pub megno_mean: Vec<f64>,
+    /// Estimate of the maximal Lyapunov exponent up to this time.
+    pub lyapunov_per_day: Vec<f64>,
+    pub scheme: String,
+    pub step_day: f64,
+}
+
+/// The series as a table: time in yr, lengths in au, angles in deg.
+pub fn series_table(series: &Series) -> Table {
+    let mut table = Table {
+        meta: vec![
+            ("title".to_owned(), Meta::Text(series.title.clone())),
+            ("version".to_owned(), Meta::Text(VERSION.to_owned())),
+            ("scheme".to_owned(), Meta::Text(series.scheme.clone())),
+            ("step_d".to_owned(), Meta::Float(series.step_day)),
+        ],
+        rows: vec![Vec::new(); series.time_day.len()],
+        ..Table::default()
+    };
+    let years: Vec<f64> = series.time_day.iter().map(|t| t / YEAR_DAY).collect();
+    push(&mut table, "time", "yr", "time from the epoch", &years);
+    for planet in &series.planets {
+        push_planet(&mut table, planet);
+    }
+    push(&mut table, "energy_error", "", "relative error of the energy", &series.energy_error);
+    let momentum = "relative error of the total angular momentum";
+    push(&mut table, "angular_momentum_error", "", momentum, &series.angular_momentum_error);
+    push(&mut table, "megno", "", "MEGNO Y", &series.megno);
+    push(&mut table, "megno_mean", "", "mean MEGNO <Y>; tends to 2 for regular motion", &series.megno_mean);
+    let per_year: Vec<f64> = series.lyapunov_per_day.iter().map(|l| l * YEAR_DAY).collect();
+    push(&mut table, "lyapunov", "1/yr", "maximal Lyapunov exponent, estimate up to this time", &per_year);
+    table
+}
+
+type Part = (&'static str, &'static str, &'static str, fn(&Elements) -> f64);
+
+const PARTS: [Part; 6] = [
+    ("a", "au", "astrocentric semi-major axis", |e| e.semi_major_axis_au),
+    ("e", "", "eccentricity", |e| e.eccentricity),
+    ("i", "deg", "inclination to the sky plane", |e| e.inclination / DEGREE),
+    ("node", "deg", "ascending node", |e| e.ascending_node / DEGREE),
+    ("omega", "deg", "argument of pericentre of the planet", |e| e.argument_of_pericentre / DEGREE),
+    ("mean_anomaly", "deg", "mean anomaly", |e| e.mean_anomaly / DEGREE),
+];
+
+fn push_planet(table: &mut Table, planet: &PlanetSeries) {
+    for (part, unit, meaning, take) in PARTS {
+        let values: Vec<f64> = planet.elements.iter().map(take).collect();
+        let meaning = format!("{meaning} of {}", planet.name);
+        push(table, &format!("{}.{part}", planet.name), unit, &meaning, &values);
+    }
+}
+
+/// Appends a column unless nothing was measured; entries beyond the measured ones are absent, and so is what is not finite.
+fn push(table: &mut Table, name: &str, unit: &'static str, meaning: &str, values: &[f64]) {
+    if values.is_empty() {
+        return;
+    }
+    table.columns.push(Column::new(name, unit, Datatype::Float, meaning));
+    for (index, row) in table.rows.iter_mut().enumerate() {
+        row.push(values.get(index).copied().filter(|v| v.is_finite()).map_or(Entry::Absent, Entry::Float));
+    }
+}

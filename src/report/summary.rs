@@ -1,0 +1,230 @@
+//! The run in words and numbers.
+
+use std::fmt::Write;
+
+use serde_json::{Map, Value, json};
+
+use super::{ReportError, VERSION, words};
+use crate::assess::{Assessment, Plan};
+use crate::survey::Record;
+use crate::system::{Study, System};
+use crate::units::YEAR_DAY;
+use crate::verdict::{LostHow, Verdict};
+
+/// Median, 95 % quantile and largest of a set of numbers; quantiles by nearest rank.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Spread {
+    pub median: f64,
+    pub q95: f64,
+    pub largest: f64,
+}
+
+impl Spread {
+    /// Absent for an empty set; NaN counts as larger than everything, so that it is never hidden.
+    pub fn of(values: impl Iterator<Item = f64>) -> Option<Spread> {
+        let mut sorted: Vec<f64> = values.map(f64::abs).collect();
+        sorted.sort_by(f64::total_cmp);
+        let last = sorted.len().checked_sub(1)?;
+        let rank =
+            |share: f64| sorted[((share * sorted.len() as f64).ceil() as usize).saturating_sub(1).min(last)];
+        Some(Spread { median: rank(0.5), q95: rank(0.95), largest: sorted[last] })
+    }
+}
+
+/// The cell nearest to the stated values.
+#[derive(Clone, Debug, PartialEq)]
+pub struct NominalCell {
+    pub cell: u64,
+    /// Absent when this cell is not finished.
+    pub assessment: Option<Assessment>,
+}
+
+/// What a run found, counted.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Summary {
+    pub title: String,
+    /// Of the study.
+    pub cells: u64,
+    pub finished: u64,
+    /// In the order of `Verdict::ALL`.
+    pub verdicts: Vec<(Verdict, u64)>,
+    /// Of the lost ones, in the order of `LostHow::ALL`.
+    pub losses: Vec<(LostHow, u64)>,
+    pub redone: u64,
+    pub energy_error: Option<Spread>,
+    /// Absent when the stated values lie outside the axes.
+    pub nominal: Option<NominalCell>,
+    pub span: String,
+    pub span_day: f64,
+    pub scheme: &'static str,
+    pub step: String,
+    pub energy_error_target: f64,
+    pub held: String,
+    pub convention: String,
+}
+
+impl Summary {
+    pub fn of(
+        study: &Study,
+        system: &System,
+        plan: &Plan,
+        records: &[Record],
+        nominal_cell: Option<u64>,
+    ) -> Summary {
+        let count = |test: &dyn Fn(&Assessment) -> bool| {
+            records.iter().filter(|r| test(&r.assessment)).count() as u64
+        };
+        let cells: usize = study.axes.iter().map(|a| a.cells).product();
+        Summary {
+            title: study.title.clone().unwrap_or_else(|| system.title.clone()),
+            cells: cells as u64,
+            finished: records.len() as u64,
+            verdicts: Verdict::ALL.map(|v| (v, count(&|a| a.verdict == v))).to_vec(),
+            losses: LostHow::ALL
+                .map(|how| {
+                    (how, count(&|a| a.verdict == Verdict::Lost && a.loss.is_some_and(|l| l.how == how)))
+                })
+                .to_vec(),
+            redone: count(&|a| a.redone > 0),
+            energy_error: Spread::of(records.iter().filter_map(|r| r.assessment.energy_error)),
+            nominal: nominal_cell.map(|cell| NominalCell {
+                cell,
+                assessment: records.iter().find(|r| r.cell == cell).map(|r| r.assessment.clone()),
+            }),
+            span: words::span_words(study, plan, words::short),
+            span_day: plan.span_day,
+            scheme: plan.scheme,
+            step: words::step_words(plan, records),
+            energy_error_target: plan.energy_error,
+            held: words::held_words(study, system),
+            convention: words::convention_words(system.convention, system.epoch_jd),
+        }
+    }
+
+    fn share(&self, count: u64) -> f64 {
+        if self.finished == 0 { 0.0 } else { 100.0 * count as f64 / self.finished as f64 }
+    }
+
+    /// The run in words, lines ending in a newline.
+    pub fn text(&self) -> String {
+        let mut lines = vec![self.title.clone(), String::new()];
+        lines.push(if self.finished < self.cells {
+            format!("cells        {} of {} finished; the rest is missing below", self.finished, self.cells)
+        } else {
+            format!("cells        {}", self.cells)
+        });
+        lines.push(format!("span         {}", self.span));
+        for (verdict, count) in &self.verdicts {
+            lines.push(format!("{:<12} {count} ({:.1} %)", verdict.word(), self.share(*count)));
+            if *verdict == Verdict::Lost {
+                for (how, count) in self.losses.iter().filter(|(_, count)| *count > 0) {
+                    lines.push(format!("  {:<10} {count} ({:.1} %)", how.word(), self.share(*count)));
+                }
+            }
+        }
+        lines.push(format!("nominal      {}", self.nominal_words()));
+        lines.push(format!("energy error {}", self.energy_words()));
+        lines.push(format!("scheme       {}", self.scheme));
+        lines.push(format!("step         {}", self.step));
+        lines.push(format!("redone       {} cells with a smaller step", self.redone));
+        lines.push(format!("axes         {}", self.held));
+        lines.push(format!("convention   {}", self.convention));
+        lines.push(format!("version      {VERSION}"));
+        let mut text = String::new();
+        for line in lines {
+            writeln!(text, "{}", line.trim_end()).expect("a string takes any text");
+        }
+        text
+    }
+
+    fn nominal_words(&self) -> String {
+        match &self.nominal {
+            None => "the stated values lie outside the axes".to_owned(),
+            Some(NominalCell { cell, assessment: None }) => format!("cell {cell} is not finished"),
+            Some(NominalCell { cell, assessment: Some(found) }) => {
+                let mut text = format!("cell {cell} is {}", found.verdict.word());
+                if let Some(loss) = found.loss {
+                    let time = words::time_words(loss.time_day);
+                    write!(text, " ({} after {time})", loss.how.word()).expect("a string takes any text");
+                }
+                if let Some(megno) = found.megno {
+                    write!(text, ", MEGNO {megno:.3}").expect("a string takes any text");
+                }
+                if let Some(error) = found.energy_error {
+                    write!(text, ", energy error {}", words::short(error)).expect("a string takes any text");
+                }
+                text
+            }
+        }
+    }
+
+    fn energy_words(&self) -> String {
+        let target = words::short(self.energy_error_target);
+        match self.energy_error {
+            None => format!("not measured (target {target})"),
+            Some(s) => format!(
+                "median {}, 95 % of cells below {}, largest {} (target {target})",
+                words::short(s.median),
+                words::short(s.q95),
+                words::short(s.largest)
+            ),
+        }
+    }
+
+    /// The same for scripts; counts are numbers, what is absent is null.
+    pub fn json(&self) -> Value {
+        let verdicts: Map<String, Value> =
+            self.verdicts.iter().map(|(v, count)| (v.word().to_owned(), json!(count))).collect();
+        let losses: Map<String, Value> =
+            self.losses.iter().map(|(how, count)| (how.word().to_owned(), json!(count))).collect();
+        json!({
+            "title": self.title,
+            "version": VERSION,
+            "cells": self.cells,
+            "finished": self.finished,
+            "verdicts": verdicts,
+            "lost_how": losses,
+            "redone": self.redone,
+            "nominal": self.nominal.as_ref().map(|n| json!({
+                "cell": n.cell,
+                "verdict": n.assessment.as_ref().map(|a| a.verdict.word()),
+                "end_time_yr": n.assessment.as_ref().map(|a| a.end_time_day / YEAR_DAY),
+                "megno": n.assessment.as_ref().and_then(|a| a.megno),
+                "energy_error": n.assessment.as_ref().and_then(|a| a.energy_error),
+            })),
+            "energy_error": self.energy_error.map(|s| json!({
+                "median": s.median, "q95": s.q95, "largest": s.largest,
+            })),
+            "energy_error_target": self.energy_error_target,
+            "span": self.span,
+            "span_d": self.span_day,
+            "scheme": self.scheme,
+            "step": self.step,
+            "axes": self.held,
+            "convention": self.convention,
+        })
+    }
+}
+
+/// [`Summary::text`] in one call.
+pub fn summary_text(
+    study: &Study,
+    system: &System,
+    plan: &Plan,
+    records: &[Record],
+    nominal_cell: Option<u64>,
+) -> String {
+    Summary::of(study, system, plan, records, nominal_cell).text()
+}
+
+/// [`Summary::json`] in one call, indented, ending in a newline.
+pub fn summary_json(
+    study: &Study,
+    system: &System,
+    plan: &Plan,
+    records: &[Record],
+    nominal_cell: Option<u64>,
+) -> Result<String, ReportError> {
+    let value = Summary::of(study, system, plan, records, nominal_cell).json();
+    Ok(serde_json::to_string_pretty(&value)? + "\n")
+}

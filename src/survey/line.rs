@@ -1,0 +1,287 @@
+//! One finished cell as one line of text with a checksum, and back.
+
+use std::collections::BTreeSet;
+use std::sync::Mutex;
+
+use serde::{Deserialize, Serialize};
+
+use super::Record;
+use crate::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
+use crate::verdict::{LostHow, Verdict};
+
+/// What the lines of one journal hold.
+#[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
+pub struct Layout {
+    /// Paths of the axes, as written in the study.
+    pub axes: Vec<String>,
+    /// Names of the planets in the order of the system file.
+    pub planets: Vec<String>,
+    /// Whether the ranges of the elements of each planet are kept.
+    pub extent: bool,
+    /// Goes into every checksum, so that a line of another run is not taken for one of this.
+    pub seal: String,
+}
+
+/// Columns between the axes and the planets.
+const BEFORE_PLANETS: [&str; 9] = [
+    "verdict",
+    "end_time_day",
+    "lost_time_day",
+    "lost_planet",
+    "lost_other",
+    "lost_how",
+    "megno",
+    "lyapunov_per_day",
+    "lyapunov_error_per_day",
+];
+/// Columns of one planet.
+const OF_PLANET: [&str; 6] = ["a_min_au", "a_max_au", "e_min", "e_max", "i_min_rad", "i_max_rad"];
+/// Columns after the planets.
+const AFTER_PLANETS: [&str; 11] = [
+    "approach_au",
+    "approach_hill",
+    "approach_first",
+    "approach_second",
+    "energy_error",
+    "angular_momentum_error",
+    "scheme",
+    "step_day",
+    "steps",
+    "redone",
+    "crc32",
+];
+
+impl Layout {
+    /// Names of all columns, the checksum last.
+    pub fn columns(&self) -> Vec<String> {
+        let mut names = vec!["cell".to_string()];
+        names.extend(self.axes.iter().cloned());
+        names.extend(BEFORE_PLANETS.map(String::from));
+        if self.extent {
+            for planet in &self.planets {
+                names.extend(OF_PLANET.map(|column| format!("{planet}.{column}")));
+            }
+        }
+        names.extend(AFTER_PLANETS.map(String::from));
+        names
+    }
+
+    /// The first line of a journal, without its line end.
+    pub fn header(&self) -> String {
+        let names: Vec<String> = self.columns().iter().map(|name| quoted(name)).collect();
+        names.join(",")
+    }
+
+    /// The line of a record, without its line end. Floats are the shortest that read back to the same bits.
+    pub fn encode(&self, record: &Record) -> String {
+        let a = &record.assessment;
+        let mut line = Line(record.cell.to_string());
+        record.values.iter().for_each(|value| line.put(number(*value)));
+        line.put(a.verdict.word());
+        line.put(number(a.end_time_day));
+        line.put(optional(a.loss.map(|loss| loss.time_day)));
+        line.put(whole(a.loss.map(|loss| loss.planet)));
+        line.put(whole(a.loss.and_then(|loss| loss.other)));
+        line.put(a.loss.map_or("", |loss| loss.how.word()));
+        line.put(optional(a.megno));
+        line.put(optional(a.lyapunov.map(|l| l.per_day)));
+        line.put(optional(a.lyapunov.map(|l| l.error_per_day)));
+        if self.extent {
+            self.encode_extent(&a.extent, &mut line);
+        }
+        line.put(optional(a.smallest_approach.map(|approach| approach.au)));
+        line.put(optional(a.smallest_approach.map(|approach| approach.hill)));
+        line.put(whole(a.smallest_approach.map(|approach| approach.pair.0)));
+        line.put(whole(a.smallest_approach.map(|approach| approach.pair.1)));
+        line.put(optional(a.energy_error));
+        line.put(optional(a.angular_momentum_error));
+        line.put(quoted(a.scheme));
+        line.put(number(a.step_day));
+        line.put(a.steps.to_string());
+        line.put(a.redone.to_string());
+        let checksum = self.checksum(&line.0);
+        line.put(checksum);
+        line.0
+    }
+
+    fn encode_extent(&self, extent: &[Extent], line: &mut Line) {
+        for planet in 0..self.planets.len() {
+            let extent = extent.get(planet);
+            let ranges = [
+                extent.map(|e| e.semi_major_axis_au),
+                extent.map(|e| e.eccentricity),
+                extent.map(|e| e.inclination),
+            ];
+            for range in ranges {
+                line.put(optional(range.map(|r| r.min)));
+                line.put(optional(range.map(|r| r.max)));
+            }
+        }
+    }
+
+    /// The record of a line, or nothing when the line is torn, damaged or of another run.
+    pub fn decode(&self, line: &[u8]) -> Option<Record> {
+        let text = std::str::from_utf8(line).ok()?;
+        let (body, checksum) = text.rsplit_once(',')?;
+        // Compared as written: reading it as a number would let `A` pass for `a`.
+        if self.checksum(body) != checksum {
+            return None;
+        }
+        let mut fields = Fields(body);
+        let cell = fields.whole()??;
+        // Exact capacities here and below: a million records are held at once when the tables are made.
+        let mut values = Vec::with_capacity(self.axes.len());
+        for _ in &self.axes {
+            values.push(fields.number()??);
+        }
+        let assessment = self.decode_assessment(&mut fields)?;
+        fields.0.is_empty().then_some(Record { cell, values, assessment })
+    }
+
+    fn decode_assessment(&self, fields: &mut Fields) -> Option<Assessment> {
+        Some(Assessment {
+            verdict: Verdict::from_word(&fields.next()?)?,
+            end_time_day: fields.number()??,
+            loss: decode_loss(fields)?,
+            megno: fields.number()?,
+            lyapunov: match (fields.number()?, fields.number()?) {
+                (Some(per_day), Some(error_per_day)) => Some(Lyapunov { per_day, error_per_day }),
+                _ => None,
+            },
+            extent: self.decode_extent(fields)?,
+            smallest_approach: decode_approach(fields)?,
+            energy_error: fields.number()?,
+            angular_momentum_error: fields.number()?,
+            scheme: kept(&fields.next()?),
+            step_day: fields.number()??,
+            steps: fields.whole()??,
+            redone: u32::try_from(fields.whole()??).ok()?,
+        })
+    }
+
+    fn decode_extent(&self, fields: &mut Fields) -> Option<Vec<Extent>> {
+        let planets = if self.extent { self.planets.len() } else { 0 };
+        let mut extents = Vec::with_capacity(planets);
+        for _ in 0..planets {
+            let (a, e, i) = (fields.range()?, fields.range()?, fields.range()?);
+            if let (Some(semi_major_axis_au), Some(eccentricity), Some(inclination)) = (a, e, i) {
+                extents.push(Extent { semi_major_axis_au, eccentricity, inclination });
+            }
+        }
+        extents.shrink_to_fit();
+        Some(extents)
+    }
+
+    fn checksum(&self, body: &str) -> String {
+        let mut hasher = crc32fast::Hasher::new();
+        hasher.update(self.seal.as_bytes());
+        hasher.update(body.as_bytes());
+        format!("{:08x}", hasher.finalize())
+    }
+}
+
+fn decode_loss(fields: &mut Fields) -> Option<Option<Loss>> {
+    let (time_day, planet, other) = (fields.number()?, fields.whole()?, fields.whole()?);
+    let how = fields.next()?;
+    Some(match (time_day, planet) {
+        (Some(time_day), Some(planet)) => Some(Loss {
+            time_day,
+            planet: usize::try_from(planet).ok()?,
+            other: other.map(usize::try_from).transpose().ok()?,
+            how: LostHow::from_word(&how)?,
+        }),
+        _ => None,
+    })
+}
+
+fn decode_approach(fields: &mut Fields) -> Option<Option<Approach>> {
+    let (au, hill) = (fields.number()?, fields.number()?);
+    let (first, second) = (fields.whole()?, fields.whole()?);
+    Some(match (au, hill, first, second) {
+        (Some(au), Some(hill), Some(first), Some(second)) => {
+            Some(Approach { au, hill, pair: (usize::try_from(first).ok()?, usize::try_from(second).ok()?) })
+        }
+        _ => None,
+    })
+}
+
+/// A line being written.
+struct Line(String);
+
+impl Line {
+    fn put(&mut self, field: impl AsRef<str>) {
+        self.0.push(',');
+        self.0.push_str(field.as_ref());
+    }
+}
+
+/// The shortest text that reads back to the same bits.
+fn number(value: f64) -> String {
+    format!("{value:?}")
+}
+
+fn optional(value: Option<f64>) -> String {
+    value.map(number).unwrap_or_default()
+}
+
+fn whole(value: Option<usize>) -> String {
+    value.map(|v| v.to_string()).unwrap_or_default()
+}
+
+/// In double quotes when it has a comma or a quote, as RFC 4180 does.
+fn quoted(word: &str) -> String {
+    if word.contains([',', '"']) { format!("\"{}\"", word.replace('"', "\"\"")) } else { word.to_string() }
+}
+
+/// What is left of a line: fields with a comma before each but the first; empty after the last.
+struct Fields<'a>(&'a str);
+
+impl Fields<'_> {
+    fn next(&mut self) -> Option<String> {
+        let rest = self.0.strip_prefix(',').unwrap_or(self.0);
+        if self.0.is_empty() {
+            return None;
+        }
+        let mut open = false;
+        let end = rest
+            .find(|c| {
+                open ^= c == '"';
+                c == ',' && !open
+            })
+            .unwrap_or(rest.len());
+        self.0 = &rest[end..];
+        let field = &rest[..end];
+        Some(match field.strip_prefix('"').and_then(|f| f.strip_suffix('"')) {
+            Some(inner) => inner.replace("\"\"", "\""),
+            None => field.to_string(),
+        })
+    }
+
+    /// Outer `None`: no number; inner `None`: absent.
+    fn number(&mut self) -> Option<Option<f64>> {
+        let field = self.next()?;
+        if field.is_empty() { Some(None) } else { field.parse().ok().map(Some) }
+    }
+
+    fn whole(&mut self) -> Option<Option<u64>> {
+        let field = self.next()?;
+        if field.is_empty() { Some(None) } else { field.parse().ok().map(Some) }
+    }
+
+    fn range(&mut self) -> Option<Option<Range>> {
+        let (min, max) = (self.number()?, self.number()?);
+        Some(min.zip(max).map(|(min, max)| Range { min, max }))
+    }
+}
+
+/// A word that lives as long as the program; each different one is stored once (there are a handful of schemes).
+fn kept(word: &str) -> &'static str {
+    static WORDS: Mutex<BTreeSet<&'static str>> = Mutex::new(BTreeSet::new());
+    let mut words = WORDS.lock().unwrap_or_else(|poisoned| poisoned.into_inner());
+    if let Some(known) = words.get(word) {
+        return known;
+    }
+    let new: &'static str = Box::leak(word.to_string().into_boxed_str());
+    words.insert(new);
+    new
+}
