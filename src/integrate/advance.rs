@@ -1,6 +1,7 @@
 //! Many steps of a block in one go.
 
-use super::block::{Block, D_POS, D_VEL, FAR2, GM, Global, NEAR2, POS, VEL};
+use super::block::{Block, Coordinates, D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, VEL};
+use super::jacobi::{self, Relative};
 use super::kick::kick;
 use super::splitting::Scheme;
 use crate::kepler::{Body, Midway, drift};
@@ -37,21 +38,27 @@ impl Job for Advance<'_> {
     #[inline(always)]
     fn run<R: Real>(self) {
         // The commonest counts are compiled as fixed numbers, which lets the compiler keep more in registers.
-        match (self.block.planets(), self.tangent) {
-            (2, true) => fixed::<R, 2, 1>(self),
-            (3, true) => fixed::<R, 3, 3>(self),
-            (n, tangent) => {
-                let mut bodies = vec![Body::<R>::still(); n];
-                let mut midway = vec![Midway::<R>::blank(); n];
-                let mut pairs = vec![R::splat(0.0); n * n.saturating_sub(1) / 2];
-                if tangent {
-                    steps::<R, true>(self, &mut bodies, &mut midway, &mut pairs);
-                } else {
-                    steps::<R, false>(self, &mut bodies, &mut midway, &mut pairs);
-                }
-            }
+        match (self.block.coordinates(), self.block.planets(), self.tangent) {
+            (Coordinates::Heliocentric, 2, true) => fixed::<R, 2, 1>(self),
+            (Coordinates::Heliocentric, 3, true) => fixed::<R, 3, 3>(self),
+            (Coordinates::Heliocentric, _, true) => any_count::<R, true, false>(self),
+            (Coordinates::Heliocentric, _, false) => any_count::<R, false, false>(self),
+            (Coordinates::Jacobi, _, true) => any_count::<R, true, true>(self),
+            (Coordinates::Jacobi, _, false) => any_count::<R, false, true>(self),
         }
     }
+}
+
+#[inline(always)]
+fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool>(call: Advance<'_>) {
+    let n = call.block.planets();
+    let mut bodies = vec![Body::<R>::still(); n];
+    let mut midway = vec![Midway::<R>::blank(); n];
+    let mut pairs = vec![R::splat(0.0); n * n.saturating_sub(1) / 2];
+    let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
+    let rooms =
+        Rooms { bodies: &mut bodies, midway: &mut midway, pairs: &mut pairs, relative: &mut relative };
+    steps::<R, TANGENT, JACOBI>(call, rooms);
 }
 
 #[inline(always)]
@@ -59,17 +66,22 @@ fn fixed<R: Real, const N: usize, const PAIRS: usize>(call: Advance<'_>) {
     let mut bodies = [Body::<R>::still(); N];
     let mut midway = [Midway::<R>::blank(); N];
     let mut pairs = [R::splat(0.0); PAIRS];
-    steps::<R, true>(call, &mut bodies, &mut midway, &mut pairs);
+    let rooms = Rooms { bodies: &mut bodies, midway: &mut midway, pairs: &mut pairs, relative: &mut [] };
+    steps::<R, true, false>(call, rooms);
+}
+
+/// Where the kernel keeps its numbers.
+struct Rooms<'a, R: Real> {
+    bodies: &'a mut [Body<R>],
+    midway: &'a mut [Midway<R>],
+    pairs: &'a mut [R],
+    relative: &'a mut [Relative<R>],
 }
 
 #[inline(always)]
-fn steps<R: Real, const TANGENT: bool>(
-    call: Advance<'_>,
-    bodies: &mut [Body<R>],
-    midway: &mut [Midway<R>],
-    pairs: &mut [R],
-) {
+fn steps<R: Real, const TANGENT: bool, const JACOBI: bool>(call: Advance<'_>, rooms: Rooms<'_, R>) {
     let Advance { block, scheme, steps, .. } = call;
+    let Rooms { bodies, midway, pairs, relative } = rooms;
     read(block, bodies, pairs);
     let star_gm = R::load(block.slot(Global::StarGm as usize));
     let h = R::load(block.slot(Global::Step as usize));
@@ -83,14 +95,23 @@ fn steps<R: Real, const TANGENT: bool>(
     for done in 0..=kicks {
         let merged = stage == 0 && 0 < done && done < kicks;
         let length = if merged { 2.0 * a[0] } else { a[if done == kicks { b.len() } else { stage }] };
-        drift::<R, TANGENT, true>(bodies, midway, h * R::splat(length), active);
+        if JACOBI {
+            drift::<R, TANGENT, false>(bodies, midway, h * R::splat(length), active);
+        } else {
+            drift::<R, TANGENT, true>(bodies, midway, h * R::splat(length), active);
+        }
         if done == kicks {
             break;
         }
         if TANGENT && stage == 0 && step % SAMPLE_EVERY == 0 {
             growth.sample(bodies);
         }
-        kick::<R, TANGENT, true>(bodies, pairs, star_gm, h * R::splat(b[stage]), window);
+        let length = h * R::splat(b[stage]);
+        if JACOBI {
+            jacobi::kick::<R, TANGENT>(bodies, relative, pairs, star_gm, length, window);
+        } else {
+            kick::<R, TANGENT, true>(bodies, pairs, star_gm, length, window);
+        }
         stage += 1;
         if stage == b.len() {
             (step, stage) = (step + 1, 0);
@@ -99,7 +120,8 @@ fn steps<R: Real, const TANGENT: bool>(
     if TANGENT {
         growth.write(block);
     }
-    write(block, bodies, pairs);
+    write(block, bodies);
+    write_watch(block, bodies, pairs);
 }
 
 /// The sums behind MEGNO, in samples: Y = 2 (L − ∫L/t), L = ln(|δ|/|δ₀|), by parts from Y = (2/t)∫(δ̇·δ/δ²) s ds.
@@ -173,10 +195,9 @@ impl<R: Real> Sums<R> {
 
 #[inline(always)]
 fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
-    let star_gm = R::load(block.slot(Global::StarGm as usize));
     for (p, body) in bodies.iter_mut().enumerate() {
         let get = |field: usize| R::load(block.slot(block.planet_slot(p, field)));
-        body.mu = star_gm;
+        body.mu = get(MU);
         body.gm = get(GM);
         for k in 0..3 {
             body.pos[k] = get(POS + k);
@@ -192,8 +213,9 @@ fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
     }
 }
 
+/// Writes positions, velocities and the tangent vector back.
 #[inline(always)]
-fn write<R: Real>(block: &mut Block, bodies: &[Body<R>], pairs: &[R]) {
+fn write<R: Real>(block: &mut Block, bodies: &[Body<R>]) {
     let width = R::LANES;
     debug_assert!(width == 1 || width == WIDTH);
     for (p, body) in bodies.iter().enumerate() {
@@ -205,6 +227,13 @@ fn write<R: Real>(block: &mut Block, bodies: &[Body<R>], pairs: &[R]) {
                 number.store(block.slot_mut(slot));
             }
         }
+    }
+}
+
+/// Writes the distances seen back.
+#[inline(always)]
+fn write_watch<R: Real>(block: &mut Block, bodies: &[Body<R>], pairs: &[R]) {
+    for (p, body) in bodies.iter().enumerate() {
         for (field, number) in [(NEAR2, body.near2), (FAR2, body.far2)] {
             let slot = block.planet_slot(p, field);
             number.store(block.slot_mut(slot));
@@ -227,20 +256,36 @@ impl Job for Sequence<'_> {
     type Output = ();
     #[inline(always)]
     fn run<R: Real>(self) {
-        let n = self.block.planets();
-        let mut bodies = vec![Body::<R>::still(); n];
-        let mut midway = vec![Midway::<R>::blank(); n];
-        let mut pairs = vec![R::splat(0.0); n * n.saturating_sub(1) / 2];
-        read(self.block, &mut bodies, &mut pairs);
-        let star_gm = R::load(self.block.slot(Global::StarGm as usize));
-        let h = R::load(self.block.slot(Global::Step as usize));
-        let active = R::splat(0.5).lt(R::load(self.block.slot(Global::Active as usize)));
-        for (a, b) in self.stages {
-            drift::<R, false, false>(&mut bodies, &mut midway, h * R::splat(*a), active);
-            kick::<R, false, false>(&mut bodies, &mut pairs, star_gm, h * R::splat(*b), h);
+        match self.block.coordinates() {
+            Coordinates::Heliocentric => sequence::<R, false>(self),
+            Coordinates::Jacobi => sequence::<R, true>(self),
         }
-        write(self.block, &bodies, &pairs);
     }
+}
+
+#[inline(always)]
+fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
+    let Sequence { block, stages } = call;
+    let n = block.planets();
+    let mut bodies = vec![Body::<R>::still(); n];
+    let mut midway = vec![Midway::<R>::blank(); n];
+    let mut pairs = vec![R::splat(0.0); n * n.saturating_sub(1) / 2];
+    let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
+    read(block, &mut bodies, &mut pairs);
+    let star_gm = R::load(block.slot(Global::StarGm as usize));
+    let h = R::load(block.slot(Global::Step as usize));
+    let active = R::splat(0.5).lt(R::load(block.slot(Global::Active as usize)));
+    for (a, b) in stages {
+        drift::<R, false, false>(&mut bodies, &mut midway, h * R::splat(*a), active);
+        let length = h * R::splat(*b);
+        if JACOBI {
+            jacobi::kick::<R, false>(&mut bodies, &mut relative, &mut pairs, star_gm, length, h);
+        } else {
+            kick::<R, false, false>(&mut bodies, &mut pairs, star_gm, length, h);
+        }
+    }
+    // What was met on the way to other times is not part of the motion: the watch is not written.
+    write(block, &bodies);
 }
 
 /// Runs a [`Sequence`] at the width of its block.

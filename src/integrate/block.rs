@@ -1,9 +1,33 @@
 //! The numbers of up to eight configurations side by side, as the kernels read and write them.
 //!
-//! State: democratic heliocentric canonical coordinates (Duncan, Levison & Lee 1998): heliocentric positions and
-//! barycentric velocities.
+//! States come and go in democratic heliocentric canonical coordinates (Duncan, Levison & Lee 1998): heliocentric
+//! positions and barycentric velocities; inside, a block holds them or Jacobi coordinates.
 
+use super::jacobi;
 use crate::lanes::WIDTH;
+
+/// The coordinates in which the Hamiltonian is split.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Coordinates {
+    /// Democratic heliocentric: cheapest, for planets much lighter than their star.
+    Heliocentric,
+    /// Jacobi: for hierarchies and any mass ratio.
+    Jacobi,
+}
+
+impl Coordinates {
+    /// The word that files and output use.
+    pub fn word(self) -> &'static str {
+        match self {
+            Coordinates::Heliocentric => "heliocentric",
+            Coordinates::Jacobi => "jacobi",
+        }
+    }
+
+    pub fn from_word(word: &str) -> Option<Coordinates> {
+        [Coordinates::Heliocentric, Coordinates::Jacobi].into_iter().find(|c| c.word() == word)
+    }
+}
 
 /// Per-lane numbers that are not of a planet.
 #[derive(Clone, Copy, Debug)]
@@ -27,7 +51,7 @@ pub(super) enum Global {
 }
 
 pub(super) const GLOBALS: usize = 11;
-pub(super) const PER_PLANET: usize = 15;
+pub(super) const PER_PLANET: usize = 16;
 
 /// Where in a planet's numbers each begins.
 pub(super) const GM: usize = 0;
@@ -37,6 +61,8 @@ pub(super) const D_POS: usize = 7;
 pub(super) const D_VEL: usize = 10;
 pub(super) const NEAR2: usize = 13;
 pub(super) const FAR2: usize = 14;
+/// Mass parameter of its Kepler motion.
+pub(super) const MU: usize = 15;
 
 /// One lane's configuration: heliocentric positions (au), barycentric velocities (au/day), masses as GM.
 #[derive(Clone, Debug, PartialEq)]
@@ -70,15 +96,24 @@ pub struct Growth {
 pub struct Block {
     width: usize,
     planets: usize,
+    coordinates: Coordinates,
+    /// Per lane: which planet stands at each place. The order of the state, but for Jacobi chains.
+    orders: Vec<Vec<usize>>,
     data: Vec<f64>,
 }
 
 impl Block {
-    /// `width` is 1 or 8; every lane starts unused.
+    /// A block in heliocentric coordinates; `width` is 1 or 8; every lane starts unused.
     pub fn new(width: usize, planets: usize) -> Block {
+        Block::in_coordinates(Coordinates::Heliocentric, width, planets)
+    }
+
+    /// A block in the coordinates given.
+    pub fn in_coordinates(coordinates: Coordinates, width: usize, planets: usize) -> Block {
         assert!(width == 1 || width == WIDTH, "a block has 1 or {WIDTH} lanes, not {width}");
         let slots = GLOBALS + planets * PER_PLANET + planets * planets.saturating_sub(1) / 2;
-        let mut block = Block { width, planets, data: vec![0.0; slots * width] };
+        let orders = vec![(0..planets).collect(); width];
+        let mut block = Block { width, planets, coordinates, orders, data: vec![0.0; slots * width] };
         let idle = State {
             star_gm: 1.0,
             gm: vec![0.0; planets],
@@ -97,6 +132,10 @@ impl Block {
         self.width
     }
 
+    pub fn coordinates(&self) -> Coordinates {
+        self.coordinates
+    }
+
     pub fn planets(&self) -> usize {
         self.planets
     }
@@ -110,15 +149,29 @@ impl Block {
         self.set(Global::Step, lane, step);
         self.set(Global::Active, lane, 1.0);
         self.set(Global::Metric, lane, metric_day * metric_day);
+        let heliocentric = self.coordinates == Coordinates::Heliocentric;
+        let order = if heliocentric { (0..self.planets).collect() } else { jacobi::chain_order(state) };
+        let gm = jacobi::pick(&order, &state.gm);
+        let pick = |from: &[[f64; 3]]| jacobi::pick(&order, from);
+        let (mut pos, mut vel) = (pick(&state.pos), pick(&state.vel));
+        let (mut d_pos, mut d_vel) = (pick(&tangent.pos), pick(&tangent.vel));
+        if !heliocentric {
+            (pos, vel) = jacobi::to_jacobi(state.star_gm, &gm, &pos, &vel);
+            (d_pos, d_vel) = jacobi::to_jacobi(state.star_gm, &gm, &d_pos, &d_vel);
+        }
+        let mut inside = state.star_gm;
         for k in 0..self.planets {
-            self.set_planet(k, GM, lane, state.gm[k]);
+            inside += gm[k];
+            self.set_planet(k, GM, lane, gm[k]);
+            self.set_planet(k, MU, lane, if heliocentric { state.star_gm } else { inside });
             for axis in 0..3 {
-                self.set_planet(k, POS + axis, lane, state.pos[k][axis]);
-                self.set_planet(k, VEL + axis, lane, state.vel[k][axis]);
-                self.set_planet(k, D_POS + axis, lane, tangent.pos[k][axis]);
-                self.set_planet(k, D_VEL + axis, lane, tangent.vel[k][axis]);
+                self.set_planet(k, POS + axis, lane, pos[k][axis]);
+                self.set_planet(k, VEL + axis, lane, vel[k][axis]);
+                self.set_planet(k, D_POS + axis, lane, d_pos[k][axis]);
+                self.set_planet(k, D_VEL + axis, lane, d_vel[k][axis]);
             }
         }
+        self.orders[lane] = order;
         self.forget_watch(lane);
     }
 
@@ -142,20 +195,40 @@ impl Block {
 
     /// The state in a lane.
     pub fn state(&self, lane: usize) -> State {
-        State {
-            star_gm: self.get(Global::StarGm, lane),
-            gm: (0..self.planets).map(|k| self.planet(k, GM, lane)).collect(),
-            pos: (0..self.planets).map(|k| self.triple(k, POS, lane)).collect(),
-            vel: (0..self.planets).map(|k| self.triple(k, VEL, lane)).collect(),
-        }
+        let (pos, vel) = self.unpacked(POS, VEL, lane);
+        let gm: Vec<f64> = (0..self.planets).map(|k| self.planet(k, GM, lane)).collect();
+        State { star_gm: self.get(Global::StarGm, lane), gm: self.placed(lane, &gm), pos, vel }
     }
 
-    /// The tangent vector in a lane; multiply by exp([`Block::log_taken`]) for its true length.
+    /// The tangent vector in a lane, as a displacement of [`Block::state`]; multiply by exp([`Block::log_taken`]) for
+    /// its true length.
     pub fn tangent(&self, lane: usize) -> Tangent {
-        Tangent {
-            pos: (0..self.planets).map(|k| self.triple(k, D_POS, lane)).collect(),
-            vel: (0..self.planets).map(|k| self.triple(k, D_VEL, lane)).collect(),
+        let (pos, vel) = self.unpacked(D_POS, D_VEL, lane);
+        Tangent { pos, vel }
+    }
+
+    /// Positions and velocities (or displacements) of a lane in the program's coordinates and the state's order.
+    fn unpacked(&self, pos: usize, vel: usize, lane: usize) -> (Vec<[f64; 3]>, Vec<[f64; 3]>) {
+        let all = |field: usize| (0..self.planets).map(|k| self.triple(k, field, lane)).collect::<Vec<_>>();
+        let (mut pos, mut vel) = (all(pos), all(vel));
+        if self.coordinates == Coordinates::Jacobi {
+            let gm: Vec<f64> = (0..self.planets).map(|k| self.planet(k, GM, lane)).collect();
+            (pos, vel) = jacobi::from_jacobi(self.get(Global::StarGm, lane), &gm, &pos, &vel);
         }
+        (self.placed(lane, &pos), self.placed(lane, &vel))
+    }
+
+    /// From the places of the lane to the order of the state.
+    fn placed<T: Copy + Default>(&self, lane: usize, from: &[T]) -> Vec<T> {
+        let mut out = vec![T::default(); from.len()];
+        for (place, planet) in self.orders[lane].iter().enumerate() {
+            out[*planet] = from[place];
+        }
+        out
+    }
+
+    fn place_of(&self, planet: usize, lane: usize) -> usize {
+        self.orders[lane].iter().position(|p| *p == planet).unwrap_or(planet)
     }
 
     /// Logarithm of the factor that rescaling has taken out of the tangent vector.
@@ -174,24 +247,28 @@ impl Block {
         }
     }
 
-    /// Smallest distance of the pair `(i, j)`, i < j, since the watch was last forgotten, au.
+    /// Smallest distance of the pair of planets `(i, j)` since the watch was last forgotten, au.
     pub fn nearest_pair_au(&self, i: usize, j: usize, lane: usize) -> f64 {
-        debug_assert!(i < j);
+        let (i, j) = (self.place_of(i, lane), self.place_of(j, lane));
+        let (i, j) = (i.min(j), i.max(j));
         let index = i * self.planets - i * (i + 1) / 2 + (j - i - 1);
         self.data[self.pair_slot(index) * self.width + lane].sqrt()
     }
 
-    /// Smallest and largest distance of a planet from the star seen at the starts of drifts, au.
+    /// Smallest and largest distance of a planet from the star seen at the starts of
+    /// drifts (heliocentric) or at kicks (Jacobi), au.
     pub fn star_distances_au(&self, planet: usize, lane: usize) -> (f64, f64) {
-        (self.planet(planet, NEAR2, lane).sqrt(), self.planet(planet, FAR2, lane).sqrt())
+        let place = self.place_of(planet, lane);
+        (self.planet(place, NEAR2, lane).sqrt(), self.planet(place, FAR2, lane).sqrt())
     }
 
     /// Copies one lane into lane `to` of another block.
     pub fn copy_lane(&self, lane: usize, other: &mut Block, to: usize) {
-        debug_assert_eq!(self.planets, other.planets);
+        debug_assert_eq!((self.planets, self.coordinates), (other.planets, other.coordinates));
         for slot in 0..self.data.len() / self.width {
             other.data[slot * other.width + to] = self.data[slot * self.width + lane];
         }
+        other.orders[to].clone_from(&self.orders[lane]);
     }
 
     /// Divides a tangent vector that has grown beyond 2^±200 by a power of two; exact.

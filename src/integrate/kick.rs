@@ -47,7 +47,11 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
             }
             let d2 = d[2].mul_add(d[2], d[1].mul_add(d[1], d[0] * d[0]));
             if WATCH {
-                let nearest = nearest2(&bodies[i], &bodies[j], &d, d2, window);
+                let mut w = [zero; 3];
+                for k in 0..3 {
+                    w[k] = bodies[j].vel[k] - bodies[i].vel[k];
+                }
+                let nearest = nearest2(&d, &w, d2, window);
                 pairs[pair] = nearest.min(pairs[pair]);
                 pair += 1;
             }
@@ -77,13 +81,9 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
     }
 }
 
-/// Smallest distance² within `window` of now if the relative motion were straight.
+/// Smallest distance² within `window` of now if the relative motion `w` were straight.
 #[inline(always)]
-fn nearest2<R: Real>(a: &Body<R>, b: &Body<R>, d: &[R; 3], d2: R, window: R) -> R {
-    let mut w = [R::splat(0.0); 3];
-    for k in 0..3 {
-        w[k] = b.vel[k] - a.vel[k];
-    }
+pub(super) fn nearest2<R: Real>(d: &[R; 3], w: &[R; 3], d2: R, window: R) -> R {
     let w2 = w[2].mul_add(w[2], w[1].mul_add(w[1], w[0] * w[0]));
     let dw = d[2].mul_add(w[2], d[1].mul_add(w[1], d[0] * w[0]));
     // Two planets at rest relative to each other: the tiny term keeps 0/0 away.

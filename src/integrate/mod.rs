@@ -7,11 +7,12 @@ mod advance;
 mod block;
 mod conserved;
 mod corrector;
+mod jacobi;
 mod kick;
 mod splitting;
 
 pub use advance::{Advance, SAMPLE_EVERY, advance};
-pub use block::{Block, Growth, State, Tangent};
+pub use block::{Block, Coordinates, Growth, State, Tangent};
 pub use conserved::{angular_momentum, energy};
 pub use corrector::{from_map, to_map};
 pub use splitting::Scheme;
