@@ -121,6 +121,15 @@ impl Column {
         }
     }
 
+    /// What is left of the label where it is too long.
+    pub(crate) fn short(self, system: &System) -> Label {
+        match self {
+            Column::SmallestApproachHill => Label::plain("approach [").italic("R").down("H").then("]"),
+            Column::EnergyError => Label::plain("energy error"),
+            other => other.label(system),
+        }
+    }
+
     /// The scale for these values: dark is quiet and bright is wild for every column, so times run downwards.
     pub(crate) fn scale(self, values: &[f64], span_yr: f64) -> Scale {
         match self {

@@ -221,7 +221,7 @@ impl Layout {
             let x = frame.left - TICK - 2.0 - text::length(&label, sizes.tick);
             self.put(label, sizes.tick, x, y + 0.5 * CAPITAL * sizes.tick);
         }
-        let label = self.fitting(axis, frame.bottom - frame.top);
+        let label = self.fitting((&axis.label, &axis.short), frame.bottom - frame.top);
         self.put_upwards(
             label,
             sizes.label,
@@ -231,9 +231,9 @@ impl Layout {
     }
 
     /// The label, or what is left of it when it is longer than the axis.
-    fn fitting(&self, axis: &Axis, room: f64) -> Label {
-        let fits = text::length(&axis.label, self.sizes.label) <= room;
-        if fits { axis.label.clone() } else { axis.short.clone() }
+    fn fitting(&self, (label, short): (&Label, &Label), room: f64) -> Label {
+        let fits = text::length(label, self.sizes.label) <= room;
+        if fits { label.clone() } else { short.clone() }
     }
 
     fn x_side(&mut self, panel: &Panel, frame: &mut Frame, labelled: bool) {
@@ -246,7 +246,7 @@ impl Layout {
         for (at, label) in placed_ticks(&panel.x.scale(), &frame.x.major) {
             self.put_centred(label, sizes.tick, frame.left + at * (frame.right - frame.left), line);
         }
-        let label = self.fitting(&panel.x, self.page.width - 2.0 * MARGIN);
+        let label = self.fitting((&panel.x.label, &panel.x.short), self.page.width - 2.0 * MARGIN);
         let line = line + BELOW * sizes.tick + 3.0 + CAPITAL * sizes.label;
         self.put_centred(label, sizes.label, 0.5 * (frame.left + frame.right), line);
     }
@@ -292,7 +292,8 @@ impl Layout {
             self.put(label, sizes.tick, left + BAR + TICK + 2.0, y);
         }
         let x = left + BAR + TICK + 2.0 + widest + 4.0 + CAPITAL * sizes.label;
-        self.put_upwards(bar.label.clone(), sizes.label, x, 0.5 * (top + bottom));
+        let label = self.fitting((&bar.label, &bar.short), bottom - top);
+        self.put_upwards(label, sizes.label, x, 0.5 * (top + bottom));
         let y = Ticks { major, minor };
         let frame = Frame { left, right: left + BAR, top: body.0, bottom: body.1, y, ..Frame::default() };
         self.page.bar = Some((frame, bar.clone()));
