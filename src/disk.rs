@@ -25,20 +25,36 @@ pub enum DiskError {
 ///
 /// The bytes go to a hidden neighbour, reach the disk, and take the name in one step.
 pub fn write_beside_then_rename(path: &Path, bytes: &[u8]) -> Result<(), DiskError> {
-    let failed = |source| DiskError::Write { path: path.to_path_buf(), source };
+    write_parts_then_rename(path, [Ok::<_, DiskError>(bytes)])
+}
+
+/// [`write_beside_then_rename`] for a content that comes in parts, too large to be held whole.
+///
+/// Errors: those of the disk, and the first of the parts, which leaves the old content.
+pub fn write_parts_then_rename<B: AsRef<[u8]>, E: From<DiskError>>(
+    path: &Path,
+    parts: impl IntoIterator<Item = Result<B, E>>,
+) -> Result<(), E> {
     let beside = beside(path);
-    let written = (|| {
-        let mut file = File::create(&beside)?;
-        file.write_all(bytes)?;
-        file.sync_all()?;
-        fs::rename(&beside, path)?;
-        sync_folder(path)
-    })();
-    written.map_err(|source| {
+    let written = write_parts(path, &beside, parts);
+    if written.is_err() {
         // The cause is reported; a leftover that cannot be removed adds nothing to it.
         let _ = fs::remove_file(&beside);
-        failed(source)
-    })
+    }
+    written
+}
+
+fn write_parts<B: AsRef<[u8]>, E: From<DiskError>>(
+    path: &Path,
+    beside: &Path,
+    parts: impl IntoIterator<Item = Result<B, E>>,
+) -> Result<(), E> {
+    let failed = |source| E::from(DiskError::Write { path: path.to_path_buf(), source });
+    let mut file = File::create(beside).map_err(failed)?;
+    for part in parts {
+        file.write_all(part?.as_ref()).map_err(failed)?;
+    }
+    file.sync_all().and_then(|()| fs::rename(beside, path)).and_then(|()| sync_folder(path)).map_err(failed)
 }
 
 /// The hidden neighbour of a file, of this process alone.
@@ -128,6 +144,18 @@ mod tests {
         let error = write_beside_then_rename(&path, b"new").unwrap_err();
         assert!(error.to_string().contains("table"), "{error}");
         assert_eq!(fs::read(path.join("inside")).unwrap(), b"old");
+        assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1);
+    }
+
+    #[test]
+    fn a_part_that_fails_keeps_the_old_content() {
+        let folder = tempfile::tempdir().unwrap();
+        let path = folder.path().join("table");
+        write_parts_then_rename(&path, [Ok::<_, DiskError>("ab"), Ok("cd")]).unwrap();
+        assert_eq!(fs::read(&path).unwrap(), b"abcd");
+        let held = DiskError::Held { path: path.clone(), holder: "a test".to_string() };
+        write_parts_then_rename(&path, [Ok("new"), Err(held)]).unwrap_err();
+        assert_eq!(fs::read(&path).unwrap(), b"abcd");
         assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1);
     }
 

@@ -84,6 +84,24 @@ impl Dimension {
         }
     }
 
+    /// The same without its article, as "time".
+    pub fn noun(self) -> &'static str {
+        self.words().split_once(' ').map_or("", |(_, noun)| noun)
+    }
+
+    /// The unit that an example is given in; empty for plain numbers.
+    pub fn usual_unit(self) -> &'static str {
+        match self {
+            Dimension::Time => "d",
+            Dimension::Length => "au",
+            Dimension::Mass => "Mearth",
+            Dimension::Angle => "deg",
+            Dimension::Speed => "m/s",
+            Dimension::Date => "JD",
+            Dimension::Number => "",
+        }
+    }
+
     /// The units that a number of this kind may be written in, as "s, min, h"; empty for plain numbers.
     pub fn unit_words(self) -> String {
         let words: Vec<&str> = Unit::of(self).map(|unit| unit.word).collect();
@@ -193,5 +211,9 @@ mod tests {
         assert_eq!(Unit::from_word("myr"), None);
         assert_eq!(Dimension::Angle.unit_words(), "deg, rad, arcsec");
         assert_eq!(Dimension::Number.unit_words(), "");
+        for unit in Unit::ALL {
+            let usual = Unit::from_word(unit.dimension.usual_unit()).expect("listed");
+            assert_eq!(usual.dimension, unit.dimension);
+        }
     }
 }

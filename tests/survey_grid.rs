@@ -192,15 +192,17 @@ fn cells_that_cannot_be_become_records_at_time_zero() {
 #[test]
 fn planets_at_one_place_are_lost_by_collision() {
     let mut system = system(Frame::Astrocentric);
-    // c on b's orbit but for the phase, which the axis brings to b's.
-    system.planets[0] =
-        body("b", &[(Key::Mass, GM_EARTH), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 1.0)]);
-    let phase = axis("c.mean_anomaly", C, Key::MeanAnomaly, Quantity::Value, [1.0, 3.0], 2);
-    let grid = Grid::new(system, study(vec![phase])).unwrap();
-    let Made::Settled(record) = grid.make(0) else { panic!("both planets are at one place") };
-    let loss = record.loss.unwrap();
-    assert_eq!((loss.how, loss.planet, loss.other), (LostHow::Collision, 1, Some(0)));
-    assert!(matches!(grid.make(1), Made::ToFollow(_)));
+    // c on b's orbit but for the phase, which the axis brings to b's; the lighter of the two is lost.
+    for (gm_b, lost, other) in [(GM_EARTH, 0, 1), (3000.0 * GM_EARTH, 1, 0), (2000.0 * GM_EARTH, 1, 0)] {
+        system.planets[0] =
+            body("b", &[(Key::Mass, gm_b), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 1.0)]);
+        let phase = axis("c.mean_anomaly", C, Key::MeanAnomaly, Quantity::Value, [1.0, 3.0], 2);
+        let grid = Grid::new(system.clone(), study(vec![phase])).unwrap();
+        let Made::Settled(record) = grid.make(0) else { panic!("both planets are at one place") };
+        let loss = record.loss.unwrap();
+        assert_eq!((loss.how, loss.planet, loss.other), (LostHow::Collision, lost, Some(other)));
+        assert!(matches!(grid.make(1), Made::ToFollow(_)));
+    }
 }
 
 #[test]

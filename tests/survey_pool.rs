@@ -72,6 +72,29 @@ fn a_stop_keeps_what_was_finished_and_the_rest_follows_later() {
 }
 
 #[test]
+fn a_stop_does_not_wait_for_a_cell_that_takes_long() {
+    let folder = tempfile::tempdir().unwrap();
+    let (mut open, found) = Run::open(folder.path(), &identity(50)).unwrap();
+    let stop = Arc::new(AtomicBool::new(false));
+    let (seen, started) = (Arc::clone(&stop), Instant::now());
+    let mut watch =
+        |_: Option<_>| seen.store(started.elapsed() > Duration::from_millis(150), Ordering::SeqCst);
+    let desk = Desk { journal: &mut open.journal, stop, watch: &mut watch };
+    let endless = engine(NONE, |cell| {
+        if cell == 20 {
+            loop {
+                std::thread::park();
+            }
+        }
+    });
+    let ended = fill(Arc::new(Fake { cells: 50 }), endless, &plan(), found.recovered.done, 2, desk).unwrap();
+    assert_eq!(ended, Ended::Interrupted);
+    drop(open);
+    run(folder.path(), 50, 2, engine(NONE, |_| {})).unwrap();
+    assert_eq!(table(folder.path(), 50), right_table(50));
+}
+
+#[test]
 fn a_panic_costs_its_own_cell_only_and_is_named() {
     let folder = tempfile::tempdir().unwrap();
     let fault = |cell: u64| assert!(cell != 17 && cell != 18 && cell != 201, "invented fault in {cell}");

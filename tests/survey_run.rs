@@ -125,6 +125,15 @@ fn a_growing_run_is_read_without_taking_it() {
 }
 
 #[test]
+fn a_copy_that_was_edited_is_not_read_as_the_input() {
+    let folder = tempfile::tempdir().unwrap();
+    Run::open(folder.path(), &identity(20)).unwrap();
+    fs::write(folder.path().join("study.toml"), STUDY.replace("10 orbits", "20 orbits")).unwrap();
+    let error = read_run(folder.path()).unwrap_err();
+    assert!(error.is_input() && error.to_string().contains("study.toml was edited"), "{error}");
+}
+
+#[test]
 fn a_folder_that_is_no_run_is_told() {
     let folder = tempfile::tempdir().unwrap();
     let error = read_run(folder.path()).unwrap_err();

@@ -4,12 +4,14 @@ use std::path::Path;
 
 use crate::assess::Plan;
 use crate::cli::CliError;
-use crate::disk;
+use crate::disk::{self, DiskError};
 use crate::figure::render::{self, Width};
 use crate::figure::{self, MapInput};
 use crate::report;
 use crate::survey::Record;
-use crate::system::{Study, System};
+use crate::system::{Measure, Study, System};
+
+const CELLS_IN_A_PART: usize = 10_000;
 
 /// A finished study: all that tables and figures are made from.
 pub struct Finished<'a> {
@@ -23,18 +25,38 @@ pub struct Finished<'a> {
 impl Finished<'_> {
     /// Makes the file `name` of the run in `folder`: beside, then renamed.
     pub fn write(&self, folder: &Path, name: &str) -> Result<(), CliError> {
+        let path = folder.join(name);
         let bytes = match name {
             "map.png" => self.map()?,
             "summary.txt" => self.summary().into_bytes(),
-            _ => self.cells()?.into_bytes(),
+            _ => return self.write_cells(&path),
         };
-        disk::write_beside_then_rename(&folder.join(name), &bytes).map_err(CliError::working)
+        disk::write_beside_then_rename(&path, &bytes).map_err(CliError::working)
     }
 
-    fn cells(&self) -> Result<String, CliError> {
+    /// Part by part: the table of a million cells as a whole would take more memory than the records themselves.
+    fn write_cells(&self, path: &Path) -> Result<(), CliError> {
+        // Every part must have the columns of the whole, also one in which no cell has a Lyapunov exponent.
+        let mut study = self.study.clone();
+        let some = self.records.iter().any(|record| record.assessment.lyapunov.is_some());
+        if some && !study.measure.contains(&Measure::Lyapunov) {
+            study.measure.push(Measure::Lyapunov);
+        }
         let planets: Vec<String> = self.system.planets.iter().map(|planet| planet.name.clone()).collect();
-        let table = report::cells_table(self.study, &planets, self.plan, self.records);
-        table.to_ecsv().map_err(CliError::working)
+        let text = |records: &[Record]| {
+            let table = report::cells_table(&study, &planets, self.plan, records).to_ecsv();
+            table.map_err(CliError::working)
+        };
+        let head = text(&[])?;
+        let rows = |records: &[Record]| {
+            let text = text(records)?;
+            let rows = text.strip_prefix(&head).map(str::to_string);
+            rows.ok_or_else(|| {
+                CliError::Working("parts of the table of cells differ in their head".to_string())
+            })
+        };
+        let parts = std::iter::once(Ok(head.clone())).chain(self.records.chunks(CELLS_IN_A_PART).map(rows));
+        disk::write_parts_then_rename(path, parts)
     }
 
     fn map(&self) -> Result<Vec<u8>, CliError> {
@@ -61,5 +83,11 @@ impl Finished<'_> {
         let nominal = figure::nominal_cell(self.study, self.system);
         report::summary_json(self.study, self.system, self.plan, self.records, nominal)
             .map_err(CliError::working)
+    }
+}
+
+impl From<DiskError> for CliError {
+    fn from(error: DiskError) -> CliError {
+        CliError::working(error)
     }
 }

@@ -95,12 +95,12 @@ impl Progress {
             Some(rate) if left > 0 => ending_words(Duration::try_from_secs_f64(left as f64 / rate).ok()),
             _ => String::new(),
         };
-        pieces(&[rate_words(rate), shares(&self.tally), ending])
+        pieces(&[rate_words(rate), ending, shares(&self.tally)])
     }
 }
 
 fn bar(total: u64, before: u64) -> ProgressBar {
-    let style = ProgressStyle::with_template("{bar:24} {percent:>3}% {human_pos}/{human_len}  {wide_msg}")
+    let style = ProgressStyle::with_template("{bar:16} {percent:>3}% {human_pos}/{human_len}  {wide_msg}")
         .unwrap_or_else(|_| ProgressStyle::default_bar());
     ProgressBar::new(total).with_style(style).with_position(before)
 }
@@ -168,8 +168,8 @@ mod tests {
         (0..20).for_each(|_| progress.note(Some(Verdict::Regular)));
         assert_eq!(progress.rate(Duration::from_secs(2)), Some(10.0));
         let state = progress.state(Duration::from_secs(2));
-        assert!(state.starts_with("10 cells/s; regular 67 %, lost 33 %; ends about "), "{state}");
-        assert!(state.ends_with("(in 8 seconds)"), "{state}");
+        assert!(state.starts_with("10 cells/s; ends about "), "{state}");
+        assert!(state.ends_with("UTC (in 8 seconds); regular 67 %, lost 33 %"), "{state}");
     }
 
     #[test]

@@ -1,6 +1,6 @@
 //! Statements → masses and orbits → a state at the epoch.
 
-use super::convert::star_centred_in_order;
+use super::convert::{mass_parameters, settled_order, star_centred_in_order};
 use super::masses::{self, Solved};
 use super::outline::Outline;
 use super::{Configuration, CoordsError, Elements, Planet, elements_in};
@@ -109,6 +109,22 @@ impl Configuration {
             })
             .collect();
         Configuration { star_gm, star_radius_au, frame: Frame::Astrocentric, planets }
+    }
+
+    /// Periods of the elements in the configuration's own frame, day; none for unbound planets.
+    pub fn periods_day(&self) -> Vec<Option<f64>> {
+        self.periods_of(self.frame, &self.planets.iter().map(|planet| planet.elements).collect::<Vec<_>>())
+    }
+
+    /// Periods of elements of these planets in `frame`, day; none for unbound planets.
+    pub fn periods_of(&self, frame: Frame, elements: &[Elements]) -> Vec<Option<f64>> {
+        let gm: Vec<f64> = self.planets.iter().map(|planet| planet.gm).collect();
+        let order = settled_order(frame, self.star_gm, &gm, elements);
+        mass_parameters(frame, &order, self.star_gm, &gm)
+            .into_iter()
+            .zip(elements)
+            .map(|(parameter, elements)| elements.period_day(parameter))
+            .collect()
     }
 
     /// Osculating elements of every planet in a frame, from the states.

@@ -43,17 +43,7 @@ pub fn elements_in(
 
 /// Star-centred positions and velocities from elements in `frame`; the inverse of [`elements_in`].
 pub fn star_centred(frame: Frame, star_gm: f64, gm: &[f64], elements: &[Elements]) -> States {
-    let mut order: Vec<usize> = (0..gm.len()).collect();
-    if frame == Frame::Jacobi {
-        order = by_period(elements, &mass_parameters(Frame::Astrocentric, &order, star_gm, gm));
-        for _ in 0..=gm.len() {
-            let next = by_period(elements, &mass_parameters(frame, &order, star_gm, gm));
-            if next == order {
-                break;
-            }
-            order = next;
-        }
-    }
+    let order = settled_order(frame, star_gm, gm, elements);
     star_centred_in_order(frame, &order, star_gm, gm, elements)
 }
 
@@ -72,6 +62,23 @@ pub(super) fn mass_parameters(frame: Frame, order: &[usize], star_gm: f64, gm: &
             parameters
         }
     }
+}
+
+/// The order in which Jacobi elements take the planets; for other frames the given one.
+pub(super) fn settled_order(frame: Frame, star_gm: f64, gm: &[f64], elements: &[Elements]) -> Vec<usize> {
+    let mut order: Vec<usize> = (0..gm.len()).collect();
+    if frame != Frame::Jacobi {
+        return order;
+    }
+    order = by_period(elements, &mass_parameters(Frame::Astrocentric, &order, star_gm, gm));
+    for _ in 0..=gm.len() {
+        let next = by_period(elements, &mass_parameters(frame, &order, star_gm, gm));
+        if next == order {
+            break;
+        }
+        order = next;
+    }
+    order
 }
 
 fn by_period(elements: &[Elements], mass_parameters: &[f64]) -> Vec<usize> {

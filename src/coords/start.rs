@@ -15,8 +15,9 @@ pub fn check_start(configuration: &Configuration) -> Result<(), CoordsError> {
     for (planet, elements) in planets.iter().zip(configuration.elements_in(Frame::Astrocentric)) {
         let pericentre_au = elements.pericentre_au();
         let distance_au = Vector3::from(planet.position_au).norm();
-        // Not "below", so that what is not a number is found too.
-        if !(pericentre_au.min(distance_au) > configuration.star_radius_au) {
+        // Asked this way round, so that what is not a number counts as inside.
+        let outside = pericentre_au.min(distance_au) > configuration.star_radius_au;
+        if !outside {
             return Err(CoordsError::InsideStar {
                 planet: planet.name.clone(),
                 pericentre_au,

@@ -166,7 +166,8 @@ fn check_ratio(
     let refuse = |part, found: String, allowed: &str, advice: &str| {
         Err((part, Complaint::new(Fault::BadPath, found).allowed(allowed).advice(advice)))
     };
-    let second = Part::Path(offset..path.len());
+    let blanks = path[offset..].len() - path[offset..].trim_start().len();
+    let second = Part::Path(offset + blanks..path.len());
     let (dimension, under) = (target.key.dimension(), other.key.dimension());
     if dimension != under || dimension == Dimension::Date {
         let found = format!("{} over {}", dimension.words(), under.words());
@@ -332,57 +333,5 @@ fn vary_complaint(error: &VaryError, wish: &AxisWish) -> Complaint {
         VaryError::NotStated { .. } => Complaint::new(Fault::BadAxis, error.to_string())
             .allowed("a stated number")
             .advice("state it in the system file"),
-    }
-}
-
-/// Whether two axes hinder each other: the index of the axis to point at, and why.
-pub(crate) fn check_together(axes: &[Axis], system: &System) -> Result<(), (usize, Complaint)> {
-    let [first, second] = axes else { return Ok(()) };
-    if first.target.body.overlaps(&second.target.body) && same_question(first.target.key, second.target.key) {
-        let found = format!("\"{}\" and \"{}\"", first.path, second.path);
-        let complaint = Complaint::new(Fault::Conflict, found).allowed("axes that move different things");
-        return Err((1, complaint.advice("the second axis would undo the first; vary another key")));
-    }
-    if let Quantity::RatioTo(other) = &first.quantity
-        && other.body.overlaps(&second.target.body)
-        && other.key.group() == second.target.key.group()
-    {
-        let complaint = Complaint::new(
-            Fault::Conflict,
-            format!("the second axis moves what \"{}\" divides by", first.path),
-        )
-        .allowed("axes that are applied in the order of the file");
-        return Err((0, complaint.advice("put this [[axis]] after the other one")));
-    }
-    for (x, y) in
-        [(first.from, second.from), (first.from, second.to), (first.to, second.from), (first.to, second.to)]
-    {
-        let mut corner = system.clone();
-        let moved = first.apply(x, &mut corner, system).and_then(|()| second.apply(y, &mut corner, system));
-        let found = match moved {
-            Err(error) => error.to_string(),
-            Ok(()) => match corner.planets.iter().find_map(|planet| planet.stated.check_together().err()) {
-                Some(unsound) => unsound.to_string(),
-                None => continue,
-            },
-        };
-        let place = format!("{} = {x} {}, {} = {y} {}", first.path, first.unit, second.path, second.unit);
-        let complaint = Complaint::new(Fault::OutOfRange, format!("at the corner {place}: {found}"));
-        return Err((
-            1,
-            complaint.allowed("bound orbits and finite masses on the whole map").advice("narrow an axis"),
-        ));
-    }
-    Ok(())
-}
-
-/// Whether one of the keys undoes the other.
-fn same_question(first: Key, second: Key) -> bool {
-    use crate::system::{Group, Pair};
-    match (Pair::of(first), Pair::of(second)) {
-        (Some(one), Some(other)) => one != other || first == second,
-        (Some(_), None) => matches!(second.group(), Group::Shape | Group::Pericentre),
-        (None, Some(_)) => matches!(first.group(), Group::Shape | Group::Pericentre),
-        (None, None) => first.group() == second.group(),
     }
 }

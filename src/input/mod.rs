@@ -8,6 +8,7 @@ mod axis;
 mod error;
 mod later;
 mod nearest;
+mod plane;
 mod quantity;
 mod raw;
 mod source;
@@ -184,7 +185,7 @@ pub fn axis_from_uncertainty(path: &str, system: &System, cells: usize) -> Resul
 ///
 /// The study file is checked already; this is for axes made by [`axis_from_uncertainty`].
 pub fn check_axes(axes: &[Axis], system: &System) -> Result<(), InputError> {
-    axis::check_together(axes, system).map_err(|(index, complaint)| {
+    plane::check_together(axes, system).map_err(|(index, complaint)| {
         let path = axes[index].path.as_str();
         in_words("--vary", path, (0..path.len(), complaint))
     })

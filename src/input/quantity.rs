@@ -87,7 +87,10 @@ impl<'t> Reader<'t> {
         self.at = range.end;
         match rest[..end].parse::<f64>() {
             Ok(value) if value.is_finite() => Ok(value),
-            _ => Err((range, Complaint::new(Fault::NotFinite, &rest[..end]).allowed("a finite number"))),
+            _ => {
+                let complaint = Complaint::new(Fault::NotFinite, &rest[..end]).allowed("a finite number");
+                Err((range, complaint.advice("check the power of ten")))
+            }
         }
     }
 
@@ -171,7 +174,7 @@ impl Written {
             if dimension == Dimension::Number {
                 return Ok(None);
             }
-            let unit = Unit::of(dimension).find(|unit| unit.inner == 1.0).map_or("Mearth", |unit| unit.word);
+            let unit = dimension.usual_unit();
             let complaint = Complaint::new(Fault::MissingUnit, format!("{} without unit", self.value));
             let advice = format!("write the unit inside the quotes, as \"{} {unit}\"", self.value);
             return Err((self.value_at.clone(), complaint.allowed(allowed()).advice(advice)));
@@ -184,8 +187,7 @@ impl Written {
             return Err((self.unit_at.clone(), complaint));
         };
         if unit.dimension != dimension {
-            let found = format!("{found}, {}", unit.dimension.words().replacen("a ", "a unit of ", 1));
-            let found = found.replacen("an ", "a unit of ", 1);
+            let found = format!("{found}, a unit of {}", unit.dimension.noun());
             let advice = match dimension {
                 Dimension::Number => "leave the unit out".to_string(),
                 Dimension::Date => "write the full Julian date, as \"2460310.5 JD\"".to_string(),

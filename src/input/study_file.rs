@@ -6,6 +6,8 @@ use std::path::{Path, PathBuf};
 use super::axis::{self, AxisWish, Part};
 use super::error::{Fault, InputError};
 use super::later;
+use super::nearest::nearest;
+use super::plane;
 use super::quantity::{self, Fail};
 use super::raw::{Entry, RawTable, RawValue};
 use super::source::{Complaint, Source};
@@ -85,7 +87,9 @@ pub(crate) fn read_span(text: &str) -> Result<Span, Fail> {
         Span::Orbits(written.value)
     } else {
         let measured = written.measured(Dimension::Time).map_err(|(range, complaint)| {
-            (range, complaint.allowed(format!("orbits, {}", Dimension::Time.unit_words())))
+            let complaint = complaint.allowed(format!("orbits, {}", Dimension::Time.unit_words()));
+            let is_orbits = nearest(&written.unit, ["orbits"]).is_some();
+            (range, if is_orbits { complaint.advice("did you mean \"orbits\"?") } else { complaint })
         })?;
         Span::Days(measured.value)
     };
@@ -160,7 +164,7 @@ fn axes(source: &Source, top: &RawTable, system: &System) -> Result<Vec<Axis>, I
     if axes.is_empty() {
         return Err(none(entry.value_at.clone()));
     }
-    axis::check_together(&axes, system).map_err(|(index, complaint)| {
+    plane::check_together(&axes, system).map_err(|(index, complaint)| {
         let at = tables[index].get("vary").map_or(entry.value_at.clone(), |vary| vary.value_at.clone());
         source.at(at, complaint)
     })?;

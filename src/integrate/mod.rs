@@ -1,1 +1,17 @@
-//! (being built)
+//! The symplectic integrator: H = A + εB with A the Kepler motions and B the planets' pull on one another.
+//!
+//! In democratic heliocentric coordinates B is a kick (pair forces) and a jump (Σp)²/2M that commute, since pair
+//! forces keep the total momentum; so B is exact and every A-B splitting applies.
+
+mod advance;
+mod block;
+mod conserved;
+mod corrector;
+mod kick;
+mod splitting;
+
+pub use advance::{Advance, SAMPLE_EVERY, advance};
+pub use block::{Block, Growth, State, Tangent};
+pub use conserved::{angular_momentum, energy};
+pub use corrector::{from_map, to_map};
+pub use splitting::Scheme;

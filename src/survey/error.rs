@@ -23,6 +23,11 @@ pub enum SurveyError {
         folder.display()
     )]
     Foreign { folder: PathBuf, file: &'static str },
+    #[error(
+        "{}: {file} was edited since the run was begun, so its cells are of other input; restore it, or survey the \
+         edited one into a folder of its own", folder.display()
+    )]
+    Edited { folder: PathBuf, file: &'static str },
     #[error("{} is no run: it has no {file}; name the folder that `abide survey` filled", folder.display())]
     NoRun { folder: PathBuf, file: &'static str },
     #[error("{} cannot be understood: {what}; if it was edited, restore it, else delete the folder and start afresh",

@@ -1,7 +1,7 @@
 //! The cells of a study as the pool draws them.
 //!
 //! A cell that cannot be followed never ends a night's run; it becomes a record at time 0:
-//! - two planets at one place or touching: `lost`, `collision` (of the later in the file);
+//! - two planets at one place or touching: `lost`, `collision` (of the less massive, else the later one);
 //! - a pericentre inside the star: `lost`, `star`;
 //! - an orbit that is not bound: `lost`, `escape`;
 //! - no configuration at all (a mass that would be infinite, a key outside its range): `undecided`, with no
@@ -53,20 +53,20 @@ impl Grid {
     fn configuration(&self, cell: u64) -> Result<Configuration, Settled> {
         let system = cell_system(&self.system, &self.study, cell)
             .map_err(|error| Settled { loss: None, text: chain(&error) })?;
-        let started = coords::configure(&system).and_then(|configuration| {
-            coords::check_start(&configuration)?;
-            Ok(configuration)
-        });
-        started.map_err(|error| self.impossible(&error))
+        let configuration = coords::configure(&system).map_err(|error| self.impossible(&error, None))?;
+        coords::check_start(&configuration).map_err(|error| self.impossible(&error, Some(&configuration)))?;
+        Ok(configuration)
     }
 
-    fn impossible(&self, error: &CoordsError) -> Settled {
+    fn impossible(&self, error: &CoordsError, configuration: Option<&Configuration>) -> Settled {
         let index = |name: &str| self.system.planet_index(name);
+        let gm = |planet: usize| configuration.map_or(0.0, |c| c.planets[planet].gm);
         let at_start = |planet, other, how| Loss { time_day: 0.0, planet, other, how };
         let loss = match error {
-            CoordsError::Coincident { first, second, .. } => index(first)
-                .zip(index(second))
-                .map(|(first, second)| at_start(second, Some(first), LostHow::Collision)),
+            CoordsError::Coincident { first, second, .. } => index(first).zip(index(second)).map(|pair| {
+                let (lost, other) = if gm(pair.0) < gm(pair.1) { pair } else { (pair.1, pair.0) };
+                at_start(lost, Some(other), LostHow::Collision)
+            }),
             CoordsError::InsideStar { planet, .. } => {
                 index(planet).map(|planet| at_start(planet, None, LostHow::Star))
             }

@@ -129,7 +129,11 @@ impl Layout {
         }
         let mut fields = Fields(body);
         let cell = fields.whole()??;
-        let values = self.axes.iter().map(|_| fields.number()?).collect::<Option<Vec<f64>>>()?;
+        // Exact capacities here and below: a million records are held at once when the tables are made.
+        let mut values = Vec::with_capacity(self.axes.len());
+        for _ in &self.axes {
+            values.push(fields.number()??);
+        }
         let assessment = self.decode_assessment(&mut fields)?;
         fields.0.is_empty().then_some(Record { cell, values, assessment })
     }
@@ -156,13 +160,15 @@ impl Layout {
     }
 
     fn decode_extent(&self, fields: &mut Fields) -> Option<Vec<Extent>> {
-        let mut extents = Vec::new();
-        for _ in 0..if self.extent { self.planets.len() } else { 0 } {
+        let planets = if self.extent { self.planets.len() } else { 0 };
+        let mut extents = Vec::with_capacity(planets);
+        for _ in 0..planets {
             let (a, e, i) = (fields.range()?, fields.range()?, fields.range()?);
             if let (Some(semi_major_axis_au), Some(eccentricity), Some(inclination)) = (a, e, i) {
                 extents.push(Extent { semi_major_axis_au, eccentricity, inclination });
             }
         }
+        extents.shrink_to_fit();
         Some(extents)
     }
 

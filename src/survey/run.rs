@@ -16,6 +16,8 @@ pub const JOURNAL: &str = "journal.csv";
 /// Made when every cell is done.
 pub const OUTPUTS: [&str; 3] = ["cells.ecsv", "map.png", "summary.txt"];
 const LOCK: &str = ".lock";
+/// Memory for so many records is taken at once at most; a run that is barely begun needs no more.
+const EXPECTED_CELLS: usize = 2_000_000;
 
 /// A run held by this process.
 #[derive(Debug)]
@@ -85,6 +87,8 @@ pub struct Stored {
 }
 
 /// Reads a run that may still be growing.
+///
+/// Errors: files that are missing, cannot be read, or were edited since the run was begun.
 pub fn read_run(folder: &Path) -> Result<Stored, SurveyError> {
     for file in [MANIFEST, STUDY, SYSTEM, JOURNAL] {
         if !folder.join(file).is_file() {
@@ -93,16 +97,25 @@ pub fn read_run(folder: &Path) -> Result<Stored, SurveyError> {
     }
     let manifest = Manifest::read(&folder.join(MANIFEST))?;
     Ok(Stored {
-        study_text: disk::read_text(&folder.join(STUDY))?,
-        system_text: disk::read_text(&folder.join(SYSTEM))?,
+        study_text: unedited(folder, STUDY, &manifest.study_sha256)?,
+        system_text: unedited(folder, SYSTEM, &manifest.system_sha256)?,
         records: read_records(folder, &manifest)?,
         manifest,
     })
 }
 
+/// The copy of an input: edited, it would lend the cells a meaning that they do not have.
+fn unedited(folder: &Path, file: &'static str, stored_sha256: &str) -> Result<String, SurveyError> {
+    let text = disk::read_text(&folder.join(file))?;
+    if sha256(&text) == stored_sha256 {
+        return Ok(text);
+    }
+    Err(SurveyError::Edited { folder: folder.to_path_buf(), file })
+}
+
 /// The records of a journal by cell, each cell once; damaged lines are left out.
 fn read_records(folder: &Path, manifest: &Manifest) -> Result<Vec<Record>, SurveyError> {
-    let mut records = Vec::new();
+    let mut records = Vec::with_capacity(usize::try_from(manifest.cells).unwrap_or(0).min(EXPECTED_CELLS));
     journal::read(&folder.join(JOURNAL), &manifest.layout, |record| {
         let known = record.cell < manifest.cells;
         if known {
@@ -110,7 +123,8 @@ fn read_records(folder: &Path, manifest: &Manifest) -> Result<Vec<Record>, Surve
         }
         known
     })?;
-    records.sort_by_key(|record: &Record| record.cell);
+    // Lines of one cell are equal, so that no order among them is to be kept.
+    records.sort_unstable_by_key(|record: &Record| record.cell);
     records.dedup_by_key(|record| record.cell);
     Ok(records)
 }

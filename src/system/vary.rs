@@ -1,6 +1,7 @@
 //! Moving a system along an axis.
 
-use super::{Axis, BodyRef, Holder, Measured, Quantity, SetError, Spacing, System, Target};
+use super::{Axis, BodyRef, Measured, Quantity, SetError, Spacing, System, Target};
+use crate::units::Unit;
 
 /// Why a system cannot be moved to a place of an axis.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
@@ -62,38 +63,37 @@ impl Axis {
         };
         for body in bodies {
             let value = self.number(x, &body, system, stated)?;
-            let holder = body.holder();
-            self.check(value, &body, holder, system)?;
+            self.check(value, &body, stated)?;
+            let unit = self.unit_word(&body, stated);
             let target = Target { body, key: self.target.key };
-            system.set(&target, Measured::exact(value, self.inner_unit_word(stated, &target)))?;
+            system.set(&target, Measured::exact(value, unit))?;
         }
         Ok(())
     }
 
-    fn check(&self, value: f64, body: &BodyRef, holder: Holder, system: &System) -> Result<(), VaryError> {
-        let allowed = self.target.key.allowed(holder);
+    fn check(&self, value: f64, body: &BodyRef, stated: &System) -> Result<(), VaryError> {
+        let allowed = self.target.key.allowed(body.holder());
         if allowed.contains(value) {
             return Ok(());
         }
-        let shown = if self.quantity == Quantity::Value {
-            format!("{} {}", value / self.scale, self.unit).trim_end().to_string()
-        } else {
-            format!("{value} (inner units)")
-        };
+        let word = self.unit_word(body, stated);
+        let unit = Unit::from_word(word).map_or(1.0, |unit| unit.inner);
         Err(VaryError::OutOfRange {
-            body: system.body_word(body).to_string(),
+            body: stated.body_word(body).to_string(),
             key: self.target.key.word(),
-            value: shown,
+            value: format!("{} {word}", value / unit).trim_end().to_string(),
             allowed: allowed.words,
         })
     }
 
-    /// The axis' own unit, or for factors and ratios the unit of the statement that moves.
-    fn inner_unit_word(&self, stated: &System, target: &Target) -> &'static str {
+    /// The axis' own unit, or for factors and ratios the unit of the statement that moves (else the inner one).
+    fn unit_word(&self, body: &BodyRef, stated: &System) -> &'static str {
         if self.quantity == Quantity::Value {
             return self.unit;
         }
-        let bodies = stated.bodies(&target.body);
-        bodies.first().and_then(|b| b.stated.get(target.key)).map_or("", |m| m.unit)
+        let key = self.target.key;
+        let moving = stated.bodies(body).first().and_then(|b| b.stated.get(key)).map(|m| m.unit);
+        let inner = || Unit::of(key.dimension()).find(|unit| unit.inner == 1.0).map_or("", |unit| unit.word);
+        moving.unwrap_or_else(inner)
     }
 }

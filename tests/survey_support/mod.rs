@@ -58,7 +58,8 @@ fn share(cell: u64, which: u64) -> f64 {
 }
 
 pub fn answer(cell: u64) -> Assessment {
-    let some = |which: u64| (scramble(cell + which * 7919) % 4 != 0).then(|| share(cell, which) * 1e-7);
+    let some =
+        |which: u64| (!scramble(cell + which * 7919).is_multiple_of(4)).then(|| share(cell, which) * 1e-7);
     let range = |which| Range { min: share(cell, which), max: share(cell, which) + 1e-17 };
     let lost = scramble(cell).is_multiple_of(3);
     let extent = Extent { semi_major_axis_au: range(5), eccentricity: range(6), inclination: range(7) };

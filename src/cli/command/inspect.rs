@@ -1,9 +1,32 @@
+//! `abide inspect`: what a system file says, how it is read, and what can be told without integrating.
+
+mod caveat;
+mod table;
+mod text;
+mod view;
+
+use std::io::Write;
 use std::process::ExitCode;
 
 use crate::cli::CliError;
 use crate::cli::args::InspectArgs;
+use crate::coords;
+use crate::input;
+use view::View;
 
 pub fn run(args: InspectArgs) -> Result<ExitCode, CliError> {
-    let _ = args;
+    let file = input::read_system(&args.system).map_err(CliError::input)?;
+    let at_file = |error: coords::CoordsError| CliError::Input(format!("{}: {error}", args.system.display()));
+    let configuration = coords::configure(&file.system).map_err(at_file)?;
+    coords::check_start(&configuration).map_err(at_file)?;
+    let view = View::new(&file.system, &configuration);
+    let output = if args.json { json(&view)? } else { text::page(&view) };
+    std::io::stdout().write_all(output.as_bytes()).map_err(CliError::working)?;
     Ok(ExitCode::SUCCESS)
+}
+
+fn json(view: &View) -> Result<String, CliError> {
+    let mut text = serde_json::to_string_pretty(view).map_err(CliError::working)?;
+    text.push('\n');
+    Ok(text)
 }

@@ -1,5 +1,6 @@
 //! `abide survey`: a study → a run with its tables and its map.
 
+use std::io::{ErrorKind, Write};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use std::sync::Arc;
@@ -112,7 +113,7 @@ impl Wish {
             self.say(format_args!("wrote {}", self.folder.join(name).display()));
         }
         if self.json {
-            print!("{}", finished.summary_json()?);
+            print(&finished.summary_json()?)?;
         }
         Ok(ExitCode::SUCCESS)
     }
@@ -223,6 +224,14 @@ fn stop_on_signal() -> Result<Arc<AtomicBool>, CliError> {
     };
     ctrlc::set_handler(handler).map_err(CliError::working)?;
     Ok(stop)
+}
+
+/// To standard output; a reader that has seen enough and left is no failure.
+fn print(text: &str) -> Result<(), CliError> {
+    match std::io::stdout().write_all(text.as_bytes()) {
+        Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(CliError::working(error)),
+        _ => Ok(()),
+    }
 }
 
 fn told(error: SurveyError) -> CliError {

@@ -1,0 +1,93 @@
+//! B: the planets' pull on one another and the jump from the star's motion about the centre of mass.
+
+use crate::kepler::Body;
+use crate::lanes::Real;
+
+/// Runs kick and jump for the time `h`; with `TANGENT` for the tangent vector too.
+///
+/// Jump: qᵢ += h Σ mⱼvⱼ / M. Kick: vᵢ += h Σ G mⱼ (qⱼ − qᵢ)/d³, each pair once.
+/// With `WATCH`, `pairs` keeps the smallest distance² of each pair, taken along the straight relative motion
+/// within `window` of now, so that an encounter between two kicks is not missed.
+#[inline(always)]
+pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
+    bodies: &mut [Body<R>],
+    pairs: &mut [R],
+    star_gm: R,
+    h: R,
+    window: R,
+) {
+    let count = bodies.len();
+    let zero = R::splat(0.0);
+    let share = h / star_gm;
+    let mut shift = [zero; 3];
+    let mut d_shift = [zero; 3];
+    for b in bodies.iter() {
+        let weight = share * b.gm;
+        for k in 0..3 {
+            shift[k] = weight.mul_add(b.vel[k], shift[k]);
+            if TANGENT {
+                d_shift[k] = weight.mul_add(b.d_vel[k], d_shift[k]);
+            }
+        }
+    }
+    for b in bodies.iter_mut() {
+        for k in 0..3 {
+            b.pos[k] = b.pos[k] + shift[k];
+            if TANGENT {
+                b.d_pos[k] = b.d_pos[k] + d_shift[k];
+            }
+        }
+    }
+    let mut pair = 0;
+    for i in 0..count {
+        for j in i + 1..count {
+            let mut d = [zero; 3];
+            for k in 0..3 {
+                d[k] = bodies[j].pos[k] - bodies[i].pos[k];
+            }
+            let d2 = d[2].mul_add(d[2], d[1].mul_add(d[1], d[0] * d[0]));
+            if WATCH {
+                let nearest = nearest2(&bodies[i], &bodies[j], &d, d2, window);
+                pairs[pair] = nearest.min(pairs[pair]);
+                pair += 1;
+            }
+            let inv_d2 = R::splat(1.0) / d2;
+            let inv_d3 = inv_d2 * inv_d2.sqrt();
+            let strength = h * inv_d3;
+            let on_i = strength * bodies[j].gm;
+            let on_j = strength * bodies[i].gm;
+            for k in 0..3 {
+                bodies[i].vel[k] = d[k].mul_add(on_i, bodies[i].vel[k]);
+                bodies[j].vel[k] = d[k].neg_mul_add(on_j, bodies[j].vel[k]);
+            }
+            if TANGENT {
+                let mut dd = [zero; 3];
+                for k in 0..3 {
+                    dd[k] = bodies[j].d_pos[k] - bodies[i].d_pos[k];
+                }
+                let along = dd[2].mul_add(d[2], dd[1].mul_add(d[1], dd[0] * d[0]));
+                let pull = R::splat(3.0) * along * inv_d2;
+                for k in 0..3 {
+                    let w = d[k].neg_mul_add(pull, dd[k]);
+                    bodies[i].d_vel[k] = w.mul_add(on_i, bodies[i].d_vel[k]);
+                    bodies[j].d_vel[k] = w.neg_mul_add(on_j, bodies[j].d_vel[k]);
+                }
+            }
+        }
+    }
+}
+
+/// Smallest distance² within `window` of now if the relative motion were straight.
+#[inline(always)]
+fn nearest2<R: Real>(a: &Body<R>, b: &Body<R>, d: &[R; 3], d2: R, window: R) -> R {
+    let mut w = [R::splat(0.0); 3];
+    for k in 0..3 {
+        w[k] = b.vel[k] - a.vel[k];
+    }
+    let w2 = w[2].mul_add(w[2], w[1].mul_add(w[1], w[0] * w[0]));
+    let dw = d[2].mul_add(w[2], d[1].mul_add(w[1], d[0] * w[0]));
+    // Two planets at rest relative to each other: the tiny term keeps 0/0 away.
+    let when = -(dw / (w2 + R::splat(1e-300)));
+    let when = when.min(window).max(-window);
+    d2 + when * when.mul_add(w2, dw + dw)
+}
