@@ -235,7 +235,7 @@ fn the_summary_counts_and_says_what_was_done() {
         "nominal      cell 2 is chaotic, MEGNO 6.000, energy error 3.6e-9",
         "energy error median 3.6e-9, 95 % of cells below 8.1e-9, largest 8.1e-9 (target 1e-7)",
         "scheme       (2,2)",
-        "step         step 0.42 d (1/20 of the shortest pericentre passage)",
+        "step         0.42 d (1/20 of the shortest pericentre passage)",
     ] {
         assert!(text.lines().any(|l| l == line), "missing {line:?} in\n{text}");
     }

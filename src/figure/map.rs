@@ -182,7 +182,7 @@ fn pins(input: &MapInput<'_>, axis: usize) -> Vec<Pin> {
     let label = |r: &super::Resonance| {
         let label = Label::plain(format!("{}:{}", r.p, r.q));
         match input.system.planets.get(r.other) {
-            Some(planet) if several => label.then("\u{2009}").italic(planet.name.as_str()),
+            Some(planet) if several => label.then(format!("\u{2009}{}", planet.name)),
             _ => label,
         }
     };

@@ -67,11 +67,11 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
     let steps = records.iter().map(|r| r.assessment.step_day).filter(|s| s.is_finite());
     let (low, high) = steps.fold((f64::INFINITY, 0.0f64), |(l, h), s| (l.min(s), h.max(s)));
     let size = if low.is_infinite() {
-        plan.step_day.map_or_else(|| "step of each cell's own".to_owned(), |s| format!("step {} d", short(s)))
+        plan.step_day.map_or_else(|| "each cell's own".to_owned(), |s| format!("{} d", short(s)))
     } else if short(low) == short(high) {
-        format!("step {} d", short(low))
+        format!("{} d", short(low))
     } else {
-        format!("step {} to {} d", short(low), short(high))
+        format!("{} to {} d", short(low), short(high))
     };
     let why = match plan.step_why {
         StepWhy::Pericentre { steps_per_passage } => {

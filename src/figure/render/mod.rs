@@ -8,6 +8,7 @@ mod draw;
 mod encode;
 mod fit;
 mod page;
+mod spread;
 mod text;
 
 pub use page::{Frame, Page, Placed, page};
