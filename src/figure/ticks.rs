@@ -67,7 +67,7 @@ fn linear(low: f64, high: f64, wanted: usize) -> Ticks {
     let last = ((high + slack) / minor_step).floor() as i64;
     let decimals = (-power).max(0) as usize;
     // Dates are large and keep their digits; large steps and tiny ones are better as powers of ten.
-    let big = step >= 1e5 || step < 1e-5;
+    let big = !(1e-5..1e5).contains(&step);
     let mut found = Ticks::default();
     for count in first..=last {
         if count % parts != 0 {
