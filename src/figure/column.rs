@@ -96,6 +96,7 @@ impl Column {
             Some(value) => Paint::Value(value),
             // A regular cell has no Lyapunov time, which is an answer and not a gap.
             None if self == Column::LyapunovTime && cell.verdict == Verdict::Regular => Paint::Flat(region),
+            None if !bounded => Paint::Flat(region),
             None => Paint::Flat(Region::NoValue),
         }
     }
