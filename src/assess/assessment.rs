@@ -1,5 +1,6 @@
 //! What is known about a configuration after it was followed.
 
+pub use crate::observe::{Extent, Lyapunov, Range};
 use crate::verdict::{LostHow, Verdict};
 
 /// When, which and how.
@@ -13,20 +14,6 @@ pub struct Loss {
     pub how: LostHow,
 }
 
-/// Maximal Lyapunov exponent with its standard error.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Lyapunov {
-    pub per_day: f64,
-    pub error_per_day: f64,
-}
-
-/// Smallest and largest value seen at the samples.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Range {
-    pub min: f64,
-    pub max: f64,
-}
-
 /// Closest approach of two planets.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Approach {
@@ -34,15 +21,6 @@ pub struct Approach {
     /// In mutual Hill radii of the pair at the epoch.
     pub hill: f64,
     pub pair: (usize, usize),
-}
-
-/// Ranges of one planet's astrocentric osculating elements.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Extent {
-    pub semi_major_axis_au: Range,
-    pub eccentricity: Range,
-    /// To the reference plane, rad.
-    pub inclination: Range,
 }
 
 /// The outcome of one cell. Absent is `None`, never 0.
@@ -54,7 +32,7 @@ pub struct Assessment {
     pub loss: Option<Loss>,
     /// Time-averaged MEGNO ⟨Y⟩ at the end.
     pub megno: Option<f64>,
-    /// Given when the verdict is chaotic or lost, or the exponent is above twice its error.
+    /// Given when ⟨Y⟩ says chaos; on a regular orbit the number would only reflect the span.
     pub lyapunov: Option<Lyapunov>,
     /// Per planet, in the order of the configuration; empty when not measured.
     pub extent: Vec<Extent>,

@@ -1,17 +1,21 @@
 //! Fills lanes with cells; a finished lane is refilled with the next cell.
 
+use super::cell::{Cell, Next};
 use super::{Assessment, Plan};
 use crate::coords::Configuration;
+use crate::integrate::{Advance, Block, advance, from_map};
+use crate::lanes::Level;
 
 /// Assesses one configuration. Same bits as [`run_batch`] gives it.
 pub fn assess(configuration: &Configuration, plan: &Plan) -> Assessment {
     let mut feed = Some((0u64, configuration.clone()));
     let mut answer = None;
-    run_batch(
+    run_lanes(
+        1,
         plan,
         || feed.take(),
-        |_, a| {
-            answer = Some(a);
+        |_, assessment| {
+            answer = Some(assessment);
             true
         },
     );
@@ -20,11 +24,75 @@ pub fn assess(configuration: &Configuration, plan: &Plan) -> Assessment {
 
 /// Draws cells from `next` until it gives none, answers each through `done` in the order they finish.
 ///
-/// `done` returns whether to go on; at `false` the cells in flight are dropped.
+/// All configurations have the same number of planets. `done` returns whether to go on; at `false` the cells
+/// in flight are dropped.
 pub fn run_batch(
     plan: &Plan,
     next: impl FnMut() -> Option<(u64, Configuration)>,
     done: impl FnMut(u64, Assessment) -> bool,
 ) {
-    let _ = (plan, next, done);
+    run_lanes(Level::chosen().width(), plan, next, done);
+}
+
+/// A cell and its number, in its lane.
+type Seat = Option<(u64, Cell)>;
+
+fn run_lanes(
+    width: usize,
+    plan: &Plan,
+    mut next: impl FnMut() -> Option<(u64, Configuration)>,
+    mut done: impl FnMut(u64, Assessment) -> bool,
+) {
+    let Some(first) = next() else { return };
+    let mut block = Block::new(width, first.1.planets.len());
+    let mut waiting = Some(first);
+    let mut seats: Vec<Seat> = (0..width).map(|_| None).collect();
+    loop {
+        for lane in 0..width {
+            while seats[lane].is_none() {
+                let Some((number, configuration)) = waiting.take().or_else(&mut next) else { break };
+                assert_eq!(configuration.planets.len(), block.planets(), "one batch, one number of planets");
+                match Cell::new(&configuration, plan) {
+                    Ok(cell) => {
+                        cell.enter(&mut block, lane, plan);
+                        seats[lane] = Some((number, cell));
+                    }
+                    Err(assessment) => {
+                        if !done(number, *assessment) {
+                            return;
+                        }
+                    }
+                }
+            }
+        }
+        if seats.iter().all(Option::is_none) {
+            return;
+        }
+        let before = block.clone();
+        let corrected = one_block(&mut block, plan);
+        for (lane, seat) in seats.iter_mut().enumerate() {
+            let Some((number, cell)) = seat else { continue };
+            match cell.look(plan, &before, &mut block, &corrected, lane) {
+                Next::GoOn => {}
+                Next::Again => cell.enter(&mut block, lane, plan),
+                Next::End(assessment) => {
+                    let number = *number;
+                    block.retire(lane);
+                    *seat = None;
+                    if !done(number, *assessment) {
+                        return;
+                    }
+                }
+            }
+        }
+    }
+}
+
+/// Advances every lane by one block of steps; gives the true states at its end.
+pub(super) fn one_block(block: &mut Block, plan: &Plan) -> Block {
+    let scheme = plan.splitting();
+    advance(Advance { block, scheme, steps: plan.block_steps, tangent: plan.megno });
+    let mut corrected = block.clone();
+    from_map(&mut corrected, scheme);
+    corrected
 }

@@ -2,8 +2,14 @@
 
 mod assessment;
 mod batch;
+mod cell;
+mod one;
 mod plan;
 
 pub use assessment::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{assess, run_batch};
-pub use plan::{Plan, StepWhy, auto_step_day};
+pub use one::{Row, follow};
+pub use plan::{
+    FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day, innermost_period_day,
+    outermost_period_day,
+};

@@ -1,12 +1,54 @@
 //! What will be done to every cell of a study, decided before anything runs.
 
+use std::fmt;
+
+use crate::coords::Configuration;
+use crate::integrate::{SAMPLE_EVERY, Scheme};
+use crate::kepler::pericentre_passage_day;
+use crate::system::{Encounter, Engine, Frame, Limits, Measure, Span, Step, Study};
+
+/// Steps in the shortest pericentre passage time scale when the step is chosen for the user.
+///
+/// Step resonance, not energy error, spoils chaos indicators: from 15 steps upward the averaged MEGNO no longer
+/// changes (measured; see DEVELOPERS.md).
+pub const STEPS_PER_PASSAGE: f64 = 20.0;
+/// Fewer than this draw a warning.
+pub const FEWEST_STEPS_PER_PASSAGE: f64 = 15.0;
+/// Steps between two looks at a cell. Times a step of 1/20 of a period this is no whole number of orbits, so that
+/// samples do not always meet a planet at the same phase.
+const BLOCK_STEPS: usize = 127 * SAMPLE_EVERY;
+/// A cell is looked at least so often.
+const FEWEST_BLOCKS: f64 = 32.0;
+/// Default escape distance in units of the largest apocentre.
+const ESCAPE_APOCENTRES: f64 = 20.0;
+
 /// Why the step is what it is (a value, so that it can be tested, stored and printed).
 #[derive(Clone, Debug, PartialEq)]
 pub enum StepWhy {
-    /// 20 steps in the shortest pericentre passage time scale of each cell's own orbits.
+    /// So many steps in the shortest pericentre passage time scale of each cell's own orbits.
     Pericentre { steps_per_passage: f64 },
-    /// The study asked for it.
-    Asked,
+    /// The study asked for it; how many steps it makes per passage in the stated configuration.
+    Asked { steps_per_passage: f64 },
+}
+
+impl fmt::Display for StepWhy {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            StepWhy::Pericentre { steps_per_passage } => {
+                write!(
+                    f,
+                    "{steps_per_passage:.0} steps in the shortest pericentre passage of each configuration"
+                )
+            }
+            StepWhy::Asked { steps_per_passage } => {
+                write!(f, "as asked; {steps_per_passage:.1} steps in the shortest pericentre passage")?;
+                if *steps_per_passage < FEWEST_STEPS_PER_PASSAGE {
+                    write!(f, "; below {FEWEST_STEPS_PER_PASSAGE} step resonance can feign chaos")?;
+                }
+                Ok(())
+            }
+        }
+    }
 }
 
 /// Everything the engine needs beside the configuration; the same for all cells of a study.
@@ -24,11 +66,99 @@ pub struct Plan {
     pub encounter_hill: Option<f64>,
     pub extent: bool,
     pub megno: bool,
+    /// Steps between two looks at a cell, a multiple of [`SAMPLE_EVERY`]. A cell's steps are a whole number of blocks.
+    pub block_steps: usize,
+}
+
+impl Plan {
+    /// The plan of a study whose stated system is `nominal`.
+    pub fn for_study(study: &Study, nominal: &Configuration) -> Plan {
+        let wants = |measure| study.measure.contains(&measure);
+        let mut plan = Plan::new(study.span, &study.limits, &study.engine, nominal);
+        plan.extent = wants(Measure::Extent);
+        plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
+        plan
+    }
+
+    /// A plan that measures everything.
+    pub fn new(span: Span, limits: &Limits, engine: &Engine, nominal: &Configuration) -> Plan {
+        let auto = auto_step_day(nominal);
+        let period = innermost_period_day(nominal);
+        let span_day = match span {
+            Span::Days(days) => days,
+            Span::Orbits(orbits) => orbits * period,
+        };
+        let step_day = match engine.step {
+            Step::Auto => None,
+            Step::Days(days) => Some(days),
+            Step::PerOrbit(steps) => Some(period / steps),
+        };
+        let step_why = match step_day {
+            None => StepWhy::Pericentre { steps_per_passage: STEPS_PER_PASSAGE },
+            Some(step) => StepWhy::Asked { steps_per_passage: STEPS_PER_PASSAGE * auto / step },
+        };
+        let scheme = Scheme::named(&engine.scheme).unwrap_or(Scheme::leapfrog()).name;
+        let encounter_hill = match limits.encounter {
+            Encounter::Stop { hill } => Some(hill),
+            Encounter::Off => None,
+        };
+        Plan {
+            span_day,
+            step_day,
+            step_why,
+            scheme,
+            energy_error: engine.energy_error,
+            escape_au: limits.escape_au,
+            encounter_hill,
+            extent: true,
+            megno: true,
+            block_steps: block_steps(span_day / step_day.unwrap_or(auto)),
+        }
+    }
+
+    /// The scheme itself.
+    pub fn splitting(&self) -> &'static Scheme {
+        Scheme::named(self.scheme).unwrap_or(Scheme::leapfrog())
+    }
+
+    /// Where a planet of this configuration has escaped, au.
+    pub fn escape_limit_au(&self, configuration: &Configuration) -> f64 {
+        self.escape_au.unwrap_or_else(|| {
+            let orbits = configuration.elements_in(Frame::Astrocentric);
+            ESCAPE_APOCENTRES * orbits.iter().map(|o| o.apocentre_au()).fold(0.0, f64::max)
+        })
+    }
+}
+
+/// Fewer steps per block when the span is short, so that it is still looked at often enough.
+fn block_steps(steps: f64) -> usize {
+    let most = BLOCK_STEPS as f64;
+    let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, most);
+    (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
 }
 
 /// The step that the plan gives a configuration when none is asked: 1/20 of the shortest pericentre
-/// passage time scale of its planets, day.
-pub fn auto_step_day(configuration: &crate::coords::Configuration) -> f64 {
-    let _ = configuration;
-    f64::NAN
+/// passage time scale of its planets, day. Not a number when no planet is bound.
+pub fn auto_step_day(configuration: &Configuration) -> f64 {
+    let orbits = configuration.elements_in(Frame::Astrocentric);
+    let passages =
+        configuration.planets.iter().zip(&orbits).filter(|(_, o)| o.eccentricity < 1.0).map(|(p, o)| {
+            pericentre_passage_day(o.semi_major_axis_au, o.eccentricity, configuration.star_gm + p.gm)
+        });
+    passages.fold(f64::NAN, f64::min) / STEPS_PER_PASSAGE
+}
+
+/// Shortest period of the configuration, day, astrocentric.
+pub fn innermost_period_day(configuration: &Configuration) -> f64 {
+    periods_day(configuration).fold(f64::NAN, f64::min)
+}
+
+/// Longest period of the configuration, day, astrocentric.
+pub fn outermost_period_day(configuration: &Configuration) -> f64 {
+    periods_day(configuration).fold(f64::NAN, f64::max)
+}
+
+fn periods_day(configuration: &Configuration) -> impl Iterator<Item = f64> {
+    let orbits = configuration.elements_in(Frame::Astrocentric);
+    configuration.periods_of(Frame::Astrocentric, &orbits).into_iter().flatten()
 }

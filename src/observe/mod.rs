@@ -1,1 +1,39 @@
-//! (being built)
+//! Observers: they see moments of the motion and never change it.
+
+mod conserved;
+mod extent;
+mod growth;
+
+pub use conserved::ConservedWatch;
+pub use extent::{Extent, ExtentWatch, Range};
+pub use growth::{GrowthRecord, Lyapunov};
+
+use crate::coords::Elements;
+use crate::integrate::State;
+
+/// A state of the motion at a time since the epoch.
+#[derive(Clone, Copy, Debug)]
+pub struct Moment<'a> {
+    pub time_day: f64,
+    /// True state (not the map's own variables).
+    pub state: &'a State,
+}
+
+impl Moment<'_> {
+    /// Osculating astrocentric elements of every planet.
+    pub fn astrocentric(&self) -> Vec<Elements> {
+        let state = self.state;
+        let mut star = [0.0; 3];
+        for (gm, vel) in state.gm.iter().zip(&state.vel) {
+            for k in 0..3 {
+                star[k] -= gm * vel[k] / state.star_gm;
+            }
+        }
+        let each = state.gm.iter().zip(&state.pos).zip(&state.vel);
+        each.map(|((gm, pos), vel)| {
+            let relative = [0, 1, 2].map(|k| vel[k] - star[k]);
+            Elements::from_state(state.star_gm + gm, *pos, relative)
+        })
+        .collect()
+    }
+}

@@ -77,7 +77,7 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
         StepWhy::Pericentre { steps_per_passage } => {
             format!("1/{} of the shortest pericentre passage", short(steps_per_passage))
         }
-        StepWhy::Asked => "as the study asks".to_owned(),
+        StepWhy::Asked { .. } => "as the study asks".to_owned(),
     };
     format!("{size} ({why})")
 }

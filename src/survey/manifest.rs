@@ -7,7 +7,7 @@ use serde::{Deserialize, Serialize};
 use sha2::{Digest, Sha256};
 
 use super::{Layout, SurveyError};
-use crate::assess::{Plan, StepWhy};
+use crate::assess::Plan;
 use crate::disk;
 
 /// The version of this program; another one may give other bits.
@@ -53,22 +53,13 @@ impl PlanWords {
             scheme: plan.scheme.to_string(),
             span_day: plan.span_day,
             step_day: plan.step_day,
-            step_why: step_words(&plan.step_why),
+            step_why: plan.step_why.to_string(),
             energy_error: plan.energy_error,
             escape_au: plan.escape_au,
             encounter_hill: plan.encounter_hill,
             megno: plan.megno,
             extent: plan.extent,
         }
-    }
-}
-
-fn step_words(why: &StepWhy) -> String {
-    match why {
-        StepWhy::Pericentre { steps_per_passage } => format!(
-            "{steps_per_passage} steps in the shortest pericentre passage time scale of each cell's own orbits"
-        ),
-        StepWhy::Asked => "asked for by the study".to_string(),
     }
 }
 

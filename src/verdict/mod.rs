@@ -1,5 +1,9 @@
 //! From numbers to a verdict: thresholds, each with its paper.
 
+mod thresholds;
+
+pub use thresholds::{CHAOTIC_FROM, Evidence, LEAST_OUTER_ORBITS, REGULAR_UP_TO, judge};
+
 /// What became of a configuration.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Verdict {

@@ -1,0 +1,82 @@
+//! The thresholds.
+
+use super::Verdict;
+
+/// Largest ⟨Y⟩ that counts as regular.
+///
+/// ⟨Y⟩ tends to 2 on a quasi-periodic orbit, to below 2 close to a stable periodic one (Cincotta & Simó 2000;
+/// Cincotta, Giordano & Simó 2003). After 1e3 periods what is left of the transient is a few percent, so maps take
+/// 2 plus a small margin (Goździewski, Breiter & Borczyk 2008 for planetary systems).
+pub const REGULAR_UP_TO: f64 = 2.1;
+
+/// Smallest ⟨Y⟩ that counts as chaotic.
+///
+/// On a chaotic orbit ⟨Y⟩ = λt/2 (Cincotta & Simó 2000): 3 means that e⁶ times the initial displacement has been
+/// reached beyond the linear growth. Between the two thresholds the span was too short to tell.
+pub const CHAOTIC_FROM: f64 = 3.0;
+
+/// Fewest orbits of the outermost planet after which a small ⟨Y⟩ says anything.
+///
+/// Common practice: maps follow 1e3 to 1e5 orbits of the outer planet; after fewer than a hundred the transient
+/// of ⟨Y⟩ hides all but violent chaos (Goździewski, Breiter & Borczyk 2008 show how it dies away).
+pub const LEAST_OUTER_ORBITS: f64 = 100.0;
+
+/// What a verdict rests on.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Evidence {
+    pub lost: bool,
+    /// Largest relative energy error; none when nothing was integrated.
+    pub energy_error: Option<f64>,
+    pub energy_error_asked: f64,
+    pub mean_megno: Option<f64>,
+    /// How many periods of the outermost planet were followed.
+    pub outer_orbits: f64,
+}
+
+/// The verdict that the evidence allows. An energy error above what was asked makes everything else untrusted.
+pub fn judge(evidence: &Evidence) -> Verdict {
+    if evidence.energy_error.is_some_and(|error| error.is_nan() || error > evidence.energy_error_asked) {
+        return Verdict::Untrusted;
+    }
+    if evidence.lost {
+        return Verdict::Lost;
+    }
+    match evidence.mean_megno {
+        Some(y) if y >= CHAOTIC_FROM => Verdict::Chaotic,
+        Some(y) if y <= REGULAR_UP_TO && evidence.outer_orbits >= LEAST_OUTER_ORBITS => Verdict::Regular,
+        _ => Verdict::Undecided,
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn each_rule_decides_in_its_turn() {
+        let quiet = Evidence {
+            lost: false,
+            energy_error: Some(1e-9),
+            energy_error_asked: 1e-7,
+            mean_megno: Some(2.0),
+            outer_orbits: 1e3,
+        };
+        let cases = [
+            (quiet, Verdict::Regular),
+            (Evidence { mean_megno: Some(2.5), ..quiet }, Verdict::Undecided),
+            (Evidence { mean_megno: Some(3.0), ..quiet }, Verdict::Chaotic),
+            (Evidence { mean_megno: Some(f64::NAN), ..quiet }, Verdict::Undecided),
+            (Evidence { mean_megno: None, ..quiet }, Verdict::Undecided),
+            (Evidence { outer_orbits: 99.0, ..quiet }, Verdict::Undecided),
+            (Evidence { outer_orbits: 99.0, mean_megno: Some(5.0), ..quiet }, Verdict::Chaotic),
+            (Evidence { lost: true, mean_megno: Some(5.0), ..quiet }, Verdict::Lost),
+            (Evidence { lost: true, energy_error: None, ..quiet }, Verdict::Lost),
+            (Evidence { lost: true, energy_error: Some(1e-6), ..quiet }, Verdict::Untrusted),
+            (Evidence { energy_error: Some(f64::INFINITY), ..quiet }, Verdict::Untrusted),
+            (Evidence { energy_error: Some(f64::NAN), ..quiet }, Verdict::Untrusted),
+        ];
+        for (evidence, verdict) in cases {
+            assert_eq!(judge(&evidence), verdict, "{evidence:?}");
+        }
+    }
+}
