@@ -239,6 +239,22 @@ fn a_regular_cell_without_a_lyapunov_time_is_no_gap() {
 }
 
 #[test]
+fn a_lost_cell_shows_its_energy_error_where_there_is_one() {
+    let study = study(3, 2);
+    let mut records = one(&study, assessment(Verdict::Lost, Some(LostHow::Escape), 5.0, 0.1));
+    records[0].assessment.energy_error = None;
+    records[1].assessment = assessment(Verdict::Regular, None, 2.0, 1.0);
+    records[1].assessment.energy_error = None;
+    let figure = drawn(&study, &records, "energy_error");
+    let expected = [Paint::Flat(Region::Escape), Paint::Flat(Region::NoValue), Paint::Value(2.5e-9)];
+    let close = |a: &Paint, b: &Paint| match (a, b) {
+        (Paint::Value(a), Paint::Value(b)) => (a / b - 1.0).abs() < 1e-12,
+        _ => a == b,
+    };
+    assert!(raster(&figure).iter().zip(&expected).all(|(a, b)| close(a, b)), "{:?}", raster(&figure));
+}
+
+#[test]
 fn an_unknown_column_lists_those_there_are() {
     let study = study(3, 2);
     let mut plain = assessment(Verdict::Regular, None, 2.0, 1.0);

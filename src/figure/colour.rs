@@ -148,14 +148,14 @@ impl Region {
         match self {
             Region::Regular => tone(even(0.05), Pattern::Plain, grey(0)),
             Region::Chaotic => tone(even(0.80), Pattern::Plain, grey(0)),
-            Region::Escape => tone(grey(236), Pattern::Plain, grey(0)),
+            Region::Escape => tone(grey(236), Pattern::Upright, grey(178)),
             Region::Star => tone(grey(226), Pattern::Dots, grey(70)),
             Region::Encounter => tone(grey(205), Pattern::Rising, grey(130)),
             Region::Collision => tone(grey(120), Pattern::Falling, grey(225)),
             Region::Lost => tone(grey(205), Pattern::Plain, grey(0)),
             Region::Undecided => tone(Rgb(196, 234, 242), Pattern::Level, Rgb(40, 110, 130)),
             Region::Untrusted => tone(Rgb(84, 196, 128), Pattern::Crossed, Rgb(0, 70, 40)),
-            Region::NoValue => tone(grey(255), Pattern::Upright, grey(170)),
+            Region::NoValue => tone(grey(255), Pattern::Dots, grey(170)),
             Region::Missing => tone(grey(255), Pattern::Plain, grey(0)),
         }
     }

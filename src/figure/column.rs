@@ -96,6 +96,7 @@ impl Column {
             Some(value) => Paint::Value(value),
             // A regular cell has no Lyapunov time, which is an answer and not a gap.
             None if self == Column::LyapunovTime && cell.verdict == Verdict::Regular => Paint::Flat(region),
+            None if !bounded => Paint::Flat(region),
             None => Paint::Flat(Region::NoValue),
         }
     }
@@ -118,6 +119,15 @@ impl Column {
             Column::IMax(planet) => {
                 names::with_unit(Label::plain("largest ").italic("i").down(name(planet)), "deg")
             }
+        }
+    }
+
+    /// What is left of the label where it is too long.
+    pub(crate) fn short(self, system: &System) -> Label {
+        match self {
+            Column::SmallestApproachHill => Label::plain("approach [").italic("R").down("H").then("]"),
+            Column::EnergyError => Label::plain("energy error"),
+            other => other.label(system),
         }
     }
 

@@ -90,6 +90,7 @@ fn colour_bar(column: Column, system: &System, scale: Scale, values: &[f64]) -> 
     let survivors = column == Column::EndTime && places().any(|p| p < 1e-9);
     ColourBar {
         label: column.label(system),
+        short: column.short(system),
         scale,
         before: always || survivors || places().any(|p| p < -1e-9),
         after: always || places().any(|p| p > 1.0 + 1e-9),
@@ -132,7 +133,7 @@ fn points_panel(input: &MapInput<'_>, column: Column, cells: Vec<Paint>, values:
     let y = (!points.is_empty()).then(|| {
         let scale = room_around(values);
         let label = column.label(system);
-        Axis { short: label.clone(), label, from: scale.from, to: scale.to, kind: scale.kind }
+        Axis { short: column.short(system), label, from: scale.from, to: scale.to, kind: scale.kind }
     });
     if column == Column::Megno && y.as_ref().is_some_and(|y| inside(y, 2.0)) {
         marks.push(Mark::Level { at: 2.0 });
@@ -181,7 +182,7 @@ fn pins(input: &MapInput<'_>, axis: usize) -> Vec<Pin> {
     let label = |r: &super::Resonance| {
         let label = Label::plain(format!("{}:{}", r.p, r.q));
         match input.system.planets.get(r.other) {
-            Some(planet) if several => label.then("\u{2009}").italic(planet.name.as_str()),
+            Some(planet) if several => label.then(format!("\u{2009}{}", planet.name)),
             _ => label,
         }
     };

@@ -1,6 +1,6 @@
 //! Figures as plain data in data units (panels, axes, marks), and [`render`], which alone knows pixels.
 //!
-//! [`map`] makes the stability map of a run, [`series`] the panels of one configuration through time; both
+//! [`map()`] makes the stability map of a run, [`series()`] the panels of one configuration through time; both
 //! return a [`Figure`], and [`render::png`] draws it at a physical width.
 
 mod colour;

@@ -106,6 +106,8 @@ pub struct Curve {
 #[derive(Clone, Debug, PartialEq)]
 pub struct ColourBar {
     pub label: Label,
+    /// Taken where the label is too long.
+    pub short: Label,
     pub scale: Scale,
     /// Whether values lie beyond the first or the last end of the scale, so that this end stands for them too.
     pub before: bool,

@@ -84,7 +84,7 @@ fn body_words(body: &BodyRef, system: &System) -> (String, String) {
     }
 }
 
-/// The label of a study's axis, e.g. "period of c, P_c [d]" or "period ratio, P_c / P_b".
+/// The label of a study's axis, e.g. `period of c, P_c [d]` or `period ratio, P_c / P_b`.
 pub(crate) fn axis_label(axis: &Axis, system: &System) -> Label {
     let key = axis.target.key;
     let (of, index) = body_words(&axis.target.body, system);

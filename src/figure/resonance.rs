@@ -66,7 +66,7 @@ pub fn resonances(study: &Study, axis: usize, system: &System) -> Vec<(f64, Reso
             break;
         }
     }
-    found.sort_by(|(_, a), (_, b)| (a.order(), a.p, a.other).cmp(&(b.order(), b.p, b.other)));
+    found.sort_by_key(|(_, r)| (r.order(), r.p, r.other));
     found
 }
 

@@ -66,7 +66,8 @@ fn linear(low: f64, high: f64, wanted: usize) -> Ticks {
     let first = ((low - slack) / minor_step).ceil() as i64;
     let last = ((high + slack) / minor_step).floor() as i64;
     let decimals = (-power).max(0) as usize;
-    let big = low.abs().max(high.abs()) >= 1e6 || step < 1e-5;
+    // Dates are large and keep their digits; large steps and tiny ones are better as powers of ten.
+    let big = !(1e-5..1e5).contains(&step);
     let mut found = Ticks::default();
     for count in first..=last {
         if count % parts != 0 {

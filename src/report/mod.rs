@@ -1,7 +1,7 @@
 //! What a run found, as tables and in words.
 //!
 //! [`Table`] is the one shape of every table; it is written as Enhanced CSV. [`cells_table`] and [`series_table`]
-//! fill it, [`Summary`] counts and says it in words or JSON, [`caption`] is what stands under a figure.
+//! fill it, [`Summary`] counts and says it in words or JSON, [`caption()`] is what stands under a figure.
 
 mod caption;
 mod cells;

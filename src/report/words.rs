@@ -67,11 +67,11 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
     let steps = records.iter().map(|r| r.assessment.step_day).filter(|s| s.is_finite());
     let (low, high) = steps.fold((f64::INFINITY, 0.0f64), |(l, h), s| (l.min(s), h.max(s)));
     let size = if low.is_infinite() {
-        plan.step_day.map_or_else(|| "step of each cell's own".to_owned(), |s| format!("step {} d", short(s)))
+        plan.step_day.map_or_else(|| "each cell's own".to_owned(), |s| format!("{} d", short(s)))
     } else if short(low) == short(high) {
-        format!("step {} d", short(low))
+        format!("{} d", short(low))
     } else {
-        format!("step {} to {} d", short(low), short(high))
+        format!("{} to {} d", short(low), short(high))
     };
     let why = match plan.step_why {
         StepWhy::Pericentre { steps_per_passage } => {
@@ -82,39 +82,38 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
     format!("{size} ({why})")
 }
 
-/// What an axis moves and what it leaves.
+/// What the axes move and what they leave: the statements of the moved bodies once every axis has been applied.
 pub(crate) fn held_words(study: &Study, system: &System) -> String {
-    let varied: Vec<&str> = study.axes.iter().map(|a| a.path.as_str()).collect();
-    let mut bodies: Vec<&BodyRef> = Vec::new();
+    let mut moved = system.clone();
     for axis in &study.axes {
-        if !bodies.contains(&&axis.target.body) {
-            bodies.push(&axis.target.body);
-        }
+        // An axis that cannot be applied was refused when the study was read.
+        let _ = axis.apply(axis.from, &mut moved, system);
     }
+    let mut bodies: Vec<&BodyRef> = study.axes.iter().map(|a| &a.target.body).collect();
+    bodies.dedup();
     let mut parts = Vec::new();
     for body in bodies {
         let (name, stated) = match body {
-            BodyRef::Star => ("the star", Some(&system.star.stated)),
-            BodyRef::Planet(index) => match system.planets.get(*index) {
-                Some(planet) => (planet.name.as_str(), Some(&planet.stated)),
+            BodyRef::Star => ("the star", &moved.star.stated),
+            BodyRef::Planet(index) => match moved.planets.get(*index) {
+                Some(planet) => (planet.name.as_str(), &planet.stated),
                 None => continue,
             },
-            BodyRef::All => ("all planets", system.planets.first().map(|p| &p.stated)),
+            BodyRef::All => match moved.planets.first() {
+                Some(planet) => ("each planet", &planet.stated),
+                None => continue,
+            },
         };
-        let moved =
-            |group| study.axes.iter().any(|a| a.target.body == *body && a.target.key.group() == group);
-        let kept: Vec<&str> = stated
-            .into_iter()
-            .flat_map(|s| s.iter())
-            .filter(|(key, _)| !moved(key.group()))
-            .map(|(key, _)| key.word())
-            .collect();
+        let varied = |key| study.axes.iter().any(|a| a.target.body == *body && a.target.key == key);
+        let kept: Vec<&str> =
+            stated.iter().filter(|(key, _)| !varied(*key)).map(|(key, _)| key.word()).collect();
         if !kept.is_empty() {
             parts.push(format!("{} of {name}", kept.join(", ").replace('_', " ")));
         }
     }
     parts.push("all of the other bodies".to_owned());
-    format!("varied: {}; held as stated: {}", varied.join(", "), parts.join("; "))
+    let axes: Vec<&str> = study.axes.iter().map(|a| a.path.as_str()).collect();
+    format!("varied: {}; held as stated: {}", axes.join(", "), parts.join("; "))
 }
 
 pub(crate) fn convention_words(convention: Convention, epoch_jd: Option<f64>) -> String {

@@ -1,7 +1,7 @@
 //! An invented run that looks like a real one: a quiet plain, a resonance island, a chaotic sea and lost regions.
 #![allow(dead_code)]
 
-use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range, StepWhy};
+use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range};
 use abide::survey::Record;
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Key, Limits, Measure, Measured, Quantity, Spacing,
@@ -83,18 +83,12 @@ pub fn study(columns: usize, rows: usize) -> Study {
 
 pub const SPAN_DAY: f64 = 1e4 * 11.862;
 
+/// What a survey would do with [`study`].
 pub fn plan() -> Plan {
-    Plan {
-        span_day: SPAN_DAY,
-        step_day: None,
-        step_why: StepWhy::Pericentre { steps_per_passage: 20.0 },
-        scheme: "(2,2)",
-        energy_error: 1e-7,
-        escape_au: None,
-        encounter_hill: Some(1.0),
-        extent: true,
-        megno: true,
-    }
+    let nominal = abide::coords::configure(&system()).unwrap();
+    let plan = Plan::for_study(&study(2, 2), &nominal);
+    assert!((plan.span_day / SPAN_DAY - 1.0).abs() < 1e-9 && plan.extent && plan.megno);
+    plan
 }
 
 /// Even noise in 0..1 from an index (Steele, Lea & Flood 2014, the mixing step; from memory).

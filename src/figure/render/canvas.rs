@@ -201,7 +201,7 @@ fn covered(pattern: Pattern, (x, y): Point, pixel: f64) -> f64 {
         Pattern::Falling => lines((x - y) * slant, 3.2, 0.55),
         Pattern::Crossed => lines((x + y) * slant, 4.2, 0.5).max(lines((x - y) * slant, 4.2, 0.5)),
         Pattern::Level => lines(y, 2.8, 0.5),
-        Pattern::Upright => lines(x, 2.8, 0.5),
+        Pattern::Upright => lines(x, 3.2, 0.5),
         Pattern::Dots => {
             let period = 3.4;
             let odd = (y / period).floor().rem_euclid(2.0) * 0.5;

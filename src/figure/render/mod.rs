@@ -1,6 +1,6 @@
 //! From a figure to pixels: the only place that knows a drawing library, fonts and resolutions.
 //!
-//! [`page`] decides where everything goes, in points, as data; [`png`] draws the page twice as fine as asked, averages
+//! [`page()`] decides where everything goes, in points, as data; [`png()`] draws the page twice as fine as asked, averages
 //! and encodes it with its physical size.
 
 mod canvas;
@@ -8,6 +8,7 @@ mod draw;
 mod encode;
 mod fit;
 mod page;
+mod spread;
 mod text;
 
 pub use page::{Frame, Page, Placed, page};

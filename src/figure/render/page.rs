@@ -1,11 +1,11 @@
 //! Where everything goes on the page, in points from the upper left corner.
 
+use super::spread::{bar_ticks, level_ticks, placed_ticks, upright_ticks};
 use super::text::{self, BELOW, CAPITAL};
 use super::{RenderError, Width, fit};
-use crate::figure::colour::Scale;
 use crate::figure::label::Label;
 use crate::figure::model::{Axis, ColourBar, Figure, Legend, Panel, Pin};
-use crate::figure::ticks::{self, Tick, Ticks, ticks};
+use crate::figure::ticks::{Tick, Ticks, ticks};
 
 /// A page with all its places; values inside frames stay in data units.
 #[derive(Clone, Debug, PartialEq)]
@@ -175,8 +175,9 @@ impl Layout {
             self.at += sizes.tick * CAPITAL + 5.0;
         }
         for (index, (panel, y)) in figure.panels.iter().zip(y_ticks).enumerate() {
-            // Tall enough for the shorter name of its axis.
-            let name = panel.y.as_ref().map_or(0.0, |y| text::length(&y.short, sizes.label) + 4.0);
+            // Tall enough for the shorter names of its axis and of the colour bar.
+            let names = panel.y.iter().map(|y| &y.short).chain(figure.colour_bar.iter().map(|b| &b.short));
+            let name = names.map(|n| text::length(n, sizes.label) + 4.0).fold(0.0, f64::max);
             let height = (panel.height * stretch * (right - left)).max(name);
             let mut frame =
                 Frame { left, top: self.at, right, bottom: self.at + height, y, ..Frame::default() };
@@ -221,7 +222,7 @@ impl Layout {
             let x = frame.left - TICK - 2.0 - text::length(&label, sizes.tick);
             self.put(label, sizes.tick, x, y + 0.5 * CAPITAL * sizes.tick);
         }
-        let label = self.fitting(axis, frame.bottom - frame.top);
+        let label = self.fitting((&axis.label, &axis.short), frame.bottom - frame.top);
         self.put_upwards(
             label,
             sizes.label,
@@ -231,9 +232,9 @@ impl Layout {
     }
 
     /// The label, or what is left of it when it is longer than the axis.
-    fn fitting(&self, axis: &Axis, room: f64) -> Label {
-        let fits = text::length(&axis.label, self.sizes.label) <= room;
-        if fits { axis.label.clone() } else { axis.short.clone() }
+    fn fitting(&self, (label, short): (&Label, &Label), room: f64) -> Label {
+        let fits = text::length(label, self.sizes.label) <= room;
+        if fits { label.clone() } else { short.clone() }
     }
 
     fn x_side(&mut self, panel: &Panel, frame: &mut Frame, labelled: bool) {
@@ -246,7 +247,7 @@ impl Layout {
         for (at, label) in placed_ticks(&panel.x.scale(), &frame.x.major) {
             self.put_centred(label, sizes.tick, frame.left + at * (frame.right - frame.left), line);
         }
-        let label = self.fitting(&panel.x, self.page.width - 2.0 * MARGIN);
+        let label = self.fitting((&panel.x.label, &panel.x.short), self.page.width - 2.0 * MARGIN);
         let line = line + BELOW * sizes.tick + 3.0 + CAPITAL * sizes.label;
         self.put_centred(label, sizes.label, 0.5 * (frame.left + frame.right), line);
     }
@@ -292,7 +293,8 @@ impl Layout {
             self.put(label, sizes.tick, left + BAR + TICK + 2.0, y);
         }
         let x = left + BAR + TICK + 2.0 + widest + 4.0 + CAPITAL * sizes.label;
-        self.put_upwards(bar.label.clone(), sizes.label, x, 0.5 * (top + bottom));
+        let label = self.fitting((&bar.label, &bar.short), bottom - top);
+        self.put_upwards(label, sizes.label, x, 0.5 * (top + bottom));
         let y = Ticks { major, minor };
         let frame = Frame { left, right: left + BAR, top: body.0, bottom: body.1, y, ..Frame::default() };
         self.page.bar = Some((frame, bar.clone()));
@@ -343,50 +345,4 @@ pub(super) const POINT: f64 = 8.0;
 fn body(bar: &ColourBar, top: f64, bottom: f64) -> (f64, f64) {
     let room = |beyond: bool| if beyond { POINT } else { 0.0 };
     (top + room(bar.after), bottom - room(bar.before))
-}
-
-fn placed_ticks<'a>(scale: &Scale, major: &'a [Tick]) -> impl Iterator<Item = (f64, Label)> + use<'a> {
-    let scale = *scale;
-    major.iter().filter_map(move |t| Some((scale.place(t.at)?, t.label.clone())))
-}
-
-fn upright_ticks(axis: Option<&Axis>, height: f64, size: f64) -> Ticks {
-    let Some(axis) = axis else { return Ticks::default() };
-    let wanted = ((height / (3.4 * size)) as usize).clamp(2, 8);
-    ticks(axis.from, axis.to, axis.kind, wanted)
-}
-
-/// As many ticks as stand side by side with air between their labels.
-fn level_ticks(axis: &Axis, width: f64, size: f64) -> Ticks {
-    for wanted in (3..=9).rev() {
-        let found = ticks(axis.from, axis.to, axis.kind, wanted);
-        let mut ends: Vec<(f64, f64)> = placed_ticks(&axis.scale(), &found.major)
-            .map(|(at, label)| (at * width, 0.5 * text::length(&label, size)))
-            .collect();
-        ends.sort_by(|a, b| a.0.total_cmp(&b.0));
-        if ends.windows(2).all(|w| w[1].0 - w[1].1 - w[0].0 - w[0].1 > 1.2 * size) {
-            return found;
-        }
-    }
-    ticks(axis.from, axis.to, axis.kind, 2)
-}
-
-/// Ticks of the colour bar; an end that stands for more than itself says so.
-fn bar_ticks(bar: &ColourBar, height: f64, size: f64) -> Vec<Tick> {
-    let scale = bar.scale;
-    let mut found =
-        ticks(scale.from, scale.to, scale.kind, ((height / (3.2 * size)) as usize).clamp(2, 7)).major;
-    let air = 1.6 * size / height;
-    let signs = if scale.to > scale.from { ["≤", "≥"] } else { ["≥", "≤"] };
-    for (beyond, end, sign) in [(bar.before, scale.from, signs[0]), (bar.after, scale.to, signs[1])] {
-        if !beyond {
-            continue;
-        }
-        let Some(place) = scale.place(end) else { continue };
-        found.retain(|t| scale.place(t.at).is_some_and(|p| (p - place).abs() > air));
-        let rounded = format!("{end:.2e}").parse().unwrap_or(end);
-        let label = Label::plain(format!("{sign}\u{2009}")).join(ticks::bare(rounded));
-        found.push(Tick { at: end, label });
-    }
-    found
 }

@@ -117,3 +117,60 @@ pub(super) fn cover(
         });
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::figure::colour::Region;
+    use crate::figure::names;
+    use crate::system::{Axis, BodyRef, Key, Quantity, Spacing, System, Target};
+
+    #[test]
+    fn the_fonts_have_every_letter_that_figures_use() {
+        let system = System {
+            title: String::new(),
+            epoch_jd: None,
+            star: crate::system::Body { name: "star".to_owned(), stated: Default::default() },
+            planets: Vec::new(),
+            convention: Default::default(),
+        };
+        let units =
+            ["d", "deg", "Msun", "Mjup", "Mearth", "Rsun", "Rjup", "Rearth", "m/s", "km/s", "au", "JD"];
+        for key in Key::ALL {
+            for unit in units {
+                let axis = Axis {
+                    path: String::new(),
+                    target: Target { body: BodyRef::Star, key },
+                    quantity: Quantity::Value,
+                    from: 0.0,
+                    to: 1.0,
+                    unit,
+                    scale: 1.0,
+                    cells: 2,
+                    spacing: Spacing::Linear,
+                };
+                let label = names::axis_label(&axis, &system).text();
+                assert!(has_letters(&label), "{label}");
+            }
+        }
+        assert!(Region::ALL.iter().all(|r| has_letters(r.words())));
+        assert!(has_letters("⟨Y⟩ ≤ ≥ × ± σ ν ω Δ ° − ⁻⁰¹²³⁴⁵⁶⁷⁸⁹") && !has_letters("\u{10FFFD}"));
+    }
+
+    #[test]
+    fn sizes_are_those_of_printers() {
+        // DejaVu Sans is drawn on 2048 units per em; its figure zero is 1303 of them wide.
+        let length = length(&Label::plain("0"), 10.0);
+        assert!((length - 10.0 * 1303.0 / 2048.0).abs() < 1e-3, "{length}");
+    }
+
+    #[test]
+    fn turned_text_is_the_same_text_by_a_quarter_turn() {
+        let label = Label::plain("e").italic("ω").down("c");
+        let (mut level, mut upwards) = (Vec::new(), Vec::new());
+        cover(&label, 40.0, (10.0, 20.0), false, |x, y, share| level.push((x, y, share.to_bits())));
+        cover(&label, 40.0, (20.0, -10.0), true, |x, y, share| upwards.push((-y - 1, x, share.to_bits())));
+        assert!(level.len() > 500);
+        assert_eq!(level, upwards);
+    }
+}
