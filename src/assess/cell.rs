@@ -101,7 +101,7 @@ impl Cell {
 
     /// Puts the cell into a lane of `block`, in the map's variables.
     pub fn enter(&self, block: &mut Block, lane: usize, plan: &Plan) {
-        let mut alone = Block::new(1, self.start.gm.len());
+        let mut alone = Block::in_coordinates(plan.coordinates, 1, self.start.gm.len());
         alone.start(0, &self.start, &generic_tangent(&self.start), self.step_day, self.metric_day);
         to_map(&mut alone, plan.splitting());
         alone.copy_lane(0, block, lane);
@@ -232,7 +232,7 @@ impl Cell {
     /// A shorter run of the same steps has the same bits, so the end is found by halving.
     fn find_loss(&mut self, plan: &Plan, before: &Block, lane: usize) -> Loss {
         let run = |steps: usize| {
-            let mut alone = Block::new(1, self.start.gm.len());
+            let mut alone = Block::in_coordinates(plan.coordinates, 1, self.start.gm.len());
             before.copy_lane(lane, &mut alone, 0);
             advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: false });
             alone

@@ -37,7 +37,7 @@ pub fn follow(
         Ok(cell) => cell,
         Err(assessment) => return Some((*assessment, Vec::new())),
     };
-    let mut block = Block::new(1, configuration.planets.len());
+    let mut block = Block::in_coordinates(plan.coordinates, 1, configuration.planets.len());
     cell.enter(&mut block, 0, plan);
     let mut table = Table::new(&cell, rows);
     loop {

@@ -3,7 +3,7 @@
 use std::fmt;
 
 use crate::coords::Configuration;
-use crate::integrate::{SAMPLE_EVERY, Scheme};
+use crate::integrate::{Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
 use crate::system::{Encounter, Engine, Frame, Limits, Measure, Span, Step, Study};
 
@@ -60,6 +60,7 @@ pub struct Plan {
     pub step_why: StepWhy,
     /// "(2,2)" with corrector.
     pub scheme: &'static str,
+    pub coordinates: Coordinates,
     pub energy_error: f64,
     pub escape_au: Option<f64>,
     /// Stop below this many mutual Hill radii; absent: go through.
@@ -107,6 +108,7 @@ impl Plan {
             step_day,
             step_why,
             scheme,
+            coordinates: Coordinates::Heliocentric,
             energy_error: engine.energy_error,
             escape_au: limits.escape_au,
             encounter_hill,

@@ -29,6 +29,8 @@ pub fn plan() -> Plan {
         encounter_hill: Some(1.0),
         extent: true,
         megno: true,
+        block_steps: 508,
+        coordinates: abide::integrate::Coordinates::Heliocentric,
     }
 }
 
