@@ -8,7 +8,7 @@ use abide::integrate::{
 fn pair(outer_gm: f64) -> State {
     let gm = vec![outer_gm, 3e-4];
     let pos = vec![[-1.5, 2.0, 0.2], [0.8, 0.3, -0.1]];
-    let vel = vec![[-0.5, -0.4, 0.05], [-0.25, 0.95, 0.1]];
+    let vel = [[-0.5, -0.4, 0.05], [-0.25, 0.95, 0.1]];
     let total = 1.0 + gm[0] + gm[1];
     let shift = [0, 1, 2].map(|k| (gm[0] * vel[0][k] + gm[1] * vel[1][k]) / total);
     let vel = vel.iter().map(|v: &[f64; 3]| [0, 1, 2].map(|k| v[k] - shift[k])).collect();

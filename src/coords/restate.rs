@@ -18,7 +18,7 @@ use crate::system::{Body, Convention, Key, Measured, System};
 /// reference plane) the stated one stands, and what depends on it is counted from there. Uncertainties and
 /// units are kept.
 ///
-/// Errors: those of [`super::configure`], when the system itself states no configuration.
+/// Errors: those of [`super::configure()`], when the system itself states no configuration.
 pub fn restate(system: &System, configuration: &Configuration) -> Result<System, CoordsError> {
     let outlines = system.planets.iter().map(Outline::read).collect::<Result<Vec<_>, _>>()?;
     let order = masses::solve(system, &outlines)?.order;

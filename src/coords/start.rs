@@ -8,7 +8,7 @@ use crate::system::Frame;
 /// Finds bodies that touch before anything moved: a planet whose astrocentric pericentre is below the star's
 /// radius, or two planets closer than the sum of their radii.
 ///
-/// Kept apart from [`super::configure`], so that a cell of a survey can be judged lost where a single
+/// Kept apart from [`super::configure()`], so that a cell of a survey can be judged lost where a single
 /// configuration is refused. Errors: `InsideStar`, `Coincident`.
 pub fn check_start(configuration: &Configuration) -> Result<(), CoordsError> {
     let planets = &configuration.planets;

@@ -27,7 +27,7 @@ pub(super) struct Solved<R> {
     pub h_by_beta: R,
 }
 
-/// The limit of [`miss`] below which one correction of order five ends at round-off.
+/// The limit of [`Correction::miss`] below which one correction of order five ends at round-off.
 const CLOSE: f64 = 1e-7;
 
 /// Start value: five terms of the reversed series of h(s) about s = 0.
