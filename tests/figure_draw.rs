@@ -26,7 +26,7 @@ fn run_with(folder: &Path, finished: u64) {
     let (mut run, _) = Run::open(folder, &identity).unwrap();
     for cell in 0..finished {
         let found = assessment(Verdict::Chaotic, None, 2.0 + 8.0 * noise(cell), 1.0);
-        let record = abide::survey::Record { cell, values: vec![16.0, 0.1], assessment: found };
+        let record = abide::survey::Record { cell, values: vec![16.0, 0.1], assessment: found, filled: None };
         run.journal.append(&record).unwrap();
     }
     run.journal.close().unwrap();

@@ -14,7 +14,7 @@ use abide::verdict::{LostHow, Verdict};
 use figure_world::{SPAN_DAY, assessment, axis, records, study, system};
 
 fn try_map(study: &Study, system: &System, records: &[Record], column: &str) -> Result<Figure, FigureError> {
-    map(&MapInput { study, system, records, column, span_day: SPAN_DAY, caption: &[] })
+    map(&MapInput { study, system, records, reach: 0, column, span_day: SPAN_DAY, caption: &[] })
 }
 
 fn drawn(study: &Study, records: &[Record], column: &str) -> Figure {
@@ -30,7 +30,9 @@ fn raster(figure: &Figure) -> &[Paint] {
 
 fn one(study: &Study, found: Assessment) -> Vec<Record> {
     let cells: usize = study.axes.iter().map(|a| a.cells).product();
-    (0..cells as u64).map(|cell| Record { cell, values: vec![0.0; 2], assessment: found.clone() }).collect()
+    (0..cells as u64)
+        .map(|cell| Record { cell, values: vec![0.0; 2], assessment: found.clone(), filled: None })
+        .collect()
 }
 
 #[test]
@@ -49,7 +51,12 @@ fn each_cell_is_painted_by_its_verdict_and_number() {
     let records: Vec<Record> = found
         .into_iter()
         .enumerate()
-        .map(|(cell, assessment)| Record { cell: cell as u64, values: vec![0.0, 0.0], assessment })
+        .map(|(cell, assessment)| Record {
+            cell: cell as u64,
+            values: vec![0.0, 0.0],
+            assessment,
+            filled: None,
+        })
         .collect();
     let figure = drawn(&study, &records, "megno");
     let flat = Paint::Flat;

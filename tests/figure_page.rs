@@ -14,8 +14,16 @@ const WIDTHS: [f64; 4] = [60.0, 88.0, 130.0, 180.0];
 
 fn drawn(study: &Study, records: &[Record], column: &str) -> Figure {
     let caption = report::caption(study, &system(), &plan(), records);
-    map(&MapInput { study, system: &system(), records, column, span_day: SPAN_DAY, caption: &caption })
-        .unwrap()
+    map(&MapInput {
+        study,
+        system: &system(),
+        records,
+        reach: 0,
+        column,
+        span_day: SPAN_DAY,
+        caption: &caption,
+    })
+    .unwrap()
 }
 
 /// Two axes the other way round, a long title, logarithmic, incomplete.
@@ -280,7 +288,12 @@ fn each_cell_has_its_colour_from_edge_to_edge() {
     let found: Vec<Record> = cells
         .map(|cell| {
             let megno = 2.0 + 8.0 * figure_world::noise(cell);
-            Record { cell, values: vec![0.0; 2], assessment: assessment(Verdict::Chaotic, None, megno, 1.0) }
+            Record {
+                cell,
+                values: vec![0.0; 2],
+                assessment: assessment(Verdict::Chaotic, None, megno, 1.0),
+                filled: None,
+            }
         })
         .collect();
     let figure = drawn(&few, &found, "megno");
@@ -315,6 +328,7 @@ fn a_map_of_one_value_has_no_seam() {
         cell,
         values: vec![0.0; 2],
         assessment: assessment(Verdict::Chaotic, None, 5.0, 1.0),
+        filled: None,
     };
     let figure = drawn(&even, &(0..123 * 77).map(same).collect::<Vec<_>>(), "megno");
     let page = page(&figure, Width::PAGE).unwrap();

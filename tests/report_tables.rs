@@ -90,8 +90,8 @@ fn each_cell_has_its_numbers_and_gaps_stay_gaps() {
     lost.energy_error = None;
     let regular = assessment(Verdict::Regular, None, 2.0, 1.0);
     let records = [
-        Record { cell: 1, values: vec![18.25, 0.0], assessment: lost },
-        Record { cell: 4, values: vec![18.25, 0.3], assessment: regular },
+        Record { cell: 1, values: vec![18.25, 0.0], assessment: lost, filled: None },
+        Record { cell: 4, values: vec![18.25, 0.3], assessment: regular, filled: None },
     ];
     let text = cells_table(&study, &names(), &plan(), &records).to_ecsv().unwrap();
     let rows = rows(&text);
@@ -138,8 +138,12 @@ fn only_what_was_measured_has_a_column() {
     study.measure.clear();
     let mut plan = plan();
     (plan.extent, plan.megno) = (false, false);
-    let record =
-        Record { cell: 0, values: vec![1.0, 2.0], assessment: assessment(Verdict::Regular, None, 2.0, 1.0) };
+    let record = Record {
+        cell: 0,
+        values: vec![1.0, 2.0],
+        assessment: assessment(Verdict::Regular, None, 2.0, 1.0),
+        filled: None,
+    };
     let table = cells_table(&study, &names(), &plan, &[record]);
     let names: Vec<&str> = table.columns.iter().map(|c| c.name.as_str()).collect();
     assert!(
@@ -218,7 +222,12 @@ fn the_summary_counts_and_says_what_was_done() {
     let records: Vec<Record> = found
         .into_iter()
         .enumerate()
-        .map(|(cell, assessment)| Record { cell: cell as u64, values: vec![0.0; 2], assessment })
+        .map(|(cell, assessment)| Record {
+            cell: cell as u64,
+            values: vec![0.0; 2],
+            assessment,
+            filled: None,
+        })
         .collect();
     let text = report::summary_text(&study, &system(), &plan(), &records, Some(2));
     for line in [

@@ -76,6 +76,13 @@ pub struct SurveyArgs {
     /// Worker threads (default: all cores)
     #[arg(long)]
     pub threads: Option<usize>,
+    /// Integrate every cell; without it, on a grid of 40 000 cells or more, cells far from any other verdict take that
+    /// of all cells around them and are marked as filled
+    #[arg(long)]
+    pub every_cell: bool,
+    /// Fill such cells on a smaller grid too
+    #[arg(long, conflicts_with = "every_cell")]
+    pub fill: bool,
     /// Confirm a survey of more than 10 million cells
     #[arg(long)]
     pub really: bool,

@@ -66,6 +66,7 @@ impl Finished<'_> {
             study: self.study,
             system: self.system,
             records: self.records,
+            reach: 0,
             column: if measured { "megno" } else { "verdict" },
             span_day: self.plan.span_day,
             caption: &caption,

@@ -5,7 +5,7 @@ use std::time::{Duration, Instant, SystemTime};
 
 use indicatif::{HumanCount, HumanDuration, ProgressBar, ProgressStyle};
 
-use crate::survey::{Tally, utc};
+use crate::survey::{News, Stage, Tally, utc};
 use crate::verdict::Verdict;
 
 /// Pause before the first line of a log; each later pause is longer by half.
@@ -19,6 +19,8 @@ pub struct Progress {
     total: u64,
     /// Done before this process began: no part of its rate.
     before: u64,
+    /// Cells that were filled at the end.
+    filled: u64,
     started: Instant,
 }
 
@@ -38,17 +40,18 @@ impl Progress {
         } else {
             Face::Log { next: FIRST_PAUSE, pause: FIRST_PAUSE }
         };
-        Progress { face, before: tally.total(), tally, total, started: Instant::now() }
+        Progress { face, before: tally.total(), filled: 0, tally, total, started: Instant::now() }
     }
 
-    /// One more cell, or just the passing of time.
-    pub fn note(&mut self, verdict: Option<Verdict>) {
-        if let Some(verdict) = verdict {
-            self.tally.add(verdict);
-            return;
-        }
+    /// What the pool tells.
+    pub fn note(&mut self, news: News) {
+        let stage = match news {
+            News::Integrated(verdict) => return self.tally.add(verdict),
+            News::Filled(cells) => return self.filled += cells,
+            News::Passing(stage) => stage,
+        };
         let elapsed = self.started.elapsed();
-        let state = self.state(elapsed);
+        let state = self.state(elapsed, stage);
         match &mut self.face {
             Face::Bar(bar) => {
                 bar.set_position(self.tally.total());
@@ -69,9 +72,9 @@ impl Progress {
         let elapsed = self.started.elapsed();
         let line = format!(
             "{} in {}: {}",
-            count(self.tally.total(), self.total),
+            count(self.tally.total() + self.filled, self.total),
             HumanDuration(elapsed),
-            pieces(&[rate_words(self.rate(elapsed)), shares(&self.tally)])
+            pieces(&[rate_words(self.rate(elapsed)), filled_words(self.filled), shares(&self.tally)])
         );
         match self.face {
             Face::Bar(bar) => {
@@ -88,15 +91,33 @@ impl Progress {
         (done > 0 && elapsed > Duration::ZERO).then(|| done as f64 / elapsed.as_secs_f64())
     }
 
-    fn state(&self, elapsed: Duration) -> String {
+    fn state(&self, elapsed: Duration, stage: Stage) -> String {
         let rate = self.rate(elapsed);
-        let left = self.total.saturating_sub(self.tally.total());
+        let all = self.total.saturating_sub(self.tally.total());
+        let left = if stage.filling { all.min(expected(stage)) } else { all };
         let ending = match rate {
             Some(rate) if left > 0 => ending_words(Duration::try_from_secs_f64(left as f64 / rate).ok()),
             _ => String::new(),
         };
-        pieces(&[rate_words(rate), ending, shares(&self.tally)])
+        pieces(&[stage_words(stage), rate_words(rate), ending, shares(&self.tally)])
     }
+}
+
+/// Cells still to be integrated: those of this level, and twice as many on each level after it (what is integrated
+/// lies along lines, and these have twice the cells when the cells are half as wide).
+fn expected(stage: Stage) -> u64 {
+    stage.awaited.saturating_mul((2u64 << stage.levels_left.min(32)) - 1)
+}
+
+fn stage_words(stage: Stage) -> String {
+    match stage.stride {
+        0 | 1 => String::new(),
+        stride => format!("grid of every {stride}th cell").replace("2th", "2nd"),
+    }
+}
+
+fn filled_words(filled: u64) -> String {
+    if filled == 0 { String::new() } else { format!("{} filled", HumanCount(filled)) }
 }
 
 fn bar(total: u64, before: u64) -> ProgressBar {
@@ -165,16 +186,29 @@ mod tests {
     #[test]
     fn the_rate_counts_only_what_this_process_did() {
         let mut progress = Progress::new(200, tally(60, 40), true);
-        (0..20).for_each(|_| progress.note(Some(Verdict::Regular)));
+        (0..20).for_each(|_| progress.note(News::Integrated(Verdict::Regular)));
         assert_eq!(progress.rate(Duration::from_secs(2)), Some(10.0));
-        let state = progress.state(Duration::from_secs(2));
+        let stage = Stage { stride: 1, levels_left: 0, awaited: 80, filling: false };
+        let state = progress.state(Duration::from_secs(2), stage);
         assert!(state.starts_with("10 cells/s; ends about "), "{state}");
         assert!(state.ends_with("UTC (in 8 seconds); regular 67 %, lost 33 %"), "{state}");
     }
 
     #[test]
+    fn a_level_is_named_and_those_after_it_are_reckoned_in() {
+        let mut progress = Progress::new(1000, Tally::default(), true);
+        (0..20).for_each(|_| progress.note(News::Integrated(Verdict::Regular)));
+        let stage = Stage { stride: 4, levels_left: 2, awaited: 10, filling: true };
+        // 10 cells on this level, 20 and 40 on the next two.
+        let state = progress.state(Duration::from_secs(2), stage);
+        assert!(state.starts_with("grid of every 4th cell; 10 cells/s; ends about "), "{state}");
+        assert!(state.contains("(in 7 seconds)"), "{state}");
+    }
+
+    #[test]
     fn nothing_is_claimed_before_the_first_cell() {
         let progress = Progress::new(10, Tally::default(), true);
-        assert_eq!(progress.state(Duration::from_secs(5)), "");
+        let stage = Stage { stride: 1, levels_left: 0, awaited: 10, filling: true };
+        assert_eq!(progress.state(Duration::from_secs(5), stage), "");
     }
 }

@@ -6,7 +6,7 @@ use super::label::Label;
 use super::model::{Axis, ColourBar, Figure, Legend, Mark, Paint, Panel, Pin};
 use super::nominal::{Nominal, nominal};
 use super::resonance::resonances;
-use super::{FigureError, grid};
+use super::{FigureError, borrow, grid};
 use crate::survey::Record;
 use crate::system::{Study, System};
 use crate::units::YEAR_DAY;
@@ -16,8 +16,10 @@ use crate::units::YEAR_DAY;
 pub struct MapInput<'a> {
     pub study: &'a Study,
     pub system: &'a System,
-    /// Finished cells; those that are missing stay gaps.
+    /// Finished cells.
     pub records: &'a [Record],
+    /// So many cells around it a finished cell stands for those that are missing; 0: they stay gaps.
+    pub reach: usize,
     /// Name of the column shown as colour (with one axis: as height).
     pub column: &'a str,
     /// How long each cell was to be followed, day.
@@ -35,7 +37,7 @@ pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
         return Err(FigureError::Axes { found: study.axes.len() });
     }
     let column = Column::find(input.column, system, records)?;
-    let cells = paint(study, records, column)?;
+    let cells = borrow::paint(study, records, column, input.reach)?;
     let occurring = regions(&cells);
     let values: Vec<f64> =
         cells.iter().filter_map(|c| if let Paint::Value(v) = c { Some(*v) } else { None }).collect();
@@ -60,18 +62,6 @@ pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
     let mut caption: Vec<String> = pin_words(input, &panel).into_iter().collect();
     caption.extend_from_slice(input.caption);
     Ok(Figure { title: Label::plain(title), panels: vec![panel], colour_bar, legend, caption })
-}
-
-/// One paint per cell of the study.
-fn paint(study: &Study, records: &[Record], column: Column) -> Result<Vec<Paint>, FigureError> {
-    let total: usize = study.axes.iter().map(|a| a.cells).product();
-    let mut cells = vec![Paint::Flat(Region::Missing); total];
-    for record in records {
-        let outside = FigureError::CellOutside { cell: record.cell, cells: total as u64 };
-        let index = usize::try_from(record.cell).ok().filter(|i| *i < total).ok_or(outside)?;
-        cells[index] = column.paint(&record.assessment);
-    }
-    Ok(cells)
 }
 
 fn regions(cells: &[Paint]) -> Vec<Region> {

@@ -3,6 +3,7 @@
 //! [`map()`] makes the stability map of a run, [`series()`] the panels of one configuration through time; both
 //! return a [`Figure`], and [`render::png`] draws it at a physical width.
 
+mod borrow;
 mod colour;
 mod column;
 mod error;

@@ -22,12 +22,23 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
     );
     let total: usize = study.axes.iter().map(|a| a.cells).product();
     let cells = if records.len() < total {
-        format!("Incomplete: {} of {total} cells done", records.len())
+        format!("Incomplete: {} of {total} cells done (each shown over the cells around it)", records.len())
     } else {
         format!("{total} cells")
     };
+    let filled = records.iter().filter(|r| r.filled.is_some()).count();
+    let span = words::span_words(study, plan, words::printed);
+    let followed = if filled == 0 {
+        format!("{cells}, each followed for {span}.")
+    } else {
+        format!(
+            "{cells}: {} followed for {span}; {filled} far from any other verdict take that on which all cells around \
+             them agree, and the colour of the nearest of these.",
+            records.len() - filled
+        )
+    };
     vec![
-        format!("{cells}, each followed for {}.", words::span_words(study, plan, words::printed)),
+        followed,
         format!("Scheme {}, step {}; {energy}.", plan.scheme, words::step_words(plan, records)),
         format!("{}.", capital(&words::held_words(study, system))),
         format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),

@@ -3,7 +3,7 @@
 use super::VERSION;
 use super::table::{Column, Datatype, Entry, Meta, Table};
 use super::words;
-use crate::assess::{Extent, Plan, Range};
+use crate::assess::{Assessment, Extent, Plan, Range};
 use crate::survey::Record;
 use crate::system::{Measure, Study};
 use crate::units::{DEGREE, YEAR_DAY};
@@ -26,9 +26,9 @@ impl<'a> Columns<'a> {
         self.0.push((column, Box::new(move |r| take(r).filter(|v| !v.is_nan()).into())));
     }
 
-    fn count(&mut self, name: &str, meaning: &str, take: impl Fn(&Record) -> u64 + 'a) {
+    fn count(&mut self, name: &str, meaning: &str, take: impl Fn(&Record) -> Option<u64> + 'a) {
         let column = Column::new(name, "", Datatype::Count, meaning);
-        self.0.push((column, Box::new(move |r| take(r).into())));
+        self.0.push((column, Box::new(move |r| take(r).map_or(Entry::Absent, Entry::Count))));
     }
 
     fn text(&mut self, name: &str, meaning: &str, take: impl Fn(&Record) -> Option<String> + 'a) {
@@ -42,7 +42,7 @@ impl<'a> Columns<'a> {
 /// `planets` are the names in the order of the configuration. Times of the physics are in yr, the step in d.
 pub fn cells_table(study: &Study, planets: &[String], plan: &Plan, records: &[Record]) -> Table {
     let mut columns = Columns(Vec::new());
-    columns.count("cell", "index of the cell; the first axis runs fastest", |r| r.cell);
+    columns.count("cell", "index of the cell; the first axis runs fastest", |r| Some(r.cell));
     for (index, axis) in study.axes.iter().enumerate() {
         let meaning = format!("value of the axis {}", axis.path);
         columns.float(&axis.path, axis.unit, meaning, move |r| r.values.get(index).copied());
@@ -82,12 +82,12 @@ fn outcome_columns<'a>(columns: &mut Columns<'a>, planets: &'a [String]) {
     columns.text("verdict", "regular, chaotic, lost, undecided or untrusted", |r| {
         Some(r.assessment.verdict.word().to_owned())
     });
-    columns.float("end_time", "yr", "time reached", |r| Some(r.assessment.end_time_day / YEAR_DAY));
+    columns.float("end_time", "yr", "time reached", |r| computed(r).map(|a| a.end_time_day / YEAR_DAY));
     columns.text("lost_body", "planet that was lost", move |r| {
         r.assessment.loss.map(|loss| name_of(planets, loss.planet))
     });
     columns.text("lost_how", "escape, star, encounter or collision", |r| {
-        r.assessment.loss.map(|loss| loss.how.word().to_owned())
+        r.lost_how().map(|how| how.word().to_owned())
     });
     columns.text("lost_other", "the other planet of an encounter or a collision", move |r| {
         r.assessment.loss.and_then(|loss| loss.other).map(|other| name_of(planets, other))
@@ -148,9 +148,17 @@ fn trust_columns(columns: &mut Columns<'_>) {
     columns.float("energy_error", "", "largest relative energy error seen", |r| r.assessment.energy_error);
     let meaning = "largest relative error of the total angular momentum seen";
     columns.float("angular_momentum_error", "", meaning, |r| r.assessment.angular_momentum_error);
-    columns.text("scheme", "integration scheme", |r| Some(r.assessment.scheme.to_owned()));
-    columns.float("step", "d", "step of the final attempt", |r| Some(r.assessment.step_day));
-    columns.count("steps", "steps of the final attempt", |r| r.assessment.steps);
-    columns
-        .count("redone", "times the cell was redone with a smaller step", |r| u64::from(r.assessment.redone));
+    columns.text("scheme", "integration scheme", |r| computed(r).map(|a| a.scheme.to_owned()));
+    columns.float("step", "d", "step of the final attempt", |r| computed(r).map(|a| a.step_day));
+    columns.count("steps", "steps of the final attempt", |r| computed(r).map(|a| a.steps));
+    let meaning = "times the cell was redone with a smaller step";
+    columns.count("redone", meaning, |r| computed(r).map(|a| u64::from(a.redone)));
+    let meaning =
+        "not integrated: verdict of all the cells so many cells away along the axes; absent if integrated";
+    columns.count("filled", meaning, |r| r.filled.map(|filled| u64::from(filled.stride)));
+}
+
+/// What was found by integrating.
+fn computed(record: &Record) -> Option<&Assessment> {
+    record.filled.is_none().then_some(&record.assessment)
 }

@@ -46,6 +46,8 @@ pub struct Summary {
     /// Of the study.
     pub cells: u64,
     pub finished: u64,
+    /// Of the finished ones: not integrated, but taken from the cells around.
+    pub filled: u64,
     /// In the order of `Verdict::ALL`.
     pub verdicts: Vec<(Verdict, u64)>,
     /// Of the lost ones, in the order of `LostHow::ALL`.
@@ -79,10 +81,13 @@ impl Summary {
             title: study.title.clone().unwrap_or_else(|| system.title.clone()),
             cells: cells as u64,
             finished: records.len() as u64,
+            filled: records.iter().filter(|r| r.filled.is_some()).count() as u64,
             verdicts: Verdict::ALL.map(|v| (v, count(&|a| a.verdict == v))).to_vec(),
             losses: LostHow::ALL
                 .map(|how| {
-                    (how, count(&|a| a.verdict == Verdict::Lost && a.loss.is_some_and(|l| l.how == how)))
+                    let lost =
+                        |r: &&Record| r.assessment.verdict == Verdict::Lost && r.lost_how() == Some(how);
+                    (how, records.iter().filter(lost).count() as u64)
                 })
                 .to_vec(),
             redone: count(&|a| a.redone > 0),
@@ -113,6 +118,15 @@ impl Summary {
         } else {
             format!("cells        {}", self.cells)
         });
+        if self.filled > 0 {
+            let integrated = self.finished - self.filled;
+            lines.push(format!("  integrated {integrated} ({:.1} %)", self.share(integrated)));
+            lines.push(format!(
+                "  filled     {} ({:.1} %): far from any other verdict, they take that of all cells around them",
+                self.filled,
+                self.share(self.filled)
+            ));
+        }
         lines.push(format!("span         {}", self.span));
         for (verdict, count) in &self.verdicts {
             lines.push(format!("{:<12} {count} ({:.1} %)", verdict.word(), self.share(*count)));
@@ -182,6 +196,8 @@ impl Summary {
             "version": VERSION,
             "cells": self.cells,
             "finished": self.finished,
+            "integrated": self.finished - self.filled,
+            "filled": self.filled,
             "verdicts": verdicts,
             "lost_how": losses,
             "redone": self.redone,

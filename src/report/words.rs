@@ -64,7 +64,8 @@ pub(crate) fn span_words(study: &Study, plan: &Plan, number: fn(f64) -> String) 
 
 /// The steps that were really taken, and why.
 pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
-    let steps = records.iter().map(|r| r.assessment.step_day).filter(|s| s.is_finite());
+    let integrated = records.iter().filter(|r| r.filled.is_none());
+    let steps = integrated.map(|r| r.assessment.step_day).filter(|s| s.is_finite());
     let (low, high) = steps.fold((f64::INFINITY, 0.0f64), |(l, h), s| (l.min(s), h.max(s)));
     let size = if low.is_infinite() {
         plan.step_day.map_or_else(|| "each cell's own".to_owned(), |s| format!("{} d", short(s)))

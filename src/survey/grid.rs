@@ -13,7 +13,7 @@
 use super::SurveyError;
 use super::axis::{cell_count, cell_system, cell_values};
 use super::pool::{Made, Source};
-use crate::assess::{Assessment, Loss};
+use crate::assess::{Assessment, Loss, auto_step_day};
 use crate::coords::{self, Configuration, CoordsError};
 use crate::system::{Study, System};
 use crate::verdict::{LostHow, Verdict};
@@ -82,6 +82,16 @@ impl Grid {
 impl Source for Grid {
     fn cells(&self) -> u64 {
         cell_count(&self.study)
+    }
+
+    fn shape(&self) -> [usize; 2] {
+        let along = |axis: usize| self.study.axes.get(axis).map_or(1, |axis| axis.cells);
+        [along(0), along(1)]
+    }
+
+    /// In steps per day: the span is the same for all.
+    fn price(&self, cell: u64) -> f64 {
+        self.configuration(cell).map_or(0.0, |configuration| 1.0 / auto_step_day(&configuration))
     }
 
     fn values(&self, cell: u64) -> Vec<f64> {

@@ -6,6 +6,7 @@ use std::path::{Path, PathBuf};
 use std::time::{Duration, Instant};
 
 use super::bitmap::Bitmap;
+use super::view::View;
 use super::{Layout, Record, Tally};
 use crate::disk::{self, DiskError};
 
@@ -24,20 +25,57 @@ pub struct Journal {
 /// What an existing journal held.
 #[derive(Debug)]
 pub struct Recovered {
+    /// Integrated cells.
     pub done: Bitmap,
+    /// These and the filled ones.
+    pub settled: Bitmap,
+    /// What the integrated cells were found to be, by cell.
+    pub views: Vec<Option<View>>,
+    /// Of the integrated cells.
     pub tally: Tally,
     /// Lines (and the header, if it was damaged) that did not pass and are dropped.
     pub dropped: u64,
 }
 
+impl Recovered {
+    /// Of a run of `cells` cells that is just begun.
+    pub fn nothing(cells: u64) -> Recovered {
+        let length = usize::try_from(cells).expect("cells that are computed are countable in memory");
+        Recovered {
+            done: Bitmap::new(cells),
+            settled: Bitmap::new(cells),
+            views: vec![None; length],
+            tally: Tally::default(),
+            dropped: 0,
+        }
+    }
+
+    /// Whether this line says something new about its cell.
+    fn note(&mut self, record: &Record) -> bool {
+        if record.cell >= self.done.len() {
+            return false;
+        }
+        if record.filled.is_some() {
+            return self.settled.set(record.cell);
+        }
+        let new = self.done.set(record.cell);
+        if new {
+            self.settled.set(record.cell);
+            self.views[record.cell as usize] = Some(View::of(&record.assessment));
+            self.tally.add(record.assessment.verdict);
+        }
+        new
+    }
+}
+
 impl Journal {
     /// Opens or makes the journal of a run of `cells` cells.
     ///
-    /// Lines that fail their checksum, a torn last line and second lines of one cell are dropped; if there
-    /// were any, the good lines are first written to a new file that takes the journal's name.
+    /// Lines that fail their checksum, a torn last line and second lines of one cell are dropped (but an integrated
+    /// cell may follow its own filled line, which it replaces); if there were any, the good lines are first written to a new file that takes the journal's name.
     pub fn open(path: &Path, layout: &Layout, cells: u64) -> Result<(Journal, Recovered), DiskError> {
         let failed = |source| DiskError::Write { path: path.to_path_buf(), source };
-        let mut recovered = Recovered { done: Bitmap::new(cells), tally: Tally::default(), dropped: 0 };
+        let mut recovered = Recovered::nothing(cells);
         if path.exists() {
             recover(path, layout, &mut recovered)?;
         }
@@ -103,7 +141,7 @@ pub fn read(path: &Path, layout: &Layout, mut take: impl FnMut(Record) -> bool) 
 fn recover(path: &Path, layout: &Layout, recovered: &mut Recovered) -> Result<(), DiskError> {
     let fresh = disk::beside(path);
     let failed = |source| DiskError::Write { path: fresh.clone(), source };
-    recovered.dropped = read(path, layout, |record| note(recovered, &record))?;
+    recovered.dropped = read(path, layout, |record| recovered.note(&record))?;
     let whole = starts_with_header(path, layout)?;
     if whole && recovered.dropped == 0 {
         return Ok(());
@@ -111,9 +149,9 @@ fn recover(path: &Path, layout: &Layout, recovered: &mut Recovered) -> Result<()
     recovered.dropped += u64::from(!whole && recovered.dropped == 0);
     let mut kept = BufWriter::new(File::create(&fresh).map_err(failed)?);
     writeln!(kept, "{}", layout.header()).map_err(failed)?;
-    let mut seen = Bitmap::new(recovered.done.len());
+    let mut seen = Recovered::nothing(recovered.done.len());
     scan(path, layout, |line, record| {
-        let wanted = record.is_some_and(|r| r.cell < seen.len() && seen.set(r.cell));
+        let wanted = record.is_some_and(|r| seen.note(&r));
         if wanted {
             kept.write_all(line)?;
             kept.write_all(b"\n")?;
@@ -122,15 +160,6 @@ fn recover(path: &Path, layout: &Layout, recovered: &mut Recovered) -> Result<()
     })?;
     kept.flush().and_then(|()| kept.get_ref().sync_all()).map_err(failed)?;
     std::fs::rename(&fresh, path).map_err(failed)
-}
-
-/// Whether this is the first line of its cell, which then counts as done.
-fn note(recovered: &mut Recovered, record: &Record) -> bool {
-    let new = record.cell < recovered.done.len() && recovered.done.set(record.cell);
-    if new {
-        recovered.tally.add(record.assessment.verdict);
-    }
-    new
 }
 
 fn starts_with_header(path: &Path, layout: &Layout) -> Result<bool, DiskError> {

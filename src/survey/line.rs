@@ -5,7 +5,7 @@ use std::sync::Mutex;
 
 use serde::{Deserialize, Serialize};
 
-use super::Record;
+use super::record::{Filled, Record};
 use crate::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
 use crate::verdict::{LostHow, Verdict};
 
@@ -23,7 +23,8 @@ pub struct Layout {
 }
 
 /// Columns between the axes and the planets.
-const BEFORE_PLANETS: [&str; 9] = [
+const BEFORE_PLANETS: [&str; 10] = [
+    "filled",
     "verdict",
     "end_time_day",
     "lost_time_day",
@@ -34,6 +35,8 @@ const BEFORE_PLANETS: [&str; 9] = [
     "lyapunov_per_day",
     "lyapunov_error_per_day",
 ];
+/// How many columns after `verdict` the column `lost_how` comes.
+const LOST_HOW_AFTER_VERDICT: usize = 5;
 /// Columns of one planet.
 const OF_PLANET: [&str; 6] = ["a_min_au", "a_max_au", "e_min", "e_max", "i_min_rad", "i_max_rad"];
 /// Columns after the planets.
@@ -77,6 +80,11 @@ impl Layout {
         let a = &record.assessment;
         let mut line = Line(record.cell.to_string());
         record.values.iter().for_each(|value| line.put(number(*value)));
+        if let Some(filled) = record.filled {
+            self.encode_filled(filled, a.verdict, &mut line);
+            return self.sealed(line);
+        }
+        line.put("");
         line.put(a.verdict.word());
         line.put(number(a.end_time_day));
         line.put(optional(a.loss.map(|loss| loss.time_day)));
@@ -99,9 +107,28 @@ impl Layout {
         line.put(number(a.step_day));
         line.put(a.steps.to_string());
         line.put(a.redone.to_string());
+        self.sealed(line)
+    }
+
+    fn sealed(&self, mut line: Line) -> String {
         let checksum = self.checksum(&line.0);
         line.put(checksum);
         line.0
+    }
+
+    /// A filled cell has a verdict, maybe a way of loss, and nothing else: empty fields, not zeros.
+    fn encode_filled(&self, filled: Filled, verdict: Verdict, line: &mut Line) {
+        line.put(filled.stride.to_string());
+        line.put(verdict.word());
+        (0..LOST_HOW_AFTER_VERDICT - 1).for_each(|_| line.put(""));
+        line.put(filled.how.map_or("", LostHow::word));
+        (0..self.columns_after_how()).for_each(|_| line.put(""));
+    }
+
+    /// Columns between `lost_how` and the checksum.
+    fn columns_after_how(&self) -> usize {
+        let planets = if self.extent { self.planets.len() * OF_PLANET.len() } else { 0 };
+        BEFORE_PLANETS.len() - 2 - LOST_HOW_AFTER_VERDICT + planets + AFTER_PLANETS.len() - 1
     }
 
     fn encode_extent(&self, extent: &[Extent], line: &mut Line) {
@@ -134,8 +161,24 @@ impl Layout {
         for _ in &self.axes {
             values.push(fields.number()??);
         }
-        let assessment = self.decode_assessment(&mut fields)?;
-        fields.0.is_empty().then_some(Record { cell, values, assessment })
+        let record = match fields.whole()? {
+            Some(stride) => self.decode_filled(cell, values, u8::try_from(stride).ok()?, &mut fields)?,
+            None => Record::integrated(cell, values, self.decode_assessment(&mut fields)?),
+        };
+        fields.0.is_empty().then_some(record)
+    }
+
+    fn decode_filled(&self, cell: u64, values: Vec<f64>, stride: u8, fields: &mut Fields) -> Option<Record> {
+        let verdict = Verdict::from_word(&fields.next()?)?;
+        for _ in 0..LOST_HOW_AFTER_VERDICT - 1 {
+            fields.empty()?;
+        }
+        let how = fields.next()?;
+        let how = if how.is_empty() { None } else { Some(LostHow::from_word(&how)?) };
+        for _ in 0..self.columns_after_how() {
+            fields.empty()?;
+        }
+        Some(Record::filled(cell, values, verdict, Filled { stride, how }))
     }
 
     fn decode_assessment(&self, fields: &mut Fields) -> Option<Assessment> {
@@ -255,6 +298,11 @@ impl Fields<'_> {
             Some(inner) => inner.replace("\"\"", "\""),
             None => field.to_string(),
         })
+    }
+
+    /// Nothing where nothing must be.
+    fn empty(&mut self) -> Option<()> {
+        self.next()?.is_empty().then_some(())
     }
 
     /// Outer `None`: no number; inner `None`: absent.

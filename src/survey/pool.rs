@@ -1,17 +1,20 @@
-//! Threads that fill a run: cells are drawn in order, answered in any order, written by one thread.
+//! Threads that fill a run: cells are drawn as the schedule wants them, answered in any order, written by one
+//! thread.
 
 use std::any::Any;
 use std::cell::RefCell;
 use std::collections::BTreeSet;
 use std::panic::{AssertUnwindSafe, catch_unwind};
-use std::sync::Arc;
-use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{Receiver, RecvTimeoutError, SyncSender, sync_channel};
+use std::sync::{Arc, Condvar, Mutex, MutexGuard};
 use std::time::Duration;
 
-use super::bitmap::Bitmap;
 use super::error::Failure;
-use super::{Journal, Record, SurveyError};
+use super::refine::Policy;
+use super::schedule::{Schedule, Stage};
+use super::view::View;
+use super::{Journal, Record, Recovered, SurveyError};
 use crate::assess::{Assessment, Plan};
 use crate::coords::Configuration;
 use crate::disk::DiskError;
@@ -21,10 +24,20 @@ use crate::verdict::Verdict;
 const LOOK_EVERY: Duration = Duration::from_millis(100);
 /// Finished records that may wait for the writer; beyond it workers wait.
 const WAITING_RECORDS: usize = 1024;
+/// How long a worker without work waits for it before it looks whether to stop.
+const IDLE: Duration = Duration::from_millis(20);
 
 /// Where cells come from.
 pub trait Source: Send + Sync + 'static {
     fn cells(&self) -> u64;
+    /// Cells along each axis; the first runs fastest. One row if there is no grid.
+    fn shape(&self) -> [usize; 2] {
+        [usize::try_from(self.cells()).unwrap_or(usize::MAX), 1]
+    }
+    /// What a cell may cost, in any unit: only the order of the work follows from it.
+    fn price(&self, _cell: u64) -> f64 {
+        0.0
+    }
     /// The value on each axis.
     fn values(&self, cell: u64) -> Vec<f64>;
     fn make(&self, cell: u64) -> Made;
@@ -59,11 +72,21 @@ pub struct Desk<'a> {
     pub journal: &'a mut Journal,
     /// Set from outside to stop.
     pub stop: Arc<AtomicBool>,
-    /// Called with each verdict written, and without one about ten times a second.
-    pub watch: &'a mut dyn FnMut(Option<Verdict>),
+    pub watch: &'a mut dyn FnMut(News),
 }
 
-/// Fills the cells that are not in `done` with `threads` workers.
+/// What the pool tells while it works.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum News {
+    /// A cell was integrated.
+    Integrated(Verdict),
+    /// About ten times a second.
+    Passing(Stage),
+    /// So many cells took the verdict of those around them; at the end.
+    Filled(u64),
+}
+
+/// Integrates what `policy` wants and is not in `found`, with `threads` workers, and fills the rest.
 ///
 /// When stopped it returns at once: workers end with the process, or at their next answer; what they had in
 /// flight is dropped. A panic costs its own cell only: the others in the same batch are done again alone.
@@ -72,18 +95,19 @@ pub fn fill<S: Source, E: Engine>(
     source: Arc<S>,
     engine: E,
     plan: &Plan,
-    done: Bitmap,
+    policy: Policy,
+    found: Recovered,
     threads: usize,
-    desk: Desk<'_>,
+    mut desk: Desk<'_>,
 ) -> Result<Ended, SurveyError> {
-    let total = source.cells();
+    let Recovered { settled, views, .. } = found;
     let (send, receive) = sync_channel(WAITING_RECORDS);
     let work = Arc::new(Work {
+        schedule: Mutex::new(Schedule::new(source.shape(), policy, views)),
+        news: Condvar::new(),
         source,
         engine,
         plan: plan.clone(),
-        next: AtomicU64::new(0),
-        done,
         stop: Arc::clone(&desk.stop),
     });
     let pool = rayon::ThreadPoolBuilder::new()
@@ -96,7 +120,18 @@ pub fn fill<S: Source, E: Engine>(
     }
     // Only the workers hold senders now, so the channel ends when they do.
     drop(send);
-    write_down(receive, desk, total)
+    let ended = write_down(receive, &mut desk, work.source.cells(), || work.schedule().stage())?;
+    if ended == Ended::Complete {
+        let schedule = work.schedule();
+        let mut filled = 0;
+        for record in schedule.filled(&settled, |cell| work.source.values(cell)) {
+            desk.journal.append(&record)?;
+            filled += 1;
+        }
+        desk.journal.close()?;
+        (desk.watch)(News::Filled(filled));
+    }
+    Ok(ended)
 }
 
 enum Message {
@@ -105,9 +140,14 @@ enum Message {
 }
 
 /// The writer: records go to the journal as they come.
-fn write_down(receive: Receiver<Message>, desk: Desk<'_>, total: u64) -> Result<Ended, SurveyError> {
+fn write_down(
+    receive: Receiver<Message>,
+    desk: &mut Desk<'_>,
+    total: u64,
+    stage: impl Fn() -> Stage,
+) -> Result<Ended, SurveyError> {
     let mut failed = Vec::new();
-    let written = write_until_end(&receive, desk.journal, &desk.stop, desk.watch, &mut failed);
+    let written = write_until_end(&receive, desk, stage, &mut failed);
     // Workers must not go on for a writer that has left.
     desk.stop.store(true, Ordering::SeqCst);
     let ended = written?;
@@ -121,9 +161,8 @@ fn write_down(receive: Receiver<Message>, desk: Desk<'_>, total: u64) -> Result<
 
 fn write_until_end(
     receive: &Receiver<Message>,
-    journal: &mut Journal,
-    stop: &AtomicBool,
-    watch: &mut dyn FnMut(Option<Verdict>),
+    desk: &mut Desk<'_>,
+    stage: impl Fn() -> Stage,
     failed: &mut Vec<Failure>,
 ) -> Result<Ended, DiskError> {
     loop {
@@ -131,23 +170,24 @@ fn write_until_end(
             Ok(message) => Some(message),
             Err(RecvTimeoutError::Timeout) => None,
             Err(RecvTimeoutError::Disconnected) => {
-                let ended = if stop.load(Ordering::SeqCst) { Ended::Interrupted } else { Ended::Complete };
+                let ended =
+                    if desk.stop.load(Ordering::SeqCst) { Ended::Interrupted } else { Ended::Complete };
                 return Ok(ended);
             }
         };
         while let Some(now) = message.take() {
             match now {
                 Message::Finished(record) => {
-                    journal.append(&record)?;
-                    watch(Some(record.assessment.verdict));
+                    desk.journal.append(&record)?;
+                    (desk.watch)(News::Integrated(record.assessment.verdict));
                 }
                 Message::Failed(failure) => failed.push(failure),
             }
             message = receive.try_recv().ok();
         }
-        journal.flush()?;
-        watch(None);
-        if stop.load(Ordering::SeqCst) {
+        desk.journal.flush()?;
+        (desk.watch)(News::Passing(stage()));
+        if desk.stop.load(Ordering::SeqCst) {
             return Ok(Ended::Interrupted);
         }
     }
@@ -158,28 +198,44 @@ struct Work<S, E> {
     source: Arc<S>,
     engine: E,
     plan: Plan,
-    next: AtomicU64,
-    /// Done before this filling began.
-    done: Bitmap,
+    schedule: Mutex<Schedule>,
+    /// There may be cells to draw again.
+    news: Condvar,
     stop: Arc<AtomicBool>,
 }
 
 impl<S: Source, E: Engine> Work<S, E> {
     /// One worker: batches until no cell is left. A batch that panics is picked up cell by cell.
+    ///
+    /// A batch ends when no cell can be drawn for any of its lanes; then the worker waits for the answers of the
+    /// others, which may let cells be wanted.
     fn run(&self, send: &SyncSender<Message>) {
         let flight = RefCell::new(BTreeSet::new());
         loop {
             let mut draw = || self.draw();
             let broken = self.batch(&mut draw, &flight, send).err();
-            if self.stopped() || (broken.is_none() && flight.borrow().is_empty()) {
+            if self.stopped() {
                 return;
             }
             let cells = flight.take();
+            let none_left = broken.is_none() && cells.is_empty();
             cells.into_iter().for_each(|cell| self.alone(cell, send));
-            if broken.is_none() {
+            if none_left && !self.wait() {
                 return;
             }
         }
+    }
+
+    /// Waits until there may be cells to draw again; false when there will be none.
+    fn wait(&self) -> bool {
+        let schedule = self.schedule();
+        if schedule.is_complete() {
+            return false;
+        }
+        // The others may have answered since this worker found nothing, so the wait is short.
+        let waited = self.news.wait_timeout(schedule, IDLE);
+        drop(waited);
+        true
     }
 
     /// A cell of a broken batch by itself: either it was a neighbour's fault, or now its own is certain.
@@ -192,6 +248,7 @@ impl<S: Source, E: Engine> Work<S, E> {
                 .map_or_else(|| "the engine gave no answer".to_string(), |payload| panic_text(&payload));
             let what = format!("at {:?} on the axes: {what}", self.source.values(cell));
             self.post(send, Message::Failed(Failure { cell, what }));
+            self.tell(cell, View::broken());
         }
     }
 
@@ -224,8 +281,16 @@ impl<S: Source, E: Engine> Work<S, E> {
         send: &SyncSender<Message>,
     ) -> bool {
         flight.borrow_mut().remove(&cell);
-        let record = Record { cell, values: self.source.values(cell), assessment };
-        self.post(send, Message::Finished(Box::new(record))) && !self.stopped()
+        let view = View::of(&assessment);
+        let record = Record::integrated(cell, self.source.values(cell), assessment);
+        let posted = self.post(send, Message::Finished(Box::new(record)));
+        self.tell(cell, view);
+        posted && !self.stopped()
+    }
+
+    fn tell(&self, cell: u64, view: View) {
+        self.schedule().answer(cell, view);
+        self.news.notify_all();
     }
 
     /// Whether the writer is still there.
@@ -233,20 +298,14 @@ impl<S: Source, E: Engine> Work<S, E> {
         send.send(message).is_ok()
     }
 
-    /// The next cell in order that was not done before.
+    /// The next cell to be integrated, if there is one now.
     fn draw(&self) -> Option<u64> {
-        loop {
-            if self.stopped() {
-                return None;
-            }
-            let cell = self.next.fetch_add(1, Ordering::Relaxed);
-            if cell >= self.source.cells() {
-                return None;
-            }
-            if !self.done.has(cell) {
-                return Some(cell);
-            }
-        }
+        if self.stopped() { None } else { self.schedule().draw(|cell| self.source.price(cell)) }
+    }
+
+    fn schedule(&self) -> MutexGuard<'_, Schedule> {
+        // A panic comes from the engine, never from under the lock; what it guards is whole.
+        self.schedule.lock().unwrap_or_else(|poisoned| poisoned.into_inner())
     }
 
     fn stopped(&self) -> bool {

@@ -123,8 +123,8 @@ fn read_records(folder: &Path, manifest: &Manifest) -> Result<Vec<Record>, Surve
         }
         known
     })?;
-    // Lines of one cell are equal, so that no order among them is to be kept.
-    records.sort_unstable_by_key(|record: &Record| record.cell);
+    // Lines of one cell are equal, but that one may have been filled before it was integrated.
+    records.sort_unstable_by_key(|record: &Record| (record.cell, record.filled.is_some()));
     records.dedup_by_key(|record| record.cell);
     Ok(records)
 }

@@ -169,7 +169,7 @@ pub fn records(study: &Study) -> Vec<Record> {
             let period = value(&study.axes[0], cell % columns);
             let e = study.axes.get(1).map(|a| value(a, cell / columns));
             let assessment = fate(period, e.unwrap_or(0.14), noise(2 * cell), noise(2 * cell + 1));
-            Record { cell, values: std::iter::once(period).chain(e).collect(), assessment }
+            Record { cell, values: std::iter::once(period).chain(e).collect(), assessment, filled: None }
         })
         .collect()
 }

@@ -92,7 +92,7 @@ pub fn values(cell: u64) -> Vec<f64> {
 }
 
 pub fn record(cell: u64) -> Record {
-    Record { cell, values: values(cell), assessment: answer(cell) }
+    Record { cell, values: values(cell), assessment: answer(cell), filled: None }
 }
 
 /// Every 13th cell is settled without the engine.

@@ -12,7 +12,7 @@ use crate::figure::render::{self, RenderError, Width};
 use crate::figure::{self, Figure, MapInput};
 use crate::input::{self, StudyFile};
 use crate::report;
-use crate::survey::{self, Record, STUDY, SYSTEM, Stored, cell_count};
+use crate::survey::{self, COARSEST, Record, STUDY, SYSTEM, Stored, cell_count};
 
 /// Shown when no column is asked for and the run measured it.
 const FIRST_CHOICE: &str = "megno";
@@ -46,7 +46,9 @@ fn draw(file: &StudyFile, records: &[Record], asked: Option<&str>) -> Result<(Fi
     let measured = records.iter().any(|record| record.assessment.megno.is_some());
     let column = asked.unwrap_or(if measured { FIRST_CHOICE } else { SECOND_CHOICE });
     let caption = report::caption(study, system, &plan, records);
-    let map = MapInput { study, system, records, column, span_day: plan.span_day, caption: &caption };
+    // Cells are integrated coarse grid first, so that a run that is not complete has a coarse map.
+    let reach = COARSEST / 2;
+    let map = MapInput { study, system, records, reach, column, span_day: plan.span_day, caption: &caption };
     Ok((figure::map(&map).map_err(CliError::input)?, column.to_owned()))
 }
 
@@ -57,7 +59,7 @@ fn file_name(column: &str) -> PathBuf {
 fn say(file: &StudyFile, finished: usize, path: &Path) {
     let cells = cell_count(&file.study);
     if (finished as u64) < cells {
-        eprintln!("note: {finished} of {cells} cells are done; the others are left white");
+        eprintln!("note: {finished} of {cells} cells are done; each is shown over the cells around it");
     }
     eprintln!("wrote {}", path.display());
 }

@@ -13,10 +13,13 @@ use crate::cli::outputs::Finished;
 use crate::cli::progress::Progress;
 use crate::cli::vary;
 use crate::coords;
+use crate::figure;
 use crate::input::{self, StudyFile};
 use crate::survey::{
-    Bitmap, Desk, Ended, Found, Grid, Identity, OUTPUTS, Run, Source, SurveyError, Tally, cell_count, fill,
+    Calm, Desk, Ended, Found, Grid, Identity, LARGE, OUTPUTS, Policy, Recovered, Run, Source, SurveyError,
+    cell_count, fill,
 };
+use crate::system::Study;
 
 /// More cells than this need `--really`.
 const MANY_CELLS: u64 = 10_000_000;
@@ -31,10 +34,10 @@ pub fn run(args: SurveyArgs) -> Result<ExitCode, CliError> {
     wish.say_found(&found);
     let stop = stop_on_signal()?;
     let Found { recovered, .. } = found;
-    let complete = recovered.done.count() == wish.grid.cells();
+    let complete = wish.is_complete(&recovered);
     if !complete {
         wish.say_settled();
-        let ended = wish.fill(&mut run, recovered.done, recovered.tally, stop)?;
+        let ended = wish.fill(&mut run, recovered, stop)?;
         if ended == Ended::Interrupted {
             return Ok(wish.say_interrupted());
         }
@@ -49,6 +52,8 @@ struct Wish {
     plan: Plan,
     folder: PathBuf,
     threads: usize,
+    /// Cells may take the verdict of those around them.
+    filling: bool,
     quiet: bool,
     json: bool,
 }
@@ -64,7 +69,23 @@ impl Wish {
         let nominal = coords::configure(system).map_err(CliError::input)?;
         let plan = Plan::for_study(&file.study, &nominal);
         let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
-        Ok(Wish { grid: Arc::new(grid), plan, folder, threads, quiet: args.quiet, json: args.json, file })
+        let filling = args.fill || !args.every_cell && is_large(&file.study);
+        let grid = Arc::new(grid);
+        Ok(Wish { grid, plan, folder, threads, filling, quiet: args.quiet, json: args.json, file })
+    }
+
+    /// Filled cells of an earlier command count unless every cell is wanted now.
+    fn is_complete(&self, found: &Recovered) -> bool {
+        let done = if self.filling { &found.settled } else { &found.done };
+        done.count() == self.grid.cells()
+    }
+
+    fn policy(&self) -> Policy {
+        if !self.filling {
+            return Policy::every_cell();
+        }
+        let nominal = figure::nominal_cell(&self.file.study, &self.file.system.system);
+        Policy::filling(Calm::under(&self.plan), nominal.into_iter().collect())
     }
 
     fn identity(&self) -> Identity {
@@ -83,19 +104,14 @@ impl Wish {
         }
     }
 
-    fn fill(
-        &self,
-        run: &mut Run,
-        done: Bitmap,
-        tally: Tally,
-        stop: Arc<AtomicBool>,
-    ) -> Result<Ended, CliError> {
-        let mut progress = Progress::new(self.grid.cells(), tally, self.quiet);
-        let desk = Desk { journal: &mut run.journal, stop, watch: &mut |verdict| progress.note(verdict) };
+    fn fill(&self, run: &mut Run, found: Recovered, stop: Arc<AtomicBool>) -> Result<Ended, CliError> {
+        let mut progress = Progress::new(self.grid.cells(), found.tally.clone(), self.quiet);
+        let desk = Desk { journal: &mut run.journal, stop, watch: &mut |news| progress.note(news) };
         let engine = |plan: &Plan, next: crate::survey::Next<'_>, done: crate::survey::Done<'_>| {
             assess::run_batch(plan, next, done);
         };
-        let ended = fill(Arc::clone(&self.grid), engine, &self.plan, done, self.threads, desk);
+        let source = Arc::clone(&self.grid);
+        let ended = fill(source, engine, &self.plan, self.policy(), found, self.threads, desk);
         progress.finish();
         ended.map_err(told)
     }
@@ -126,7 +142,7 @@ impl Wish {
 
     fn say_found(&self, found: &Found) {
         let (folder, cells) = (self.folder.display(), self.grid.cells());
-        let done = found.recovered.done.count();
+        let (done, settled) = (found.recovered.done.count(), found.recovered.settled.count());
         if found.recovered.dropped > 0 {
             let lines = found.recovered.dropped;
             self.say(format_args!(
@@ -137,12 +153,20 @@ impl Wish {
         if found.only_layout {
             self.say(format_args!("the files differ from those of the run in comments and layout only"));
         }
-        if found.resumed && done == cells {
-            self.say(format_args!("{folder} is finished: all {cells} cells are done"));
+        if found.resumed && self.is_complete(&found.recovered) {
+            let filled = settled - done;
+            let among = if filled > 0 { format!(", {filled} of them filled") } else { String::new() };
+            self.say(format_args!("{folder} is finished: all {cells} cells are done{among}"));
         } else if found.resumed {
             self.say(format_args!("{folder}: goes on, {done} of {cells} cells are done"));
         } else {
             self.say(format_args!("{folder}: {cells} cells on {} threads", self.threads));
+        }
+        if self.filling && !self.is_complete(&found.recovered) {
+            self.say(format_args!(
+                "coarse grid first; cells far from any other verdict take that of all cells around them and are marked as \
+                 filled (--every-cell integrates them too)"
+            ));
         }
     }
 
@@ -193,6 +217,11 @@ fn read(args: &SurveyArgs) -> Result<(StudyFile, String), CliError> {
     let file = input::read_study(&args.study).map_err(CliError::input)?;
     let name = args.study.file_stem().unwrap_or_default().to_string_lossy().into_owned();
     Ok((file, name))
+}
+
+/// Whether cells are filled when nothing is said: a map of two axes whose cells are small against its features.
+fn is_large(study: &Study) -> bool {
+    study.axes.len() == 2 && cell_count(study) >= LARGE
 }
 
 fn threads(wished: Option<usize>) -> Result<usize, CliError> {
