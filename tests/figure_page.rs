@@ -91,6 +91,7 @@ fn figures() -> Vec<(String, Figure)> {
         study: &wide,
         system: &three,
         records: &found,
+        reach: 0,
         column: "megno",
         span_day: SPAN_DAY,
         caption: &caption,

@@ -8,7 +8,7 @@ use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
 use std::time::{Duration, Instant};
 
-use abide::survey::{Desk, Ended, Run, SurveyError, fill};
+use abide::survey::{Desk, Ended, News, Policy, Run, SurveyError, fill};
 use survey_support::{Fake, engine, identity, plan, right_table, run, scramble, table};
 
 const NONE: Duration = Duration::ZERO;
@@ -46,8 +46,8 @@ fn a_stop_keeps_what_was_finished_and_the_rest_follows_later() {
     let (mut open, found) = Run::open(folder.path(), &identity(300)).unwrap();
     let stop = Arc::new(AtomicBool::new(false));
     let mut seen = 0;
-    let mut watch = |verdict: Option<_>| {
-        seen += u64::from(verdict.is_some());
+    let mut watch = |news: News| {
+        seen += u64::from(matches!(news, News::Integrated(_)));
         if seen >= 50 {
             stop.store(true, Ordering::SeqCst);
         }
@@ -55,7 +55,7 @@ fn a_stop_keeps_what_was_finished_and_the_rest_follows_later() {
     let desk = Desk { journal: &mut open.journal, stop: Arc::clone(&stop), watch: &mut watch };
     let source = Arc::new(Fake { cells: 300 });
     let slow = engine(Duration::from_millis(1), |_| {});
-    let ended = fill(source, slow, &plan(), found.recovered.done, 2, desk).unwrap();
+    let ended = fill(source, slow, &plan(), Policy::every_cell(), found.recovered, 2, desk).unwrap();
     assert_eq!(ended, Ended::Interrupted);
     drop(open);
 
@@ -77,8 +77,7 @@ fn a_stop_does_not_wait_for_a_cell_that_takes_long() {
     let (mut open, found) = Run::open(folder.path(), &identity(50)).unwrap();
     let stop = Arc::new(AtomicBool::new(false));
     let (seen, started) = (Arc::clone(&stop), Instant::now());
-    let mut watch =
-        |_: Option<_>| seen.store(started.elapsed() > Duration::from_millis(150), Ordering::SeqCst);
+    let mut watch = |_: News| seen.store(started.elapsed() > Duration::from_millis(150), Ordering::SeqCst);
     let desk = Desk { journal: &mut open.journal, stop, watch: &mut watch };
     let endless = engine(NONE, |cell| {
         if cell == 20 {
@@ -87,7 +86,9 @@ fn a_stop_does_not_wait_for_a_cell_that_takes_long() {
             }
         }
     });
-    let ended = fill(Arc::new(Fake { cells: 50 }), endless, &plan(), found.recovered.done, 2, desk).unwrap();
+    let ended =
+        fill(Arc::new(Fake { cells: 50 }), endless, &plan(), Policy::every_cell(), found.recovered, 2, desk)
+            .unwrap();
     assert_eq!(ended, Ended::Interrupted);
     drop(open);
     run(folder.path(), 50, 2, engine(NONE, |_| {})).unwrap();

@@ -10,7 +10,9 @@ use std::time::Duration;
 
 use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range, StepWhy};
 use abide::coords::{Configuration, Elements, Planet};
-use abide::survey::{Desk, Done, Ended, Identity, Made, Next, Record, Run, Source, SurveyError, fill};
+use abide::survey::{
+    Desk, Done, Ended, Identity, Made, Next, Policy, Record, Run, Source, SurveyError, fill,
+};
 use abide::system::Frame;
 use abide::verdict::{LostHow, Verdict};
 
@@ -169,7 +171,8 @@ pub fn run(
 ) -> Result<Ended, SurveyError> {
     let (mut run, found) = Run::open(folder, &identity(cells))?;
     let desk = Desk { journal: &mut run.journal, stop: Arc::new(AtomicBool::new(false)), watch: &mut |_| {} };
-    fill(Arc::new(Fake { cells }), engine, &plan(), found.recovered.done, threads, desk)
+    let source = Arc::new(Fake { cells });
+    fill(source, engine, &plan(), Policy::every_cell(), found.recovered, threads, desk)
 }
 
 /// The table that stands for all that is made from a complete run.
