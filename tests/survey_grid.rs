@@ -63,7 +63,7 @@ fn study(axes: Vec<Axis>) -> Study {
         span: Span::Days(1e4),
         measure: vec![Measure::Megno],
         axes,
-        limits: Limits { escape_au: None, encounter: Encounter::Off },
+        limits: Limits { escape_au: None, encounter: Encounter::Off, stop_when_chaotic: false },
         engine: Engine { scheme: "auto".to_string(), step: Step::Auto, energy_error: 1e-7 },
     }
 }

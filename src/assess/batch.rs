@@ -22,6 +22,19 @@ pub fn assess(configuration: &Configuration, plan: &Plan) -> Assessment {
     answer.expect("a configuration that was fed is answered")
 }
 
+/// What a batch did, in lanes: a lane-block is one lane through one block of steps.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct BatchWork {
+    /// Lane-blocks that the processor went through.
+    pub offered: u64,
+    /// Those of them that had a cell.
+    pub used: u64,
+    /// Cells put into a lane for the first time.
+    pub entered: u64,
+    /// Times a cell was started again with a smaller step.
+    pub again: u64,
+}
+
 /// Draws cells from `next` until it gives none, answers each through `done` in the order they finish.
 ///
 /// All configurations have the same number of planets. `done` returns whether to go on; at `false` the cells
@@ -30,8 +43,8 @@ pub fn run_batch(
     plan: &Plan,
     next: impl FnMut() -> Option<(u64, Configuration)>,
     done: impl FnMut(u64, Assessment) -> bool,
-) {
-    run_lanes(Level::chosen().width(), plan, next, done);
+) -> BatchWork {
+    run_lanes(Level::chosen().width(), plan, next, done)
 }
 
 /// A cell and its number, in its lane.
@@ -42,8 +55,9 @@ fn run_lanes(
     plan: &Plan,
     mut next: impl FnMut() -> Option<(u64, Configuration)>,
     mut done: impl FnMut(u64, Assessment) -> bool,
-) {
-    let Some(first) = next() else { return };
+) -> BatchWork {
+    let mut work = BatchWork::default();
+    let Some(first) = next() else { return work };
     let mut block = Block::in_coordinates(plan.coordinates, width, first.1.planets.len());
     let mut waiting = Some(first);
     let mut seats: Vec<Seat> = (0..width).map(|_| None).collect();
@@ -56,31 +70,37 @@ fn run_lanes(
                     Ok(cell) => {
                         cell.enter(&mut block, lane, plan);
                         seats[lane] = Some((number, cell));
+                        work.entered += 1;
                     }
                     Err(assessment) => {
                         if !done(number, *assessment) {
-                            return;
+                            return work;
                         }
                     }
                 }
             }
         }
         if seats.iter().all(Option::is_none) {
-            return;
+            return work;
         }
+        work.offered += width as u64;
+        work.used += seats.iter().flatten().count() as u64;
         let before = block.clone();
         let corrected = one_block(&mut block, plan);
         for (lane, seat) in seats.iter_mut().enumerate() {
             let Some((number, cell)) = seat else { continue };
             match cell.look(plan, &before, &mut block, &corrected, lane) {
                 Next::GoOn => {}
-                Next::Again => cell.enter(&mut block, lane, plan),
+                Next::Again => {
+                    cell.enter(&mut block, lane, plan);
+                    work.again += 1;
+                }
                 Next::End(assessment) => {
                     let number = *number;
                     block.retire(lane);
                     *seat = None;
                     if !done(number, *assessment) {
-                        return;
+                        return work;
                     }
                 }
             }

@@ -7,7 +7,7 @@ mod one;
 mod plan;
 
 pub use assessment::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
-pub use batch::{assess, run_batch};
+pub use batch::{BatchWork, assess, run_batch};
 pub use one::{Row, follow};
 pub use plan::{
     FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day, innermost_period_day,

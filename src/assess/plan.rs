@@ -67,6 +67,8 @@ pub struct Plan {
     pub encounter_hill: Option<f64>,
     pub extent: bool,
     pub megno: bool,
+    /// A cell ends as chaotic once nothing that follows could make it regular; what would be lost later is not seen.
+    pub stop_when_chaotic: bool,
     /// Steps between two looks at a cell, a multiple of [`SAMPLE_EVERY`]. A cell's steps are a whole number of blocks.
     pub block_steps: usize,
 }
@@ -114,6 +116,7 @@ impl Plan {
             encounter_hill,
             extent: true,
             megno: true,
+            stop_when_chaotic: limits.stop_when_chaotic,
             block_steps: block_steps(span_day / step_day.unwrap_or(auto)),
         }
     }

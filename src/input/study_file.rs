@@ -16,7 +16,7 @@ use crate::units::{Dimension, Unit};
 
 const TOP_KEYS: [&str; 7] = ["title", "system", "span", "measure", "axis", "limits", "engine"];
 const AXIS_KEYS: [&str; 6] = ["vary", "from", "to", "cells", "spacing", "as"];
-const LIMITS_KEYS: [&str; 2] = ["escape", "encounter"];
+const LIMITS_KEYS: [&str; 3] = ["escape", "encounter", "stop_when_chaotic"];
 const ENGINE_KEYS: [&str; 4] = ["scheme", "coordinates", "step", "energy_error"];
 
 /// Cells along an axis that does not say.
@@ -28,7 +28,8 @@ pub(crate) const DEFAULT_ENCOUNTER_HILL: f64 = 1.0;
 
 impl Default for Limits {
     fn default() -> Limits {
-        Limits { escape_au: None, encounter: Encounter::Stop { hill: DEFAULT_ENCOUNTER_HILL } }
+        let encounter = Encounter::Stop { hill: DEFAULT_ENCOUNTER_HILL };
+        Limits { escape_au: None, encounter, stop_when_chaotic: false }
     }
 }
 
@@ -226,6 +227,9 @@ fn limits(source: &Source, top: &RawTable) -> Result<Limits, InputError> {
         let allowed = "\"off\", or mutual Hill radii as \"1 hill\"";
         let text = entry.text(source, about, allowed)?;
         limits.encounter = read_encounter(text, allowed).map_err(|fail| entry.fail(source, about, fail))?;
+    }
+    if let Some(entry) = table.get("stop_when_chaotic") {
+        limits.stop_when_chaotic = entry.flag(source, about)?;
     }
     Ok(limits)
 }

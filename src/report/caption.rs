@@ -37,8 +37,9 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
             records.len() - filled
         )
     };
+    let early = words::early_end_words(plan).map_or_else(String::new, |w| format!(" Chaotic cells: {w}."));
     vec![
-        followed,
+        followed + &early,
         format!("Scheme {}, step {}; {energy}.", plan.scheme, words::step_words(plan, records)),
         format!("{}.", capital(&words::held_words(study, system))),
         format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),

@@ -63,6 +63,8 @@ pub struct Summary {
     pub energy_error_target: f64,
     pub held: String,
     pub convention: String,
+    /// Absent when chaotic cells were followed to the end of the span.
+    pub chaotic_ended: Option<&'static str>,
 }
 
 impl Summary {
@@ -103,6 +105,7 @@ impl Summary {
             energy_error_target: plan.energy_error,
             held: words::held_words(study, system),
             convention: words::convention_words(system.convention, system.epoch_jd),
+            chaotic_ended: words::early_end_words(plan),
         }
     }
 
@@ -130,6 +133,9 @@ impl Summary {
         lines.push(format!("span         {}", self.span));
         for (verdict, count) in &self.verdicts {
             lines.push(format!("{:<12} {count} ({:.1} %)", verdict.word(), self.share(*count)));
+            if let Some(ended) = self.chaotic_ended.filter(|_| *verdict == Verdict::Chaotic) {
+                lines.push(format!("  {ended}"));
+            }
             if *verdict == Verdict::Lost {
                 for (how, count) in self.losses.iter().filter(|(_, count)| *count > 0) {
                     lines.push(format!("  {:<10} {count} ({:.1} %)", how.word(), self.share(*count)));
@@ -218,6 +224,7 @@ impl Summary {
             "step": self.step,
             "axes": self.held,
             "convention": self.convention,
+            "chaotic_ended": self.chaotic_ended,
         })
     }
 }

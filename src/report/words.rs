@@ -62,6 +62,11 @@ pub(crate) fn span_words(study: &Study, plan: &Plan, number: fn(f64) -> String) 
     }
 }
 
+/// What must be known about cells that were ended for their chaos; nothing where none could be.
+pub(crate) fn early_end_words(plan: &Plan) -> Option<&'static str> {
+    plan.stop_when_chaotic.then_some("ended once certain; a later loss is not seen")
+}
+
 /// The steps that were really taken, and why.
 pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
     let integrated = records.iter().filter(|r| r.filled.is_none());

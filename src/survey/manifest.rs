@@ -45,6 +45,7 @@ pub struct PlanWords {
     pub encounter_hill: Option<f64>,
     pub megno: bool,
     pub extent: bool,
+    pub stop_when_chaotic: bool,
 }
 
 impl PlanWords {
@@ -59,6 +60,7 @@ impl PlanWords {
             encounter_hill: plan.encounter_hill,
             megno: plan.megno,
             extent: plan.extent,
+            stop_when_chaotic: plan.stop_when_chaotic,
         }
     }
 }

@@ -86,6 +86,8 @@ pub struct Limits {
     /// apocentre of the configuration.
     pub escape_au: Option<f64>,
     pub encounter: Encounter,
+    /// End a cell as chaotic once its chaos is certain: cheaper, but blind to a later loss.
+    pub stop_when_chaotic: bool,
 }
 
 /// Absent means auto.

@@ -76,7 +76,11 @@ pub fn study(columns: usize, rows: usize) -> Study {
         span: Span::Orbits(1e4),
         measure: vec![Measure::Megno, Measure::Lyapunov, Measure::Extent],
         axes: vec![axis(1, Key::Period, (15.5, 21.0, columns)), axis(1, Key::Eccentricity, (0.0, 0.3, rows))],
-        limits: Limits { escape_au: None, encounter: Encounter::Stop { hill: 1.0 } },
+        limits: Limits {
+            escape_au: None,
+            encounter: Encounter::Stop { hill: 1.0 },
+            stop_when_chaotic: false,
+        },
         engine: Engine { scheme: "auto".to_owned(), step: Step::Auto, energy_error: 1e-7 },
     }
 }

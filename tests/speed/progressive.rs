@@ -15,7 +15,9 @@ use abide::verdict::Verdict;
 fn main() {
     // Cargo adds `--bench`.
     let runs: Vec<String> = std::env::args().skip(1).filter(|word| !word.starts_with("--")).collect();
-    println!("| run | cells | neighbours differ | integrated | of the steps | differing | of these lost/not lost |");
+    println!(
+        "| run | cells | neighbours differ | integrated | of the steps | differing | of these lost/not lost |"
+    );
     println!("| --- | --- | --- | --- | --- | --- | --- |");
     for run in runs {
         match row(Path::new(&run)) {

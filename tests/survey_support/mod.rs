@@ -31,6 +31,7 @@ pub fn plan() -> Plan {
         encounter_hill: Some(1.0),
         extent: true,
         megno: true,
+        stop_when_chaotic: false,
         block_steps: 508,
         coordinates: abide::integrate::Coordinates::Heliocentric,
     }

@@ -4,9 +4,9 @@ use std::io::{ErrorKind, Write};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use std::sync::Arc;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
 
-use crate::assess::{self, Plan};
+use crate::assess::{self, BatchWork, Plan};
 use crate::cli::CliError;
 use crate::cli::args::SurveyArgs;
 use crate::cli::outputs::Finished;
@@ -107,12 +107,17 @@ impl Wish {
     fn fill(&self, run: &mut Run, found: Recovered, stop: Arc<AtomicBool>) -> Result<Ended, CliError> {
         let mut progress = Progress::new(self.grid.cells(), found.tally.clone(), self.quiet);
         let desk = Desk { journal: &mut run.journal, stop, watch: &mut |news| progress.note(news) };
-        let engine = |plan: &Plan, next: crate::survey::Next<'_>, done: crate::survey::Done<'_>| {
-            assess::run_batch(plan, next, done);
+        let lanes = Arc::new(Lanes::default());
+        let counted = Arc::clone(&lanes);
+        let engine = move |plan: &Plan, next: crate::survey::Next<'_>, done: crate::survey::Done<'_>| {
+            counted.add(assess::run_batch(plan, next, done));
         };
         let source = Arc::clone(&self.grid);
         let ended = fill(source, engine, &self.plan, self.policy(), found, self.threads, desk);
         progress.finish();
+        if let Some(share) = lanes.share() {
+            self.say(format_args!("lanes with a cell: {:.1} % of those worked through", 100.0 * share));
+        }
         ended.map_err(told)
     }
 
@@ -193,6 +198,25 @@ impl Wish {
             self.folder.display()
         ));
         ExitCode::from(INTERRUPTED)
+    }
+}
+
+/// Lane-blocks of all workers.
+#[derive(Default)]
+struct Lanes {
+    offered: AtomicU64,
+    used: AtomicU64,
+}
+
+impl Lanes {
+    fn add(&self, work: BatchWork) {
+        self.offered.fetch_add(work.offered, Ordering::Relaxed);
+        self.used.fetch_add(work.used, Ordering::Relaxed);
+    }
+
+    fn share(&self) -> Option<f64> {
+        let offered = self.offered.load(Ordering::Relaxed);
+        (offered > 0).then(|| self.used.load(Ordering::Relaxed) as f64 / offered as f64)
     }
 }
 
