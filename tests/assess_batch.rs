@@ -115,7 +115,7 @@ fn certain_chaos_ends_early_and_changes_no_other_verdict() {
     let chaotic = to_the_end.values().filter(|a| a.verdict == Verdict::Chaotic).count();
     assert!(chaotic > 40 && early > chaotic / 2, "{early} ended early, {chaotic} chaotic");
     assert!(less.used < all.used, "{less:?} {all:?}");
-    assert_eq!((early, less.used), (0, 0));
+    assert_eq!((early, less.used), (72, 11_593));
 }
 
 #[test]

@@ -36,6 +36,57 @@ fn one(study: &Study, found: Assessment) -> Vec<Record> {
 }
 
 #[test]
+fn a_filled_cell_has_the_colour_of_the_nearest_integrated_one_of_its_verdict() {
+    let study = study(6, 1);
+    let filled = |cell, verdict, how| {
+        Record::filled(cell, vec![0.0; 2], verdict, abide::survey::Filled { stride: 2, how })
+    };
+    let integrated = |cell, assessment| Record::integrated(cell, vec![0.0; 2], assessment);
+    let records = [
+        integrated(0, assessment(Verdict::Regular, None, 2.01, 1.0)),
+        filled(1, Verdict::Regular, None),
+        integrated(2, assessment(Verdict::Chaotic, None, 7.5, 1.0)),
+        filled(3, Verdict::Regular, None),
+        filled(4, Verdict::Lost, Some(LostHow::Escape)),
+    ];
+    let figure = drawn(&study, &records, "megno");
+    let near = Paint::Value(2.01);
+    let expected = [
+        near,
+        near,
+        Paint::Value(7.5),
+        near,
+        // No integrated cell of its kind: still its own tone.
+        Paint::Flat(Region::Escape),
+        Paint::Flat(Region::Missing),
+    ];
+    assert_eq!(raster(&figure), expected);
+    let verdicts = drawn(&study, &records, "verdict");
+    assert_eq!(raster(&verdicts)[3], Paint::Flat(Region::Regular));
+}
+
+#[test]
+fn a_finished_cell_stands_for_missing_ones_within_reach_only() {
+    let study = study(7, 3);
+    let records = [Record::integrated(7, vec![0.0; 2], assessment(Verdict::Regular, None, 2.01, 1.0))];
+    let input = MapInput {
+        study: &study,
+        system: &system(),
+        records: &records,
+        reach: 2,
+        column: "megno",
+        span_day: SPAN_DAY,
+        caption: &[],
+    };
+    let figure = map(&input).unwrap();
+    for (cell, paint) in raster(&figure).iter().enumerate() {
+        let near = cell % 7 <= 2;
+        assert_eq!(*paint == Paint::Value(2.01), near, "{cell}");
+        assert_eq!(*paint == Paint::Flat(Region::Missing), !near, "{cell}");
+    }
+}
+
+#[test]
 fn each_cell_is_painted_by_its_verdict_and_number() {
     let study = study(4, 2);
     let lost = |how| assessment(Verdict::Lost, Some(how), 9.0, 0.1);
