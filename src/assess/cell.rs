@@ -7,7 +7,7 @@ use crate::criteria::mutual_hill_radius_au;
 use crate::integrate::{Advance, Block, State, Tangent, advance, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
 use crate::system::Frame;
-use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, judge};
+use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, is_surely_chaotic, judge};
 
 /// How often a cell that misses the energy target is done again with a smaller step.
 const MOST_REDONE: u32 = 2;
@@ -164,7 +164,9 @@ impl Cell {
             self.growth.see(growth.log);
             self.mean_megno = (growth.samples > 1).then_some(growth.mean_y);
             after.rescale(lane);
-            if plan.stop_when_chaotic && self.is_surely_chaotic(growth.y) {
+            let seen = self.blocks_done >= FEWEST_BLOCKS_OF_CHAOS;
+            if plan.stop_when_chaotic && seen && is_surely_chaotic(self.share_done(), growth.mean_y, growth.y)
+            {
                 return Next::End(Box::new(self.assessment(plan, None)));
             }
         }
@@ -172,22 +174,6 @@ impl Cell {
             return Next::End(Box::new(self.assessment(plan, None)));
         }
         Next::GoOn
-    }
-
-    /// Whether ⟨Y⟩ would end at twice the threshold of chaos even if the motion were regular from now to the end
-    /// of the span.
-    ///
-    /// From Y(t)·t = 2∫ (δ̇/δ) s ds: linear growth of |δ| after t gives Y(s) = 2 + (t/s)(Y(t) − 2), and so
-    /// ⟨Y⟩(T) = (t/T)⟨Y⟩(t) + 2(1 − t/T) + (t/T) ln(T/t) (Y(t) − 2). The factor of two is for growth slower than linear.
-    /// On steady chaos Y = 2⟨Y⟩ = λt, and this is met when |δ| has grown by e^(λt) beyond linear with λt of 10 at half
-    /// of the span, 17 at a tenth of it.
-    fn is_surely_chaotic(&self, y: f64) -> bool {
-        let share = self.share_done();
-        let Some(mean) = self.mean_megno else { return false };
-        let at_end = share * mean + 2.0 * (1.0 - share) - share * share.ln() * (y - 2.0);
-        let certain = 2.0 * CHAOTIC_FROM;
-        // The mean as it stands decides the verdict, so it must be there too: Y alone may be at a crest.
-        self.blocks_done >= FEWEST_BLOCKS_OF_CHAOS && mean >= certain && at_end >= certain
     }
 
     /// The error of a corrected leapfrog falls with the square of the step; aim at a quarter of the target.

@@ -41,10 +41,11 @@ pub struct Calm {
 }
 
 impl Calm {
-    /// Under a plan: twice the threshold of chaos, 1.6 times the distance that ends a cell, 0.15 of the span.
+    /// Under a plan: within most of what counts as regular and flat (after a short span the transient of ⟨Y⟩ is
+    /// still there, but the same for neighbours), twice the threshold of chaos, 1.6 times the distance that ends a cell, 0.15 of the span.
     pub fn under(plan: &Plan) -> Calm {
         Calm {
-            megno_from_two: 0.02,
+            megno_from_two: 0.08,
             megno_range: 0.02,
             megno_chaotic: 6.0,
             approach_hill: 1.6 * plan.encounter_hill.unwrap_or(1.0) as f32,

@@ -2,7 +2,7 @@
 
 mod thresholds;
 
-pub use thresholds::{CHAOTIC_FROM, Evidence, LEAST_OUTER_ORBITS, REGULAR_UP_TO, judge};
+pub use thresholds::{CHAOTIC_FROM, Evidence, LEAST_OUTER_ORBITS, REGULAR_UP_TO, is_surely_chaotic, judge};
 
 /// What became of a configuration.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
