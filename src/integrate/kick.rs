@@ -1,27 +1,60 @@
 //! B: the planets' pull on one another and the jump from the star's motion about the centre of mass.
 
+use super::star_terms::Terms;
 use crate::kepler::Body;
 use crate::lanes::Real;
 
-/// Runs kick and jump for the time `h`; with `TANGENT` for the tangent vector too.
+/// Runs B for the time `h`; with `TANGENT` for the tangent vector too.
 ///
-/// Jump: qᵢ += h Σ mⱼvⱼ / M. Kick: vᵢ += h Σ G mⱼ (qⱼ − qᵢ)/d³, each pair once.
+/// Jump: qᵢ += h Σ mⱼvⱼ / M. Kick: vᵢ += h Σ G mⱼ (qⱼ − qᵢ)/d³, each pair once, and the star's `beside` terms.
 /// With `WATCH`, `pairs` keeps the smallest distance² of each pair, taken along the straight relative motion
-/// within `window` of now, so that an encounter between two kicks is not missed.
+/// within `window` of now, so that an encounter between two kicks is not missed. Only the first `pulling` bodies
+/// have mass: the rest feel them but pull nobody, so their cost is linear in their number.
+///
+/// Pair forces keep the total momentum, so jump and kick commute and B is exact; the star's terms do not, so with
+/// them the jump is split in halves around the kick.
 #[inline(always)]
-pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
+pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool, const BESIDE: bool>(
     bodies: &mut [Body<R>],
+    pulling: usize,
     pairs: &mut [R],
     star_gm: R,
+    beside: &Beside<'_, R>,
     h: R,
     window: R,
 ) {
-    let count = bodies.len();
+    if BESIDE {
+        let half = h * R::splat(0.5);
+        for part in 0..2 {
+            jump::<R, TANGENT>(&mut *bodies, pulling, star_gm, half);
+            if part == 0 {
+                pull_pairs::<R, TANGENT, WATCH>(bodies, pulling, pairs, h, window);
+                if beside.acting {
+                    star_pull::<R, TANGENT>(bodies, beside, h);
+                }
+            }
+        }
+    } else {
+        jump::<R, TANGENT>(bodies, pulling, star_gm, h);
+        pull_pairs::<R, TANGENT, WATCH>(bodies, pulling, pairs, h, window);
+    }
+}
+
+/// The star's terms beside Newton's pull, and the satellite constant of each body.
+pub struct Beside<'a, R> {
+    /// Whether there are any.
+    pub(super) acting: bool,
+    pub(super) terms: Terms<R>,
+    pub(super) satellites: &'a [R],
+}
+
+#[inline(always)]
+fn jump<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], pulling: usize, star_gm: R, h: R) {
     let zero = R::splat(0.0);
     let share = h / star_gm;
     let mut shift = [zero; 3];
     let mut d_shift = [zero; 3];
-    for b in bodies.iter() {
+    for b in bodies[..pulling].iter() {
         let weight = share * b.gm;
         for k in 0..3 {
             shift[k] = weight.mul_add(b.vel[k], shift[k]);
@@ -38,8 +71,33 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
             }
         }
     }
+}
+
+#[inline(always)]
+fn star_pull<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], beside: &Beside<'_, R>, h: R) {
+    for (b, satellite) in bodies.iter_mut().zip(beside.satellites) {
+        let (a, da) = beside.terms.pull::<TANGENT>(*satellite, &b.pos, &b.d_pos);
+        for k in 0..3 {
+            b.vel[k] = h.mul_add(a[k], b.vel[k]);
+            if TANGENT {
+                b.d_vel[k] = h.mul_add(da[k], b.d_vel[k]);
+            }
+        }
+    }
+}
+
+#[inline(always)]
+fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
+    bodies: &mut [Body<R>],
+    pulling: usize,
+    pairs: &mut [R],
+    h: R,
+    window: R,
+) {
+    let count = bodies.len();
+    let zero = R::splat(0.0);
     let mut pair = 0;
-    for i in 0..count {
+    for i in 0..pulling {
         for j in i + 1..count {
             let mut d = [zero; 3];
             for k in 0..3 {

@@ -10,9 +10,11 @@ mod corrector;
 mod jacobi;
 mod kick;
 mod splitting;
+mod star_terms;
 
 pub use advance::{Advance, SAMPLE_EVERY, advance};
 pub use block::{Block, Coordinates, Growth, State, Tangent};
 pub use conserved::{angular_momentum, energy};
 pub use corrector::{from_map, to_map};
 pub use splitting::Scheme;
+pub use star_terms::StarTerms;
