@@ -1,7 +1,7 @@
 //! One cell on its way: starts, is looked at after every block of steps, ends with an assessment.
 
 use super::assessment::{Approach, Assessment, Loss};
-use super::plan::{Plan, auto_step_day, innermost_period_day, outermost_period_day};
+use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Elements};
 use crate::criteria::mutual_hill_radius_au;
 use crate::integrate::{Advance, Block, State, Tangent, advance, to_map};
@@ -62,7 +62,7 @@ impl Cell {
     pub fn new(configuration: &Configuration, plan: &Plan) -> Result<Cell, Box<Assessment>> {
         let start = barycentric(configuration);
         let limits = Limits::new(configuration, plan);
-        let step_most = plan.step_day.unwrap_or_else(|| auto_step_day(configuration));
+        let step_most = plan.step_for(configuration);
         let mut cell = Cell {
             conserved: ConservedWatch::new(&start),
             extent: ExtentWatch::new(configuration.planets.len()),

@@ -2,6 +2,7 @@
 
 mod assessment;
 mod batch;
+mod calibrate;
 mod cell;
 mod one;
 mod plan;

@@ -2,6 +2,7 @@
 
 use std::fmt;
 
+use super::calibrate::calibrate;
 use crate::coords::Configuration;
 use crate::integrate::{Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
@@ -25,8 +26,9 @@ const ESCAPE_APOCENTRES: f64 = 20.0;
 /// Why the step is what it is (a value, so that it can be tested, stored and printed).
 #[derive(Clone, Debug, PartialEq)]
 pub enum StepWhy {
-    /// So many steps in the shortest pericentre passage time scale of each cell's own orbits.
-    Pericentre { steps_per_passage: f64 },
+    /// So many steps in the shortest pericentre passage time scale of each cell's own orbits; with the largest energy
+    /// error of the short runs that settled it and how many configurations they followed.
+    Pericentre { steps_per_passage: f64, trial: Option<(f64, usize)> },
     /// The study asked for it; how many steps it makes per passage in the stated configuration.
     Asked { steps_per_passage: f64 },
 }
@@ -34,11 +36,19 @@ pub enum StepWhy {
 impl fmt::Display for StepWhy {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            StepWhy::Pericentre { steps_per_passage } => {
+            StepWhy::Pericentre { steps_per_passage, trial } => {
                 write!(
                     f,
                     "{steps_per_passage:.0} steps in the shortest pericentre passage of each configuration"
-                )
+                )?;
+                if let Some((error, configurations)) = trial {
+                    let s = if *configurations == 1 { "" } else { "s" };
+                    write!(
+                        f,
+                        "; short runs of {configurations} configuration{s} err by at most {error:.1e} then"
+                    )?;
+                }
+                Ok(())
             }
             StepWhy::Asked { steps_per_passage } => {
                 write!(f, "as asked; {steps_per_passage:.1} steps in the shortest pericentre passage")?;
@@ -72,17 +82,27 @@ pub struct Plan {
 }
 
 impl Plan {
-    /// The plan of a study whose stated system is `nominal`.
-    pub fn for_study(study: &Study, nominal: &Configuration) -> Plan {
+    /// The plan of a study whose stated system is `nominal` and whose most demanding cells are among `corners`.
+    pub fn for_study(study: &Study, nominal: &Configuration, corners: &[Configuration]) -> Plan {
         let wants = |measure| study.measure.contains(&measure);
-        let mut plan = Plan::new(study.span, &study.limits, &study.engine, nominal);
+        let mut plan = Plan::with_corners(study.span, &study.limits, &study.engine, nominal, corners);
         plan.extent = wants(Measure::Extent);
         plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
         plan
     }
 
-    /// A plan that measures everything.
+    /// A plan for one configuration, that measures everything.
     pub fn new(span: Span, limits: &Limits, engine: &Engine, nominal: &Configuration) -> Plan {
+        Plan::with_corners(span, limits, engine, nominal, &[])
+    }
+
+    fn with_corners(
+        span: Span,
+        limits: &Limits,
+        engine: &Engine,
+        nominal: &Configuration,
+        corners: &[Configuration],
+    ) -> Plan {
         let auto = auto_step_day(nominal);
         let period = innermost_period_day(nominal);
         let span_day = match span {
@@ -95,7 +115,7 @@ impl Plan {
             Step::PerOrbit(steps) => Some(period / steps),
         };
         let step_why = match step_day {
-            None => StepWhy::Pericentre { steps_per_passage: STEPS_PER_PASSAGE },
+            None => StepWhy::Pericentre { steps_per_passage: STEPS_PER_PASSAGE, trial: None },
             Some(step) => StepWhy::Asked { steps_per_passage: STEPS_PER_PASSAGE * auto / step },
         };
         let scheme = Scheme::named(&engine.scheme).unwrap_or(Scheme::leapfrog()).name;
@@ -103,7 +123,7 @@ impl Plan {
             Encounter::Stop { hill } => Some(hill),
             Encounter::Off => None,
         };
-        Plan {
+        let plan = Plan {
             span_day,
             step_day,
             step_why,
@@ -114,8 +134,28 @@ impl Plan {
             encounter_hill,
             extent: true,
             megno: true,
-            block_steps: block_steps(span_day / step_day.unwrap_or(auto)),
+            block_steps: Plan::block_for(span_day / step_day.unwrap_or(auto)),
+        };
+        let steps = span_day / step_day.unwrap_or(auto);
+        calibrate(plan, steps, Scheme::named(&engine.scheme).is_none(), nominal, corners)
+    }
+
+    /// Largest step for this configuration, day.
+    pub(super) fn step_for(&self, configuration: &Configuration) -> f64 {
+        match (self.step_day, &self.step_why) {
+            (Some(step), _) => step,
+            (None, StepWhy::Pericentre { steps_per_passage, .. }) => {
+                auto_step_day(configuration) * STEPS_PER_PASSAGE / steps_per_passage
+            }
+            (None, StepWhy::Asked { .. }) => auto_step_day(configuration),
         }
+    }
+
+    /// Steps between two looks for that many steps in all: fewer when the span is short, so that it is still looked at
+    /// often enough.
+    pub(super) fn block_for(steps: f64) -> usize {
+        let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, BLOCK_STEPS as f64);
+        (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
     }
 
     /// The scheme itself.
@@ -130,13 +170,6 @@ impl Plan {
             ESCAPE_APOCENTRES * orbits.iter().map(|o| o.apocentre_au()).fold(0.0, f64::max)
         })
     }
-}
-
-/// Fewer steps per block when the span is short, so that it is still looked at often enough.
-fn block_steps(steps: f64) -> usize {
-    let most = BLOCK_STEPS as f64;
-    let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, most);
-    (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
 }
 
 /// The step that the plan gives a configuration when none is asked: 1/20 of the shortest pericentre

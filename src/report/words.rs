@@ -74,7 +74,7 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
         format!("{} to {} d", short(low), short(high))
     };
     let why = match plan.step_why {
-        StepWhy::Pericentre { steps_per_passage } => {
+        StepWhy::Pericentre { steps_per_passage, .. } => {
             format!("1/{} of the shortest pericentre passage", short(steps_per_passage))
         }
         StepWhy::Asked { .. } => "as the study asks".to_owned(),

@@ -86,7 +86,7 @@ pub const SPAN_DAY: f64 = 1e4 * 11.862;
 /// What a survey would do with [`study`].
 pub fn plan() -> Plan {
     let nominal = abide::coords::configure(&system()).unwrap();
-    let plan = Plan::for_study(&study(2, 2), &nominal);
+    let plan = Plan::for_study(&study(2, 2), &nominal, &[]);
     assert!((plan.span_day / SPAN_DAY - 1.0).abs() < 1e-9 && plan.extent && plan.megno);
     plan
 }

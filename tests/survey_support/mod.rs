@@ -22,7 +22,7 @@ pub fn plan() -> Plan {
     Plan {
         span_day: 1e4,
         step_day: None,
-        step_why: StepWhy::Pericentre { steps_per_passage: 20.0 },
+        step_why: StepWhy::Pericentre { steps_per_passage: 20.0, trial: None },
         scheme: "(2,2)",
         energy_error: 1e-7,
         escape_au: Some(100.0),

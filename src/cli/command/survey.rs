@@ -62,7 +62,7 @@ impl Wish {
         let grid = Grid::new(system.clone(), file.study.clone())
             .map_err(|error| CliError::Input(format!("{}: {}", file.system.path.display(), chain(&error))))?;
         let nominal = coords::configure(system).map_err(CliError::input)?;
-        let plan = Plan::for_study(&file.study, &nominal);
+        let plan = Plan::for_study(&file.study, &nominal, &[]);
         let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
         Ok(Wish { grid: Arc::new(grid), plan, folder, threads, quiet: args.quiet, json: args.json, file })
     }
