@@ -7,7 +7,9 @@ mod advance;
 mod block;
 mod conserved;
 mod corrector;
+pub mod forces;
 mod kick;
+pub mod radau;
 mod splitting;
 
 pub use advance::{Advance, SAMPLE_EVERY, advance};
