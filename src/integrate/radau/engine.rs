@@ -12,9 +12,12 @@ use super::event::{Candidate, Event, EventKind, Watch};
 use super::phase::{Phase, dot};
 use super::step::{Physics, Step};
 
-/// What a step may err by, relative to the velocity change over it, when nothing else is asked: so little that over
-/// 1e8 steps it stays below what rounding does at random.
-pub const TOLERANCE: f64 = 1e-19;
+/// What a step may err by, relative to the velocity change over it, when nothing else is asked.
+///
+/// Measured on the giant planets over 1e5 yr: at 1e-19 the energy error has a trend of 1e-13, from 1e-21 on it is
+/// rounding (1e-14), and the longer steps of the former save only a tenth of the evaluations, since they need more
+/// sweeps.
+pub const TOLERANCE: f64 = 1e-21;
 /// The first step in units of the shortest time in which a pair falls together or passes.
 const FIRST: f64 = 0.05;
 /// A step that does not settle is tried again with this part of it, so many times in a row.

@@ -9,9 +9,9 @@ use super::phase::{Phase, two_sum};
 
 /// More sweeps than this in one step and the step is too long.
 const MOST_SWEEPS: u32 = 16;
-/// What a further sweep would still change of the force, relative, where sweeping ends. Far below one rounding,
-/// since what is left is the same in every step and adds up.
-const SETTLED: f64 = 1e-19;
+/// What a further sweep would still change of the force, relative, where sweeping ends: a tenth of a rounding, since
+/// what is left is much the same in every step and adds up.
+const SETTLED: f64 = 1e-17;
 /// A change that no longer shrinks is rounding when it is below this.
 const ROUNDING: f64 = 1e-6;
 /// A prediction over more than so many lengths of the last step is worse than none.
@@ -171,7 +171,7 @@ impl Step {
 
     /// Sweeps over the nodes until the forces no longer change.
     pub fn solve(&mut self, physics: &Physics, start: &Phase) -> Settling {
-        let mut before = f64::INFINITY;
+        let (mut before, mut best) = (f64::INFINITY, 1.0f64);
         for sweeps in 1..=MOST_SWEEPS {
             let change = self.sweep(physics, start);
             let rate = change / before;
@@ -179,7 +179,11 @@ impl Step {
             if !change.is_finite() || (sweeps > 2 && rate > 4.0) {
                 return end(false);
             }
-            if sweeps > 1 && (change * rate <= SETTLED || (rate >= 0.5 && change < ROUNDING)) {
+            // The rate at which the sweeps close in, before rounding hides it.
+            if sweeps > 1 {
+                best = best.min(rate);
+            }
+            if sweeps > 1 && (change * best <= SETTLED || (rate >= 0.5 && change < ROUNDING)) {
                 return end(true);
             }
             before = change;
