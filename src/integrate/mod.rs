@@ -7,8 +7,10 @@ mod advance;
 mod block;
 mod conserved;
 mod corrector;
+pub mod forces;
 mod jacobi;
 mod kick;
+pub mod radau;
 mod splitting;
 mod star_terms;
 
