@@ -4,6 +4,7 @@
 //! barycentric velocities.
 
 use crate::lanes::WIDTH;
+use crate::num::{Kept, KeptReader};
 
 /// Per-lane numbers that are not of a planet.
 #[derive(Clone, Copy, Debug)]
@@ -192,6 +193,17 @@ impl Block {
         for slot in 0..self.data.len() / self.width {
             other.data[slot * other.width + to] = self.data[slot * self.width + lane];
         }
+    }
+
+    /// Puts down every number of every lane.
+    pub fn keep(&self, kept: &mut Kept) {
+        kept.floats(&self.data);
+    }
+
+    /// Takes up what [`Block::keep`] put down of a block of the same width and number of planets.
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        self.data = kept.floats(self.data.len())?;
+        Some(())
     }
 
     /// Divides a tangent vector that has grown beyond 2^±200 by a power of two; exact.

@@ -1,6 +1,7 @@
 //! Ranges of a, e and i over the moments seen.
 
 use super::Moment;
+use crate::num::{Kept, KeptReader};
 
 /// Smallest and largest value seen.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -29,6 +30,19 @@ pub struct Extent {
     pub inclination: Range,
 }
 
+impl Extent {
+    pub fn keep(&self, kept: &mut Kept) {
+        for range in [self.semi_major_axis_au, self.eccentricity, self.inclination] {
+            kept.floats(&[range.min, range.max]);
+        }
+    }
+
+    pub fn restored(kept: &mut KeptReader<'_>) -> Option<Extent> {
+        let mut range = || Some(Range { min: kept.float()?, max: kept.float()? });
+        Some(Extent { semi_major_axis_au: range()?, eccentricity: range()?, inclination: range()? })
+    }
+}
+
 /// Widens the extents at every moment seen.
 #[derive(Clone, Debug, PartialEq)]
 pub struct ExtentWatch(Vec<Extent>);
@@ -38,6 +52,18 @@ impl ExtentWatch {
         let empty = Range::empty();
         let extent = Extent { semi_major_axis_au: empty, eccentricity: empty, inclination: empty };
         ExtentWatch(vec![extent; planets])
+    }
+
+    pub fn keep(&self, kept: &mut Kept) {
+        self.0.iter().for_each(|extent| extent.keep(kept));
+    }
+
+    /// Takes up what was put down for as many planets.
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        for extent in &mut self.0 {
+            *extent = Extent::restored(kept)?;
+        }
+        Some(())
     }
 
     pub fn see(&mut self, moment: &Moment<'_>) {
