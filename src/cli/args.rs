@@ -46,9 +46,24 @@ pub struct FollowArgs {
     /// How many rows the series has at most
     #[arg(long, default_value_t = 2000)]
     pub rows: usize,
-    /// Step, e.g. "0.5 d" (default: auto)
+    /// Step: "auto", a time such as "0.5 d", or "30 per orbit" of the innermost planet
+    #[arg(long, default_value = "auto")]
+    pub step: String,
+    /// Splitting: "auto", or a generalised order such as "(2,2)" or "(10,6,4)"
+    #[arg(long, default_value = "auto")]
+    pub scheme: String,
+    /// Largest relative energy error; what misses it is done again with a smaller step, then untrusted
+    #[arg(long, value_name = "NUMBER", default_value = "1e-6")]
+    pub energy_error: String,
+    /// A planet this far from the star has escaped, e.g. "100 au" (default: 20 times the largest apocentre)
+    #[arg(long, value_name = "DISTANCE")]
+    pub escape: Option<String>,
+    /// Planets this close to each other end the run: mutual Hill radii, or "off" (then only collisions do)
+    #[arg(long, value_name = "DISTANCE", default_value = "1 hill")]
+    pub encounter: String,
+    /// Drop what the folder holds of a former command and begin again
     #[arg(long)]
-    pub step: Option<String>,
+    pub anew: bool,
     /// Print nothing but errors
     #[arg(long)]
     pub quiet: bool,
