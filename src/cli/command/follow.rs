@@ -50,7 +50,7 @@ pub fn run(args: FollowArgs) -> Result<ExitCode, CliError> {
 
 /// Proves the folder writable and claims it for this process.
 fn take_folder(folder: &Path) -> Result<Lock, CliError> {
-    disk::make_writable_folder(folder).map_err(CliError::input)?;
+    disk::make_writable_folder(folder).map_err(refused)?;
     if folder.join(survey::JOURNAL).exists() {
         return Err(CliError::Input(format!(
             "{} holds a survey; choose another folder with --into",
@@ -59,11 +59,16 @@ fn take_folder(folder: &Path) -> Result<Lock, CliError> {
     }
     let holder = format!("process {} on {}", std::process::id(), survey::host());
     Lock::take(&folder.join(LOCK), &holder).map_err(|error| {
-        CliError::input(match error {
+        refused(match error {
             DiskError::Held { holder, .. } => DiskError::Held { path: folder.to_path_buf(), holder },
             other => other,
         })
     })
+}
+
+/// The words of a [`DiskError`] hold its cause already.
+fn refused(error: DiskError) -> CliError {
+    CliError::Input(error.to_string())
 }
 
 fn begin_or_go_on(wish: &Wish, checkpoint: &Checkpoint, anew: bool) -> Result<Follower, CliError> {
@@ -120,8 +125,11 @@ fn follow(
 fn show(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Result<(), CliError> {
     let view = View::new(wish, assessment);
     let written = outputs::write(wish, &view, assessment, rows)?;
-    for path in written {
+    for path in &written {
         wish.say(format_args!("wrote {}", path.display()));
+    }
+    if rows.len() < 2 {
+        wish.say(format_args!("it ended before the second row: there is nothing to draw"));
     }
     if wish.json {
         print(&view.json()?)

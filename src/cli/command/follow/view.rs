@@ -93,7 +93,7 @@ impl<'a> View<'a> {
         }
         text.push_str(&format!(", {}", time_words(self.assessment.end_time_day)));
         if self.assessment.end_time_day < self.wish.plan.span_day {
-            text.push_str(&format!(" of the {} asked", self.wish.span_words()));
+            text.push_str(&format!("; asked: {}", self.wish.span_words()));
         }
         text
     }
@@ -121,7 +121,11 @@ impl<'a> View<'a> {
                     "auto: 20 or more to a passage, so that step resonance does not feign chaos".to_owned(),
                 (_, redone) => format!(
                     "made smaller {} for the energy error",
-                    if redone == 1 { "once".to_owned() } else { format!("{redone} times") }
+                    match redone {
+                        1 => "once".to_owned(),
+                        2 => "twice".to_owned(),
+                        more => format!("{more} times"),
+                    }
                 ),
             },
             self.names[self.passage.planet],
@@ -134,8 +138,14 @@ impl<'a> View<'a> {
                 ". Warning: below {FEWEST_STEPS_PER_PASSAGE} to a passage step resonance can feign chaos"
             ));
         }
-        text.push_str(&format!(". {} steps in all", count(a.steps as f64)));
+        let attempt = if a.redone > 0 { "at the last attempt" } else { "in all" };
+        text.push_str(&format!(". {} steps {attempt}", count(self.steps())));
         text
+    }
+
+    /// Steps up to the end, also of the last block when the end came within it.
+    fn steps(&self) -> f64 {
+        (self.assessment.end_time_day / self.assessment.step_day).round()
     }
 
     fn chaos(&self) -> String {
@@ -178,20 +188,21 @@ impl<'a> View<'a> {
         let found = self.assessment.smallest_approach?;
         let (i, j) = found.pair;
         Some(format!(
-            "{} and {} to {} mutual Hill radii, {} au: the smallest of all pairs",
+            "{} and {} to {} mutual Hill radii ({} au){}",
             self.names[i],
             self.names[j],
             short(found.hill),
-            significant(found.au, 4)
+            significant(found.au, 4),
+            if self.names.len() > 2 { ", the closest of all pairs" } else { "" }
         ))
     }
 
     /// Lines ending in a newline.
     pub fn text(&self) -> String {
         let a = self.assessment;
-        let momentum = a
-            .angular_momentum_error
-            .map_or("not measured".to_owned(), |error| format!("largest relative error {}", short(error)));
+        let momentum = a.angular_momentum_error.map_or("not measured".to_owned(), |e| {
+            format!("largest relative error of the angular one {}", short(e))
+        });
         let mut entries = vec![
             ("why", self.why.to_string()),
             ("span", self.span()),
@@ -274,7 +285,7 @@ impl<'a> View<'a> {
             "step_d": a.step_day,
             "step_why": self.wish.plan.step_why.to_string(),
             "steps_per_passage": self.passage.day / a.step_day,
-            "steps": a.steps,
+            "steps": self.steps(),
             "redone": a.redone,
             "smallest_approach": a.smallest_approach.map(|found| json!({
                 "pair": [name(found.pair.0), name(found.pair.1)],

@@ -6,6 +6,9 @@ use crate::assess::{Assessment, Plan};
 use crate::report::short;
 use crate::verdict::{CHAOTIC_FROM, LEAST_OUTER_ORBITS, LostHow, REGULAR_UP_TO, Verdict};
 
+/// Below this no step keeps the energy over a long span: each operation rounds by 1.1e-16.
+const ROUND_OFF: f64 = 1e-13;
+
 /// What decided.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Why {
@@ -96,18 +99,21 @@ impl fmt::Display for Why {
                  2008). Raise --span"
             ),
             Why::Unmeasured => f.write_str("⟨Y⟩ could not be measured. Raise --span"),
-            Why::Untrusted { energy_error, asked, redone } => write!(
-                f,
-                "the relative energy error reached {}, but {} was asked for; {}. Give a smaller --step, a scheme of \
-                 higher order such as --scheme \"(10,6,4)\", or accept more with --energy-error",
-                short(*energy_error),
-                short(*asked),
+            Why::Untrusted { energy_error, asked, redone } => {
+                let (reached, asked_words) = (short(*energy_error), short(*asked));
+                write!(f, "the relative energy error reached {reached}, but {asked_words} was asked for; ")?;
                 match redone {
-                    0 => "no smaller step was tried".to_owned(),
-                    1 => "beginning again with a smaller step did not help".to_owned(),
-                    more => format!("beginning again {more} times with smaller steps did not help"),
+                    0 => f.write_str("no smaller step was tried. ")?,
+                    1 => f.write_str("beginning again with a smaller step did not help. ")?,
+                    more => write!(f, "beginning again {more} times with smaller steps did not help. ")?,
                 }
-            ),
+                f.write_str(if *asked < ROUND_OFF {
+                    "So little is at the round-off of double precision: accept more with --energy-error"
+                } else {
+                    "Give a smaller --step, a scheme of higher order such as --scheme \"(10,6,4)\", or accept more \
+                     with --energy-error"
+                })
+            }
         }
     }
 }
@@ -126,7 +132,8 @@ fn write_lost(
             write!(f, "{planet} came farther than {} au from the star ({whose})", short(au))
         }
         (LostHow::Encounter, Limit::Hill(hill)) => {
-            write!(f, "{planet} and {other} came closer than {hill} mutual Hill radii (--encounter)")
+            let radii = if hill == 1.0 { "radius" } else { "radii" };
+            write!(f, "{planet} and {other} came closer than {hill} mutual Hill {radii} (--encounter)")
         }
         (LostHow::Star, _) => write!(f, "{planet} fell into the star"),
         (LostHow::Collision | LostHow::Encounter, _) => {
