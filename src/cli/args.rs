@@ -61,6 +61,9 @@ pub struct FollowArgs {
     /// Planets this close to each other end the run: mutual Hill radii, or "off" (then only collisions do)
     #[arg(long, value_name = "DISTANCE", default_value = "1 hill", allow_hyphen_values = true)]
     pub encounter: String,
+    /// Time between two checkpoints; writing them never takes more than a twentieth of the time
+    #[arg(long, value_name = "TIME", default_value = "10 s", allow_hyphen_values = true)]
+    pub checkpoint: String,
     /// Drop what the folder holds of a former command and begin again
     #[arg(long)]
     pub anew: bool,

@@ -10,7 +10,7 @@ mod wish;
 use std::path::Path;
 use std::process::ExitCode;
 use std::sync::atomic::{AtomicBool, Ordering};
-use std::time::{Duration, Instant};
+use std::time::Instant;
 
 use crate::assess::{Assessment, Follower, Row};
 use crate::cli::CliError;
@@ -24,8 +24,6 @@ use view::View;
 use wish::Wish;
 
 const LOCK: &str = ".lock";
-/// Between two checkpoints.
-const PAUSE: Duration = Duration::from_secs(10);
 /// Writing checkpoints takes at most one part in so many of the time.
 const SHARE_OF_TIME: u32 = 20;
 /// The clock is asked once in so many blocks, each a fraction of a millisecond.
@@ -99,7 +97,7 @@ fn follow(
     stop: &AtomicBool,
 ) -> Result<Option<(Assessment, Vec<Row>)>, CliError> {
     let mut pace = Pace::new(wish, &follower.progress());
-    let (mut saved, mut pause) = (Instant::now(), PAUSE);
+    let (mut saved, mut pause) = (Instant::now(), wish.pause);
     while follower.assessment().is_none() {
         for _ in 0..BLOCKS_PER_LOOK {
             follower.one_block();
@@ -109,7 +107,7 @@ fn follow(
             let began = Instant::now();
             checkpoint.write(&follower)?;
             saved = Instant::now();
-            pause = PAUSE.max((saved - began) * SHARE_OF_TIME);
+            pause = wish.pause.max((saved - began) * SHARE_OF_TIME);
         }
         if stopped {
             pace.finish();

@@ -201,7 +201,7 @@ impl<'a> View<'a> {
     pub fn text(&self) -> String {
         let a = self.assessment;
         let momentum = a.angular_momentum_error.map_or("not measured".to_owned(), |e| {
-            format!("largest relative error of the angular one {}", short(e))
+            format!("largest relative error of the total angular momentum {}", short(e))
         });
         let mut entries = vec![
             ("why", self.why.to_string()),

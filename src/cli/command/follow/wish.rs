@@ -1,6 +1,7 @@
 //! What was asked for, checked.
 
 use std::path::PathBuf;
+use std::time::Duration;
 
 use crate::assess::{Plan, auto_step_day, innermost_period_day, plan_for_rows};
 use crate::cli::CliError;
@@ -10,6 +11,7 @@ use crate::input::{self, SystemFile};
 use crate::integrate::Scheme;
 use crate::report::time_words;
 use crate::system::{Engine, Limits, Span};
+use crate::units::DAY_S;
 
 /// More rows than this are more than a run can keep at hand.
 const MOST_ROWS: usize = 1_000_000;
@@ -23,6 +25,8 @@ pub struct Wish {
     pub span: Span,
     /// Every option that has an influence on the series: its flag, what it means, what was typed.
     pub options: Vec<Choice>,
+    /// Between two checkpoints.
+    pub pause: Duration,
     pub quiet: bool,
     pub json: bool,
 }
@@ -79,6 +83,7 @@ impl Wish {
             plan,
             rows,
             span,
+            pause: pause(&args.checkpoint)?,
             options,
             quiet: args.quiet,
             json: args.json,
@@ -143,6 +148,13 @@ fn scheme(word: &str) -> Result<String, CliError> {
          \"(10,6,4)\"",
         known.join(", ")
     )))
+}
+
+fn pause(text: &str) -> Result<Duration, CliError> {
+    let seconds = input::parse_time(text).map_err(CliError::input)? * DAY_S;
+    Duration::try_from_secs_f64(seconds).map_err(|_| {
+        CliError::Input(format!("--checkpoint {text:?} is no time to wait; write, as an example, \"10 s\""))
+    })
 }
 
 fn rows(rows: usize) -> Result<usize, CliError> {
