@@ -82,11 +82,11 @@ impl Follower {
             Ok(cell) => {
                 let mut block = Block::new(1, configuration.planets.len());
                 cell.enter(&mut block, 0, &plan);
-                let rows = Rows::new(cell.start(), cell.blocks(), rows);
+                let rows = Rows::new(cell.start(), rows);
                 Follower { plan, rows, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
             }
             Err(assessment) => {
-                let rows = Rows::new(&super::cell::barycentric(configuration), 0, rows);
+                let rows = Rows::new(&super::cell::barycentric(configuration), rows);
                 Follower { plan, rows, on_its_way: None, assessment: Some(*assessment) }
             }
         }
@@ -106,7 +106,7 @@ impl Follower {
         match now.cell.look(&self.plan, &before.block, &mut now.block, &corrected, 0) {
             Next::Again => {
                 now.cell.enter(&mut now.block, 0, &self.plan);
-                self.rows = self.rows.again(now.cell.start(), now.cell.blocks());
+                self.rows = self.rows.again(now.cell.start());
             }
             Next::GoOn => self.rows.see(&now.cell, &self.plan, &now.block, &corrected),
             Next::End(assessment) => {
@@ -172,7 +172,7 @@ impl Follower {
         if let Some(OnItsWay { cell, block }) = &mut follower.on_its_way {
             cell.restore(&mut reader)?;
             block.restore(&mut reader)?;
-            follower.rows = follower.rows.again(cell.start(), cell.blocks());
+            follower.rows = follower.rows.again(cell.start());
             follower.rows.restore(&mut reader)?;
         }
         reader.is_empty().then_some(follower)

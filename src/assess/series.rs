@@ -1,4 +1,5 @@
-//! The rows of a series: evenly spaced over the blocks of a cell.
+//! The rows of a series, evenly spaced: one per block until there are as many as asked for, then every second one is
+//! dropped and rows come half as often. So an early end leaves many rows, and a long way no more than asked.
 
 use super::cell::Cell;
 use super::{Extent, Plan};
@@ -40,7 +41,7 @@ pub(super) struct Rows {
 
 impl Rows {
     /// At most `most` rows (2 at least), the first at the start.
-    pub fn new(start: &State, blocks: u64, most: usize) -> Rows {
+    pub fn new(start: &State, most: usize) -> Rows {
         let most = most.max(2);
         let planets = start.gm.len();
         let moment = Moment { time_day: 0.0, state: start };
@@ -56,13 +57,12 @@ impl Rows {
             mean_megno: None,
             lyapunov_per_day: None,
         };
-        let stride = blocks.div_ceil(most as u64 - 1).max(1);
-        Rows { most, stride, since: ExtentWatch::new(planets), rows: vec![first], settled: None }
+        Rows { most, stride: 1, since: ExtentWatch::new(planets), rows: vec![first], settled: None }
     }
 
-    /// From the beginning, over another number of blocks.
-    pub fn again(&self, start: &State, blocks: u64) -> Rows {
-        Rows::new(start, blocks, self.most)
+    /// From the beginning.
+    pub fn again(&self, start: &State) -> Rows {
+        Rows::new(start, self.most)
     }
 
     pub fn see(&mut self, cell: &Cell, plan: &Plan, block: &Block, corrected: &Block) {
@@ -88,6 +88,29 @@ impl Rows {
             mean_megno: measured.then_some(growth.mean_y),
             lyapunov_per_day: measured.then_some(growth.log / time_day),
         });
+        // One place is left for the last row, which may come between two others.
+        if self.settled.is_none() && self.rows.len() > self.most - 1 {
+            self.thin();
+        }
+    }
+
+    /// Drops every second row; its ranges go to the row after it.
+    fn thin(&mut self) {
+        self.stride *= 2;
+        let mut passed: Option<Vec<Extent>> = None;
+        for (index, mut row) in std::mem::take(&mut self.rows).into_iter().enumerate() {
+            if index % 2 == 1 {
+                passed = Some(row.extent);
+                continue;
+            }
+            if let Some(passed) = passed.take() {
+                row.extent = row.extent.iter().zip(&passed).map(|(now, before)| now.joined(before)).collect();
+            }
+            self.rows.push(row);
+        }
+        if let Some(passed) = passed {
+            self.since.join(&passed);
+        }
     }
 
     /// The end has come: what is put down from now on is what there was before it.
@@ -102,6 +125,7 @@ impl Rows {
     pub fn keep(&self, kept: &mut Kept) {
         let (count, since) =
             self.settled.as_ref().map_or((self.rows.len(), &self.since), |(count, since)| (*count, since));
+        kept.count(self.stride);
         since.keep(kept);
         kept.count(count as u64);
         // The first row follows from the start.
@@ -111,6 +135,7 @@ impl Rows {
     }
 
     pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        self.stride = kept.count().filter(|stride| *stride > 0)?;
         self.since.restore(kept)?;
         let count = kept.size().filter(|count| (1..=self.most).contains(count))?;
         let planets = self.rows[0].elements.len();

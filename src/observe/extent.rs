@@ -31,6 +31,17 @@ pub struct Extent {
 }
 
 impl Extent {
+    /// Holds everything that either holds.
+    #[must_use]
+    pub fn joined(&self, other: &Extent) -> Extent {
+        let join = |a: Range, b: Range| Range { min: a.min.min(b.min), max: a.max.max(b.max) };
+        Extent {
+            semi_major_axis_au: join(self.semi_major_axis_au, other.semi_major_axis_au),
+            eccentricity: join(self.eccentricity, other.eccentricity),
+            inclination: join(self.inclination, other.inclination),
+        }
+    }
+
     pub fn keep(&self, kept: &mut Kept) {
         for range in [self.semi_major_axis_au, self.eccentricity, self.inclination] {
             kept.floats(&[range.min, range.max]);
@@ -71,6 +82,13 @@ impl ExtentWatch {
             extent.semi_major_axis_au.take(elements.semi_major_axis_au);
             extent.eccentricity.take(elements.eccentricity);
             extent.inclination.take(elements.inclination);
+        }
+    }
+
+    /// Takes in what was seen elsewhere, one per planet.
+    pub fn join(&mut self, seen: &[Extent]) {
+        for (extent, seen) in self.0.iter_mut().zip(seen) {
+            *extent = extent.joined(seen);
         }
     }
 

@@ -5,7 +5,7 @@ use std::path::PathBuf;
 use super::checkpoint::{PICTURE, SERIES};
 use super::view::View;
 use super::wish::Wish;
-use crate::assess::{Assessment, Row};
+use crate::assess::{Assessment, Range, Row};
 use crate::cli::CliError;
 use crate::disk;
 use crate::figure::render::{self, Width};
@@ -58,35 +58,53 @@ fn series(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Series {
     }
 }
 
-/// Each row stands with the smallest and the largest value since the row before, so that thinning hides no extreme.
+/// So many rows are needed for the ranges of the rows to run together into bands.
+const BAND_ROWS: usize = 400;
+
+/// Whether each row stands with the smallest and the largest value since the row before, so that thinning hides no
+/// extreme; fewer rows would give a comb, and rows of one moment each have no range.
+fn has_bands(rows: &[Row]) -> bool {
+    let wide = |row: &Row| row.extent.iter().any(|extent| extent.eccentricity.min < extent.eccentricity.max);
+    rows.len() >= BAND_ROWS && rows.iter().any(wide)
+}
+
 fn picture(wish: &Wish, view: &View<'_>, assessment: &Assessment, rows: &[Row]) -> Result<Figure, CliError> {
-    let twice = |of: &dyn Fn(&Row) -> [f64; 2]| -> Vec<f64> { rows.iter().flat_map(of).collect() };
+    let bands = has_bands(rows);
+    let each = |of: &dyn Fn(&Row) -> (f64, Range)| -> Vec<f64> {
+        let points = rows.iter().map(of);
+        if bands {
+            points.flat_map(|(_, range)| [range.min, range.max]).collect()
+        } else {
+            points.map(|(now, _)| now).collect()
+        }
+    };
+    let once = |of: fn(&Row) -> f64| each(&|row| (of(row), Range { min: of(row), max: of(row) }));
     let planets = 0..wish.configuration.planets.len();
-    let ranges: Vec<(Vec<f64>, Vec<f64>)> = planets
+    let values: Vec<(Vec<f64>, Vec<f64>)> = planets
         .map(|k| {
-            let e = |row: &Row| [row.extent[k].eccentricity.min, row.extent[k].eccentricity.max];
-            let a = |row: &Row| [row.extent[k].semi_major_axis_au.min, row.extent[k].semi_major_axis_au.max];
-            (twice(&e), twice(&a))
+            let e = |row: &Row| (row.elements[k].eccentricity, row.extent[k].eccentricity);
+            let a = |row: &Row| (row.elements[k].semi_major_axis_au, row.extent[k].semi_major_axis_au);
+            (each(&e), each(&a))
         })
         .collect();
-    let curves = wish.configuration.planets.iter().zip(&ranges).map(|(planet, (e, a))| PlanetCurves {
+    let curves = wish.configuration.planets.iter().zip(&values).map(|(planet, (e, a))| PlanetCurves {
         name: &planet.name,
         eccentricity: e,
         semi_major_axis_au: a,
     });
-    let caption = caption(wish, view, assessment);
+    let caption = caption(wish, view, assessment, bands);
     let input = SeriesInput {
         title: wish.title(),
-        time_day: &twice(&|row| [row.time_day; 2]),
+        time_day: &once(|row| row.time_day),
         planets: &curves.collect::<Vec<_>>(),
-        megno_mean: &twice(&|row| [row.mean_megno.unwrap_or(f64::NAN); 2]),
-        energy_error: &twice(&|row| [row.energy_error; 2]),
+        megno_mean: &once(|row| row.mean_megno.unwrap_or(f64::NAN)),
+        energy_error: &once(|row| row.energy_error),
         caption: &caption,
     };
     figure::series(&input).map_err(CliError::working)
 }
 
-fn caption(wish: &Wish, view: &View<'_>, assessment: &Assessment) -> Vec<String> {
+fn caption(wish: &Wish, view: &View<'_>, assessment: &Assessment, bands: bool) -> Vec<String> {
     let headline = view.headline();
     let mut letters = headline.chars();
     let headline: String = letters.next().into_iter().flat_map(char::to_uppercase).chain(letters).collect();
@@ -96,12 +114,11 @@ fn caption(wish: &Wish, view: &View<'_>, assessment: &Assessment) -> Vec<String>
         Frame::Jacobi => " (the file states Jacobi ones)",
         Frame::Barycentric => " (the file states barycentric ones)",
     };
+    let bands =
+        if bands { "; at each time the smallest and the largest value since the time before" } else { "" };
     vec![
         format!("{headline}."),
-        format!(
-            "Osculating astrocentric elements{frame}; at each time the smallest and the largest value since the time \
-             before."
-        ),
+        format!("Osculating astrocentric elements{frame}{bands}."),
         format!(
             "Scheme {}, step {} d; largest relative energy error {error}. {VERSION}.",
             view.scheme(),
