@@ -1,5 +1,7 @@
 //! One cell on its way: starts, is looked at after every block of steps, ends with an assessment.
 
+mod keep;
+
 use super::assessment::{Approach, Assessment, Loss};
 use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Elements};
@@ -31,7 +33,7 @@ struct Pair {
 }
 
 /// A cell between two blocks.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(super) struct Cell {
     start: State,
     limits: Limits,
@@ -113,10 +115,6 @@ impl Cell {
 
     pub fn share_done(&self) -> f64 {
         self.blocks_done as f64 / self.blocks as f64
-    }
-
-    pub fn last_energy_error(&self) -> f64 {
-        self.conserved.last_energy
     }
 
     /// Looks at the cell after one more block. `before` and `after` are the block in the map's variables, `corrected`
@@ -307,14 +305,6 @@ impl Cell {
 
     fn time_day_or_zero(&self, plan: &Plan) -> f64 {
         if self.blocks == 0 { 0.0 } else { self.time_day(plan) }
-    }
-
-    pub fn blocks(&self) -> u64 {
-        self.blocks
-    }
-
-    pub fn blocks_done(&self) -> u64 {
-        self.blocks_done
     }
 }
 

@@ -6,11 +6,13 @@ mod calibrate;
 mod cell;
 mod one;
 mod plan;
+mod series;
 
 pub use assessment::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{assess, run_batch};
-pub use one::{Row, follow};
+pub use one::{FollowProgress, Follower, follow, plan_for_rows};
 pub use plan::{
     FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day, innermost_period_day,
     outermost_period_day,
 };
+pub use series::Row;

@@ -218,19 +218,30 @@ fn limits(source: &Source, top: &RawTable) -> Result<Limits, InputError> {
     table.check_keys(source, about, &LIMITS_KEYS)?;
     if let Some(entry) = table.get("escape") {
         let written = entry.exact(source, about)?;
-        let measured = written.measured(Dimension::Length).map_err(|fail| entry.fail(source, about, fail))?;
-        above_zero(measured.value, written.value_at).map_err(|fail| entry.fail(source, about, fail))?;
-        limits.escape_au = Some(measured.value);
+        limits.escape_au = Some(escape_au(&written).map_err(|fail| entry.fail(source, about, fail))?);
     }
     if let Some(entry) = table.get("encounter") {
-        let allowed = "\"off\", or mutual Hill radii as \"1 hill\"";
-        let text = entry.text(source, about, allowed)?;
-        limits.encounter = read_encounter(text, allowed).map_err(|fail| entry.fail(source, about, fail))?;
+        let text = entry.text(source, about, ENCOUNTER_FORMS)?;
+        limits.encounter = read_encounter(text).map_err(|fail| entry.fail(source, about, fail))?;
     }
     Ok(limits)
 }
 
-fn read_encounter(text: &str, allowed: &str) -> Result<Encounter, Fail> {
+/// Reads a distance from the star, au.
+pub(crate) fn read_escape(text: &str) -> Result<f64, Fail> {
+    escape_au(&exact(text)?)
+}
+
+fn escape_au(written: &quantity::Written) -> Result<f64, Fail> {
+    let measured = written.measured(Dimension::Length)?;
+    above_zero(measured.value, written.value_at.clone()).map(|()| measured.value)
+}
+
+const ENCOUNTER_FORMS: &str = "\"off\", or mutual Hill radii as \"1 hill\"";
+
+/// Reads at which distance an encounter ends a configuration.
+pub(crate) fn read_encounter(text: &str) -> Result<Encounter, Fail> {
+    let allowed = ENCOUNTER_FORMS;
     if text == "off" {
         return Ok(Encounter::Off);
     }
@@ -269,16 +280,23 @@ fn engine(source: &Source, top: &RawTable) -> Result<Engine, InputError> {
     }
     if let Some(entry) = table.get("energy_error") {
         let written = entry.exact(source, about)?;
-        let value =
-            written.measured(Dimension::Number).map_err(|fail| entry.fail(source, about, fail))?.value;
-        if !(value > 0.0 && value < 1.0) {
-            let complaint =
-                Complaint::new(Fault::OutOfRange, value.to_string()).allowed("0 < energy_error < 1");
-            return Err(entry.refuse(source, about, complaint.advice("write, as an example, 1e-6")));
-        }
-        engine.energy_error = value;
+        engine.energy_error = energy_error(&written).map_err(|fail| entry.fail(source, about, fail))?;
     }
     Ok(engine)
+}
+
+/// Reads the relative energy error asked for.
+pub(crate) fn read_energy_error(text: &str) -> Result<f64, Fail> {
+    energy_error(&exact(text)?)
+}
+
+fn energy_error(written: &quantity::Written) -> Result<f64, Fail> {
+    let value = written.measured(Dimension::Number)?.value;
+    if value > 0.0 && value < 1.0 {
+        return Ok(value);
+    }
+    let complaint = Complaint::new(Fault::OutOfRange, value.to_string()).allowed("above 0 and below 1");
+    Err((written.value_at.clone(), complaint.advice("write, as an example, 1e-6")))
 }
 
 const STEP_FORMS: &str = "\"auto\", a time as \"0.5 d\", or \"30 per orbit\" (of the innermost planet)";

@@ -5,6 +5,7 @@
 
 use super::{StarTerms, jacobi};
 use crate::lanes::WIDTH;
+use crate::num::{Kept, KeptReader};
 
 /// The coordinates in which the Hamiltonian is split.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -327,6 +328,17 @@ impl Block {
         }
         other.orders[to].clone_from(&self.orders[lane]);
         other.star_terms |= self.star_terms;
+    }
+
+    /// Puts down every number of every lane.
+    pub fn keep(&self, kept: &mut Kept) {
+        kept.floats(&self.data);
+    }
+
+    /// Takes up what [`Block::keep`] put down of a block of the same width and number of planets.
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        self.data = kept.floats(self.data.len())?;
+        Some(())
     }
 
     /// Divides a tangent vector that has grown beyond 2^±200 by a power of two; exact.

@@ -2,6 +2,7 @@
 
 use super::Moment;
 use crate::integrate::{State, angular_momentum, energy};
+use crate::num::{Kept, KeptReader};
 
 /// Largest relative errors seen, against the start.
 ///
@@ -14,6 +15,7 @@ pub struct ConservedWatch {
     pub worst_momentum: f64,
     /// At the last moment seen.
     pub last_energy: f64,
+    pub last_momentum: f64,
 }
 
 impl ConservedWatch {
@@ -24,7 +26,21 @@ impl ConservedWatch {
             worst_energy: 0.0,
             worst_momentum: 0.0,
             last_energy: 0.0,
+            last_momentum: 0.0,
         }
+    }
+
+    /// Puts down what was seen; what holds at the start follows from the start.
+    pub fn keep(&self, kept: &mut Kept) {
+        kept.floats(&[self.worst_energy, self.worst_momentum, self.last_energy, self.last_momentum]);
+    }
+
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        self.worst_energy = kept.float()?;
+        self.worst_momentum = kept.float()?;
+        self.last_energy = kept.float()?;
+        self.last_momentum = kept.float()?;
+        Some(())
     }
 
     pub fn see(&mut self, moment: &Moment<'_>) {
@@ -33,7 +49,8 @@ impl ConservedWatch {
         self.worst_energy = self.worst_energy.max(self.last_energy);
         let now = angular_momentum(moment.state);
         let gap = length([0, 1, 2].map(|k| now[k] - self.momentum[k]));
-        self.worst_momentum = self.worst_momentum.max(finite_or_worst(gap / length(self.momentum)));
+        self.last_momentum = finite_or_worst(gap / length(self.momentum));
+        self.worst_momentum = self.worst_momentum.max(self.last_momentum);
     }
 }
 

@@ -15,12 +15,13 @@ mod tally;
 
 pub use axis::{cell_count, cell_indices, cell_system, cell_values};
 pub use bitmap::Bitmap;
+pub use changes::changes;
 pub use error::{Failure, SurveyError};
 pub use grid::Grid;
 pub use journal::{Journal, Recovered};
 pub use line::Layout;
-pub use manifest::{Identity, Manifest, PlanWords, VERSION, utc};
+pub use manifest::{Identity, Manifest, PlanWords, VERSION, host, sha256, utc};
 pub use pool::{Desk, Done, Ended, Engine, Made, Next, Source, fill};
 pub use record::Record;
-pub use run::{Found, OUTPUTS, Run, STUDY, SYSTEM, Stored, read_run};
+pub use run::{Found, JOURNAL, OUTPUTS, Run, STUDY, SYSTEM, Stored, read_run};
 pub use tally::Tally;

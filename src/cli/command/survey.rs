@@ -1,14 +1,14 @@
 //! `abide survey`: a study → a run with its tables and its map.
 
-use std::io::{ErrorKind, Write};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use std::sync::Arc;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::AtomicBool;
 
 use crate::assess::{self, Plan};
 use crate::cli::CliError;
 use crate::cli::args::SurveyArgs;
+use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
 use crate::cli::outputs::Finished;
 use crate::cli::progress::Progress;
 use crate::cli::vary;
@@ -22,8 +22,6 @@ use crate::survey::{
 const MANY_CELLS: u64 = 10_000_000;
 /// Up to so many cells each is looked at before the work for whether it can be followed; of more, so many.
 const LOOKED_AT: u64 = 20_000;
-/// Interrupted and resumable.
-const INTERRUPTED: u8 = 130;
 
 pub fn run(args: SurveyArgs) -> Result<ExitCode, CliError> {
     let wish = Wish::check(&args)?;
@@ -211,27 +209,6 @@ fn refuse_many(cells: u64, really: bool) -> Result<(), CliError> {
         "the study has {cells} cells, more than {MANY_CELLS}; \
          if that is meant, confirm it with --really, else give its axes fewer cells"
     )))
-}
-
-/// Set by the first Ctrl-C or termination signal; a second one ends the process at once.
-fn stop_on_signal() -> Result<Arc<AtomicBool>, CliError> {
-    let stop = Arc::new(AtomicBool::new(false));
-    let seen = Arc::clone(&stop);
-    let handler = move || {
-        if seen.swap(true, Ordering::SeqCst) {
-            std::process::exit(i32::from(INTERRUPTED));
-        }
-    };
-    ctrlc::set_handler(handler).map_err(CliError::working)?;
-    Ok(stop)
-}
-
-/// To standard output; a reader that has seen enough and left is no failure.
-fn print(text: &str) -> Result<(), CliError> {
-    match std::io::stdout().write_all(text.as_bytes()) {
-        Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(CliError::working(error)),
-        _ => Ok(()),
-    }
 }
 
 fn told(error: SurveyError) -> CliError {
