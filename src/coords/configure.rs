@@ -23,7 +23,7 @@ pub fn configure(system: &System) -> Result<Configuration, CoordsError> {
     let outlines = bodies.iter().map(|body| Outline::read(body)).collect::<Result<Vec<_>, _>>()?;
     let solved = masses::solve(system, &bodies, &outlines)?;
     let frame = system.convention.elements;
-    check_frame(system, &bodies, &solved)?;
+    check_frame(system)?;
     let elements = stated_elements(system, &bodies, &outlines, &solved)?;
     let star_gm = masses::star_gm(system)?;
     let (pos, vel) = star_centred_in_order(frame, &solved.order, star_gm, &solved.gm, &elements);
@@ -62,8 +62,7 @@ impl Cast {
 }
 
 /// Elements about the star have no meaning for planets that circle a pair, barycentric ones none for the pair.
-fn check_frame(system: &System, bodies: &[&Body], solved: &Solved) -> Result<(), CoordsError> {
-    let companion = system.planets.len();
+fn check_frame(system: &System) -> Result<(), CoordsError> {
     let frame = system.convention.elements;
     if system.companion.is_none() || frame == Frame::Jacobi {
         return Ok(());
@@ -71,9 +70,8 @@ fn check_frame(system: &System, bodies: &[&Body], solved: &Solved) -> Result<(),
     if frame == Frame::Barycentric {
         return Err(CoordsError::BarycentricCompanion);
     }
-    let slowness = |body: usize| solved.semi_major_axis_au[body].powi(3) / solved.mass_parameter[body];
-    match (0..companion).find(|&planet| slowness(planet) > slowness(companion)) {
-        Some(planet) => Err(CoordsError::CirclesPair { planet: bodies[planet].name.clone() }),
+    match system.planets_around_pair().first() {
+        Some(planet) => Err(CoordsError::CirclesPair { planet: system.planets[*planet].name.clone() }),
         None => Ok(()),
     }
 }

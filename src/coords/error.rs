@@ -7,14 +7,22 @@ fn told(name: &str) -> String {
     if name == COMPANION { format!("the {COMPANION}") } else { format!("planet {name}") }
 }
 
+/// "planets b and c", or "planet b and the companion".
+fn both(first: &str, second: &str) -> String {
+    if [first, second].contains(&COMPANION) {
+        format!("{} and {}", told(first), told(second))
+    } else {
+        format!("planets {first} and {second}")
+    }
+}
+
 /// Why a description is not a configuration, or not one that can start.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CoordsError {
     #[error(
-        "{} and {} are at one place: {gap_au:.3e} au apart, but their radii add up to \
+        "{} are at one place: {gap_au:.3e} au apart, but their radii add up to \
          {radii_au:.3e} au; change the phase or the size of one of them",
-        told(first),
-        told(second)
+        both(first, second)
     )]
     Coincident { first: String, second: String, gap_au: f64, radii_au: f64 },
     #[error(

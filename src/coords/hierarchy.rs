@@ -30,8 +30,12 @@ impl Configuration {
         (0..self.planets.len()).filter(|&index| self.planets[index].kind == BodyKind::Planet)
     }
 
-    /// Whether a planet circles star and companion together: its stated orbit has the longer period.
+    /// Whether a planet circles star and companion together: its stated Jacobi orbit has the longer period.
+    /// Elements in other frames stand for planets that circle the star.
     pub fn circles_pair(&self, planet: usize) -> bool {
+        if self.frame != Frame::Jacobi {
+            return false;
+        }
         let Some(companion) = self.companion_index().filter(|companion| *companion != planet) else {
             return false;
         };

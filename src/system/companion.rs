@@ -33,17 +33,21 @@ impl CompanionPlace {
 
 impl System {
     /// Where the companion stands, by stated periods; a stated semi-major axis counts with the period it would have
-    /// around star and companion together. None without a companion, or where a size is missing.
+    /// around star and companion together. None without a companion.
     pub fn companion_place(&self) -> Option<CompanionPlace> {
-        let companion = self.companion.as_ref()?;
-        let star_gm = self.star.stated.value(Key::Mass)?;
+        self.companion.as_ref()?;
+        Some(CompanionPlace::of(self.planets_around_pair().len(), self.planets.len()))
+    }
+
+    /// Indices of the planets that circle star and companion together, told as in [`System::companion_place`].
+    pub fn planets_around_pair(&self) -> Vec<usize> {
+        let (Some(companion), Some(star_gm)) = (&self.companion, self.star.stated.value(Key::Mass)) else {
+            return Vec::new();
+        };
         let pair_gm = star_gm + stated_gm(companion, star_gm);
-        let companion_day = period_day(companion, pair_gm)?;
-        let mut circling_pair = 0;
-        for planet in &self.planets {
-            circling_pair += usize::from(period_day(planet, pair_gm)? > companion_day);
-        }
-        Some(CompanionPlace::of(circling_pair, self.planets.len()))
+        let Some(companion_day) = period_day(companion, pair_gm) else { return Vec::new() };
+        let slower = |planet: &Body| period_day(planet, pair_gm).is_some_and(|period| period > companion_day);
+        (0..self.planets.len()).filter(|&planet| slower(&self.planets[planet])).collect()
     }
 }
 
