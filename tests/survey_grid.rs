@@ -31,7 +31,9 @@ fn system(frame: Frame) -> System {
             ),
             body("c", &[(Key::Mass, 2000.0 * GM_EARTH), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 3.0)]),
         ],
+        companion: None,
         convention: Convention { elements: frame, ..Convention::default() },
+        physics: Default::default(),
     }
 }
 
@@ -64,7 +66,7 @@ fn study(axes: Vec<Axis>) -> Study {
         measure: vec![Measure::Megno],
         axes,
         limits: Limits { escape_au: None, encounter: Encounter::Off },
-        engine: Engine { scheme: "auto".to_string(), step: Step::Auto, energy_error: 1e-7 },
+        engine: Engine { energy_error: 1e-7, ..Engine::default() },
     }
 }
 

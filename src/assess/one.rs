@@ -2,7 +2,6 @@
 
 use super::batch::one_block;
 use super::cell::{Cell, Next};
-use super::plan::auto_step_day;
 use super::series::Rows;
 use super::{Assessment, Plan, Row};
 use crate::coords::Configuration;

@@ -121,7 +121,7 @@ impl Plan {
         let scheme = Scheme::named(&engine.scheme).unwrap_or(Scheme::leapfrog()).name;
         let encounter_hill = match limits.encounter {
             Encounter::Stop { hill } => Some(hill),
-            Encounter::Off => None,
+            Encounter::Off | Encounter::Resolve => None,
         };
         let plan = Plan {
             span_day,

@@ -5,9 +5,11 @@
 //! once, as an [`InputError`]: where, what was found, what is allowed, what to do.
 
 mod axis;
+mod companion;
 mod error;
 mod later;
 mod nearest;
+mod physics;
 mod plane;
 mod quantity;
 mod raw;
@@ -138,7 +140,7 @@ pub fn is_study(path: impl AsRef<Path>) -> Result<bool, InputError> {
 
 fn kind_of(top: &raw::RawTable) -> Option<FileKind> {
     let has = |keys: &[&str]| keys.iter().any(|key| top.get(key).is_some());
-    if has(&["star", "planet"]) {
+    if has(&["star", "planet", "companion"]) {
         Some(FileKind::System)
     } else if has(&["system", "axis", "span", "samples"]) {
         Some(FileKind::Study)

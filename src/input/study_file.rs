@@ -11,13 +11,21 @@ use super::plane;
 use super::quantity::{self, Fail};
 use super::raw::{Entry, RawTable, RawValue};
 use super::source::{Complaint, Source};
-use crate::system::{Axis, Encounter, Engine, Limits, Measure, Spacing, Span, Step, Study, System};
+use crate::system::{
+    Axis, CoordinateChoice, Encounter, Engine, Limits, Measure, SCHEMES, Spacing, Span, Step, Study, System,
+};
 use crate::units::{Dimension, Unit};
 
 const TOP_KEYS: [&str; 7] = ["title", "system", "span", "measure", "axis", "limits", "engine"];
 const AXIS_KEYS: [&str; 6] = ["vary", "from", "to", "cells", "spacing", "as"];
 const LIMITS_KEYS: [&str; 2] = ["escape", "encounter"];
 const ENGINE_KEYS: [&str; 4] = ["scheme", "coordinates", "step", "energy_error"];
+
+const COORDINATES: [(&str, CoordinateChoice); 3] = [
+    ("auto", CoordinateChoice::Auto),
+    ("heliocentric", CoordinateChoice::Heliocentric),
+    ("jacobi", CoordinateChoice::Jacobi),
+];
 
 /// Cells along an axis that does not say.
 pub(crate) const DEFAULT_CELLS: usize = 100;
@@ -34,7 +42,12 @@ impl Default for Limits {
 
 impl Default for Engine {
     fn default() -> Engine {
-        Engine { scheme: "auto".to_string(), step: Step::Auto, energy_error: DEFAULT_ENERGY_ERROR }
+        Engine {
+            scheme: "auto".to_string(),
+            coordinates: CoordinateChoice::Auto,
+            step: Step::Auto,
+            energy_error: DEFAULT_ENERGY_ERROR,
+        }
     }
 }
 
@@ -237,13 +250,15 @@ fn escape_au(written: &quantity::Written) -> Result<f64, Fail> {
     above_zero(measured.value, written.value_at.clone()).map(|()| measured.value)
 }
 
-const ENCOUNTER_FORMS: &str = "\"off\", or mutual Hill radii as \"1 hill\"";
+const ENCOUNTER_FORMS: &str = "mutual Hill radii as \"1 hill\", \"resolve\" or \"off\"";
 
 /// Reads at which distance an encounter ends a configuration.
 pub(crate) fn read_encounter(text: &str) -> Result<Encounter, Fail> {
     let allowed = ENCOUNTER_FORMS;
-    if text == "off" {
-        return Ok(Encounter::Off);
+    match text {
+        "off" => return Ok(Encounter::Off),
+        "resolve" => return Ok(Encounter::Resolve),
+        _ => {}
     }
     let restate = |(range, complaint): Fail| (range, complaint.allowed(allowed));
     let written = exact(text).map_err(restate)?;
@@ -268,11 +283,12 @@ fn engine(source: &Source, top: &RawTable) -> Result<Engine, InputError> {
     later::refuse(source, about, table)?;
     table.check_keys(source, about, &ENGINE_KEYS)?;
     if let Some(entry) = table.get("scheme") {
-        let scheme = entry.choice(source, about, &[("auto", "auto"), ("(2,2)", "(2,2)")])?;
+        let words: Vec<(&str, &str)> = ["auto"].into_iter().chain(SCHEMES).map(|word| (word, word)).collect();
+        let scheme = entry.choice(source, about, &words)?;
         engine.scheme = scheme.to_string();
     }
     if let Some(entry) = table.get("coordinates") {
-        entry.choice(source, about, &[("heliocentric", ())])?;
+        engine.coordinates = entry.choice(source, about, &COORDINATES)?;
     }
     if let Some(entry) = table.get("step") {
         let text = entry.text(source, about, STEP_FORMS)?;

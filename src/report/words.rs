@@ -99,6 +99,10 @@ pub(crate) fn held_words(study: &Study, system: &System) -> String {
                 Some(planet) => (planet.name.as_str(), &planet.stated),
                 None => continue,
             },
+            BodyRef::Companion => match &moved.companion {
+                Some(companion) => (companion.name.as_str(), &companion.stated),
+                None => continue,
+            },
             BodyRef::All => match moved.planets.first() {
                 Some(planet) => ("each planet", &planet.stated),
                 None => continue,

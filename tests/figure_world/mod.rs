@@ -43,7 +43,9 @@ pub fn system() -> System {
             planet("b", measured(11.862, 0.004, "d"), 6.1, measured(0.05, 0.03, "")),
             planet("c", measured(17.79, 0.12, "d"), 9.4, measured(0.08, 0.03, "")),
         ],
+        companion: None,
         convention: Convention::default(),
+        physics: Default::default(),
     }
 }
 
@@ -77,7 +79,7 @@ pub fn study(columns: usize, rows: usize) -> Study {
         measure: vec![Measure::Megno, Measure::Lyapunov, Measure::Extent],
         axes: vec![axis(1, Key::Period, (15.5, 21.0, columns)), axis(1, Key::Eccentricity, (0.0, 0.3, rows))],
         limits: Limits { escape_au: None, encounter: Encounter::Stop { hill: 1.0 } },
-        engine: Engine { scheme: "auto".to_owned(), step: Step::Auto, energy_error: 1e-7 },
+        engine: Engine { energy_error: 1e-7, ..Engine::default() },
     }
 }
 

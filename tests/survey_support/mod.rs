@@ -125,13 +125,21 @@ fn configuration(cell: u64) -> Configuration {
     };
     let planet = Planet {
         name: "b".to_string(),
+        kind: Default::default(),
         gm: cell as f64,
         radius_au: 0.0,
         position_au: [1.0, 0.0, 0.0],
         velocity_au_day: [0.0; 3],
         elements,
+        satellite_k_au2: None,
     };
-    Configuration { star_gm: 1.0, star_radius_au: 0.0, frame: Frame::Jacobi, planets: vec![planet] }
+    Configuration {
+        star_gm: 1.0,
+        star_radius_au: 0.0,
+        frame: Frame::Jacobi,
+        planets: vec![planet],
+        terms: Default::default(),
+    }
 }
 
 /// Keeps eight cells in flight, ends them in a scrambled order, and knows a cell by its configuration only.

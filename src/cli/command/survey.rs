@@ -77,7 +77,7 @@ impl Wish {
             plan: self.plan.clone(),
             cells: self.grid.cells(),
             axes: study.axes.iter().map(|axis| axis.path.clone()).collect(),
-            planets: system.planets.iter().map(|planet| planet.name.clone()).collect(),
+            planets: system.orbiting().map(|body| body.name.clone()).collect(),
         }
     }
 

@@ -10,7 +10,7 @@ use crate::coords::{self, Configuration};
 use crate::input::{self, SystemFile};
 use crate::integrate::Scheme;
 use crate::report::time_words;
-use crate::system::{Engine, Limits, Span};
+use crate::system::{CoordinateChoice, Engine, Limits, Span};
 use crate::units::DAY_S;
 
 /// More rows than this are more than a run can keep at hand.
@@ -47,6 +47,7 @@ impl Wish {
         let span = input::parse_span(&args.span).map_err(CliError::input)?;
         let engine = Engine {
             scheme: scheme(&args.scheme)?,
+            coordinates: CoordinateChoice::Auto,
             step: input::parse_step(&args.step).map_err(CliError::input)?,
             energy_error: input::parse_energy_error(&args.energy_error).map_err(CliError::input)?,
         };
