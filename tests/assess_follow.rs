@@ -35,7 +35,12 @@ mean_anomaly = "140 deg"
 
 fn plan(configuration: &Configuration, orbits: f64, scheme: &str, energy_error: f64) -> Plan {
     let limits = Limits { escape_au: None, encounter: Encounter::Off };
-    let engine = Engine { scheme: scheme.to_string(), step: Step::Auto, energy_error };
+    let engine = Engine {
+        scheme: scheme.to_string(),
+        coordinates: abide::system::CoordinateChoice::Auto,
+        step: Step::Auto,
+        energy_error,
+    };
     Plan::new(Span::Orbits(orbits), &limits, &engine, configuration)
 }
 

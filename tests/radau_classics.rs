@@ -92,8 +92,7 @@ fn follow(problem: &str, roundings: f64, to: f64) -> Vec<(f64, f64, f64)> {
         }
         run(&mut engine, t);
         let now = engine.bodies();
-        let error =
-            set.iter().zip(&now.pos).map(|(r, at)| distance(&triple(r, AT), at)).fold(0.0, f64::max);
+        let error = set.iter().zip(&now.pos).map(|(r, at)| distance(&triple(r, AT), at)).fold(0.0, f64::max);
         let condition = condition.at(t);
         println!("{problem} t = {t}: error {error:.1e}, conditioning {condition:.1e}");
         assert!(

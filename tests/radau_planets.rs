@@ -42,7 +42,8 @@ fn errors(name: &str, years: &[i32]) -> Vec<(i32, Vec<f64>, f64)> {
             .collect();
         assert_eq!(truth.len(), 9, "{name} {year}");
         let off = names.iter().zip(&now.pos);
-        let off = off.map(|(n, at)| distance(at, &triple(truth[n.as_str()], ["x_au", "y_au", "z_au"]))).collect();
+        let off =
+            off.map(|(n, at)| distance(at, &triple(truth[n.as_str()], ["x_au", "y_au", "z_au"]))).collect();
         all.push((year, off, engine.energy_error().unwrap()));
     }
     all
@@ -157,9 +158,7 @@ fn start_velocities_for_the_potential() {
     let matched = rate_matched(&node, LIGHT);
     let helio = |state: &State| {
         let bodies = Bodies::from_state(state);
-        (1..bodies.gm.len())
-            .map(|b| distance(&bodies.vel[b], &bodies.vel[0]))
-            .collect::<Vec<f64>>()
+        (1..bodies.gm.len()).map(|b| distance(&bodies.vel[b], &bodies.vel[0])).collect::<Vec<f64>>()
     };
     for (planet, (before, after)) in helio(&node).iter().zip(helio(&matched)).enumerate() {
         let row = rows.iter().find(|r| r["body"] == names[planet]).unwrap();

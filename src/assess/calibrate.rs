@@ -104,6 +104,7 @@ fn largest_error(
             energy_error: f64::INFINITY,
             extent: false,
             megno: false,
+            resolve: false,
             block_steps: 28,
             ..plan.clone()
         };

@@ -79,13 +79,14 @@ impl Follower {
         let plan = plan.clone();
         match Cell::new(configuration, &plan) {
             Ok(cell) => {
-                let mut block = Block::in_coordinates(plan.coordinates, 1, configuration.planets.len());
+                let mut block =
+                    Block::with_massless(plan.coordinates, 1, configuration.planets.len(), plan.massless);
                 cell.enter(&mut block, 0, &plan);
                 let rows = Rows::new(cell.start(), rows);
                 Follower { plan, rows, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
             }
             Err(assessment) => {
-                let rows = Rows::new(&super::cell::barycentric(configuration), rows);
+                let rows = Rows::new(&super::physics::barycentric(configuration), rows);
                 Follower { plan, rows, on_its_way: None, assessment: Some(*assessment) }
             }
         }

@@ -3,10 +3,11 @@
 use std::fmt;
 
 use super::calibrate::calibrate;
-use crate::coords::Configuration;
+use super::physics::{has_companion, massless};
+use crate::coords::{BodyKind, Configuration};
 use crate::integrate::{Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
-use crate::system::{Encounter, Engine, Frame, Limits, Measure, Span, Step, Study};
+use crate::system::{CoordinateChoice, Encounter, Engine, Frame, Group, Limits, Measure, Span, Step, Study};
 
 /// Steps in the shortest pericentre passage time scale when the step is chosen for the user.
 ///
@@ -31,6 +32,45 @@ pub enum StepWhy {
     Pericentre { steps_per_passage: f64, trial: Option<(f64, usize)> },
     /// The study asked for it; how many steps it makes per passage in the stated configuration.
     Asked { steps_per_passage: f64 },
+}
+
+/// Why the coordinates are what they are.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum CoordinatesWhy {
+    Asked,
+    /// A second star makes a hierarchy.
+    Companion,
+    /// A planet heavier than this share of the star.
+    Heavy,
+    /// Every planet is much lighter than the star, where heliocentric coordinates are as exact and cheaper.
+    Light,
+}
+
+/// Above this share of the star's mass the star's own motion (the jump) is no small part of B.
+const HEAVY: f64 = 0.03;
+
+impl fmt::Display for CoordinatesWhy {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            CoordinatesWhy::Asked => f.write_str("as asked"),
+            CoordinatesWhy::Companion => f.write_str("a second star makes a hierarchy"),
+            CoordinatesWhy::Heavy => write!(f, "a planet has more than {HEAVY} of the star's mass"),
+            CoordinatesWhy::Light => f.write_str("the planets are light, and these are the cheaper"),
+        }
+    }
+}
+
+fn coordinates(choice: CoordinateChoice, nominal: &Configuration) -> (Coordinates, CoordinatesWhy) {
+    let heaviest = nominal.planets.iter().map(|p| p.gm).fold(0.0, f64::max);
+    match choice {
+        CoordinateChoice::Heliocentric => (Coordinates::Heliocentric, CoordinatesWhy::Asked),
+        CoordinateChoice::Jacobi => (Coordinates::Jacobi, CoordinatesWhy::Asked),
+        CoordinateChoice::Auto if has_companion(nominal) => (Coordinates::Jacobi, CoordinatesWhy::Companion),
+        CoordinateChoice::Auto if heaviest > HEAVY * nominal.star_gm => {
+            (Coordinates::Jacobi, CoordinatesWhy::Heavy)
+        }
+        CoordinateChoice::Auto => (Coordinates::Heliocentric, CoordinatesWhy::Light),
+    }
 }
 
 impl fmt::Display for StepWhy {
@@ -71,12 +111,19 @@ pub struct Plan {
     /// "(2,2)" with corrector.
     pub scheme: &'static str,
     pub coordinates: Coordinates,
+    pub coordinates_why: CoordinatesWhy,
     pub energy_error: f64,
     pub escape_au: Option<f64>,
     /// Stop below this many mutual Hill radii; absent: go through.
     pub encounter_hill: Option<f64>,
     pub extent: bool,
     pub megno: bool,
+    /// Go through encounters with the adaptive engine.
+    pub resolve: bool,
+    /// Do everything with the adaptive engine.
+    pub adaptive: bool,
+    /// So many planets are massless in every cell.
+    pub massless: usize,
     /// Steps between two looks at a cell, a multiple of [`SAMPLE_EVERY`]. A cell's steps are a whole number of blocks.
     pub block_steps: usize,
 }
@@ -88,6 +135,9 @@ impl Plan {
         let mut plan = Plan::with_corners(study.span, &study.limits, &study.engine, nominal, corners);
         plan.extent = wants(Measure::Extent);
         plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
+        if study.axes.iter().any(|axis| axis.target.key.group() == Group::Mass) {
+            plan.massless = 0;
+        }
         plan
     }
 
@@ -123,12 +173,17 @@ impl Plan {
             Encounter::Stop { hill } => Some(hill),
             Encounter::Off | Encounter::Resolve => None,
         };
+        let (coordinates, coordinates_why) = coordinates(engine.coordinates, nominal);
         let plan = Plan {
             span_day,
             step_day,
             step_why,
             scheme,
-            coordinates: Coordinates::Heliocentric,
+            coordinates,
+            coordinates_why,
+            resolve: limits.encounter == Encounter::Resolve,
+            adaptive: false,
+            massless: massless(nominal),
             energy_error: engine.energy_error,
             escape_au: limits.escape_au,
             encounter_hill,
@@ -173,27 +228,38 @@ impl Plan {
 }
 
 /// The step that the plan gives a configuration when none is asked: 1/20 of the shortest pericentre
-/// passage time scale of its planets, day. Not a number when no planet is bound.
+/// passage time scale of its bodies, day. Not a number when none is bound.
 pub fn auto_step_day(configuration: &Configuration) -> f64 {
-    let orbits = configuration.elements_in(Frame::Astrocentric);
-    let passages =
-        configuration.planets.iter().zip(&orbits).filter(|(_, o)| o.eccentricity < 1.0).map(|(p, o)| {
-            pericentre_passage_day(o.semi_major_axis_au, o.eccentricity, configuration.star_gm + p.gm)
-        });
+    let frame = telling_frame(configuration);
+    let orbits = configuration.elements_in(frame);
+    let periods = configuration.periods_of(frame, &orbits);
+    let passages = orbits.iter().zip(periods).filter_map(|(orbit, period)| {
+        // A mass parameter of which only the period is known: G M = a³ (2π/P)².
+        let gm = orbit.semi_major_axis_au.powi(3) * (std::f64::consts::TAU / period?).powi(2);
+        Some(pericentre_passage_day(orbit.semi_major_axis_au, orbit.eccentricity, gm))
+    });
     passages.fold(f64::NAN, f64::min) / STEPS_PER_PASSAGE
 }
 
-/// Shortest period of the configuration, day, astrocentric.
+/// Shortest period of the planets, day.
 pub fn innermost_period_day(configuration: &Configuration) -> f64 {
     periods_day(configuration).fold(f64::NAN, f64::min)
 }
 
-/// Longest period of the configuration, day, astrocentric.
+/// Longest period of the planets, day.
 pub fn outermost_period_day(configuration: &Configuration) -> f64 {
     periods_day(configuration).fold(f64::NAN, f64::max)
 }
 
+/// About the star; about everything inside where a second star may be inside.
+fn telling_frame(configuration: &Configuration) -> Frame {
+    if has_companion(configuration) { Frame::Jacobi } else { Frame::Astrocentric }
+}
+
 fn periods_day(configuration: &Configuration) -> impl Iterator<Item = f64> {
-    let orbits = configuration.elements_in(Frame::Astrocentric);
-    configuration.periods_of(Frame::Astrocentric, &orbits).into_iter().flatten()
+    let frame = telling_frame(configuration);
+    let orbits = configuration.elements_in(frame);
+    let periods = configuration.periods_of(frame, &orbits);
+    let planets: Vec<bool> = configuration.planets.iter().map(|p| p.kind == BodyKind::Planet).collect();
+    periods.into_iter().zip(planets).filter(|(_, planet)| *planet).filter_map(|(period, _)| period)
 }

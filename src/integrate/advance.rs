@@ -214,6 +214,25 @@ impl<R: Real> Sums<R> {
     }
 }
 
+/// One sample of a block of one lane outside the kernel.
+pub(super) fn sample(block: &mut Block) {
+    struct Sample<'a>(&'a mut Block);
+    impl Job for Sample<'_> {
+        type Output = ();
+        #[inline(always)]
+        fn run<R: Real>(self) {
+            let mut bodies = vec![Body::<R>::still(); self.0.planets()];
+            let mut pairs = vec![R::splat(0.0); self.0.pairs()];
+            read(self.0, &mut bodies, &mut pairs);
+            let mut growth = Sums::<R>::read(self.0);
+            growth.sample(&bodies);
+            growth.write(self.0);
+        }
+    }
+    assert_eq!(block.width(), 1, "only a block of one lane is sampled from outside");
+    run_one(Sample(block));
+}
+
 #[inline(always)]
 fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
     for (p, body) in bodies.iter_mut().enumerate() {

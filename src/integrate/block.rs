@@ -206,26 +206,14 @@ impl Block {
             self.pulling
         );
         let gm = jacobi::pick(&order, &state.gm);
-        let pick = |from: &[[f64; 3]]| jacobi::pick(&order, from);
-        let (mut pos, mut vel) = (pick(&state.pos), pick(&state.vel));
-        let (mut d_pos, mut d_vel) = (pick(&tangent.pos), pick(&tangent.vel));
-        if !heliocentric {
-            (pos, vel) = jacobi::to_jacobi(state.star_gm, &gm, &pos, &vel);
-            (d_pos, d_vel) = jacobi::to_jacobi(state.star_gm, &gm, &d_pos, &d_vel);
-        }
         let mut inside = state.star_gm;
-        for k in 0..self.planets {
-            inside += gm[k];
-            self.set_planet(k, GM, lane, gm[k]);
+        for (k, gm) in gm.iter().enumerate() {
+            inside += gm;
+            self.set_planet(k, GM, lane, *gm);
             self.set_planet(k, MU, lane, if heliocentric { state.star_gm } else { inside });
-            for axis in 0..3 {
-                self.set_planet(k, POS + axis, lane, pos[k][axis]);
-                self.set_planet(k, VEL + axis, lane, vel[k][axis]);
-                self.set_planet(k, D_POS + axis, lane, d_pos[k][axis]);
-                self.set_planet(k, D_VEL + axis, lane, d_vel[k][axis]);
-            }
         }
         self.orders[lane] = order;
+        self.replace(lane, state, tangent);
         self.forget_watch(lane);
     }
 
@@ -244,6 +232,34 @@ impl Block {
         for p in 0..self.pairs() {
             let at = self.pair_slot(p) * self.width + lane;
             self.data[at] = f64::MAX;
+        }
+    }
+
+    /// Forgets the smallest distances of pairs only.
+    pub fn forget_pairs(&mut self, lane: usize) {
+        for p in 0..self.pairs() {
+            let at = self.pair_slot(p) * self.width + lane;
+            self.data[at] = f64::MAX;
+        }
+    }
+
+    /// Puts another state and tangent vector into a lane and keeps its masses, step, sums and watch.
+    pub fn replace(&mut self, lane: usize, state: &State, tangent: &Tangent) {
+        let order = self.orders[lane].clone();
+        let pick = |from: &[[f64; 3]]| jacobi::pick(&order, from);
+        let (mut pos, mut vel) = (pick(&state.pos), pick(&state.vel));
+        let (mut d_pos, mut d_vel) = (pick(&tangent.pos), pick(&tangent.vel));
+        if self.coordinates == Coordinates::Jacobi {
+            let gm = jacobi::pick(&order, &state.gm);
+            (pos, vel) = jacobi::to_jacobi(state.star_gm, &gm, &pos, &vel);
+            (d_pos, d_vel) = jacobi::to_jacobi(state.star_gm, &gm, &d_pos, &d_vel);
+        }
+        for k in 0..self.planets {
+            for (field, from) in [(POS, &pos), (VEL, &vel), (D_POS, &d_pos), (D_VEL, &d_vel)] {
+                for axis in 0..3 {
+                    self.set_planet(k, field + axis, lane, from[k][axis]);
+                }
+            }
         }
     }
 
@@ -359,6 +375,11 @@ impl Block {
         }
         let taken = self.log_taken(lane) + twos * std::f64::consts::LN_2;
         self.set(Global::LogTaken, lane, taken);
+    }
+
+    /// Takes one sample of the tangent vector's length in a block of one lane, as the kernel does.
+    pub fn sample(&mut self) {
+        super::advance::sample(self);
     }
 
     pub(super) fn slot(&self, slot: usize) -> &[f64] {

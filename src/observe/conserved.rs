@@ -1,7 +1,9 @@
 //! How well energy and angular momentum are kept.
 
+use std::borrow::Cow;
+
 use super::Moment;
-use crate::integrate::{State, angular_momentum, energy};
+use crate::integrate::{StarTerms, State, angular_momentum, energy};
 use crate::num::{Kept, KeptReader};
 
 /// Largest relative errors seen, against the start.
@@ -19,10 +21,11 @@ pub struct ConservedWatch {
 }
 
 impl ConservedWatch {
-    pub fn new(start: &State) -> ConservedWatch {
+    pub fn new(start: &State, terms: &StarTerms) -> ConservedWatch {
+        let start = weighty(start);
         ConservedWatch {
-            energy: energy(start),
-            momentum: angular_momentum(start),
+            energy: energy(&start) + terms.energy(&start),
+            momentum: angular_momentum(&start),
             worst_energy: 0.0,
             worst_momentum: 0.0,
             last_energy: 0.0,
@@ -43,15 +46,26 @@ impl ConservedWatch {
         Some(())
     }
 
-    pub fn see(&mut self, moment: &Moment<'_>) {
-        let relative = ((energy(moment.state) - self.energy) / self.energy).abs();
+    pub fn see(&mut self, moment: &Moment<'_>, terms: &StarTerms) {
+        let state = weighty(moment.state);
+        let relative = ((energy(&state) + terms.energy(&state) - self.energy) / self.energy).abs();
         self.last_energy = finite_or_worst(relative);
         self.worst_energy = self.worst_energy.max(self.last_energy);
-        let now = angular_momentum(moment.state);
+        let now = angular_momentum(&state);
         let gap = length([0, 1, 2].map(|k| now[k] - self.momentum[k]));
         self.last_momentum = finite_or_worst(gap / length(self.momentum));
         self.worst_momentum = self.worst_momentum.max(self.last_momentum);
     }
+}
+
+/// A state with a mass to weigh: when no planet has any, each gets the same, far too small to be felt.
+fn weighty(state: &State) -> Cow<'_, State> {
+    if state.gm.iter().any(|gm| *gm != 0.0) {
+        return Cow::Borrowed(state);
+    }
+    let mut weighty = state.clone();
+    weighty.gm.fill(1e-25 * state.star_gm);
+    Cow::Owned(weighty)
 }
 
 fn finite_or_worst(error: f64) -> f64 {

@@ -31,6 +31,10 @@ pub fn plan() -> Plan {
         megno: true,
         block_steps: 508,
         coordinates: abide::integrate::Coordinates::Heliocentric,
+        coordinates_why: abide::assess::CoordinatesWhy::Light,
+        resolve: false,
+        adaptive: false,
+        massless: 0,
     }
 }
 

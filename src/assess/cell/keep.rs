@@ -3,11 +3,15 @@
 use super::{Approach, Cell};
 use crate::integrate::State;
 use crate::num::{Kept, KeptReader};
+use crate::observe::ConservedWatch;
 
 impl Cell {
     /// Puts down all that does not follow from configuration and plan.
     pub fn keep(&self, kept: &mut Kept) {
         kept.float(self.step_day);
+        kept.count(u64::from(self.adaptive));
+        kept.count(self.passages);
+        kept.float(self.passage_error);
         for count in [self.blocks, self.blocks_done, u64::from(self.redone)] {
             kept.count(count);
         }
@@ -27,6 +31,12 @@ impl Cell {
     /// Takes up what was put down of a cell of the same configuration and plan.
     pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
         self.step_day = kept.float()?;
+        if kept.count()? != 0 {
+            self.adaptive = true;
+            self.conserved = ConservedWatch::new(&self.stated, &self.terms);
+        }
+        self.passages = kept.count()?;
+        self.passage_error = kept.float()?;
         self.blocks = kept.count()?;
         self.blocks_done = kept.count()?;
         self.redone = u32::try_from(kept.count()?).ok()?;
@@ -48,7 +58,7 @@ impl Cell {
     }
 
     pub fn worst_energy_error(&self) -> f64 {
-        self.conserved.worst_energy
+        self.energy_error_seen()
     }
 
     pub fn mean_megno(&self) -> Option<f64> {
@@ -56,7 +66,7 @@ impl Cell {
     }
 
     pub fn start(&self) -> &State {
-        &self.start
+        if self.adaptive { &self.stated } else { &self.start }
     }
 
     pub fn step_day(&self) -> f64 {
