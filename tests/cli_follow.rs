@@ -177,7 +177,7 @@ fn what_is_wrong_is_said_once_before_anything_is_made() {
     }
     // The name of the option ends as the word that leads every message.
     let outcome = follow(&desk, &["--energy-error", "2"]).code(2);
-    outcome.said("error: energy-error:1:1: the number is out of range").said("above 0 and below 1");
+    outcome.said("error: energy-error:1:1: the number is out of range").said("0 < energy_error < 1");
     follow(&desk, &["--energy-error", "1e-6 d"]).code(2).said("energy-error:1:6: wrong unit");
     let inside = PAIR.replace("11.862 ± 0.004 d", "0.05 d");
     desk.write("inside.toml", inside);

@@ -311,7 +311,7 @@ fn energy_error(written: &quantity::Written) -> Result<f64, Fail> {
     if value > 0.0 && value < 1.0 {
         return Ok(value);
     }
-    let complaint = Complaint::new(Fault::OutOfRange, value.to_string()).allowed("above 0 and below 1");
+    let complaint = Complaint::new(Fault::OutOfRange, value.to_string()).allowed("0 < energy_error < 1");
     Err((written.value_at.clone(), complaint.advice("write, as an example, 1e-6")))
 }
 

@@ -110,13 +110,14 @@ fn follow(
             pause = wish.pause.max((saved - began) * SHARE_OF_TIME);
         }
         if stopped {
-            pace.finish();
+            pace.finish(follower.progress().share);
             return Ok(None);
         }
         pace.note(&follower.progress());
     }
-    pace.finish();
     checkpoint.write(&follower)?;
+    let end_day = follower.assessment().map_or(0.0, |assessment| assessment.end_time_day);
+    pace.finish(end_day / wish.plan.span_day);
     Ok(follower.finish())
 }
 

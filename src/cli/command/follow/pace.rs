@@ -85,9 +85,9 @@ impl Pace {
         self.next = elapsed + self.pause;
     }
 
-    /// Takes the bar away and says how long it took.
-    pub fn finish(self) {
-        let done = count(self.last.share * self.orbits);
+    /// Takes the bar away and says how far this process came, as a share of the span, and how long it took.
+    pub fn finish(self, share: f64) {
+        let done = count(share * self.orbits);
         let elapsed = self.started.elapsed();
         let line = format!(
             "{done} of {} orbits of {} in {}",
@@ -125,7 +125,7 @@ impl Pace {
             vec![format!("{} of {} orbits", count(self.last.share * self.orbits), count(self.orbits))];
         if gained > 0.0 {
             let seconds = worked.as_secs_f64();
-            parts.push(format!("{}/s", count(gained * self.orbits / seconds)));
+            parts.push(format!("{}/s", short(gained * self.orbits / seconds)));
             let left = seconds * (1.0 - self.last.share) / gained;
             parts.push(ending_words(Duration::try_from_secs_f64(left).ok()));
         }

@@ -285,7 +285,7 @@ impl<'a> View<'a> {
             "step_d": a.step_day,
             "step_why": self.wish.plan.step_why.to_string(),
             "steps_per_passage": self.passage.day / a.step_day,
-            "steps": self.steps(),
+            "steps": self.steps() as u64,
             "redone": a.redone,
             "smallest_approach": a.smallest_approach.map(|found| json!({
                 "pair": [name(found.pair.0), name(found.pair.1)],

@@ -127,7 +127,7 @@ impl Wish {
 
 /// A number of orbits or steps: whole up to a million, then to three digits.
 pub fn count(number: f64) -> String {
-    let text = if number >= 1e6 {
+    let text = if number >= 999_999.5 {
         format!("{number:.2e}")
     } else if number >= 100.0 {
         return format!("{number:.0}");
@@ -205,6 +205,7 @@ mod tests {
             (1e9, "1e9"),
             (2.5432e7, "2.54e7"),
             (1e6, "1e6"),
+            (999_999.9, "1e6"),
         ] {
             assert_eq!(count(number), text);
         }
