@@ -177,7 +177,7 @@ fn physics_is_checked() {
     check(&changed("radius = \"1 Rsun\"", "radius = \"1 d\""), Fault::WrongUnit, 8, 39, &["a length"]);
     check(&changed("radius = \"1 Rsun\"", "radius = \"0 Rsun\""), Fault::OutOfRange, 8, 36, &["above 0"]);
     check(&changed("radius = \"1 Rsun\", ", ""), Fault::MissingKey, 8, 1, &["no radius"]);
-    check(&changed("\"82 deg\"", "\"190 deg\""), Fault::OutOfRange, 8, 58, &["180 deg"]);
+    check(&changed("\"82 deg\"", "\"190 deg\""), Fault::OutOfRange, 8, 60, &["180 deg"]);
     check(&changed("j2 = 2e-7", "J2 = 2e-7"), Fault::UnknownKey, 8, 16, &["did you mean \"j2\"?"]);
     check(&changed("0.0123", "1.5"), Fault::OutOfRange, 14, 24, &["satellite"]);
     let text = changed("satellite_mass_ratio = 0.0123\n", "");

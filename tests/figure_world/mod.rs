@@ -5,7 +5,7 @@ use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range};
 use abide::survey::Record;
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Key, Limits, Measure, Measured, Quantity, Spacing,
-    Span, Stated, Step, Study, System, Target,
+    Span, Stated, Study, System, Target,
 };
 use abide::units::{DEGREE, GM_EARTH, GM_SUN};
 use abide::verdict::{LostHow, Verdict};
