@@ -94,6 +94,8 @@ fn the_place_is_the_same_before_and_after_the_masses() {
         let pairs = criteria::neighbours(&found);
         assert_eq!(pairs.len(), usize::from(place != CompanionPlace::Between));
         assert!(criteria::two_planet_balance(&found).is_none());
+        let hill = |one, other| criteria::encounter_radius_au(&found, &found.orbits(), [one, other]);
+        assert!(hill(0, 2).is_none() && hill(2, 1).is_none() && hill(0, 1).unwrap() > 0.0);
         if let [pair] = pairs.as_slice() {
             let central = if place == CompanionPlace::Inside { 1.8 } else { 1.0 };
             let hill = (2e-4f64 / (3.0 * central)).cbrt() * 1.3;

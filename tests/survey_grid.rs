@@ -7,7 +7,7 @@ use abide::coords::configure;
 use abide::survey::{Grid, Made, Source, cell_count, cell_system, cell_values};
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Frame, Key, Limits, Measure, Measured, Quantity,
-    Spacing, Span, Stated, Step, Study, System, Target,
+    Spacing, Span, Stated, Study, System, Target,
 };
 use abide::units::{DEGREE, GM_EARTH, GM_SUN};
 use abide::verdict::{LostHow, Verdict};

@@ -1,7 +1,7 @@
 //! Pairs of planets next to each other.
 
 use super::{HillBalance, NearResonance, hill_balance, mutual_hill_radius_au, near_resonances};
-use crate::coords::{Configuration, Elements};
+use crate::coords::{BodyKind, Configuration, Elements, Orbit};
 use crate::system::Frame;
 
 /// Mutual inclination up to which two orbits count as coplanar for [`two_planet_balance`], rad (5°).
@@ -63,6 +63,18 @@ fn pair_of(
         crossing: orbits[0].apocentre_au() >= orbits[1].pericentre_au(),
         resonances: near_resonances(outer_day / inner_day),
     }
+}
+
+/// Mutual Hill radius of two bodies, au, from their orbits about what they circle; none where one is the companion,
+/// whose encounters Hill radii do not measure.
+pub fn encounter_radius_au(configuration: &Configuration, orbits: &[Orbit], pair: [usize; 2]) -> Option<f64> {
+    let bodies = pair.map(|index| &configuration.planets[index]);
+    if bodies.iter().any(|body| body.kind == BodyKind::Companion) {
+        return None;
+    }
+    let central = configuration.central_gm(pair[0]).max(configuration.central_gm(pair[1]));
+    let axes = pair.map(|index| orbits[index].elements.semi_major_axis_au);
+    Some(mutual_hill_radius_au(central, bodies.map(|body| body.gm), axes))
 }
 
 /// Angle between two orbits, rad: half-angle form, exact for small ones.

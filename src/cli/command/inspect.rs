@@ -1,6 +1,7 @@
 //! `abide inspect`: what a system file says, how it is read, and what can be told without integrating.
 
 mod caveat;
+mod second;
 pub(super) mod table;
 mod text;
 mod view;
