@@ -3,6 +3,7 @@
 #![allow(dead_code, reason = "each test file uses its own part")]
 
 pub mod catalogue;
+pub mod hd_45364;
 pub mod line;
 pub mod tangent;
 
@@ -21,6 +22,7 @@ pub fn truth_path(name: &str) -> PathBuf {
 }
 
 /// One line of a table, by column name.
+#[derive(Clone)]
 pub struct Entry(HashMap<String, String>);
 
 impl Entry {

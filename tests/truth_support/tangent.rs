@@ -5,6 +5,7 @@ use abide::integrate::{Advance, Block, Scheme, State, Tangent, advance};
 use super::{Entry, table};
 
 /// One problem of variational-reference.csv. Units au and yr.
+#[derive(Clone)]
 pub struct Problem {
     pub name: String,
     pub start: State,
@@ -154,4 +155,72 @@ impl Growth {
         self.before = [(log, y), (0.0, 0.0)];
         Some(Mark { time, log, y, mean_y: self.y_sum / time })
     }
+}
+
+/// How one row of the table is met.
+#[derive(Clone, Copy, Debug)]
+pub struct Comparison {
+    pub found: Mark,
+    pub stated: Mark,
+    /// Relative departures of all positions and of the whole tangent vector.
+    pub position: f64,
+    pub tangent: f64,
+    /// What rounding must be allowed to do to the tangent vector, relative; see [`compare`].
+    pub rounding: f64,
+    /// Error of the integrals over time: how much they change when every second sample is left out.
+    pub quadrature: (f64, f64),
+}
+
+/// Follows a problem and compares every row up to `years`.
+///
+/// Rounding: every substep of every body rounds its energy by about one unit ε, so that after n substeps the orbit has
+/// the period of a neighbour √n ε away (Brouwer 1937). How far the tangent vector of such a neighbour is from the
+/// true one is measured: a second orbit starts with velocities 1 + 1e-12 times as large. Rounding is allowed four
+/// times √n ε over 1e-12 of that distance (and no less than four √n ε).
+pub fn compare(problem: &Problem, per_year: u32, years: f64) -> Vec<Comparison> {
+    const NEARBY: f64 = 1e-12;
+    let times: Vec<f64> = problem.marks().iter().map(|m| m.time).filter(|t| *t <= years).collect();
+    let mut neighbour = problem.clone();
+    neighbour.start.vel.iter_mut().flatten().for_each(|v| *v *= 1.0 + NEARBY);
+    let is_row = |count: u64| times.contains(&(count as f64 / f64::from(per_year)));
+    let mut nearby = Vec::new();
+    follow(&neighbour, per_year, years, |count, bodies| {
+        if count > 0 && is_row(count) {
+            nearby.push(flat(bodies, 2..4));
+        }
+    });
+    let step = 1.0 / f64::from(per_year);
+    let (mut fine, mut coarse) =
+        (Growth::new(step, problem.last_only), Growth::new(2.0 * step, problem.last_only));
+    let stages = Scheme::named("(10,6,4)").unwrap().stages() as f64;
+    let mut rows = Vec::new();
+    follow(problem, per_year, years, |count, bodies| {
+        let found = fine.see(count, bodies);
+        let rough = if count % 2 == 0 { coarse.see(count / 2, bodies) } else { None };
+        let (Some(found), Some(rough), true) = (found, rough, is_row(count)) else { return };
+        let stated = *problem.marks().iter().find(|m| m.time == found.time).unwrap();
+        let truth: Vec<Inertial> = (0..bodies.len()).map(|b| problem.stated(found.time, b).unwrap()).collect();
+        let mine = flat(bodies, 2..4);
+        let rounded = 4.0 * f64::EPSILON * (stages * count as f64).sqrt();
+        rows.push(Comparison {
+            found,
+            stated,
+            position: relative_gap(&flat(bodies, 0..1), &flat(&truth, 0..1)),
+            tangent: relative_gap(&mine, &flat(&truth, 2..4)),
+            rounding: rounded * (relative_gap(&nearby[rows.len()], &mine) / NEARBY).max(1.0),
+            quadrature: ((found.y - rough.y).abs(), (found.mean_y - rough.mean_y).abs()),
+        });
+    });
+    assert_eq!(rows.len(), times.len(), "every row of {} is met at an even step", problem.name);
+    rows
+}
+
+fn relative_gap(found: &[f64], stated: &[f64]) -> f64 {
+    let length = |square: f64| square.sqrt();
+    let gap: f64 = found.iter().zip(stated).map(|(a, b)| (a - b).powi(2)).sum();
+    length(gap) / length(stated.iter().map(|x| x * x).sum())
+}
+
+fn flat(bodies: &[Inertial], which: std::ops::Range<usize>) -> Vec<f64> {
+    bodies.iter().flat_map(|b| b[which.clone()].iter().flatten().copied()).collect()
 }
