@@ -14,4 +14,5 @@ pub use advance::{Advance, SAMPLE_EVERY, advance};
 pub use block::{Block, Growth, State, Tangent};
 pub use conserved::{angular_momentum, energy};
 pub use corrector::{from_map, to_map};
+pub use kick::kick;
 pub use splitting::Scheme;
