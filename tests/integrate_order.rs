@@ -30,7 +30,8 @@ fn the_corrector_removes_the_first_term_of_leapfrog() {
     let corrected = Scheme::leapfrog();
     let plain = Scheme { corrected: false, ..corrected.clone() };
     for ratio in [1e-3, 1e-5] {
-        let error = |scheme: &Scheme| shelf::worst_energy(&shelf::pair(ratio), scheme, TAU / 32.0, 32 * 50, 1);
+        let error =
+            |scheme: &Scheme| shelf::worst_energy(&shelf::pair(ratio), scheme, TAU / 32.0, 32 * 50, 1);
         let gain = error(&plain) / error(corrected);
         // ε h² against ε² h²: the gain is of the order of 1/ε.
         assert!(gain * ratio > 0.05 && gain * ratio < 20.0, "ε = {ratio}: gain {gain}");

@@ -94,7 +94,8 @@ fn the_best_scheme_holds_all_digits_over_10000_years() {
         let steps = 73_050;
         let end = run(&start, scheme, years * 365.25 / f64::from(steps), steps as usize);
         let conditioning = 6.0 * std::f64::consts::PI * (10_000.0 / 11.86) * 5.2;
-        let (found, limit) = (gap(&end, &stated(&entries, years)), rounding(scheme, steps as usize, conditioning));
+        let (found, limit) =
+            (gap(&end, &stated(&entries, years)), rounding(scheme, steps as usize, conditioning));
         assert!(found <= limit, "{years}: {found:e}, limit {limit:e}");
     }
 }

@@ -180,9 +180,8 @@ fn the_watch_adds_one_division_per_pair() {
 #[test]
 fn a_counted_kick_keeps_the_momentum() {
     let (mut bodies, mut pairs) = (bodies(7), vec![Counted(f64::MAX); 21]);
-    let momentum = |bodies: &[Body<Counted>]| {
-        [0, 1, 2].map(|k| bodies.iter().map(|b| b.gm.0 * b.vel[k].0).sum::<f64>())
-    };
+    let momentum =
+        |bodies: &[Body<Counted>]| [0, 1, 2].map(|k| bodies.iter().map(|b| b.gm.0 * b.vel[k].0).sum::<f64>());
     let before = momentum(&bodies);
     kick::<Counted, true, true>(&mut bodies, &mut pairs, Counted(1.0), Counted(0.1), Counted(0.05));
     for (a, b) in before.iter().zip(momentum(&bodies)) {

@@ -81,14 +81,16 @@ fn a_known_line_is_found() {
     use truth_support::line::{real, strongest};
     let signal = |k: usize| 0.3 * (0.7123 * k as f64 + 0.4).cos() + 2.0 * (0.11 * k as f64).sin();
     let (frequency, amplitude) = strongest(&real((0..4096).map(signal)), 1.0, 0.5, TAU / 4.0);
-    assert!((frequency - 0.7123).abs() < 1e-7 && (2.0 * amplitude - 0.3).abs() < 1e-6, "{frequency} {amplitude}");
+    assert!(
+        (frequency - 0.7123).abs() < 1e-7 && (2.0 * amplitude - 0.3).abs() < 1e-6,
+        "{frequency} {amplitude}"
+    );
 }
 
 /// The system file of the eight planets gives the states of the ephemeris back.
 #[test]
 fn the_solar_system_file_is_the_ephemeris() {
-    let (file, table) =
-        (truth_support::configuration("solar-system.toml"), truth_support::solar_system());
+    let (file, table) = (truth_support::configuration("solar-system.toml"), truth_support::solar_system());
     assert_eq!(file.planets.len(), 8);
     for (a, b) in file.planets.iter().zip(&table.planets) {
         assert_eq!(a.name, b.name);

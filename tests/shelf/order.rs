@@ -39,7 +39,8 @@ pub fn energy_error(start: &State, scheme: &Scheme, per_orbit: usize) -> f64 {
 
 /// Measures a scheme.
 pub fn slopes(scheme: &'static Scheme) -> Slopes {
-    let orders: Vec<i32> = scheme.name.trim_matches(['(', ')']).split(',').map(|n| n.parse().unwrap()).collect();
+    let orders: Vec<i32> =
+        scheme.name.trim_matches(['(', ')']).split(',').map(|n| n.parse().unwrap()).collect();
     // The higher the order, the longer the steps at which its term still stands above rounding.
     let (coarse, fine) = if orders[0] < 8 { (8, 16) } else { (3, 5) };
     let first = |ratio: f64, per_orbit| energy_error(&far(ratio), scheme, per_orbit);

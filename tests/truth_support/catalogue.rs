@@ -55,7 +55,8 @@ impl CatalogueSystem {
     }
 
     pub fn configuration(&self) -> Configuration {
-        let system = parse_system(&self.file_name(), &self.file).unwrap_or_else(|error| panic!("{error}")).system;
+        let system =
+            parse_system(&self.file_name(), &self.file).unwrap_or_else(|error| panic!("{error}")).system;
         configure(&system).unwrap_or_else(|error| panic!("{}: {error}", self.name))
     }
 
@@ -102,7 +103,9 @@ fn planet(entry: &Entry, file: &mut String, filled: &mut Vec<&'static str>) {
         stated
     };
     assert!(line("period", "period_d", "d") && line(mass_key, "mass_mjup", "Mjup"));
-    assert!(line("eccentricity", "eccentricity", "") && line("argument_of_pericentre", "periastron_deg", "deg"));
+    assert!(
+        line("eccentricity", "eccentricity", "") && line("argument_of_pericentre", "periastron_deg", "deg")
+    );
     let mut or_note = |stated: bool, note| {
         if !stated {
             filled.push(note);

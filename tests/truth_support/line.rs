@@ -15,8 +15,7 @@ pub fn strongest(signal: &[Complex<f64>], step: f64, low: f64, high: f64) -> (f6
     let mut spectrum: Vec<Complex<f64>> = signal.iter().enumerate().map(|(k, z)| z * window(k)).collect();
     FftPlanner::new().plan_fft_forward(n).process(&mut spectrum);
     let bin = TAU / (n as f64 * step);
-    let frequency =
-        |k: usize| if k <= n / 2 { k as f64 * bin } else { (k as f64 - n as f64) * bin };
+    let frequency = |k: usize| if k <= n / 2 { k as f64 * bin } else { (k as f64 - n as f64) * bin };
     let allowed = (0..n).filter(|k| (low..=high).contains(&frequency(*k)));
     let peak = allowed.max_by(|a, b| spectrum[*a].norm().total_cmp(&spectrum[*b].norm()));
     let centre = frequency(peak.expect("the band holds a bin"));

@@ -3,6 +3,7 @@
 #![allow(dead_code, reason = "each test file uses its own part")]
 
 pub mod catalogue;
+pub mod energy;
 pub mod hd_45364;
 pub mod line;
 pub mod tangent;
@@ -43,8 +44,10 @@ impl Entry {
 
 /// The lines of a table of tests/truth.
 pub fn table(name: &str) -> Vec<Entry> {
-    let mut reader =
-        csv::ReaderBuilder::new().comment(Some(b'#')).from_path(truth_path(name)).expect("the table is there");
+    let mut reader = csv::ReaderBuilder::new()
+        .comment(Some(b'#'))
+        .from_path(truth_path(name))
+        .expect("the table is there");
     let names: Vec<String> = reader.headers().unwrap().iter().map(str::to_string).collect();
     let entry = |record: csv::StringRecord| {
         Entry(names.iter().cloned().zip(record.iter().map(str::to_string)).collect())

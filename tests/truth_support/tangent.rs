@@ -34,8 +34,7 @@ impl Problem {
             table("variational-reference.csv").into_iter().filter(|e| e.text("problem") == name).collect();
         let (init, rows): (Vec<Entry>, Vec<Entry>) = rows.into_iter().partition(|e| e.text("part") == "init");
         let star = inertial(&init[0]);
-        let minus_star =
-            |e: &Entry, which: usize| [0, 1, 2].map(|k| inertial(e)[which][k] - star[which][k]);
+        let minus_star = |e: &Entry, which: usize| [0, 1, 2].map(|k| inertial(e)[which][k] - star[which][k]);
         let planets = &init[1..];
         Problem {
             name: name.to_string(),
@@ -199,7 +198,8 @@ pub fn compare(problem: &Problem, per_year: u32, years: f64) -> Vec<Comparison> 
         let rough = if count % 2 == 0 { coarse.see(count / 2, bodies) } else { None };
         let (Some(found), Some(rough), true) = (found, rough, is_row(count)) else { return };
         let stated = *problem.marks().iter().find(|m| m.time == found.time).unwrap();
-        let truth: Vec<Inertial> = (0..bodies.len()).map(|b| problem.stated(found.time, b).unwrap()).collect();
+        let truth: Vec<Inertial> =
+            (0..bodies.len()).map(|b| problem.stated(found.time, b).unwrap()).collect();
         let mine = flat(bodies, 2..4);
         let rounded = 4.0 * f64::EPSILON * (stages * count as f64).sqrt();
         rows.push(Comparison {
