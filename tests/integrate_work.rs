@@ -19,9 +19,9 @@ struct Work {
 
 thread_local!(static WORK: Cell<Work> = const { Cell::new(Work { add: 0, mul: 0, fused: 0, div: 0, sqrt: 0 }) });
 
-fn count(what: impl FnOnce(&mut Work)) {
+fn count(what: fn(&mut Work) -> &mut usize) {
     let mut work = WORK.get();
-    what(&mut work);
+    *what(&mut work) += 1;
     WORK.set(work);
 }
 
@@ -32,28 +32,28 @@ struct Counted(f64);
 impl Add for Counted {
     type Output = Self;
     fn add(self, other: Self) -> Self {
-        count(|w| w.add += 1);
+        count(|w| &mut w.add);
         Counted(self.0 + other.0)
     }
 }
 impl Sub for Counted {
     type Output = Self;
     fn sub(self, other: Self) -> Self {
-        count(|w| w.add += 1);
+        count(|w| &mut w.add);
         Counted(self.0 - other.0)
     }
 }
 impl Mul for Counted {
     type Output = Self;
     fn mul(self, other: Self) -> Self {
-        count(|w| w.mul += 1);
+        count(|w| &mut w.mul);
         Counted(self.0 * other.0)
     }
 }
 impl Div for Counted {
     type Output = Self;
     fn div(self, other: Self) -> Self {
-        count(|w| w.div += 1);
+        count(|w| &mut w.div);
         Counted(self.0 / other.0)
     }
 }
@@ -80,7 +80,7 @@ impl Real for Counted {
         piece.run()
     }
     fn sqrt(self) -> Self {
-        count(|w| w.sqrt += 1);
+        count(|w| &mut w.sqrt);
         Counted(self.0.sqrt())
     }
     fn abs(self) -> Self {
@@ -90,7 +90,7 @@ impl Real for Counted {
         Counted(self.0.round_ties_even())
     }
     fn mul_add(self, factor: Self, term: Self) -> Self {
-        count(|w| w.fused += 1);
+        count(|w| &mut w.fused);
         Counted(self.0.mul_add(factor.0, term.0))
     }
     fn max(self, other: Self) -> Self {
