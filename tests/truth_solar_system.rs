@@ -10,7 +10,7 @@ use abide::integrate::{Advance, Scheme, advance, from_map};
 use truth_support::energy::{block, energy_errors, slope_of_pieces};
 use truth_support::{solar_system, state};
 
-/// 1e6 steps of 1/20 of Mercury's pericentre passage (about 10 000 years): the error swings, and any trend is within
+/// 1e6 steps of 1/20 of Mercury's pericentre passage (about 7800 years): the error swings, and any trend is within
 /// three of its own standard errors or within what rounding adds: one unit per substep and step, at random (Brouwer 1937).
 #[test]
 fn energy_error_of_the_solar_system_has_no_trend() {

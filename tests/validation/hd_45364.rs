@@ -22,8 +22,8 @@ const SEEN: &str = "
 What it shows: around the exact 3:2 commensurability (340.4 d) stands one closed regular island, 334 to 347 d wide at small
 eccentricity and narrowing to a rounded top near e = 0.16. The published solution with its error bars lies well inside it, 2.5 d to the right of
 the commensurability; its cell is regular (⟨Y⟩ = 1.985). The island is framed by a chaotic separatrix 1 to 2 d wide on either side, then by thin regular
-flanks (330 to 332 d and 348 to 350 d, up to e = 0.15), and beyond 329 and 352 d nearly every cell ends in a close encounter. Above the
-island, where the orbits cross, a second, ragged regular column at 337 to 343 d reaches e = 0.3: there the resonance alone keeps the planets apart.
+flanks (330 to 332 d and 348 to 350 d, up to e = 0.15), and beyond 329 and 352 d nearly every cell ends in a close encounter. From e of about 0.12 on the
+orbits cross, and the resonance alone keeps the planets apart; above the island a second, ragged regular column at 337 to 343 d does so up to e = 0.3.
 Below e = 0.03 right of 353 d a strip of cells is chaotic and not yet lost.
 ";
 
