@@ -3,12 +3,13 @@
 use std::f64::consts::TAU;
 
 use abide::assess::follow;
-use abide::coords::Elements;
-use abide::system::Span;
+use abide::coords::{Elements, configure};
+use abide::input::read_system;
+use abide::system::{Frame, Span};
 use abide::units::YEAR_DAY;
 
 use super::line::{real, slope, strongest, unwrapped};
-use super::{configuration, plan};
+use super::{plan, truth_path};
 
 #[derive(Debug)]
 pub struct Frequencies {
@@ -22,11 +23,14 @@ pub struct Frequencies {
     pub energy_error: f64,
 }
 
-/// Follows the published solution and looks for its lines.
+/// Follows the published solution, its elements read in that frame, and looks for its lines.
 ///
 /// Blocks of 16 steps (a third of a year), so that neither angle turns by half a circle between two rows.
-pub fn frequencies(years: f64) -> Frequencies {
-    let start = configuration("hd-45364.toml");
+pub fn frequencies(years: f64, frame: Frame) -> Frequencies {
+    let file = read_system(truth_path("hd-45364.toml")).unwrap_or_else(|error| panic!("{error}"));
+    let mut system = file.system;
+    system.convention.elements = frame;
+    let start = configure(&system).unwrap();
     let mut plan = plan(&start, Span::Days(years * YEAR_DAY), 1e-6);
     plan.block_steps = 16;
     (plan.megno, plan.extent) = (false, false);
