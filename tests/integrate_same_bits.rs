@@ -64,7 +64,7 @@ fn configurations() -> (Plan, Vec<Configuration>) {
     let system = read_system(truth_path("hd-45364.toml")).unwrap_or_else(|error| panic!("{error}"));
     let study = parse_study("map.toml", STUDY, system).unwrap_or_else(|error| panic!("{error}"));
     let stated = &study.system.system;
-    let plan = Plan::for_study(&study.study, &configure(stated).unwrap());
+    let plan = Plan::for_study(&study.study, &configure(stated).unwrap(), &[]);
     let [across, up] = &study.study.axes[..] else { panic!("two axes") };
     let mut all = Vec::new();
     for i in (0..across.cells).step_by(2) {
