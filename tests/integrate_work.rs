@@ -3,7 +3,7 @@
 use std::cell::Cell;
 use std::ops::{Add, Div, Mul, Neg, Sub};
 
-use abide::integrate::kick;
+use abide::integrate::{Beside, kick};
 use abide::kepler::Body;
 use abide::lanes::{Piece, Real};
 
@@ -128,7 +128,8 @@ fn bodies(n: usize) -> Vec<Body<Counted>> {
 fn work_of<const TANGENT: bool, const WATCH: bool>(n: usize) -> Work {
     let (mut bodies, mut pairs) = (bodies(n), vec![Counted(f64::MAX); n * n.saturating_sub(1) / 2]);
     WORK.set(Work::default());
-    kick::<Counted, TANGENT, WATCH>(&mut bodies, &mut pairs, Counted(1.0), Counted(0.1), Counted(0.05));
+    let (star, step, window) = (Counted(1.0), Counted(0.1), Counted(0.05));
+    kick::<Counted, TANGENT, WATCH, false>(&mut bodies, n, &mut pairs, star, &Beside::none(), step, window);
     WORK.get()
 }
 
@@ -183,7 +184,8 @@ fn a_counted_kick_keeps_the_momentum() {
     let momentum =
         |bodies: &[Body<Counted>]| [0, 1, 2].map(|k| bodies.iter().map(|b| b.gm.0 * b.vel[k].0).sum::<f64>());
     let before = momentum(&bodies);
-    kick::<Counted, true, true>(&mut bodies, &mut pairs, Counted(1.0), Counted(0.1), Counted(0.05));
+    let (star, step, window) = (Counted(1.0), Counted(0.1), Counted(0.05));
+    kick::<Counted, true, true, false>(&mut bodies, 7, &mut pairs, star, &Beside::none(), step, window);
     for (a, b) in before.iter().zip(momentum(&bodies)) {
         assert!((a - b).abs() < 1e-17, "{a} {b}");
     }

@@ -9,7 +9,7 @@ use super::physics::{barycentric, forces, star_terms, symplectic_start};
 use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Elements};
 use crate::integrate::forces::Forces;
-use crate::integrate::{Advance, Block, StarTerms, State, Tangent, advance, to_map};
+use crate::integrate::{Advance, Block, StarTerms, State, Tangent, advance, from_map, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
 use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, judge};
 use limits::{Limits, Pair};
@@ -35,6 +35,8 @@ pub(super) struct Cell {
     step_day: f64,
     blocks: u64,
     blocks_done: u64,
+    /// Steps of the block in which the cell ended.
+    part_steps: u64,
     redone: u32,
     conserved: ConservedWatch,
     extent: ExtentWatch,
@@ -78,6 +80,7 @@ impl Cell {
             step_day: step_most,
             blocks: 0,
             blocks_done: 0,
+            part_steps: 0,
             redone: 0,
             mean_megno: None,
             approach: None,
@@ -99,6 +102,7 @@ impl Cell {
         self.blocks = blocks as u64;
         self.step_day = plan.span_day / (blocks * per_block);
         self.blocks_done = 0;
+        self.part_steps = 0;
         let start = if self.adaptive { &self.stated } else { &self.start };
         self.conserved = ConservedWatch::new(start, &self.terms);
         self.passages = 0;
@@ -280,8 +284,9 @@ impl Cell {
     ///
     /// A shorter run of the same steps has the same bits, so the end is found by halving.
     fn find_loss(&mut self, plan: &Plan, before: &Block, lane: usize) -> Loss {
+        let fresh = self.alone(plan);
         let run = |steps: usize| {
-            let mut alone = self.alone(plan);
+            let mut alone = fresh.clone();
             before.copy_lane(lane, &mut alone, 0);
             advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: plan.megno });
             alone
@@ -291,6 +296,18 @@ impl Cell {
             let middle = (alive + ended) / 2;
             if self.must_leave(&run(middle), 0) { ended = middle } else { alive = middle }
         }
+        if self.blocks_done == 0 {
+            // Nothing was seen yet, but a verdict needs its energy error: look just before the end, out of reach of
+            // the corrector's kicks (three steps), which would feel the meeting itself.
+            let steps = alive.saturating_sub(4);
+            let mut last = run(steps);
+            from_map(&mut last, plan.splitting());
+            let state = last.state(0);
+            let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
+            self.conserved.see(&moment, &self.terms);
+            self.extent.see(&moment);
+        }
+        self.part_steps = ended as u64;
         let at_end = run(ended);
         let time_day = self.time_day(plan) + ended as f64 * self.step_day;
         self.note_approach(&at_end, 0);
@@ -329,9 +346,8 @@ impl Cell {
 
     fn assessment(&self, plan: &Plan, loss: Option<Loss>) -> Assessment {
         let end_time_day = loss.map_or(self.time_day_or_zero(plan), |l| l.time_day);
-        let seen = self.blocks_done > 0;
-        let worst = self.energy_error_seen();
-        let energy_error = (seen || worst > 0.0).then_some(worst);
+        let seen = self.blocks_done + self.part_steps > 0;
+        let energy_error = seen.then_some(self.energy_error_seen());
         let evidence = Evidence {
             lost: loss.is_some(),
             energy_error,
@@ -354,7 +370,7 @@ impl Cell {
             angular_momentum_error: energy_error.map(|_| self.conserved.worst_momentum),
             scheme: if self.adaptive { ADAPTIVE } else { plan.scheme },
             step_day: self.step_day,
-            steps: self.blocks_done * plan.block_steps as u64,
+            steps: self.blocks_done * plan.block_steps as u64 + self.part_steps,
             redone: self.redone,
         }
     }

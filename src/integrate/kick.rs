@@ -48,6 +48,16 @@ pub struct Beside<'a, R> {
     pub(super) satellites: &'a [R],
 }
 
+impl<R: Real> Beside<'_, R> {
+    /// Newton's pull alone.
+    #[inline(always)]
+    pub fn none() -> Self {
+        let zero = R::splat(0.0);
+        let terms = Terms { relativity: zero, oblateness: zero, pole: [zero; 3] };
+        Beside { acting: false, terms, satellites: &[] }
+    }
+}
+
 #[inline(always)]
 fn jump<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], pulling: usize, star_gm: R, h: R) {
     let zero = R::splat(0.0);

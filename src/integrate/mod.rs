@@ -18,6 +18,6 @@ pub use advance::{Advance, SAMPLE_EVERY, advance};
 pub use block::{Block, Coordinates, Growth, State, Tangent};
 pub use conserved::{angular_momentum, energy};
 pub use corrector::{from_map, to_map};
-pub use kick::kick;
+pub use kick::{Beside, kick};
 pub use splitting::Scheme;
 pub use star_terms::StarTerms;

@@ -39,12 +39,15 @@ impl Cell {
             }
             Ok(Passed::Ended(day, end)) => {
                 let time_day = self.time_day(plan) + day;
+                self.part_steps = (day / self.step_day).ceil() as u64;
                 let loss = Loss { time_day, planet: end.planet, other: end.other, how: end.how };
                 Next::End(Box::new(self.assessment(plan, Some(loss))))
             }
             Err(_) => {
                 // The engine could not go on (a passage too sharp for its smallest step): nothing can be trusted.
                 self.conserved.worst_energy = f64::INFINITY;
+                self.passage_error = f64::INFINITY;
+                self.part_steps = 1;
                 Next::End(Box::new(self.assessment(plan, None)))
             }
         }
