@@ -86,7 +86,8 @@ pub fn from_heliocentric(gm: Vec<f64>, pos: Vec<[f64; 3]>, helio: Vec<[f64; 3]>)
 /// Some of the planets of a state.
 pub fn only(state: &State, planets: &[usize]) -> State {
     // Velocities are made heliocentric first: the Sun's own depends on who is there.
-    let sun = [0, 1, 2].map(|k| -state.gm.iter().zip(&state.vel).map(|(m, v)| m * v[k]).sum::<f64>() / state.star_gm);
+    let sun = [0, 1, 2]
+        .map(|k| -state.gm.iter().zip(&state.vel).map(|(m, v)| m * v[k]).sum::<f64>() / state.star_gm);
     let pick = |x: &[[f64; 3]]| planets.iter().map(|&p| x[p]).collect::<Vec<_>>();
     let helio = pick(&state.vel).iter().map(|v| [0, 1, 2].map(|k| v[k] - sun[k])).collect();
     from_heliocentric(planets.iter().map(|&p| state.gm[p]).collect(), pick(&state.pos), helio)
