@@ -8,7 +8,11 @@ use radau_support::*;
 fn giants() {
     let (_, all) = solar_system("DE406");
     let state = only(&all, &[4, 5, 6, 7]);
-    for tol in [1e-13, 1e-15, 1e-16, 1e-17, 1e-18, 1e-19, 1e-20, 1e-21, 1e-23] {
+    let one: Vec<f64> = std::env::var("TOL")
+        .ok()
+        .map(|t| vec![t.parse().unwrap()])
+        .unwrap_or(vec![1e-17, 1e-19, 1e-20, 1e-21, 1e-23]);
+    for tol in one {
         let mut e = Engine::from_state(&state, &[], &Forces::newton(), tol).unwrap();
         let t = std::time::Instant::now();
         let mut worst: f64 = 0.0;
@@ -66,5 +70,24 @@ fn pythagoras() {
             }
             println!("{problem} {tol:e} dE {:e} {:?}\n   {s}", e.energy_error().unwrap(), e.work());
         }
+    }
+}
+#[test]
+#[ignore]
+fn long() {
+    let (_, all) = solar_system("DE406");
+    for tol in [1e-20, 1e-21, 1e-22] {
+        let mut s = String::new();
+        for shift in 0..3 {
+            let mut state = only(&all, &[4, 5, 6, 7]);
+            state.pos[0][2] += 1e-3 * shift as f64;
+            let mut e = Engine::from_state(&state, &[], &Forces::newton(), tol).unwrap();
+            for yr in [1e4, 3e4, 1e5, 3e5] {
+                run(&mut e, yr * 365.25);
+                s += &format!(" {:.1e}", e.energy_error().unwrap());
+            }
+            s += "; ";
+        }
+        println!("{tol:e}: {s}");
     }
 }

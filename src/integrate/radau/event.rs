@@ -103,7 +103,8 @@ impl Watch {
         for part in 0..2 {
             let (before, after) = (looks[part].rate, looks[part + 1].rate);
             let nearest = before < 0.0 && after >= 0.0;
-            if !nearest && !(before > 0.0 && after < 0.0) {
+            let farthest = before > 0.0 && after < 0.0;
+            if !nearest && !farthest {
                 continue;
             }
             let (low, high) = (0.5 * part as f64, 0.5 * (part + 1) as f64);
