@@ -45,57 +45,6 @@ const fn weights() -> [f64; STAGES + 1] {
     all
 }
 
-/// Weights of one integral over the step, of the force's difference from that at the start, at the nodes beside 0; as
-/// the double and what it lacks.
-pub(super) struct EndWeights {
-    pub high: [f64; STAGES],
-    pub low: [f64; STAGES],
-}
-
-/// ∫₀¹ f ds and ∫₀¹ (1 − s) f ds from the values at the nodes as they are, rounded: exact up to degree 7 (and up to 14
-/// but for the rounding of the nodes). A weight that is off by one rounding in every step makes the energy drift, 2e-19
-/// of it per step where a step is a twentieth of a turn: hence the rests. Solved from the conditions with 60 digits.
-pub(super) const END_VEL: EndWeights = EndWeights {
-    high: [
-        0.09267907740148969,
-        0.1520653103233925,
-        0.18825877269455937,
-        0.19578608372624673,
-        0.17350739781725066,
-        0.1248239506649325,
-        0.057254407372128585,
-    ],
-    low: [
-        -6.925059727783487e-19,
-        -8.888714727577061e-18,
-        7.391856311445767e-18,
-        -6.629769515866781e-18,
-        -5.640490253701852e-18,
-        2.4388028082745613e-18,
-        1.094082703513491e-18,
-    ],
-};
-pub(super) const END_AT: EndWeights = EndWeights {
-    high: [
-        0.08746471519868225,
-        0.12465695360151906,
-        0.12187407622906785,
-        0.08866101803037311,
-        0.04611650051766231,
-        0.01431469247405789,
-        0.001287043948637545,
-    ],
-    low: [
-        1.2569814901812666e-18,
-        -3.261047841243006e-18,
-        -1.456820591472273e-18,
-        -2.849144709811723e-19,
-        -1.7533680008796797e-18,
-        -2.5942757406741163e-22,
-        -1.824978039945946e-20,
-    ],
-};
-
 /// Turns divided differences into powers of s and back.
 pub(super) struct Table {
     /// 1/(hᵢ − hⱼ) for j < i.
@@ -242,26 +191,6 @@ mod tests {
         for degree in 0..=14 {
             let sum: f64 = NODES.iter().zip(&WEIGHTS).map(|(s, w)| w * s.powi(degree)).sum();
             assert!((sum - 1.0 / f64::from(degree + 1)).abs() < 1e-15, "degree {degree}: {sum}");
-        }
-    }
-
-    #[test]
-    fn the_last_weights_are_exact_for_the_rounded_nodes_to_thirty_digits() {
-        for (weights, second) in [(END_VEL, false), (END_AT, true)] {
-            for degree in 1..=STAGES {
-                let mut sum = (0.0, 0.0);
-                for i in 0..STAGES {
-                    let mut power = (1.0, 0.0);
-                    for _ in 0..degree {
-                        power = times(power, (NODES[i + 1], 0.0));
-                    }
-                    sum = add(sum, times((weights.high[i], weights.low[i]), power));
-                }
-                // 1/(d + 1), or 1/(d + 1)(d + 2).
-                let n = ((degree + 1) * if second { degree + 2 } else { 1 }) as f64;
-                let off = add(times(sum, (n, 0.0)), (-1.0, 0.0)).0;
-                assert!(off.abs() < 1e-29, "degree {degree}: {off:e}");
-            }
         }
     }
 

@@ -4,7 +4,7 @@
 //! coefficients are divided differences that a new force value changes one at a time (Everhart 1985).
 
 use super::super::forces::{Cast, Forces};
-use super::nodes::{END_AT, END_VEL, EndWeights, NODES, STAGES, TABLE, WEIGHTS};
+use super::nodes::{NODES, STAGES, TABLE, WEIGHTS};
 use super::phase::{Phase, two_sum};
 
 /// More sweeps than this in one step and the step is too long.
@@ -180,7 +180,7 @@ impl Step {
             let change = self.sweep(physics, start);
             let rate = change / before;
             let end = |settled| Settling { settled, sweeps, change };
-            if !change.is_finite() || (sweeps > 2 && rate > 4.0) {
+            if !change.is_finite() || (sweeps > 2 && rate > 4.0 && change > ROUNDING) {
                 return end(false);
             }
             // The rate at which the sweeps close in, before rounding hides it.
@@ -289,16 +289,16 @@ impl Step {
         if poison.is_nan() { f64::INFINITY } else { largest }
     }
 
-    /// The state at the end of the step, by quadrature over the forces of the last sweep.
+    /// The state at the end of the step.
     pub fn finish(&self, start: &Phase, end: &mut Phase) {
+        const END: Weights = weights(1.0);
         let (length, square) = (self.length, self.length * self.length);
+        let b: [&[f64]; STAGES] = self.b.each_ref().map(|b| b.as_slice());
         for c in 0..self.force.len() {
-            let force = self.force[c];
-            let rise: [f64; STAGES] = std::array::from_fn(|i| self.node_force[i][c] - force);
-            let bent = square * (0.5 * force + gather(&END_AT, &rise));
+            let bent = square * weigh(&END.at, &self.force, &b, c);
             let moved = length * start.vel[c] + (length * start.vel_low[c] + bent);
             (end.at[c], end.at_low[c]) = two_sum(start.at[c], moved + start.at_low[c]);
-            let change = length * (force + gather(&END_VEL, &rise));
+            let change = length * weigh(&END.vel, &self.force, &b, c);
             (end.vel[c], end.vel_low[c]) = two_sum(start.vel[c], change + start.vel_low[c]);
         }
     }
@@ -361,16 +361,6 @@ impl Step {
         }
         tail
     }
-}
-
-#[inline(always)]
-fn gather(weights: &EndWeights, rise: &[f64; STAGES]) -> f64 {
-    let (mut sum, mut rest) = (0.0, 0.0);
-    for i in 0..STAGES {
-        sum += weights.high[i] * rise[i];
-        rest += weights.low[i] * rise[i];
-    }
-    sum + rest
 }
 
 /// Smallest terms first.
