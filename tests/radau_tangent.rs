@@ -31,7 +31,8 @@ fn follow(problem: &str, first: usize, to: f64, roundings: f64) {
     let rows = table("variational-reference.csv");
     let bodies = start(&rows, problem);
     let shift = tangent(&rows, problem, &bodies);
-    let mut engine = Engine::from_bodies(&bodies, &[shift.clone()], &Forces::newton(), TOLERANCE).unwrap();
+    let mut engine =
+        Engine::from_bodies(&bodies, std::slice::from_ref(&shift), &Forces::newton(), TOLERANCE).unwrap();
     let mut seen = 0;
     for megno in rows.iter().filter(|r| r["problem"] == problem && r["part"] == "megno") {
         let t = number(megno, "t_yr");

@@ -82,7 +82,7 @@ impl Watch {
     /// nothing falls between two steps.
     pub(super) fn search(&self, cast: &Cast, step: &mut Step, start: &Phase, end: &Phase) -> Vec<Candidate> {
         let mut found = Vec::new();
-        step.to_middle(start);
+        step.place_middle(start);
         let sign = step.length.signum();
         for (i, j) in cast.pairs() {
             let looks = [start, step.node(), end].map(|phase| {

@@ -195,11 +195,12 @@ impl Step {
         Settling { settled: false, sweeps: MOST_SWEEPS, change: before }
     }
 
-    /// One pass over the nodes; returns the largest change of a force at the last node, which all changes before it
-    /// move, relative to that body's force (for tangent vectors: to the largest in the vector).
+    /// One pass over the nodes; returns the largest change of a force, relative to that body's force (for tangent
+    /// vectors: to the largest in the vector).
     fn sweep(&mut self, physics: &Physics, start: &Phase) -> f64 {
-        for i in 1..=STAGES {
-            self.place(&AT_NODE[i], start, physics.forces.needs_velocity());
+        let mut largest: f64 = 0.0;
+        for (i, weights) in AT_NODE.iter().enumerate().skip(1) {
+            self.place(weights, start, physics.forces.needs_velocity());
             self.evaluations += 1;
             let node = &self.node;
             self.pairs += physics.forces.evaluate(
@@ -210,8 +211,10 @@ impl Step {
                 &mut self.node_force[i - 1],
             );
             self.take(i);
+            let change = self.relative_change(i, physics.cast.bodies());
+            largest = largest.max(change * TABLE.product[i]);
         }
-        self.relative_change(physics.cast.bodies()) * TABLE.product[STAGES]
+        largest
     }
 
     /// Positions, and velocities where asked, at s of the step.
@@ -247,10 +250,10 @@ impl Step {
         for c in 0..len {
             change[c] = (now[c] - force[c]) * gaps[0];
         }
-        for j in 1..i {
-            let g = &self.g[j - 1][..len];
+        for (g, gap) in self.g.iter().zip(&gaps[1..i]) {
+            let g = &g[..len];
             for c in 0..len {
-                change[c] = (change[c] - g[c]) * gaps[j];
+                change[c] = (change[c] - g[c]) * gap;
             }
         }
         let g = &mut self.g[i - 1][..len];
@@ -268,16 +271,18 @@ impl Step {
     }
 
     /// The last change of a divided difference relative to the force, the largest of all bodies and tangent vectors.
-    fn relative_change(&self, bodies: usize) -> f64 {
+    fn relative_change(&self, i: usize, bodies: usize) -> f64 {
         // `poison` becomes NaN when any change is no number, which a maximum would lose.
         let (mut largest, mut poison) = (0.0f64, 0.0);
-        let last = &self.node_force[STAGES - 1];
+        let now = &self.node_force[i - 1];
         let mut see = |from: usize, to: usize| {
             let (mut moved, mut size) = (0.0f64, 0.0f64);
-            for c in from..to {
-                moved = moved.max(self.change[c].abs());
-                size = size.max(last[c].abs()).max(self.force[c].abs());
-                poison += self.change[c] * 0.0;
+            for ((change, now), first) in
+                self.change[from..to].iter().zip(&now[from..to]).zip(&self.force[from..to])
+            {
+                moved = moved.max(change.abs());
+                size = size.max(now.abs()).max(first.abs());
+                poison += change * 0.0;
             }
             if moved > 0.0 {
                 largest = largest.max(moved / size);
@@ -304,7 +309,7 @@ impl Step {
     }
 
     /// Puts the middle of the step, by the polynomial, where [`Step::node`] shows it.
-    pub fn to_middle(&mut self, start: &Phase) {
+    pub fn place_middle(&mut self, start: &Phase) {
         const MIDDLE: Weights = weights(0.5);
         self.place(&MIDDLE, start, true);
     }
