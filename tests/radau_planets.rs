@@ -51,8 +51,8 @@ fn errors(name: &str, years: &[i32]) -> Vec<(i32, Vec<f64>, f64)> {
 }
 
 /// Rounding walks in the mean motion, so the place along the orbit is off like t^1.5; Mercury turns fastest. On top
-/// comes what the constants' own rounding does to the energy, alike in every step: 4e-19 per step measured on the giant
-/// planets, with 25 steps per turn of Mercury, which moves its place like t². (The reference's own double-precision run
+/// comes the steady drift of the energy, up to 4e-19 per step as measured on the giant planets (its cause is not known),
+/// with 25 steps per turn of Mercury, which moves its place like t². (The reference's own double-precision run
 /// was 5e-10 au off for Mercury after 500 years and grew about linearly: 3e-9 after 3000.)
 fn check(name: &str, years: &[i32]) {
     for (year, off, energy) in errors(name, years) {

@@ -14,9 +14,9 @@ use super::step::{Physics, Step};
 
 /// What a step may err by, relative to the velocity change over it, when nothing else is asked.
 ///
-/// Measured on the giant planets, 18 steps per turn of Jupiter: the energy error grows by 4e-19 per year, 8e-14 after
-/// 2e5 years, from constants that are rounded alike in every step; at 1e-19 it grows twice as fast and a quarter of the
-/// evaluations are saved.
+/// Measured on the giant planets, 18 steps per turn of Jupiter: the energy error grows by about 4e-19 per year, 6e-14 to
+/// 8e-14 after 2e5 years, of one sign from three starts; its cause is not known (tighter sweeps and a smaller tolerance
+/// do not remove it). At 1e-19 it grows two to three times as fast and a sixth of the evaluations is saved.
 pub const TOLERANCE: f64 = 1e-21;
 /// A step that does not settle is tried again with this part of it, so many times in a row.
 const PART: f64 = 0.3;
