@@ -44,9 +44,11 @@ impl Forces {
     /// `at`, `vel` and `out` hold x, y, z of the bodies one after another (au, au/day, au/day²), the star first,
     /// then in the same order each tangent vector; all of the same length 3 · bodies · (1 + tangent vectors).
     /// `low` is what rounding left of `at`: the distance of a close pair keeps all its digits with it. `vel` is read
-    /// only where [`Forces::needs_velocity`].
+    /// only where [`Forces::needs_velocity`]. Panics when a length differs.
     pub fn evaluate(&self, cast: &Cast, at: &[f64], low: &[f64], vel: &[f64], out: &mut [f64]) -> u64 {
         out.fill(0.0);
+        let (at, low, vel) = (at.as_chunks().0, low.as_chunks().0, vel.as_chunks().0);
+        let out = out.as_chunks_mut().0;
         let pairs = newton(cast, at, low, out);
         for acting in &self.star {
             for body in acting.bodies(cast) {
@@ -58,13 +60,11 @@ impl Forces {
 
     /// What the terms beside Newton's do to the energy per unit of time: Σ m a·v, star included; times G, au⁵ day⁻⁵.
     pub fn power(&self, cast: &Cast, at: &[f64], vel: &[f64]) -> f64 {
+        let (at, vel) = (at.as_chunks().0, vel.as_chunks().0);
         let mut total = 0.0;
         for acting in &self.star {
-            for body in acting.bodies(cast) {
-                if cast.gm[body] == 0.0 {
-                    continue;
-                }
-                let (r, v) = (apart(at, 0, 3 * body), apart(vel, 0, 3 * body));
+            for body in acting.bodies(cast).filter(|&body| cast.gm[body] != 0.0) {
+                let (r, v) = (apart(at, 0, body), apart(vel, 0, body));
                 total += cast.gm[body] * dot(&acting.term.pull(cast.gm[0], &r, &v), &v);
             }
         }
@@ -73,95 +73,97 @@ impl Forces {
 }
 
 /// Newton's pulls and their variations.
-fn newton(cast: &Cast, at: &[f64], low: &[f64], out: &mut [f64]) -> u64 {
-    let block = 3 * cast.gm.len();
+fn newton(cast: &Cast, at: &[[f64; 3]], low: &[[f64; 3]], out: &mut [[f64; 3]]) -> u64 {
     let mut pairs = 0;
     for (index, &i) in cast.massive.iter().enumerate() {
         for &j in &cast.massive[index + 1..] {
-            let d = close_apart(at, low, 3 * i, 3 * j);
-            pull(cast.gm[i], cast.gm[j], 3 * i, 3 * j, block, &d, at, out);
-            pairs += 1;
+            pull(cast, i, j, at, low, out);
         }
         for &j in &cast.massless {
-            let d = close_apart(at, low, 3 * i, 3 * j);
-            feel(cast.gm[i], 3 * i, 3 * j, block, &d, at, out);
-            pairs += 1;
+            feel(cast, i, j, at, low, out);
         }
+        pairs += cast.massive.len() - index - 1 + cast.massless.len();
     }
-    pairs
+    pairs as u64
 }
 
 /// Both bodies of a massive pair. δ(d/d³) = (δd − 3 d (d·δd)/d²)/d³.
 #[inline(always)]
-fn pull(gm_i: f64, gm_j: f64, i: usize, j: usize, block: usize, d: &[f64; 3], at: &[f64], out: &mut [f64]) {
-    let square = dot(d, d);
+fn pull(cast: &Cast, i: usize, j: usize, at: &[[f64; 3]], low: &[[f64; 3]], out: &mut [[f64; 3]]) {
+    let (gm_i, gm_j) = (cast.gm[i], cast.gm[j]);
+    let d = close_apart(at, low, i, j);
+    let square = dot(&d, &d);
     let cube = 1.0 / (square * square.sqrt());
-    for k in 0..3 {
-        out[i + k] += gm_j * cube * d[k];
-        out[j + k] -= gm_i * cube * d[k];
-    }
-    for base in (block..at.len()).step_by(block) {
+    draw(&mut out[i], gm_j * cube, &d);
+    draw(&mut out[j], -gm_i * cube, &d);
+    for base in (cast.bodies()..at.len()).step_by(cast.bodies()) {
         let (i, j) = (base + i, base + j);
-        let change = varied(d, square, cube, &apart(at, i, j));
-        for k in 0..3 {
-            out[i + k] += gm_j * change[k];
-            out[j + k] -= gm_i * change[k];
-        }
+        let change = varied(&d, square, &apart(at, i, j));
+        draw(&mut out[i], gm_j * cube, &change);
+        draw(&mut out[j], -gm_i * cube, &change);
     }
 }
 
 /// A massless body `j` under a massive body `i`.
 #[inline(always)]
-fn feel(gm_i: f64, i: usize, j: usize, block: usize, d: &[f64; 3], at: &[f64], out: &mut [f64]) {
-    let square = dot(d, d);
-    let cube = 1.0 / (square * square.sqrt());
-    for k in 0..3 {
-        out[j + k] -= gm_i * cube * d[k];
-    }
-    for base in (block..at.len()).step_by(block) {
-        let change = varied(d, square, cube, &apart(at, base + i, base + j));
-        for k in 0..3 {
-            out[base + j + k] -= gm_i * change[k];
-        }
+fn feel(cast: &Cast, i: usize, j: usize, at: &[[f64; 3]], low: &[[f64; 3]], out: &mut [[f64; 3]]) {
+    let d = close_apart(at, low, i, j);
+    let square = dot(&d, &d);
+    let strength = -cast.gm[i] / (square * square.sqrt());
+    draw(&mut out[j], strength, &d);
+    for base in (cast.bodies()..at.len()).step_by(cast.bodies()) {
+        let change = varied(&d, square, &apart(at, base + i, base + j));
+        draw(&mut out[base + j], strength, &change);
     }
 }
 
 #[inline(always)]
-fn varied(d: &[f64; 3], square: f64, cube: f64, change: &[f64; 3]) -> [f64; 3] {
+fn varied(d: &[f64; 3], square: f64, change: &[f64; 3]) -> [f64; 3] {
     let along = 3.0 * dot(d, change) / square;
-    [0, 1, 2].map(|k| cube * (change[k] - along * d[k]))
+    [change[0] - along * d[0], change[1] - along * d[1], change[2] - along * d[2]]
 }
 
 /// One term of the star on one body, with the reaction on the star.
-fn star_on(cast: &Cast, term: &StarTerm, body: usize, at: &[f64], vel: &[f64], out: &mut [f64]) {
+fn star_on(
+    cast: &Cast,
+    term: &StarTerm,
+    body: usize,
+    at: &[[f64; 3]],
+    vel: &[[f64; 3]],
+    out: &mut [[f64; 3]],
+) {
     let star_gm = cast.gm[0];
     let share = cast.gm[body] / star_gm;
-    let block = 3 * cast.gm.len();
-    let (r, v) = (apart(at, 0, 3 * body), apart(vel, 0, 3 * body));
-    add(out, 0, 3 * body, share, &term.pull(star_gm, &r, &v));
-    for base in (block..at.len()).step_by(block) {
-        let (star, planet) = (base, base + 3 * body);
+    let (r, v) = (apart(at, 0, body), apart(vel, 0, body));
+    let pull = term.pull(star_gm, &r, &v);
+    draw(&mut out[body], 1.0, &pull);
+    draw(&mut out[0], -share, &pull);
+    for star in (cast.bodies()..at.len()).step_by(cast.bodies()) {
+        let planet = star + body;
         let change = term.vary(star_gm, &r, &v, &apart(at, star, planet), &apart(vel, star, planet));
-        add(out, star, planet, share, &change);
+        draw(&mut out[planet], 1.0, &change);
+        draw(&mut out[star], -share, &change);
     }
 }
 
-fn add(out: &mut [f64], star: usize, planet: usize, share: f64, pull: &[f64; 3]) {
-    for k in 0..3 {
-        out[planet + k] += pull[k];
-        out[star + k] -= share * pull[k];
-    }
+#[inline(always)]
+fn draw(out: &mut [f64; 3], strength: f64, along: &[f64; 3]) {
+    out[0] += strength * along[0];
+    out[1] += strength * along[1];
+    out[2] += strength * along[2];
 }
 
 /// Separation from positions and what rounding left of them; the first difference is exact where the pair is close.
 #[inline(always)]
-fn close_apart(at: &[f64], low: &[f64], i: usize, j: usize) -> [f64; 3] {
-    [0, 1, 2].map(|k| (at[j + k] - at[i + k]) + (low[j + k] - low[i + k]))
+fn close_apart(at: &[[f64; 3]], low: &[[f64; 3]], i: usize, j: usize) -> [f64; 3] {
+    let (d, rest) = (apart(at, i, j), apart(low, i, j));
+    [d[0] + rest[0], d[1] + rest[1], d[2] + rest[2]]
 }
 
 #[inline(always)]
-fn apart(at: &[f64], i: usize, j: usize) -> [f64; 3] {
-    [at[j] - at[i], at[j + 1] - at[i + 1], at[j + 2] - at[i + 2]]
+fn apart(at: &[[f64; 3]], i: usize, j: usize) -> [f64; 3] {
+    let (a, b) = (&at[i], &at[j]);
+    [b[0] - a[0], b[1] - a[1], b[2] - a[2]]
 }
 
 #[inline(always)]

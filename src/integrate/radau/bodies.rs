@@ -81,8 +81,8 @@ pub(super) fn to_phase(bodies: &Bodies, tangents: &[Bodies]) -> Phase {
 /// Adds what rounding took from xᵢ = qᵢ + x₀.
 pub(super) fn restore_lows(phase: &mut Phase, state: &State) {
     for (planet, q) in state.pos.iter().enumerate() {
-        for k in 0..3 {
-            phase.at_low[3 * (planet + 1) + k] = two_sum(q[k], phase.at[k]).1;
+        for (k, x) in q.iter().enumerate() {
+            phase.at_low[3 * (planet + 1) + k] = two_sum(*x, phase.at[k]).1;
         }
     }
 }

@@ -7,6 +7,8 @@
 //! is step · ρ(wished)/ρ(found): one number without a unit, the same for every body and scale.
 
 use super::nodes::MISSED;
+use super::phase::{Phase, dot};
+use crate::integrate::forces::Cast;
 
 /// No step grows by more than this from one to the next.
 const MOST_GROWTH: f64 = 2.0;
@@ -18,6 +20,9 @@ const OVERSHOOT: f64 = 1.25;
 /// The longest and shortest ρ a tolerance can ask for: beyond the first the sweeps no longer settle, below the
 /// second the highest coefficients are rounding.
 const RATIOS: (f64, f64) = (0.02, 0.5);
+
+/// The first step in units of the shortest time in which a pair falls together or passes.
+const FIRST: f64 = 0.05;
 
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Control {
@@ -60,6 +65,19 @@ pub(super) fn root(number: f64, n: i32) -> f64 {
         }
         guess = better;
     }
+}
+
+/// A first step, day: from the shortest time in which a pair falls together or passes: √(d³/(mᵢ + mⱼ)) and d/v.
+pub(super) fn first_step(phase: &Phase, cast: &Cast) -> f64 {
+    let mut shortest = f64::INFINITY;
+    for (i, j) in cast.pairs() {
+        let (d, v) = phase.apart(i, j);
+        let distance = dot(&d, &d).sqrt();
+        let fall = (distance * distance * distance / (cast.gm[i] + cast.gm[j])).sqrt();
+        let pass = distance / dot(&v, &v).sqrt();
+        shortest = shortest.min(fall).min(pass);
+    }
+    if shortest.is_finite() { FIRST * shortest } else { 1.0 }
 }
 
 #[cfg(test)]

@@ -82,7 +82,7 @@ impl Watch {
     /// nothing falls between two steps.
     pub(super) fn search(&self, cast: &Cast, step: &mut Step, start: &Phase, end: &Phase) -> Vec<Candidate> {
         let mut found = Vec::new();
-        step.to_middle(start);
+        step.place_middle(start);
         let sign = step.length.signum();
         for (i, j) in cast.pairs() {
             let looks = [start, step.node(), end].map(|phase| {
@@ -103,7 +103,8 @@ impl Watch {
         for part in 0..2 {
             let (before, after) = (looks[part].rate, looks[part + 1].rate);
             let nearest = before < 0.0 && after >= 0.0;
-            if !nearest && !(before > 0.0 && after < 0.0) {
+            let farthest = before > 0.0 && after < 0.0;
+            if !nearest && !farthest {
                 continue;
             }
             let (low, high) = (0.5 * part as f64, 0.5 * (part + 1) as f64);

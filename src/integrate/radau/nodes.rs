@@ -4,6 +4,8 @@
 //! Legendre polynomials. The rule is exact up to degree 14, so a step whose force is interpolated there has order 15.
 //! Source: Everhart (1985) for the use; the digits were computed from the polynomial with 60 digits, and the tests
 //! take them back to it.
+// The digits stand as computed, more than a double holds.
+#![allow(clippy::excessive_precision)]
 
 /// Nodes beside 0.
 pub(super) const STAGES: usize = 7;

@@ -44,7 +44,10 @@ pub(super) struct Step {
     /// The b that this step was begun with; absent: none was predicted.
     predicted: Option<[Vec<f64>; STAGES]>,
     node: Phase,
-    node_force: Vec<f64>,
+    /// Forces at the nodes beside 0, of the last sweep.
+    node_force: [Vec<f64>; STAGES],
+    /// Last change of a divided difference.
+    change: Vec<f64>,
     pub evaluations: u64,
     pub pairs: u64,
 }
@@ -89,7 +92,8 @@ impl Step {
             g: none(),
             predicted: None,
             node: Phase::zero(len),
-            node_force: vec![0.0; len],
+            node_force: none(),
+            change: vec![0.0; len],
             evaluations: 0,
             pairs: 0,
         }
@@ -176,7 +180,7 @@ impl Step {
             let change = self.sweep(physics, start);
             let rate = change / before;
             let end = |settled| Settling { settled, sweeps, change };
-            if !change.is_finite() || (sweeps > 2 && rate > 4.0) {
+            if !change.is_finite() || (sweeps > 2 && rate > 4.0 && change > ROUNDING) {
                 return end(false);
             }
             // The rate at which the sweeps close in, before rounding hides it.
@@ -195,8 +199,8 @@ impl Step {
     /// vectors: to the largest in the vector).
     fn sweep(&mut self, physics: &Physics, start: &Phase) -> f64 {
         let mut largest: f64 = 0.0;
-        for i in 1..=STAGES {
-            self.place(&AT_NODE[i], start, physics.forces.needs_velocity());
+        for (i, weights) in AT_NODE.iter().enumerate().skip(1) {
+            self.place(weights, start, physics.forces.needs_velocity());
             self.evaluations += 1;
             let node = &self.node;
             self.pairs += physics.forces.evaluate(
@@ -204,10 +208,11 @@ impl Step {
                 &node.at,
                 &node.at_low,
                 &node.vel,
-                &mut self.node_force,
+                &mut self.node_force[i - 1],
             );
-            let bodies = physics.cast.bodies();
-            largest = largest.max(self.take(i, bodies));
+            self.take(i);
+            let change = self.relative_change(i, physics.cast.bodies());
+            largest = largest.max(change * TABLE.product[i]);
         }
         largest
     }
@@ -219,50 +224,73 @@ impl Step {
         let drift = weights.s * length;
         let b: [&[f64]; STAGES] = self.b.each_ref().map(|b| &b[..len]);
         let force = &self.force[..len];
+        let (at, at_low) = (&start.at[..len], &start.at_low[..len]);
+        let (vel, vel_low) = (&start.vel[..len], &start.vel_low[..len]);
+        let (to, to_low) = (&mut self.node.at[..len], &mut self.node.at_low[..len]);
         for c in 0..len {
             let bent = square * weigh(&weights.at, force, &b, c);
-            let moved = drift * start.vel[c] + (drift * start.vel_low[c] + bent);
-            let (at, low) = two_sum(start.at[c], moved + start.at_low[c]);
-            self.node.at[c] = at;
-            self.node.at_low[c] = low;
+            let moved = drift * vel[c] + (drift * vel_low[c] + bent);
+            (to[c], to_low[c]) = two_sum(at[c], moved + at_low[c]);
         }
         if velocities {
+            let to = &mut self.node.vel[..len];
             for c in 0..len {
-                let change = length * weigh(&weights.vel, force, &b, c);
-                self.node.vel[c] = start.vel[c] + (change + start.vel_low[c]);
+                to[c] = vel[c] + (length * weigh(&weights.vel, force, &b, c) + vel_low[c]);
             }
         }
     }
 
-    /// Takes the force at node `i` into the polynomial; returns the relative change.
-    fn take(&mut self, i: usize, bodies: usize) -> f64 {
+    /// Takes the force at node `i` into the polynomial.
+    fn take(&mut self, i: usize) {
         let len = self.force.len();
         let gaps = &TABLE.inverse_gap[i];
-        let power = &TABLE.power[i - 1];
-        let mut largest: f64 = 0.0;
-        let block = 3 * bodies;
-        // `poison` becomes NaN when any change is no number, which a maximum would lose.
-        let (mut moved, mut size, mut poison) = (0.0f64, 0.0f64, 0.0f64);
+        let force = &self.force[..len];
+        let now = &self.node_force[i - 1][..len];
+        let change = &mut self.change[..len];
         for c in 0..len {
-            let mut g = (self.node_force[c] - self.force[c]) * gaps[0];
-            for j in 1..i {
-                g = (g - self.g[j - 1][c]) * gaps[j];
-            }
-            let change = g - self.g[i - 1][c];
-            self.g[i - 1][c] = g;
-            for j in 0..i {
-                self.b[j][c] += change * power[j];
-            }
-            moved = moved.max((change * TABLE.product[i]).abs());
-            poison += change * 0.0;
-            size = size.max(self.node_force[c].abs()).max(self.force[c].abs());
-            let whole = if c < block { 3 } else { block };
-            if (c + 1) % whole == 0 {
-                let relative = if moved == 0.0 { 0.0 } else { moved / size };
-                largest = largest.max(relative);
-                (moved, size) = (0.0, 0.0);
+            change[c] = (now[c] - force[c]) * gaps[0];
+        }
+        for (g, gap) in self.g.iter().zip(&gaps[1..i]) {
+            let g = &g[..len];
+            for c in 0..len {
+                change[c] = (change[c] - g[c]) * gap;
             }
         }
+        let g = &mut self.g[i - 1][..len];
+        for c in 0..len {
+            let new = change[c];
+            change[c] = new - g[c];
+            g[c] = new;
+        }
+        for (b, power) in self.b.iter_mut().zip(TABLE.power[i - 1]).take(i) {
+            let b = &mut b[..len];
+            for c in 0..len {
+                b[c] += change[c] * power;
+            }
+        }
+    }
+
+    /// The last change of a divided difference relative to the force, the largest of all bodies and tangent vectors.
+    fn relative_change(&self, i: usize, bodies: usize) -> f64 {
+        // `poison` becomes NaN when any change is no number, which a maximum would lose.
+        let (mut largest, mut poison) = (0.0f64, 0.0);
+        let now = &self.node_force[i - 1];
+        let mut see = |from: usize, to: usize| {
+            let (mut moved, mut size) = (0.0f64, 0.0f64);
+            for ((change, now), first) in
+                self.change[from..to].iter().zip(&now[from..to]).zip(&self.force[from..to])
+            {
+                moved = moved.max(change.abs());
+                size = size.max(now.abs()).max(first.abs());
+                poison += change * 0.0;
+            }
+            if moved > 0.0 {
+                largest = largest.max(moved / size);
+            }
+        };
+        let block = 3 * bodies;
+        (0..block).step_by(3).for_each(|c| see(c, c + 3));
+        (block..self.force.len()).step_by(block).for_each(|c| see(c, c + block));
         if poison.is_nan() { f64::INFINITY } else { largest }
     }
 
@@ -281,7 +309,7 @@ impl Step {
     }
 
     /// Puts the middle of the step, by the polynomial, where [`Step::node`] shows it.
-    pub fn to_middle(&mut self, start: &Phase) {
+    pub fn place_middle(&mut self, start: &Phase) {
         const MIDDLE: Weights = weights(0.5);
         self.place(&MIDDLE, start, true);
     }
@@ -330,7 +358,7 @@ impl Step {
         let mut tail = (0.0f64, 0.0f64);
         for body in 0..bodies {
             let size = |x: &[f64]| (0..3).fold(0.0f64, |most, k| most.max(x[3 * body + k].abs()));
-            let force = size(&self.force).max(size(&self.node_force));
+            let force = size(&self.force).max(size(&self.node_force[STAGES - 1]));
             if force > 0.0 {
                 tail.0 = tail.0.max(size(&self.g[STAGES - 2]) / force);
                 tail.1 = tail.1.max(size(&self.g[STAGES - 1]) / force);
