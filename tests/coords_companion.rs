@@ -7,6 +7,7 @@ use abide::criteria;
 use abide::system::{CompanionPlace, Frame, Key, Oblateness, Pericentre, System, Transit};
 use abide::units::GM_SUN;
 use common_system::{planet, system};
+use proptest::prelude::*;
 
 const STAR: f64 = 0.87 * GM_SUN;
 
@@ -168,4 +169,29 @@ fn terms_of_the_star_arrive() {
     assert!(terms.relativity);
     assert_eq!((oblateness.j2, oblateness.radius_au), (1e-6, 0.005));
     assert_eq!(oblateness.pole, [0.0, -0.3f64.sin(), 0.3f64.cos()]);
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(2000))]
+
+    /// Jacobi elements found from a state alone, the order of the orbits included, are the stated ones.
+    #[test]
+    fn orbits_of_hierarchies_come_back_from_states(
+        ratio in -3.0..1.0f64, shape in 0.0..0.6f64, wide in 3.0..12.0f64, phases in prop::array::uniform4(0.0..6.28f64),
+        outside in any::<bool>(),
+    ) {
+        let mut second = circle(10f64.powf(ratio), 1.0, phases[0]);
+        second.extend([(Key::Eccentricity, shape), (Key::ArgumentOfPericentre, phases[1])]);
+        // At least three times the pair's apocentre, or within a ninth of its pericentre.
+        let axis_au = if outside { wide * (1.0 + shape) } else { (1.0 - shape) / (3.0 * wide) };
+        let mut own = circle(1e-4, axis_au, phases[2]);
+        own.extend([(Key::Eccentricity, 0.2), (Key::ArgumentOfPericentre, phases[3])]);
+        let found = configure(&pair(Frame::Jacobi, &second, &[&own])).unwrap();
+        prop_assert_eq!(found.circles_pair(0), outside);
+        for (elements, body) in found.elements_in(Frame::Jacobi).iter().zip(&found.planets) {
+            let stated = &body.elements;
+            prop_assert!((elements.semi_major_axis_au / stated.semi_major_axis_au - 1.0).abs() < 1e-10, "{:?}", elements);
+            prop_assert!((elements.eccentricity - stated.eccentricity).abs() < 1e-10, "{:?}", elements);
+        }
+    }
 }
