@@ -1,0 +1,28 @@
+//! Where a criterion holds; outside it nothing is said.
+
+/// A criterion was asked about something it was not made for.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+#[error("{criterion} says nothing for {quantity} = {found}; it holds for {allowed}")]
+pub struct OutOfDomain {
+    pub criterion: &'static str,
+    pub quantity: &'static str,
+    pub found: f64,
+    /// The domain in words, as "0 <= e < 1".
+    pub allowed: &'static str,
+}
+
+/// One criterion checking its arguments.
+pub(super) struct Domain(pub &'static str);
+
+impl Domain {
+    /// Errors: [`OutOfDomain`] unless `holds`. NaN must fail `holds`: write the condition the right way round.
+    pub fn need(
+        &self,
+        holds: bool,
+        quantity: &'static str,
+        found: f64,
+        allowed: &'static str,
+    ) -> Result<(), OutOfDomain> {
+        if holds { Ok(()) } else { Err(OutOfDomain { criterion: self.0, quantity, found, allowed }) }
+    }
+}
