@@ -128,11 +128,8 @@ mod tests {
     #[test]
     fn inclination_uses_up_stability() {
         let at = |tilt: f64| {
-            exact_hill_balance(&two(
-                [1e-3, 1e-3],
-                [orbit(1.0, 0.05, 0.0, 1.0), orbit(1.45, 0.05, tilt, 4.0)],
-            ))
-            .unwrap()
+            exact_hill_balance(&two([1e-3, 1e-3], [orbit(1.0, 0.05, 0.0, 1.0), orbit(1.45, 0.05, tilt, 4.0)]))
+                .unwrap()
         };
         assert!(at(0.0).stable() && !at(0.9).stable());
         assert_eq!(at(0.0).needed, at(0.9).needed);

@@ -55,11 +55,8 @@ impl SecularSystem {
         let shape = |e: f64, angle: f64| Complex::from_polar(e, angle);
         let z: Vec<Complex<f64>> =
             self.planets.iter().map(|p| shape(p.eccentricity, p.longitude_of_pericentre)).collect();
-        let zeta: Vec<Complex<f64>> = self
-            .planets
-            .iter()
-            .map(|p| shape(2.0 * (0.5 * p.inclination).sin(), p.ascending_node))
-            .collect();
+        let zeta: Vec<Complex<f64>> =
+            self.planets.iter().map(|p| shape(2.0 * (0.5 * p.inclination).sin(), p.ascending_node)).collect();
         let energy = |v: &[Complex<f64>]| -> Vec<f64> {
             v.iter().zip(&self.weight).map(|(z, w)| 0.5 * w * z.norm_sqr()).collect()
         };

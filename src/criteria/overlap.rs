@@ -81,8 +81,10 @@ mod tests {
     fn the_eccentric_zone_joins_the_circular_one_within_the_rounding_of_its_coefficients() {
         let mu = 1e-5f64;
         let joint = 0.21 * mu.powf(3.0 / 7.0);
-        let (below, above) =
-            (eccentric_chaotic_zone(mu, joint * 0.999).unwrap(), eccentric_chaotic_zone(mu, joint * 1.001).unwrap());
+        let (below, above) = (
+            eccentric_chaotic_zone(mu, joint * 0.999).unwrap(),
+            eccentric_chaotic_zone(mu, joint * 1.001).unwrap(),
+        );
         assert_eq!(below, chaotic_zone(mu).unwrap());
         assert!((above / below - 1.0).abs() < 0.02, "{above} {below}");
     }

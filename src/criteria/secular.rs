@@ -73,9 +73,9 @@ impl SecularSystem {
         for (j, planet) in planets.iter().enumerate() {
             for (k, other) in planets.iter().enumerate().filter(|(k, _)| *k != j) {
                 let ratio = planet.semi_major_axis_au / other.semi_major_axis_au;
-                let (alpha, square) = if ratio < 1.0 { (ratio, ratio * ratio) } else { (1.0 / ratio, 1.0 / ratio) };
-                let strength =
-                    0.25 * planet.mean_motion_rad_day * other.gm / (star_gm + planet.gm) * square;
+                let (alpha, square) =
+                    if ratio < 1.0 { (ratio, ratio * ratio) } else { (1.0 / ratio, 1.0 / ratio) };
+                let strength = 0.25 * planet.mean_motion_rad_day * other.gm / (star_gm + planet.gm) * square;
                 let first = strength * laplace_coefficient(1.5, 1, alpha)?;
                 pericentres[(j, j)] += first;
                 pericentres[(j, k)] = -strength * laplace_coefficient(1.5, 2, alpha)?;
@@ -141,8 +141,7 @@ fn check(star_gm: f64, planets: &[SecularPlanet]) -> Result<(), OutOfDomain> {
 
 /// 3 n G m₀/(a c²): the first post-Newtonian term to lowest order in e. Einstein (1915).
 fn relativistic_rad_day(star_gm: f64, planet: &SecularPlanet, on: bool) -> f64 {
-    let rate =
-        3.0 * planet.mean_motion_rad_day * star_gm / (planet.semi_major_axis_au * LIGHT * LIGHT);
+    let rate = 3.0 * planet.mean_motion_rad_day * star_gm / (planet.semi_major_axis_au * LIGHT * LIGHT);
     if on { rate } else { 0.0 }
 }
 

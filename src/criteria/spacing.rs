@@ -10,13 +10,15 @@ use super::domain::Domain;
 /// The mean of the two masses and of the two axes is our choice; the papers use equal masses and spacings.
 /// Takes mass ratios to the star, axes in au, inner first. Errors: [`OutOfDomain`] unless 0 < a₁ < a₂ and the mean mass
 /// ratio is positive and at most 0.01.
-pub fn quarter_power_spacing(
-    mass_ratio: [f64; 2],
-    semi_major_axis_au: [f64; 2],
-) -> Result<f64, OutOfDomain> {
+pub fn quarter_power_spacing(mass_ratio: [f64; 2], semi_major_axis_au: [f64; 2]) -> Result<f64, OutOfDomain> {
     let domain = Domain("the spacing in the fourth root of the mass ratio");
     let epsilon = 0.5 * (mass_ratio[0] + mass_ratio[1]);
-    domain.need(epsilon > 0.0 && epsilon <= 0.01, "mean mass ratio", epsilon, "0 < mean mass ratio <= 0.01")?;
+    domain.need(
+        epsilon > 0.0 && epsilon <= 0.01,
+        "mean mass ratio",
+        epsilon,
+        "0 < mean mass ratio <= 0.01",
+    )?;
     let [inner, outer] = semi_major_axis_au;
     let alpha = inner / outer;
     domain.need(alpha > 0.0 && alpha < 1.0, "a1/a2", alpha, "0 < a1/a2 < 1")?;

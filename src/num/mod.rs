@@ -1,9 +1,15 @@
-//! Small mathematics without physics: angles, root finding, whole numbers.
+//! Small mathematics without physics: angles, root finding, whole numbers, frequency analysis.
 
 mod angle;
+mod fourier;
+mod fourier_fit;
+mod fourier_window;
 mod root;
 mod whole;
 
 pub use angle::{turn_near, wrap_half_turn, wrap_turn};
+pub use fourier::{
+    Complex, Ended, FEWEST_SAMPLES, FourierError, Line, Search, Spectrum, Wave, decompose, decompose_real,
+};
 pub use root::{NoBracket, bisect};
 pub use whole::greatest_common_divisor;
