@@ -134,8 +134,12 @@ fn the_libration_of_hd_45364() {
         .iter()
         .map(|near| Candidate::Pair { inner: 0, outer: 1, p: near.p, q: near.q })
         .collect();
+    assert_eq!(candidates[0], Candidate::Pair { inner: 0, outer: 1, p: 3, q: 2 });
     candidates.push(Candidate::Apsides { one: 0, other: 1 });
-    assert!(candidates.len() > 3);
+    // Resonances further off, whose angles must circulate.
+    for (p, q) in [(5, 3), (7, 5), (8, 5), (4, 3)] {
+        candidates.push(Candidate::Pair { inner: 0, outer: 1, p, q });
+    }
     let reports = resonant_motion(&series, &candidates).unwrap();
     let words = |k: usize| reports[k].angle.words(&names());
     assert_eq!(words(0), "3λ_c − 2λ_b − ϖ_b");
@@ -152,7 +156,7 @@ fn the_libration_of_hd_45364() {
     }
     let circulating =
         reports.iter().filter(|report| matches!(report.motion, AngleMotion::Circulates { .. })).count();
-    assert!(circulating > 3, "{circulating}");
+    assert_eq!(circulating, 3 + 3 + 4 + 2);
 }
 
 /// Half the libration seen is no libration: a short piece of the same run is not told.
@@ -176,19 +180,20 @@ fn a_piece_of_a_libration_is_not_told() {
     }
 }
 
-/// Two invented planets far apart: the drift is that of rounding and method; the same two close together, well inside
-/// the overlap of resonances but outside collision for the span: the drift is large.
+/// Two invented planets far apart: the drift is what secular terms of e² leave that the half span does not resolve; the
+/// same two close together, where resonances overlap (Hadden & Lithwick 2018: Z = 0.05 above Z_crit = 0.014): it is large,
+/// well before one of them is lost.
 #[test]
 fn the_drift_tells_chaos_from_order() {
-    let drift = |gap: f64| {
+    let drift = |gap: f64, rows: usize| {
         let gm = [1e-4 * GM_SUN, 1e-4 * GM_SUN];
         let orbits = [orbit(1.0, 0.05, 20.0, 0.0), orbit(1.0 + gap, 0.05, 110.0, 75.0)];
-        let motion = follow(GM_SUN, &gm, Frame::Astrocentric, &orbits, 3.0, 20, 12_000);
+        let motion = follow(GM_SUN, &gm, Frame::Astrocentric, &orbits, 3.0, 20, rows);
         frequency_drift(&series(&motion)).unwrap()
     };
-    let (calm, wild) = (drift(0.9), drift(0.16));
+    let (calm, wild) = (drift(0.9, 12_000), drift(0.145, 6_000));
     println!("{calm:?} {} {wild:?} {}", calm.worst_log10(), wild.worst_log10());
-    assert!(calm.worst_log10() < -7.5, "{}", calm.worst_log10());
+    assert!(calm.worst_log10() < -7.0, "{}", calm.worst_log10());
     assert!(wild.worst_log10() > -4.0, "{}", wild.worst_log10());
     assert_eq!(wild.of_planets[wild.worst].log10(), wild.worst_log10());
 }

@@ -2,13 +2,18 @@
 
 /// A criterion was asked about something it was not made for.
 #[derive(Debug, Clone, PartialEq, thiserror::Error)]
-#[error("{criterion} says nothing for {quantity} = {found}; it holds for {allowed}")]
+#[error("{criterion} says nothing for {quantity} = {}; it holds for {allowed}", six_digits(*found))]
 pub struct OutOfDomain {
     pub criterion: &'static str,
     pub quantity: &'static str,
     pub found: f64,
     /// The domain in words, as "0 <= e < 1".
     pub allowed: &'static str,
+}
+
+/// The number to six digits: what rounding left behind helps nobody to see what is wrong.
+fn six_digits(value: f64) -> f64 {
+    format!("{value:.5e}").parse().unwrap_or(value)
 }
 
 /// One criterion checking its arguments.
