@@ -60,7 +60,7 @@ pub fn near_chains(periods_day: [f64; 3]) -> Vec<NearChain> {
 fn near(coefficients: [i32; 3], motions: [f64; 3]) -> Option<NearChain> {
     let [inner, middle, outer] = coefficients;
     let common = coefficients.iter().fold(0, |common, k| greatest_common_divisor(common, k.unsigned_abs()));
-    if middle >= 0 || middle < -2 * LARGEST || common != 1 {
+    if !(-2 * LARGEST..0).contains(&middle) || common != 1 {
         return None;
     }
     let drift_rad_day =

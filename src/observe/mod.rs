@@ -6,6 +6,7 @@ mod extent;
 mod frequency;
 mod growth;
 mod libration;
+mod quasi_periodic;
 mod resonance;
 mod series;
 
@@ -15,6 +16,7 @@ pub use extent::{Extent, ExtentWatch, Range};
 pub use frequency::{FrequencyDrift, MotionDrift, frequency_drift, fundamental_nodes, fundamentals};
 pub use growth::{GrowthRecord, Lyapunov};
 pub use libration::{AngleMotion, Libration, WhyNot, angle_motion};
+pub use quasi_periodic::{NamedLine, QuasiPeriodic, quasi_periodic};
 pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
 pub use series::{ElementSeries, SeriesError};
 

@@ -14,7 +14,7 @@ pub fn section(view: &CriteriaView) -> Vec<String> {
     let mut out = Vec::new();
     if !view.pairs.is_empty() {
         out.push(String::new());
-        out.push("Criteria (a pair is beyond one where the first number passes the second)".to_string());
+        out.push("Criteria (each number with its limit to the right of it)".to_string());
         out.extend(pairs(&view.pairs));
         out.extend(amd(view));
     }
@@ -70,7 +70,7 @@ fn pairs(pairs: &[PairCriteria]) -> Vec<String> {
             ]
         })
         .collect();
-    let head = ["pair", "da/a", "overlap", "Z", "overlap", "e cross", "in m^1/4"];
+    let head = ["pair", "da/a", "overlap", "Z", "overlap", "e cross", "/m^1/4"];
     let mut out = lines(&head, &rows, &[]);
     out.push(wrapped(
         "  ",
