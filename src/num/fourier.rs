@@ -19,6 +19,9 @@ const MOST_TOGETHER: usize = 40;
 /// Lines² × samples up to which every new line is fitted with all others, not only with its neighbours.
 const MOST_WORK: usize = 5_000_000;
 
+/// Resolution elements that two lines must be apart to be fitted together.
+const NEAREST: f64 = 0.6;
+
 /// A signal that cannot be analysed.
 #[derive(Debug, Clone, Copy, PartialEq, thiserror::Error)]
 pub enum FourierError {
@@ -53,6 +56,8 @@ pub struct Line {
     /// Standard errors if what is left were white noise and no line were near.
     pub frequency_error: f64,
     pub amplitude_error: f64,
+    /// False where it stands for what is left of lines nearer to each other than can be told apart: no mode of its own.
+    pub resolved: bool,
 }
 
 /// Why no further line was looked for.
@@ -153,7 +158,7 @@ fn lines(samples: &[Complex], step: f64, search: Search, paired: bool) -> Result
         }
     }
     if tones.len() <= MOST_TOGETHER {
-        let all: Vec<usize> = (0..tones.len()).collect();
+        let all: Vec<usize> = (0..tones.len()).filter(|k| !tones[*k].held).collect();
         fit(&window, samples, &mut tones, &all);
         residual = subtract(&window, samples, &tones);
     }
@@ -187,10 +192,11 @@ fn add_line(
     if tones.iter().any(|tone| (tone.frequency - found.frequency).abs() < 1e-3 * element) {
         return Some(Ended::Repeats);
     }
+    let known = tones.len();
     tones.push(found);
     let alone = found.frequency.abs() < ALONE * element;
     if paired && !alone {
-        tones.push(Tone { frequency: -found.frequency, amplitude: found.amplitude.conj() });
+        tones.push(Tone { frequency: -found.frequency, amplitude: found.amplitude.conj(), held: false });
     }
     let reach = window.lobe() + 4.0 * element;
     let everyone = tones.len() * tones.len() * samples.len() <= MOST_WORK;
@@ -201,12 +207,26 @@ fn add_line(
             } else {
                 tones[*k].frequency - found.frequency
             };
-            everyone || away.abs() < reach
+            !tones[*k].held && (everyone || away.abs() < reach)
         })
         .collect();
+    let before = tones.clone();
     fit(window, samples, tones, &group);
+    if too_near(tones, &group, element) {
+        // Two lines that run into each other have amplitudes without meaning. The fit is undone, and what was found
+        // is taken away as it stands, so that the search can go on elsewhere.
+        *tones = before;
+        tones.iter_mut().skip(known).for_each(|tone| tone.held = true);
+    }
     *residual = subtract(window, samples, tones);
     None
+}
+
+/// Whether two lines of a group have come nearer to each other than [`NEAREST`].
+fn too_near(tones: &[Tone], group: &[usize], element: f64) -> bool {
+    let mut frequencies: Vec<f64> = group.iter().map(|k| tones[*k].frequency).collect();
+    frequencies.sort_by(f64::total_cmp);
+    frequencies.windows(2).any(|pair| pair[1] - pair[0] < NEAREST * element)
 }
 
 /// A residual this small against the signal is rounding: of the numbers, and of phases as large as ν T.
@@ -222,5 +242,6 @@ fn line(tone: &Tone, window: &Window, step: f64, residual_rms: f64) -> Line {
         amplitude: tone.amplitude * Complex::from_polar(1.0, tone.frequency * window.place(0)),
         frequency_error: residual_rms * window.slope_gain() / (size * step),
         amplitude_error: residual_rms * window.noise_gain(),
+        resolved: !tone.held,
     }
 }

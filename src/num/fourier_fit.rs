@@ -16,6 +16,8 @@ const FLAT: f64 = 1e-10;
 pub(super) struct Tone {
     pub(super) frequency: f64,
     pub(super) amplitude: Complex,
+    /// Not fitted with others any more: it stands for lines too near each other to be told apart.
+    pub(super) held: bool,
 }
 
 /// The signal without the tones.
@@ -140,6 +142,7 @@ fn step(
             .map(|(k, tone)| Tone {
                 frequency: tone.frequency + change[3 * k + 2] / half,
                 amplitude: tone.amplitude + Complex::new(change[3 * k], change[3 * k + 1]),
+                held: false,
             })
             .collect(),
     )

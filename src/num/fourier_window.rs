@@ -67,7 +67,7 @@ pub(super) fn peak(window: &Window, signal: &[Complex]) -> Tone {
     let bin = TAU / padded as f64;
     let start = if 2 * strongest > padded { strongest as f64 - padded as f64 } else { strongest as f64 };
     let frequency = climb(window, &weighted, start * bin, bin);
-    Tone { frequency, amplitude: transform(window, &weighted, frequency)[0] }
+    Tone { frequency, amplitude: transform(window, &weighted, frequency)[0], held: false }
 }
 
 /// F = Σ w f exp(−iωu), F′ and F″ with respect to ω.

@@ -93,13 +93,14 @@ pub fn fundamentals(
     let spectra = (0..series.planets())
         .map(|planet| decompose(&series.pericentre_signal(planet), series.step_day(), search))
         .collect::<Result<Vec<_>, _>>()?;
-    let modes = modes(&spectra, series.span_day());
+    let modes = modes(&spectra, series.span_day(), series.planets());
     all.extend(numbered(modes, "g", Kind::Pericentre));
     Ok(all)
 }
 
 /// Frequencies s of the nodes, each planet's own line of sin(i/2) exp(iΩ); the fixed line of the plane itself is no mode
-/// and is left out. Elements should refer to the invariable plane. Errors: [`FourierError`].
+/// and is left out, so there is one mode fewer than planets. Elements should refer to the invariable plane.
+/// Errors: [`FourierError`].
 pub fn fundamental_nodes(
     series: &ElementSeries<'_>,
     search: Search,
@@ -112,7 +113,8 @@ pub fn fundamental_nodes(
             Ok(spectrum)
         })
         .collect::<Result<Vec<_>, FourierError>>()?;
-    Ok(numbered(modes(&spectra, series.span_day()), "s", Kind::Node))
+    let most = series.planets().saturating_sub(1);
+    Ok(numbered(modes(&spectra, series.span_day(), most), "s", Kind::Node))
 }
 
 fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
@@ -125,23 +127,26 @@ fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamenta
         .collect()
 }
 
-/// One line per planet, none taken twice: the largest share of its planet's signal chooses first.
-fn modes(spectra: &[Spectrum], span_day: f64) -> Vec<Option<f64>> {
+/// One line per planet, none taken twice and at most `most`: the largest share of its planet's signal chooses first.
+///
+/// Lines nearer than a resolution element are one mode.
+fn modes(spectra: &[Spectrum], span_day: f64, most: usize) -> Vec<Option<f64>> {
     let resolution = std::f64::consts::TAU / span_day;
     let mut offers: Vec<(f64, usize, f64)> = spectra
         .iter()
         .enumerate()
         .flat_map(|(planet, spectrum)| {
             let whole = spectrum.signal_rms;
-            let lines = spectrum.lines.iter().take(MODE_LINES);
+            let lines = spectrum.lines.iter().filter(|line| line.resolved).take(MODE_LINES);
             lines.map(move |line| (line.amplitude.norm() / whole, planet, line.frequency))
         })
         .collect();
     offers.sort_by(|one, other| other.0.total_cmp(&one.0));
     let mut taken: Vec<Option<f64>> = vec![None; spectra.len()];
     for (_, planet, frequency) in offers {
-        let free = taken.iter().flatten().all(|other| (other - frequency).abs() > 0.5 * resolution);
-        if taken[planet].is_none() && free {
+        let free = taken.iter().flatten().all(|other| (other - frequency).abs() > resolution);
+        let room = taken.iter().flatten().count() < most;
+        if taken[planet].is_none() && free && room {
             taken[planet] = Some(frequency);
         }
     }

@@ -13,7 +13,7 @@ const TOLERANCE: f64 = 0.05;
 #[derive(Clone, Debug, PartialEq)]
 pub struct NamedLine {
     pub line: Line,
-    /// None when no simple combination is near.
+    /// None when no simple combination is near, or the line is not resolved.
     pub name: Option<Combination>,
 }
 
@@ -51,7 +51,8 @@ pub fn quasi_periodic(
     let namer = Namer::new(&all, Rule::PLANE, fold);
     let table = |signal: Vec<Complex>| -> Result<Vec<NamedLine>, FourierError> {
         let spectrum = decompose(&signal, series.step_day(), search)?;
-        let named = |line: Line| NamedLine { name: namer.name(line.frequency, tolerance), line };
+        let name = |line: &Line| line.resolved.then(|| namer.name(line.frequency, tolerance)).flatten();
+        let named = |line: Line| NamedLine { name: name(&line), line };
         Ok(spectrum.lines.into_iter().map(named).collect())
     };
     let planets = 0..series.planets();
