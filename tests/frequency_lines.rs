@@ -58,7 +58,8 @@ fn one_resolution_element_apart() {
     let element = std::f64::consts::TAU / (count as f64 * step);
     for phase in 0..12 {
         for size in [1.0, 0.3] {
-            let lines = [(0.7, 1.0, 0.0), (0.7 + element, size, 0.5236 * f64::from(phase))];
+            let lines =
+                [(0.7, 1.0, 0.0), (0.7 + element, size, std::f64::consts::FRAC_PI_6 * f64::from(phase))];
             let spectrum = decompose(&signal(&lines, count, step), step, Search::default()).unwrap();
             let mut found: Vec<f64> = spectrum.lines.iter().take(2).map(|line| line.frequency).collect();
             found.sort_by(f64::total_cmp);
@@ -77,7 +78,7 @@ fn one_resolution_element_apart_under_noise() {
     let element = std::f64::consts::TAU / (count as f64 * step);
     let mut normal = noise(7);
     for phase in 0..12 {
-        let lines = [(0.7, 1.0, 0.0), (0.7 + element, 0.6, 0.5236 * f64::from(phase))];
+        let lines = [(0.7, 1.0, 0.0), (0.7 + element, 0.6, std::f64::consts::FRAC_PI_6 * f64::from(phase))];
         let mut samples = signal(&lines, count, step);
         samples.iter_mut().for_each(|z| *z += Complex::new(normal(), normal()) * 0.01);
         let spectrum = decompose(&samples, step, Search::default()).unwrap();
