@@ -1,6 +1,8 @@
 //! `abide inspect`: what a system file says, how it is read, and what can be told without integrating.
 
 mod caveat;
+mod criteria_text;
+mod criteria_view;
 mod second;
 pub(super) mod table;
 mod text;

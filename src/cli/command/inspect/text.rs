@@ -1,5 +1,6 @@
 //! The view as a page of at most 100 columns.
 
+use super::criteria_text;
 use super::second::{companion_lines, physics_lines};
 use super::table::{PAGE_WIDTH, lines, short, significant, wrapped};
 use super::view::{FrameView, PairView, StepView, View};
@@ -47,6 +48,7 @@ pub fn page(view: &View) -> String {
         );
         out.push(wrapped("  ", &text));
     }
+    out.extend(criteria_text::section(&view.criteria));
     out.push(String::new());
     out.push("Step".to_string());
     out.extend(step(view.step.as_ref()));

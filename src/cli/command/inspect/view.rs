@@ -3,6 +3,7 @@
 use serde::Serialize;
 
 use super::caveat::{Caveat, caveats};
+use super::criteria_view::CriteriaView;
 use super::second::{CompanionView, PhysicsView, companion, has_meaning, physics};
 use crate::assess;
 use crate::coords::{Configuration, Elements};
@@ -26,6 +27,7 @@ pub struct View {
     pub neighbours: Vec<PairView>,
     /// For two coplanar planets only.
     pub hill_balance: Option<BalanceView>,
+    pub criteria: CriteriaView,
     pub step: Option<StepView>,
     pub warnings: Vec<Caveat>,
 }
@@ -152,6 +154,7 @@ impl View {
                 needed: balance.needed,
                 stable: balance.stable(),
             }),
+            criteria: CriteriaView::new(configuration, &pairs),
             step: step(configuration, assess::auto_step_day(configuration)),
             warnings: caveats(configuration, &pairs),
             neighbours: pairs.iter().map(|pair| pair_view(pair, configuration)).collect(),
