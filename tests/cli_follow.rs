@@ -166,7 +166,7 @@ fn what_is_wrong_is_said_once_before_anything_is_made() {
         (&["--scheme", "(3,3)"], "allowed: auto, (2,2)"),
         (&["--escape", "5 d"], "escape:1:3: wrong unit"),
         (&["--escape", "-5 au"], "escape:1:1: the number is out of range"),
-        (&["--encounter", "1"], "allowed: \"off\", or mutual Hill radii as \"1 hill\""),
+        (&["--encounter", "1"], "allowed: mutual Hill radii as \"1 hill\", \"resolve\" or \"off\""),
         (&["--rows", "1"], "--rows is 1, but a series has 2 to 1000000"),
         (&["--checkpoint", "5 au"], "time:1:3: wrong unit"),
         (&["--checkpoint", "-5 s"], "is no time to wait"),
