@@ -5,7 +5,7 @@
 
 use super::stumpff::Gs;
 use super::universal::{self, Orbit, Solved};
-use crate::lanes::{Mask, Real};
+use crate::lanes::{Mask, Real, Twin};
 
 /// A body on its way round a centre. Lengths au, times day, `mu` = G × mass of the centre in au³ day⁻².
 #[derive(Clone, Copy)]
@@ -103,9 +103,18 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
         m.solved.s = universal::guess(&m.orbit, inv_r0, h);
     }
     let mut all_good = R::splat(0.0).lt(R::splat(1.0));
-    for m in midway.iter_mut() {
-        (m.solved, m.good) = universal::solve_fast(&m.orbit, m.solved.s, h);
-        all_good = all_good.and(m.good);
+    for twins in midway.chunks_mut(if R::SIDE_BY_SIDE { 2 } else { 1 }) {
+        match &mut *twins {
+            [a, b] => solve_two(a, b, h),
+            others => {
+                for m in others.iter_mut() {
+                    (m.solved, m.good) = universal::solve_fast(&m.orbit, m.solved.s, h);
+                }
+            }
+        }
+        for m in twins {
+            all_good = all_good.and(m.good);
+        }
     }
     if active.and(all_good.not()).any() {
         for m in midway.iter_mut() {
@@ -118,6 +127,15 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
     for k in 0..count {
         update::<R, TANGENT>(&mut bodies[k], &midway[k]);
     }
+}
+
+/// The long chain of dependent operations of two bodies, side by side.
+#[inline(always)]
+fn solve_two<R: Real>(a: &mut Midway<R>, b: &mut Midway<R>, h: R) {
+    let orbit = universal::twin(&a.orbit, &b.orbit);
+    let (solved, good) = universal::solve_fast(&orbit, Twin(a.solved.s, b.solved.s), Twin(h, h));
+    (a.solved, b.solved) = universal::part(&solved);
+    (a.good, b.good) = (good.0, good.1);
 }
 
 #[inline(always)]

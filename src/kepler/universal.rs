@@ -4,7 +4,7 @@
 //! (Stumpff 1962; Battin 1987). Good for ellipse, parabola and hyperbola alike.
 
 use super::stumpff::{self, Gs, SERIES_REACH};
-use crate::lanes::{Mask, Piece, Real};
+use crate::lanes::{Mask, Piece, Real, Twin};
 
 /// What Kepler's equation needs to know of an orbit.
 #[derive(Clone, Copy)]
@@ -25,6 +25,39 @@ pub(super) struct Solved<R> {
     pub h: R,
     /// ∂h/∂β through the periods taken off; 0 where none were.
     pub h_by_beta: R,
+}
+
+/// Two orbits as one.
+#[inline(always)]
+pub(super) fn twin<R: Real>(a: &Orbit<R>, b: &Orbit<R>) -> Orbit<Twin<R>> {
+    Orbit {
+        mu: Twin(a.mu, b.mu),
+        r0: Twin(a.r0, b.r0),
+        eta: Twin(a.eta, b.eta),
+        beta: Twin(a.beta, b.beta),
+        zeta: Twin(a.zeta, b.zeta),
+    }
+}
+
+/// Two solved equations from one.
+#[inline(always)]
+pub(super) fn part<R: Real>(both: &Solved<Twin<R>>) -> (Solved<R>, Solved<R>) {
+    let Solved { s, g, h, h_by_beta } = both;
+    let Gs { g1, g2, g3, g4, g5 } = g;
+    (
+        Solved {
+            s: s.0,
+            g: Gs { g1: g1.0, g2: g2.0, g3: g3.0, g4: g4.0, g5: g5.0 },
+            h: h.0,
+            h_by_beta: h_by_beta.0,
+        },
+        Solved {
+            s: s.1,
+            g: Gs { g1: g1.1, g2: g2.1, g3: g3.1, g4: g4.1, g5: g5.1 },
+            h: h.1,
+            h_by_beta: h_by_beta.1,
+        },
+    )
 }
 
 /// The limit of [`Correction::miss`] below which one correction of order five ends at round-off.
