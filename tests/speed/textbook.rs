@@ -23,7 +23,7 @@ fn dot(a: &Vector, b: &Vector) -> f64 {
 /// c₀ … c₅ of z.
 fn stumpff(z: f64) -> [f64; 6] {
     if z.abs() > 0.1 {
-        return doubled(doubled(stumpff(0.25 * z)));
+        return doubled(stumpff(0.25 * z));
     }
     let mut c = [0.0; 6];
     for (n, cn) in c.iter_mut().enumerate() {
