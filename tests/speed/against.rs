@@ -17,9 +17,10 @@ mod textbook;
 use abide::integrate::{Advance, Block, Scheme, advance, energy, from_map, to_map};
 use abide::lanes::Level;
 use general::General;
-use measure::{interleave, median, ratios, spread, thread_seconds, write_table};
+use measure::{interleave, median, ratios, spread, write_table};
 use std::f64::consts::TAU;
 use std::hint::black_box;
+use std::time::Instant;
 use textbook::Textbook;
 
 /// Inner orbits over which energy errors are measured.
@@ -84,26 +85,46 @@ fn agree(plain: &mut Textbook, n: usize) {
     }
 }
 
-/// Largest relative energy error of eight neighbours, and the processor seconds per orbit and configuration.
-fn engine(n: usize, scheme: &Scheme, per_orbit: f64, orbits: usize) -> (f64, f64) {
-    let lanes = Level::chosen().width();
-    let mut block = systems::block(n, lanes, per_orbit);
-    to_map(&mut block, scheme);
-    let first: Vec<f64> = (0..lanes).map(|lane| energy(&systems::start(n, lane).0)).collect();
-    let (mut worst, mut seconds) = (0.0f64, 0.0);
-    let looks = (orbits as f64 * per_orbit / LOOK_EVERY as f64).ceil() as usize;
-    for _ in 0..looks {
-        let start = thread_seconds();
-        advance(Advance { block: &mut block, scheme, steps: LOOK_EVERY, tangent: true });
-        (0..lanes).for_each(|lane| block.rescale(lane));
-        let mut seen: Block = block.clone();
-        from_map(&mut seen, scheme);
-        seconds += thread_seconds() - start;
-        for (lane, first) in first.iter().enumerate() {
-            worst = worst.max(((energy(&seen.state(lane)) - first) / first).abs());
+/// Eight neighbours on their way with one scheme.
+struct Ours {
+    block: Block,
+    scheme: &'static Scheme,
+    per_orbit: f64,
+    first: Vec<f64>,
+    worst: f64,
+    /// Per orbit and configuration, one of each look.
+    seconds: Vec<f64>,
+}
+
+impl Ours {
+    fn new(n: usize, scheme: &'static Scheme, per_orbit: f64) -> Ours {
+        let lanes = Level::chosen().width();
+        let mut block = systems::block(n, lanes, per_orbit);
+        to_map(&mut block, scheme);
+        let first = (0..lanes).map(|lane| energy(&systems::start(n, lane).0)).collect();
+        Ours { block, scheme, per_orbit, first, worst: 0.0, seconds: Vec::new() }
+    }
+
+    /// Goes on to the next look; what is timed includes the way back to true states.
+    fn look(&mut self) {
+        let start = Instant::now();
+        advance(Advance { block: &mut self.block, scheme: self.scheme, steps: LOOK_EVERY, tangent: true });
+        let lanes = self.first.len();
+        (0..lanes).for_each(|lane| self.block.rescale(lane));
+        let mut seen = self.block.clone();
+        from_map(&mut seen, self.scheme);
+        let orbits = LOOK_EVERY as f64 / self.per_orbit * lanes as f64;
+        self.seconds.push(start.elapsed().as_secs_f64() / orbits);
+        for (lane, first) in self.first.iter().enumerate() {
+            self.worst = self.worst.max(((energy(&seen.state(lane)) - first) / first).abs());
         }
     }
-    (worst, seconds * per_orbit / (looks * LOOK_EVERY * lanes) as f64)
+
+    /// Looks until so many orbits are done.
+    fn follow(mut self, orbits: usize) -> Ours {
+        (0..(orbits as f64 * self.per_orbit / LOOK_EVERY as f64).ceil() as usize).for_each(|_| self.look());
+        self
+    }
 }
 
 /// Energy error against cost, every scheme, a range of steps.
@@ -113,7 +134,8 @@ fn schemes() {
         for scheme in Scheme::all() {
             let mut stages = 10.0;
             while stages < 400.0 {
-                let (error, seconds) = engine(n, scheme, stages / scheme.stages() as f64, 400);
+                let run = Ours::new(n, scheme, stages / scheme.stages() as f64).follow(400);
+                let (error, seconds) = (run.worst, median(&run.seconds));
                 rows.push(format!("{n},\"{}\",{stages:.1},{error:.3e},{:.1}", scheme.name, seconds * 1e9));
                 stages *= 1.35;
             }
@@ -131,7 +153,7 @@ fn cheapest(n: usize, asked: f64) -> (&'static Scheme, f64) {
     let candidates = [(Scheme::leapfrog(), 15.0), (Scheme::named("(10,6,4)").expect("it is listed"), 4.0)];
     let fits = candidates.into_iter().filter_map(|(scheme, least)| {
         let mut per_orbit = least;
-        while engine(n, scheme, per_orbit, ORBITS).0 > asked {
+        while Ours::new(n, scheme, per_orbit).follow(ORBITS).worst > asked {
             per_orbit *= 1.06;
             if per_orbit * scheme.stages() as f64 > 600.0 {
                 return None;
@@ -148,8 +170,8 @@ fn general_error<const D: usize>(n: usize, tolerance: f64) -> f64 {
     let first = energy(&state);
     let mut run = General::<D>::new(&state, &tangent, tolerance);
     let mut worst = 0.0f64;
-    for _ in 0..ORBITS / 100 {
-        run.advance(100.0 * TAU);
+    for _ in 0..ORBITS / 10 {
+        run.advance(10.0 * TAU);
         worst = worst.max(((energy(&run.state()) - first) / first).abs());
     }
     worst
@@ -172,17 +194,18 @@ fn against_general<const D: usize>(n: usize, rows: &mut Vec<String>) {
     for asked in [1e-6, 1e-9] {
         let (tolerance, general_error) = tolerance::<D>(n, asked);
         let (scheme, per_orbit) = cheapest(n, asked);
-        let engine_error = engine(n, scheme, per_orbit, ORBITS).0;
+        let engine_error = Ours::new(n, scheme, per_orbit).follow(ORBITS).worst;
         let (state, tangent) = systems::start(n, 0);
-        let mut ours = Vec::new();
-        let mut theirs = Vec::new();
         let mut run = General::<D>::new(&state, &tangent, tolerance);
-        for _ in 0..15 {
-            let start = thread_seconds();
-            run.advance(100.0 * TAU);
-            theirs.push((thread_seconds() - start) / 100.0);
-            ours.push(engine(n, scheme, per_orbit, 100).1);
+        let mut ours = Ours::new(n, scheme, per_orbit);
+        let mut theirs = Vec::new();
+        for _ in 0..80 {
+            let start = Instant::now();
+            run.advance(10.0 * TAU);
+            theirs.push(start.elapsed().as_secs_f64() / 10.0);
+            ours.look();
         }
+        let ours = ours.seconds;
         let ratio = ratios(&theirs, &ours);
         rows.push(format!(
             "{n},{asked:e},\"{}\",{per_orbit:.1},{engine_error:.2e},{:.0},{tolerance:.2e},{general_error:.2e},{:.0},{:.1},{:.1}",
