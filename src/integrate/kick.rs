@@ -104,20 +104,23 @@ fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
     h: R,
     window: R,
 ) {
-    let count = bodies.len();
     let zero = R::splat(0.0);
     let mut pair = 0;
     for i in 0..pulling {
-        for j in i + 1..count {
+        // What body i gathers stays out of memory until its last pair.
+        let (front, others) = bodies.split_at_mut(i + 1);
+        let me = &mut front[i];
+        let (mut vel, mut d_vel) = (me.vel, me.d_vel);
+        for b in others {
             let mut d = [zero; 3];
             for k in 0..3 {
-                d[k] = bodies[j].pos[k] - bodies[i].pos[k];
+                d[k] = b.pos[k] - me.pos[k];
             }
             let d2 = d[2].mul_add(d[2], d[1].mul_add(d[1], d[0] * d[0]));
             if WATCH {
                 let mut w = [zero; 3];
                 for k in 0..3 {
-                    w[k] = bodies[j].vel[k] - bodies[i].vel[k];
+                    w[k] = b.vel[k] - vel[k];
                 }
                 let nearest = nearest2(&d, &w, d2, window);
                 pairs[pair] = nearest.min(pairs[pair]);
@@ -126,26 +129,27 @@ fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
             let inv_d2 = R::splat(1.0) / d2;
             let inv_d3 = inv_d2 * inv_d2.sqrt();
             let strength = h * inv_d3;
-            let on_i = strength * bodies[j].gm;
-            let on_j = strength * bodies[i].gm;
+            let on_me = strength * b.gm;
+            let on_b = strength * me.gm;
             for k in 0..3 {
-                bodies[i].vel[k] = d[k].mul_add(on_i, bodies[i].vel[k]);
-                bodies[j].vel[k] = d[k].neg_mul_add(on_j, bodies[j].vel[k]);
+                vel[k] = d[k].mul_add(on_me, vel[k]);
+                b.vel[k] = d[k].neg_mul_add(on_b, b.vel[k]);
             }
             if TANGENT {
                 let mut dd = [zero; 3];
                 for k in 0..3 {
-                    dd[k] = bodies[j].d_pos[k] - bodies[i].d_pos[k];
+                    dd[k] = b.d_pos[k] - me.d_pos[k];
                 }
                 let along = dd[2].mul_add(d[2], dd[1].mul_add(d[1], dd[0] * d[0]));
                 let pull = R::splat(3.0) * along * inv_d2;
                 for k in 0..3 {
                     let w = d[k].neg_mul_add(pull, dd[k]);
-                    bodies[i].d_vel[k] = w.mul_add(on_i, bodies[i].d_vel[k]);
-                    bodies[j].d_vel[k] = w.neg_mul_add(on_j, bodies[j].d_vel[k]);
+                    d_vel[k] = w.mul_add(on_me, d_vel[k]);
+                    b.d_vel[k] = w.neg_mul_add(on_b, b.d_vel[k]);
                 }
             }
         }
+        (me.vel, me.d_vel) = (vel, d_vel);
     }
 }
 
