@@ -148,11 +148,12 @@ impl Cell {
             }
             return Next::End(Box::new(self.assessment(plan, None)));
         }
+        let orbits = moment.astrocentric();
         if plan.extent {
-            self.extent.see(&moment);
+            self.extent.see(&orbits);
         }
         self.note_approach(after, lane);
-        if let Some(planet) = self.falls_into_star(&moment) {
+        if let Some(planet) = self.falls_into_star(&orbits) {
             let loss = Loss { time_day: moment.time_day, planet, other: None, how: LostHow::Star };
             return Next::End(Box::new(self.assessment(plan, Some(loss))));
         }
@@ -188,7 +189,7 @@ impl Cell {
                 return at(planet, None, LostHow::Star);
             }
         }
-        if let Some(planet) = self.falls_into_star(&moment) {
+        if let Some(planet) = self.falls_into_star(&moment.astrocentric()) {
             return at(planet, None, LostHow::Star);
         }
         self.limits.pairs.iter().find_map(|pair| {
@@ -209,9 +210,9 @@ impl Cell {
     }
 
     /// A bound planet whose pericentre lies inside the star will reach it within one orbit.
-    fn falls_into_star(&self, moment: &Moment<'_>) -> Option<usize> {
+    fn falls_into_star(&self, orbits: &[Elements]) -> Option<usize> {
         let inside = |o: &Elements| o.pericentre_au() < self.limits.star_radius_au;
-        moment.astrocentric().iter().position(inside)
+        orbits.iter().position(inside)
     }
 
     fn has_ended(&self, block: &Block, lane: usize) -> bool {
