@@ -181,10 +181,11 @@ impl Cell {
         if error > plan.energy_error {
             return self.again(error, plan);
         }
+        let orbits = moment.astrocentric();
         if plan.extent {
-            self.extent.see(&moment);
+            self.extent.see(&orbits);
         }
-        if let Some(planet) = self.falls_into_star(&moment) {
+        if let Some(planet) = self.falls_into_star(&orbits) {
             let loss = Loss { time_day: moment.time_day, planet, other: None, how: LostHow::Star };
             return Next::End(Box::new(self.assessment(plan, Some(loss))));
         }
@@ -237,7 +238,7 @@ impl Cell {
                 return at(planet, None, LostHow::Star);
             }
         }
-        if let Some(planet) = self.falls_into_star(&moment) {
+        if let Some(planet) = self.falls_into_star(&moment.astrocentric()) {
             return at(planet, None, LostHow::Star);
         }
         self.limits.pairs.iter().find_map(|pair| {
@@ -258,12 +259,12 @@ impl Cell {
     }
 
     /// A bound planet whose pericentre lies inside the star will reach it within one orbit.
-    fn falls_into_star(&self, moment: &Moment<'_>) -> Option<usize> {
+    fn falls_into_star(&self, orbits: &[Elements]) -> Option<usize> {
         if !self.limits.orbits_tell {
             return None;
         }
         let inside = |o: &Elements| o.pericentre_au() < self.limits.star_radius_au;
-        moment.astrocentric().iter().position(inside)
+        orbits.iter().position(inside)
     }
 
     /// Whether the symplectic scheme has gone where it must not, or where the configuration ends.
@@ -305,7 +306,7 @@ impl Cell {
             let state = last.state(0);
             let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
             self.conserved.see(&moment, &self.terms);
-            self.extent.see(&moment);
+            self.extent.see(&moment.astrocentric());
         }
         self.part_steps = ended as u64;
         let at_end = run(ended);

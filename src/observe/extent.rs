@@ -1,6 +1,6 @@
 //! Ranges of a, e and i over the moments seen.
 
-use super::Moment;
+use crate::coords::Elements;
 use crate::num::{Kept, KeptReader};
 
 /// Smallest and largest value seen.
@@ -77,8 +77,9 @@ impl ExtentWatch {
         Some(())
     }
 
-    pub fn see(&mut self, moment: &Moment<'_>) {
-        for (extent, elements) in self.0.iter_mut().zip(moment.astrocentric()) {
+    /// Takes the osculating astrocentric elements of every planet at a moment.
+    pub fn see(&mut self, orbits: &[Elements]) {
+        for (extent, elements) in self.0.iter_mut().zip(orbits) {
             extent.semi_major_axis_au.take(elements.semi_major_axis_au);
             extent.eccentricity.take(elements.eccentricity);
             extent.inclination.take(elements.inclination);

@@ -53,10 +53,12 @@ const HUES: [RGBColor; 7] = [
 ];
 
 macro_rules! draw {
-    ($chart:expr, $lines:expr, $x:expr, $y:expr) => {{
+    ($chart:expr, $lines:expr, $x:expr, $y:expr, $tick:expr) => {{
         $chart
             .configure_mesh()
             .x_desc($x)
+            .x_label_formatter(&|x| format!("{x:.0}"))
+            .y_label_formatter($tick)
             .y_desc($y)
             .label_style(("words", 20))
             .axis_desc_style(("words", 22))
@@ -92,7 +94,7 @@ fn planets() -> Result<(), Failure> {
         .x_label_area_size(60)
         .y_label_area_size(80)
         .build_cartesian_2d(1.5f64..8.5, (4.0f64..400.0).log_scale())?;
-    draw!(chart, lines, "planets", "ns per planet-step");
+    draw!(chart, lines, "planets", "ns per planet-step", &|y| format!("{y:.0}"));
     page.present()?;
     Ok(())
 }
@@ -107,12 +109,13 @@ fn schemes() -> Result<(), Failure> {
         .margin(20)
         .x_label_area_size(60)
         .y_label_area_size(80)
-        .build_cartesian_2d((100f64..10_000.0).log_scale(), (1e-15f64..1e-1).log_scale())?;
+        .build_cartesian_2d((120f64..7_000.0).log_scale(), (1e-15f64..1e-1).log_scale())?;
     draw!(
         chart,
         lines,
         "ns per inner orbit and configuration, two planets",
-        "largest |ΔE/E| in 400 inner orbits"
+        "largest |ΔE/E| in 400 inner orbits",
+        &|y| format!("{y:.0e}")
     );
     page.present()?;
     Ok(())

@@ -110,11 +110,19 @@ fn kernel() {
             }
         }
     }
+    if only_print() {
+        return;
+    }
     write_table(
         "kernel",
         "planets,lanes,tangent,ns_per_planet_step,spread_percent,peak_gflops,flops_per_planet_step,share_of_peak_percent,times_scalar",
         &rows,
     );
+}
+
+/// `-- print`: the kernel only, and no file is written.
+fn only_print() -> bool {
+    std::env::args().any(|argument| argument == "print")
 }
 
 /// Two bodies of one eccentricity at different phases, drifting.
@@ -181,5 +189,7 @@ fn drifts() {
 
 fn main() {
     kernel();
-    drifts();
+    if !only_print() {
+        drifts();
+    }
 }
