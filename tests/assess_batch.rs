@@ -54,7 +54,7 @@ struct Map {
 fn map(limits: &str) -> Map {
     let system = input::parse_system("pair.toml", PAIR).unwrap();
     let file = input::parse_study("map.toml", &format!("{MAP}{limits}"), system).unwrap();
-    let plan = Plan::for_study(&file.study, &configure(&file.system.system).unwrap());
+    let plan = Plan::for_study(&file.study, &configure(&file.system.system).unwrap(), &[]);
     let grid = Grid::new(file.system.system.clone(), file.study.clone()).unwrap();
     let follow = |cell| match grid.make(cell) {
         Made::ToFollow(configuration) => Some((cell, configuration)),

@@ -1,11 +1,17 @@
 //! Random input: quantities survive text → value → text, and damaged files get one message with its place.
 
+use abide::coords::{check_start, configure};
 use abide::input::{parse_quantity, parse_study, parse_system};
 use abide::units::{Dimension, Unit};
 use proptest::prelude::*;
 
 const SYSTEM: &str = include_str!("../systems/lanthorn.toml");
 const STUDY: &str = include_str!("../systems/lanthorn-map.toml");
+/// Studies of systems with a second star, outside the planets and inside them.
+const PAIRS: [(&str, &str); 2] = [
+    (include_str!("../systems/castella.toml"), include_str!("../systems/castella-map.toml")),
+    (include_str!("../systems/gemello.toml"), include_str!("../systems/gemello-map.toml")),
+];
 
 /// A message with `name:line:column: `, a headline, and what to do.
 fn is_told(message: &str, name: &str) -> bool {
@@ -118,6 +124,23 @@ proptest! {
             };
             let Some(error) = error else { return Err(TestCaseError::fail(format!("accepted: {text}"))) };
             prop_assert!(is_told(&error.to_string(), "s.toml"), "{}", error);
+        }
+    }
+
+    /// What is read can be configured or is refused; nothing panics on the way.
+    #[test]
+    fn damaged_pairs_of_stars(which in 0..2_usize, at in 0..100_000_usize, how in 0..3_usize, with in any::<char>()) {
+        let (system, study) = PAIRS[which];
+        let damaged_system = damaged(system, at, how, with);
+        read_both(&damaged_system, study)?;
+        read_both(system, &damaged(study, at, how, with))?;
+        if let Ok(file) = parse_system("s.toml", &damaged_system)
+            && let Ok(configuration) = configure(&file.system)
+        {
+            for body in &configuration.planets {
+                prop_assert!(body.gm.is_finite() && body.position_au.iter().all(|x| x.is_finite()), "{:?}", body);
+            }
+            let _ = check_start(&configuration);
         }
     }
 

@@ -4,7 +4,10 @@ use abide::input::{
     Fault, FileKind, InputError, StudyFile, axis_from_uncertainty, check_axes, parse_span, parse_step,
     parse_study, parse_system, parse_time, read_study, read_system, sniff,
 };
-use abide::system::{BodyRef, Encounter, Key, Measure, Quantity, Spacing, Span, Step, Study, System, Target};
+use abide::system::{
+    BodyRef, CoordinateChoice, Encounter, Key, Measure, Quantity, SCHEMES, Spacing, Span, Step, Study,
+    System, Target,
+};
 use abide::units::{DEGREE, YEAR_DAY};
 
 const SYSTEM: &str = r#"epoch = "2460310.5 JD"
@@ -243,12 +246,41 @@ fn top_limits_and_engine() {
     check(SYSTEM, Fault::UnknownKey, 1, 1, &["--vary"]);
 }
 
+/// Floor 2 may not ask the integrator, so the words are data there; here both lists meet.
+#[test]
+fn every_scheme_and_nothing_else_may_be_named() {
+    let schemes: Vec<&str> = abide::integrate::Scheme::all().iter().map(|scheme| scheme.name).collect();
+    assert_eq!(schemes, SCHEMES);
+    for scheme in ["auto"].into_iter().chain(SCHEMES) {
+        assert_eq!(study(&changed("(2,2)", scheme)).engine.scheme, scheme);
+    }
+    check(&changed("(2,2)", "(10, 6, 4)"), Fault::UnknownWord, 20, 10, &["did you mean \"(10,6,4)\"?"]);
+}
+
+#[test]
+fn coordinates_and_encounters() {
+    let words = [
+        ("auto", CoordinateChoice::Auto),
+        ("heliocentric", CoordinateChoice::Heliocentric),
+        ("jacobi", CoordinateChoice::Jacobi),
+    ];
+    for (word, choice) in words {
+        assert_eq!(study(&changed("heliocentric", word)).engine.coordinates, choice);
+    }
+    assert_eq!(
+        study(&changed("coordinates = \"heliocentric\"\n", "")).engine.coordinates,
+        CoordinateChoice::Auto
+    );
+    check(&changed("heliocentric", "barycentric"), Fault::UnknownWord, 21, 15, &["\"jacobi\""]);
+    assert_eq!(study(&changed("2.5 hill", "resolve")).limits.encounter, Encounter::Resolve);
+    assert_eq!(study(&changed("2.5 hill", "off")).limits.encounter, Encounter::Off);
+    check(&changed("2.5 hill", "resolved"), Fault::Malformed, 18, 14, &["\"resolve\""]);
+}
+
 #[test]
 fn later_work_is_refused_as_such() {
     let not_yet = |text: String, line, column| check(&text, Fault::NotYet, line, column, &["this version"]);
-    not_yet(changed("\"(2,2)\"", "\"(8,4)\""), 20, 10);
-    not_yet(changed("\"heliocentric\"", "\"jacobi\""), 21, 15);
-    not_yet(changed("\"2.5 hill\"", "\"resolve\""), 18, 13);
+    not_yet(changed("\"(2,2)\"", "\"(6,2)\""), 20, 10);
     not_yet(changed("\"extent\"]", "\"frequency_drift\"]"), 4, 21);
     not_yet(format!("{STUDY}[samples]\nfile = \"p.csv\"\n"), 24, 2);
 }

@@ -3,11 +3,12 @@
 use std::f64::consts::TAU;
 use std::path::PathBuf;
 
+use abide::assess::{Plan, StepWhy};
 use abide::coords::configure;
-use abide::survey::{Grid, Made, Source, cell_count, cell_system, cell_values};
+use abide::survey::{Grid, Made, Source, cell_count, cell_system, cell_values, plan_of};
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Frame, Key, Limits, Measure, Measured, Quantity,
-    Spacing, Span, Stated, Step, Study, System, Target,
+    Spacing, Span, Stated, Study, System, Target,
 };
 use abide::units::{DEGREE, GM_EARTH, GM_SUN};
 use abide::verdict::{LostHow, Verdict};
@@ -31,7 +32,9 @@ fn system(frame: Frame) -> System {
             ),
             body("c", &[(Key::Mass, 2000.0 * GM_EARTH), (Key::SemiMajorAxis, 0.2), (Key::MeanAnomaly, 3.0)]),
         ],
+        companion: None,
         convention: Convention { elements: frame, ..Convention::default() },
+        physics: Default::default(),
     }
 }
 
@@ -64,7 +67,7 @@ fn study(axes: Vec<Axis>) -> Study {
         measure: vec![Measure::Megno],
         axes,
         limits: Limits { escape_au: None, encounter: Encounter::Off, stop_when_chaotic: false },
-        engine: Engine { scheme: "auto".to_string(), step: Step::Auto, energy_error: 1e-7 },
+        engine: Engine { energy_error: 1e-7, ..Engine::default() },
     }
 }
 
@@ -222,4 +225,39 @@ fn an_impossible_nominal_system_is_an_error() {
     assert!(error.is_input());
     let cause = std::error::Error::source(&error).unwrap().to_string();
     assert!(cause.contains("planet b is inside the star"), "{cause}");
+}
+
+/// Largest error and number of the short runs that a plan rests on.
+fn trial(plan: &Plan) -> (f64, usize) {
+    let StepWhy::Pericentre { trial: Some(trial), .. } = plan.step_why else { panic!("{plan:?}") };
+    trial
+}
+
+#[test]
+fn the_plan_of_a_study_holds_in_its_corners() {
+    let system = system(Frame::Astrocentric);
+    let nominal = configure(&system).unwrap();
+    let eccentricity = |to| axis("c.eccentricity", C, Key::Eccentricity, Quantity::Value, [0.0, to], 7);
+    let wide =
+        study(vec![eccentricity(0.4), axis("b.e", B, Key::Eccentricity, Quantity::Value, [0.0, 0.3], 3)]);
+    let plan = plan_of(&wide, &system, &nominal);
+    // The last along the first axis, and so on: 7 × 3 cells.
+    let corners = [0, 6, 14, 20].map(|cell| configure(&moved(&system, &wide, cell)).unwrap());
+    assert_eq!(plan, Plan::for_study(&wide, &nominal, &corners));
+    assert_eq!(trial(&plan).1, 5);
+    // With a semi-major axis of 0.2 au the pericentre of the last cell, 0.002 au, is inside the star: it is left out.
+    let into_the_star = plan_of(&study(vec![eccentricity(0.99)]), &system, &nominal);
+    assert_eq!(trial(&into_the_star).1, 2);
+}
+
+#[test]
+fn a_planet_without_mass_as_stated_has_its_mass_in_the_corners() {
+    let mut system = system(Frame::Astrocentric);
+    system.planets[1].stated.insert(Key::Mass, Measured::exact(0.0, ""));
+    let nominal = configure(&system).unwrap();
+    let heavy = axis("c.mass", C, Key::Mass, Quantity::Value, [0.0, 300.0 * GM_EARTH], 5);
+    let study = study(vec![heavy]);
+    let (error, runs) = trial(&plan_of(&study, &system, &nominal));
+    assert_eq!(runs, 3);
+    assert!(error <= 0.25 * study.engine.energy_error, "{error}");
 }

@@ -1,54 +1,54 @@
 //! One cell on its way: starts, is looked at after every block of steps, ends with an assessment.
 
+mod adaptive;
+mod early;
+mod keep;
+mod limits;
+
 use super::assessment::{Approach, Assessment, Loss};
-use super::plan::{Plan, auto_step_day, innermost_period_day, outermost_period_day};
+use super::physics::{barycentric, forces, star_terms, symplectic_start};
+use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Elements};
-use crate::criteria::mutual_hill_radius_au;
-use crate::integrate::{Advance, Block, State, Tangent, advance, to_map};
+use crate::integrate::forces::Forces;
+use crate::integrate::{Advance, Block, StarTerms, State, Tangent, advance, from_map, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
-use crate::system::Frame;
-use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, is_surely_chaotic, judge};
+use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, judge};
+use limits::{Limits, Pair};
+
+/// The name of the adaptive engine where a scheme is named.
+pub const ADAPTIVE: &str = "adaptive";
 
 /// How often a cell that misses the energy target is done again with a smaller step.
 const MOST_REDONE: u32 = 2;
 
-/// A cell is not ended for its chaos before the slope of its growth has an error.
-const FEWEST_BLOCKS_OF_CHAOS: u64 = 8;
-
-/// Distances at which a configuration ends.
-#[derive(Clone, Debug)]
-struct Limits {
-    star_radius_au: f64,
-    escape_au: f64,
-    /// Per pair (i < j, in order): where it ends, where it is a collision, and its mutual Hill radius, au.
-    pairs: Vec<Pair>,
-}
-
-#[derive(Clone, Copy, Debug)]
-struct Pair {
-    i: usize,
-    j: usize,
-    end_au: f64,
-    contact_au: f64,
-    hill_au: f64,
-}
-
 /// A cell between two blocks.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub(super) struct Cell {
+    /// As the symplectic scheme starts it.
     start: State,
+    /// As stated, for the adaptive engine.
+    stated: State,
+    terms: StarTerms,
+    forces: Forces,
     limits: Limits,
     outer_period_day: f64,
     metric_day: f64,
     step_day: f64,
     blocks: u64,
     blocks_done: u64,
+    /// Steps of the block in which the cell ended.
+    part_steps: u64,
     redone: u32,
     conserved: ConservedWatch,
     extent: ExtentWatch,
     growth: GrowthRecord,
     mean_megno: Option<f64>,
     approach: Option<Approach>,
+    /// The adaptive engine does everything.
+    adaptive: bool,
+    /// Blocks that the adaptive engine did, and its largest relative energy error over one of them.
+    passages: u64,
+    passage_error: f64,
 }
 
 /// What a look at a cell says.
@@ -63,23 +63,31 @@ pub(super) enum Next {
 impl Cell {
     /// Prepares a configuration; or its assessment at once when it cannot even start.
     pub fn new(configuration: &Configuration, plan: &Plan) -> Result<Cell, Box<Assessment>> {
-        let start = barycentric(configuration);
+        let start = symplectic_start(configuration);
+        let terms = star_terms(configuration);
         let limits = Limits::new(configuration, plan);
-        let step_most = plan.step_day.unwrap_or_else(|| auto_step_day(configuration));
+        let step_most = plan.step_for(configuration);
         let mut cell = Cell {
-            conserved: ConservedWatch::new(&start),
+            conserved: ConservedWatch::new(&start, &terms),
             extent: ExtentWatch::new(configuration.planets.len()),
             growth: GrowthRecord::new(0.0),
             outer_period_day: outermost_period_day(configuration),
             metric_day: innermost_period_day(configuration) / std::f64::consts::TAU,
             start,
+            stated: barycentric(configuration),
+            terms,
+            forces: forces(configuration),
             limits,
             step_day: step_most,
             blocks: 0,
             blocks_done: 0,
+            part_steps: 0,
             redone: 0,
             mean_megno: None,
             approach: None,
+            adaptive: plan.adaptive,
+            passages: 0,
+            passage_error: 0.0,
         };
         if let Some(loss) = cell.lost_at_start() {
             return Err(Box::new(cell.assessment(plan, Some(loss))));
@@ -95,7 +103,11 @@ impl Cell {
         self.blocks = blocks as u64;
         self.step_day = plan.span_day / (blocks * per_block);
         self.blocks_done = 0;
-        self.conserved = ConservedWatch::new(&self.start);
+        self.part_steps = 0;
+        let start = if self.adaptive { &self.stated } else { &self.start };
+        self.conserved = ConservedWatch::new(start, &self.terms);
+        self.passages = 0;
+        self.passage_error = 0.0;
         self.extent = ExtentWatch::new(self.start.gm.len());
         self.growth = GrowthRecord::new(self.step_day * per_block);
         self.mean_megno = None;
@@ -104,22 +116,21 @@ impl Cell {
 
     /// Puts the cell into a lane of `block`, in the map's variables.
     pub fn enter(&self, block: &mut Block, lane: usize, plan: &Plan) {
-        let mut alone = Block::in_coordinates(plan.coordinates, 1, self.start.gm.len());
-        alone.start(0, &self.start, &generic_tangent(&self.start), self.step_day, self.metric_day);
+        let mut alone = self.alone(plan);
+        let start = if self.adaptive { &self.stated } else { &self.start };
+        alone.start(0, start, &generic_tangent(start), self.step_day, self.metric_day);
+        alone.set_star_terms(0, &self.terms);
         to_map(&mut alone, plan.splitting());
         alone.copy_lane(0, block, lane);
     }
 
+    /// A block of one lane of the plan's kind.
+    fn alone(&self, plan: &Plan) -> Block {
+        Block::with_massless(plan.coordinates, 1, self.start.gm.len(), plan.massless)
+    }
+
     pub fn time_day(&self, plan: &Plan) -> f64 {
         plan.span_day * (self.blocks_done as f64 / self.blocks as f64)
-    }
-
-    pub fn share_done(&self) -> f64 {
-        self.blocks_done as f64 / self.blocks as f64
-    }
-
-    pub fn last_energy_error(&self) -> f64 {
-        self.conserved.last_energy
     }
 
     /// Looks at the cell after one more block. `before` and `after` are the block in the map's variables, `corrected`
@@ -132,30 +143,46 @@ impl Cell {
         corrected: &Block,
         lane: usize,
     ) -> Next {
-        if self.has_ended(after, lane) {
+        if self.adaptive {
+            return self.pass(plan, before, after, lane);
+        }
+        if self.must_leave(after, lane) {
+            if plan.resolve {
+                return self.pass(plan, before, after, lane);
+            }
             let loss = self.find_loss(plan, before, lane);
             let error = self.conserved.worst_energy;
-            if error > plan.energy_error && self.redone < MOST_REDONE {
+            if error > plan.energy_error {
                 return self.again(error, plan);
             }
             return Next::End(Box::new(self.assessment(plan, Some(loss))));
         }
-        self.blocks_done += 1;
-        let state = corrected.state(lane);
-        let moment = Moment { time_day: self.time_day(plan), state: &state };
-        self.conserved.see(&moment);
-        let error = self.conserved.worst_energy;
-        if error > plan.energy_error {
-            if self.redone < MOST_REDONE {
-                return self.again(error, plan);
-            }
-            return Next::End(Box::new(self.assessment(plan, None)));
-        }
-        if plan.extent {
-            self.extent.see(&moment);
-        }
         self.note_approach(after, lane);
-        if let Some(planet) = self.falls_into_star(&moment) {
+        self.note_block(plan, after, corrected, lane, lane)
+    }
+
+    /// Takes down what a block that was not cut short has shown; `corrected` holds the true state in lane `from`.
+    fn note_block(
+        &mut self,
+        plan: &Plan,
+        after: &mut Block,
+        corrected: &Block,
+        from: usize,
+        lane: usize,
+    ) -> Next {
+        self.blocks_done += 1;
+        let state = corrected.state(from);
+        let moment = Moment { time_day: self.time_day(plan), state: &state };
+        self.conserved.see(&moment, &self.terms);
+        let error = self.energy_error_seen();
+        if error > plan.energy_error {
+            return self.again(error, plan);
+        }
+        let orbits = moment.astrocentric();
+        if plan.extent {
+            self.extent.see(&orbits);
+        }
+        if let Some(planet) = self.falls_into_star(&orbits) {
             let loss = Loss { time_day: moment.time_day, planet, other: None, how: LostHow::Star };
             return Next::End(Box::new(self.assessment(plan, Some(loss))));
         }
@@ -164,9 +191,7 @@ impl Cell {
             self.growth.see(growth.log);
             self.mean_megno = (growth.samples > 1).then_some(growth.mean_y);
             after.rescale(lane);
-            let seen = self.blocks_done >= FEWEST_BLOCKS_OF_CHAOS;
-            if plan.stop_when_chaotic && seen && is_surely_chaotic(self.share_done(), growth.mean_y, growth.y)
-            {
+            if self.ends_for_chaos(plan, &growth) {
                 return Next::End(Box::new(self.assessment(plan, None)));
             }
         }
@@ -176,8 +201,25 @@ impl Cell {
         Next::GoOn
     }
 
+    /// Largest relative energy error. The adaptive engine's own account is taken where the potentials do not say all.
+    fn energy_error_seen(&self) -> f64 {
+        if self.adaptive && self.terms.relativity != 0.0 {
+            return self.passage_error;
+        }
+        self.conserved.worst_energy.max(self.passage_error)
+    }
+
+    /// What to do about an energy error above the target: smaller steps twice, then the adaptive engine, then give up.
+    ///
     /// The error of a corrected leapfrog falls with the square of the step; aim at a quarter of the target.
     fn again(&mut self, error: f64, plan: &Plan) -> Next {
+        if self.adaptive {
+            return Next::End(Box::new(self.assessment(plan, None)));
+        }
+        if self.redone == MOST_REDONE {
+            self.redone += 1;
+            return self.all_adaptive(plan);
+        }
         let factor = (0.25 * plan.energy_error / error).sqrt().clamp(0.125, 0.5);
         self.redone += 1;
         self.set_step(self.step_day * factor, plan);
@@ -196,7 +238,7 @@ impl Cell {
                 return at(planet, None, LostHow::Star);
             }
         }
-        if let Some(planet) = self.falls_into_star(&moment) {
+        if let Some(planet) = self.falls_into_star(&moment.astrocentric()) {
             return at(planet, None, LostHow::Star);
         }
         self.limits.pairs.iter().find_map(|pair| {
@@ -217,12 +259,16 @@ impl Cell {
     }
 
     /// A bound planet whose pericentre lies inside the star will reach it within one orbit.
-    fn falls_into_star(&self, moment: &Moment<'_>) -> Option<usize> {
+    fn falls_into_star(&self, orbits: &[Elements]) -> Option<usize> {
+        if !self.limits.orbits_tell {
+            return None;
+        }
         let inside = |o: &Elements| o.pericentre_au() < self.limits.star_radius_au;
-        moment.astrocentric().iter().position(inside)
+        orbits.iter().position(inside)
     }
 
-    fn has_ended(&self, block: &Block, lane: usize) -> bool {
+    /// Whether the symplectic scheme has gone where it must not, or where the configuration ends.
+    fn must_leave(&self, block: &Block, lane: usize) -> bool {
         let stars = (0..self.start.gm.len()).any(|k| {
             let (near, far) = block.star_distances_au(k, lane);
             // Asked this way round, so that what is not a number has ended too.
@@ -230,7 +276,7 @@ impl Cell {
         });
         let met = |pair: &Pair| {
             block.nearest_pair_au(pair.i, pair.j, lane).is_nan()
-                || block.nearest_pair_au(pair.i, pair.j, lane) < pair.end_au
+                || block.nearest_pair_au(pair.i, pair.j, lane) < pair.leave_au
         };
         stars || self.limits.pairs.iter().any(met)
     }
@@ -239,17 +285,30 @@ impl Cell {
     ///
     /// A shorter run of the same steps has the same bits, so the end is found by halving.
     fn find_loss(&mut self, plan: &Plan, before: &Block, lane: usize) -> Loss {
+        let fresh = self.alone(plan);
         let run = |steps: usize| {
-            let mut alone = Block::in_coordinates(plan.coordinates, 1, self.start.gm.len());
+            let mut alone = fresh.clone();
             before.copy_lane(lane, &mut alone, 0);
-            advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: false });
+            advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: plan.megno });
             alone
         };
         let (mut alive, mut ended) = (0, plan.block_steps);
         while ended - alive > 1 {
             let middle = (alive + ended) / 2;
-            if self.has_ended(&run(middle), 0) { ended = middle } else { alive = middle }
+            if self.must_leave(&run(middle), 0) { ended = middle } else { alive = middle }
         }
+        if self.blocks_done == 0 {
+            // Nothing was seen yet, but a verdict needs its energy error: look just before the end, out of reach of
+            // the corrector's kicks (three steps), which would feel the meeting itself.
+            let steps = alive.saturating_sub(4);
+            let mut last = run(steps);
+            from_map(&mut last, plan.splitting());
+            let state = last.state(0);
+            let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
+            self.conserved.see(&moment, &self.terms);
+            self.extent.see(&moment.astrocentric());
+        }
+        self.part_steps = ended as u64;
         let at_end = run(ended);
         let time_day = self.time_day(plan) + ended as f64 * self.step_day;
         self.note_approach(&at_end, 0);
@@ -279,13 +338,17 @@ impl Cell {
             let au = block.nearest_pair_au(pair.i, pair.j, lane);
             Approach { au, hill: au / pair.hill_au, pair: (pair.i, pair.j) }
         };
-        self.approach = self.limits.pairs.iter().map(nearest).min_by(|a, b| a.hill.total_cmp(&b.hill));
+        let now = self.limits.pairs.iter().map(nearest).min_by(|a, b| a.hill.total_cmp(&b.hill));
+        self.approach = match (self.approach, now) {
+            (Some(old), Some(new)) if old.hill <= new.hill => Some(old),
+            (old, new) => new.or(old),
+        };
     }
 
     fn assessment(&self, plan: &Plan, loss: Option<Loss>) -> Assessment {
         let end_time_day = loss.map_or(self.time_day_or_zero(plan), |l| l.time_day);
-        let seen = self.blocks_done > 0;
-        let energy_error = (seen || self.conserved.worst_energy > 0.0).then_some(self.conserved.worst_energy);
+        let seen = self.blocks_done + self.part_steps > 0;
+        let energy_error = seen.then_some(self.energy_error_seen());
         let evidence = Evidence {
             lost: loss.is_some(),
             energy_error,
@@ -306,73 +369,15 @@ impl Cell {
             smallest_approach: self.approach,
             energy_error,
             angular_momentum_error: energy_error.map(|_| self.conserved.worst_momentum),
-            scheme: plan.scheme,
+            scheme: if self.adaptive { ADAPTIVE } else { plan.scheme },
             step_day: self.step_day,
-            steps: self.blocks_done * plan.block_steps as u64,
+            steps: self.blocks_done * plan.block_steps as u64 + self.part_steps,
             redone: self.redone,
         }
     }
 
     fn time_day_or_zero(&self, plan: &Plan) -> f64 {
         if self.blocks == 0 { 0.0 } else { self.time_day(plan) }
-    }
-
-    pub fn blocks(&self) -> u64 {
-        self.blocks
-    }
-
-    pub fn blocks_done(&self) -> u64 {
-        self.blocks_done
-    }
-}
-
-impl Pair {
-    fn how(&self, distance_au: f64) -> LostHow {
-        if distance_au < self.contact_au { LostHow::Collision } else { LostHow::Encounter }
-    }
-}
-
-impl Limits {
-    fn new(configuration: &Configuration, plan: &Plan) -> Limits {
-        let planets = &configuration.planets;
-        let orbits = configuration.elements_in(Frame::Astrocentric);
-        let mut pairs = Vec::new();
-        for i in 0..planets.len() {
-            for j in i + 1..planets.len() {
-                let axes = [orbits[i].semi_major_axis_au, orbits[j].semi_major_axis_au];
-                let hill_au =
-                    mutual_hill_radius_au(configuration.star_gm, [planets[i].gm, planets[j].gm], axes);
-                let contact_au = planets[i].radius_au + planets[j].radius_au;
-                let end_au = plan.encounter_hill.map_or(contact_au, |hill| contact_au.max(hill * hill_au));
-                pairs.push(Pair { i, j, end_au, contact_au, hill_au });
-            }
-        }
-        Limits {
-            star_radius_au: configuration.star_radius_au,
-            escape_au: plan.escape_limit_au(configuration),
-            pairs,
-        }
-    }
-}
-
-/// Heliocentric positions with barycentric velocities.
-pub(super) fn barycentric(configuration: &Configuration) -> State {
-    let total = configuration.star_gm + configuration.planets.iter().map(|p| p.gm).sum::<f64>();
-    let mut star = [0.0; 3];
-    for planet in &configuration.planets {
-        for k in 0..3 {
-            star[k] -= planet.gm * planet.velocity_au_day[k] / total;
-        }
-    }
-    State {
-        star_gm: configuration.star_gm,
-        gm: configuration.planets.iter().map(|p| p.gm).collect(),
-        pos: configuration.planets.iter().map(|p| p.position_au).collect(),
-        vel: configuration
-            .planets
-            .iter()
-            .map(|p| [0, 1, 2].map(|k| p.velocity_au_day[k] + star[k]))
-            .collect(),
     }
 }
 

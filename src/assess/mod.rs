@@ -2,14 +2,19 @@
 
 mod assessment;
 mod batch;
+mod calibrate;
 mod cell;
 mod one;
+mod physics;
 mod plan;
+mod series;
 
 pub use assessment::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{BatchWork, assess, run_batch};
-pub use one::{Row, follow};
+pub use cell::ADAPTIVE;
+pub use one::{FollowProgress, Follower, follow, plan_for_rows};
 pub use plan::{
-    FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day, innermost_period_day,
-    outermost_period_day,
+    CoordinatesWhy, FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day,
+    innermost_period_day, outermost_period_day,
 };
+pub use series::Row;

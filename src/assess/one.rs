@@ -1,28 +1,18 @@
-//! One configuration followed with its series.
+//! One configuration followed with its series; it can be put down at any time and taken up later.
 
 use super::batch::one_block;
 use super::cell::{Cell, Next};
-use super::{Assessment, Plan};
-use crate::coords::{Configuration, Elements};
-use crate::integrate::Block;
-use crate::observe::Moment;
+use super::series::Rows;
+use super::{Assessment, Plan, Row};
+use crate::coords::Configuration;
+use crate::integrate::{Block, SAMPLE_EVERY};
+use crate::num::Kept;
 
-/// The motion at one time.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Row {
-    pub time_day: f64,
-    /// Astrocentric osculating elements per planet.
-    pub elements: Vec<Elements>,
-    /// |E − E₀|/|E₀| at this time.
-    pub energy_error: f64,
-    /// Y and its time average; absent before the second sample or when not measured.
-    pub megno: Option<f64>,
-    pub mean_megno: Option<f64>,
-    /// ln(|δ|/|δ₀|)/t, per day.
-    pub lyapunov_per_day: Option<f64>,
-}
+/// Steps of a block in units of [`SAMPLE_EVERY`]; no multiples of 5, so that blocks of a step of 1/20 of a period are no
+/// whole number of orbits. The last is what a plan has by itself.
+const BLOCK_SAMPLES: [usize; 18] = [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127];
 
-/// Follows one configuration and keeps at most `rows` rows, evenly spaced.
+/// Follows one configuration and keeps at most `rows` rows (2 at least), evenly spaced, the first at the start.
 ///
 /// `progress` is told the share done (it falls back when the cell is done again with a smaller step) and answers
 /// whether to go on; at `false` the answer is `None`. The assessment has the bits of [`super::assess`] under the
@@ -33,62 +23,158 @@ pub fn follow(
     rows: usize,
     mut progress: impl FnMut(f64) -> bool,
 ) -> Option<(Assessment, Vec<Row>)> {
-    let mut cell = match Cell::new(configuration, plan) {
-        Ok(cell) => cell,
-        Err(assessment) => return Some((*assessment, Vec::new())),
-    };
-    let mut block = Block::in_coordinates(plan.coordinates, 1, configuration.planets.len());
-    cell.enter(&mut block, 0, plan);
-    let mut table = Table::new(&cell, rows);
-    loop {
-        let before = block.clone();
-        let corrected = one_block(&mut block, plan);
-        let next = cell.look(plan, &before, &mut block, &corrected, 0);
-        match next {
-            Next::Again => {
-                cell.enter(&mut block, 0, plan);
-                table = Table::new(&cell, rows);
-            }
-            Next::GoOn => table.see(&cell, plan, &block, &corrected),
-            Next::End(assessment) => {
-                if assessment.loss.is_none() {
-                    table.see(&cell, plan, &block, &corrected);
-                }
-                return Some((*assessment, table.rows));
-            }
-        }
-        if !progress(cell.share_done()) {
+    let mut follower = Follower::new(configuration, plan, rows);
+    while follower.assessment().is_none() {
+        follower.one_block();
+        if follower.assessment().is_none() && !progress(follower.progress().share) {
             return None;
         }
     }
+    follower.finish()
 }
 
-/// Rows evenly spaced over the blocks.
-struct Table {
-    stride: u64,
-    rows: Vec<Row>,
+/// The plan with blocks short enough for so many rows over this configuration's span, and no shorter.
+///
+/// Rows are taken at the ends of blocks; a block as long as a survey's would leave a short span few rows.
+#[must_use]
+pub fn plan_for_rows(plan: &Plan, configuration: &Configuration, rows: usize) -> Plan {
+    let step = plan.step_for(configuration);
+    let samples_per_row = plan.span_day / step / SAMPLE_EVERY as f64 / rows.max(2).saturating_sub(1) as f64;
+    let wanted = BLOCK_SAMPLES.into_iter().find(|samples| *samples as f64 >= samples_per_row);
+    let samples = wanted.unwrap_or(BLOCK_SAMPLES[BLOCK_SAMPLES.len() - 1]);
+    Plan { block_steps: plan.block_steps.min(samples * SAMPLE_EVERY), ..plan.clone() }
 }
 
-impl Table {
-    fn new(cell: &Cell, rows: usize) -> Table {
-        Table { stride: cell.blocks().div_ceil(rows.max(1) as u64), rows: Vec::new() }
+/// How far a configuration has been followed.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct FollowProgress {
+    pub share: f64,
+    pub time_day: f64,
+    pub step_day: f64,
+    /// Largest relative energy error so far.
+    pub energy_error: f64,
+    pub mean_megno: Option<f64>,
+    /// How many times it began again with a smaller step.
+    pub redone: u32,
+}
+
+/// A configuration on its way.
+#[derive(Debug)]
+pub struct Follower {
+    plan: Plan,
+    rows: Rows,
+    /// Absent when the configuration could not even start.
+    on_its_way: Option<OnItsWay>,
+    assessment: Option<Assessment>,
+}
+
+#[derive(Clone, Debug)]
+struct OnItsWay {
+    cell: Cell,
+    block: Block,
+}
+
+impl Follower {
+    pub fn new(configuration: &Configuration, plan: &Plan, rows: usize) -> Follower {
+        let plan = plan.clone();
+        match Cell::new(configuration, &plan) {
+            Ok(cell) => {
+                let mut block =
+                    Block::with_massless(plan.coordinates, 1, configuration.planets.len(), plan.massless);
+                cell.enter(&mut block, 0, &plan);
+                let rows = Rows::new(cell.start(), rows);
+                Follower { plan, rows, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
+            }
+            Err(assessment) => {
+                let rows = Rows::new(&super::physics::barycentric(configuration), rows);
+                Follower { plan, rows, on_its_way: None, assessment: Some(*assessment) }
+            }
+        }
     }
 
-    fn see(&mut self, cell: &Cell, plan: &Plan, block: &Block, corrected: &Block) {
-        if !cell.blocks_done().is_multiple_of(self.stride) && cell.blocks_done() != cell.blocks() {
-            return;
+    /// Given once the configuration has come to its end.
+    pub fn assessment(&self) -> Option<&Assessment> {
+        self.assessment.as_ref()
+    }
+
+    /// Follows the configuration by one block of steps; nothing is left to do once it has ended.
+    pub fn one_block(&mut self) {
+        let (None, Some(now)) = (&self.assessment, &mut self.on_its_way) else { return };
+        // What is put down after the end is the moment before it: taken up, it ends again in the same way.
+        let before = now.clone();
+        let corrected = one_block(&mut now.block, &self.plan);
+        match now.cell.look(&self.plan, &before.block, &mut now.block, &corrected, 0) {
+            Next::Again => {
+                now.cell.enter(&mut now.block, 0, &self.plan);
+                self.rows = self.rows.again(now.cell.start());
+            }
+            Next::GoOn => self.rows.see(&now.cell, &self.plan, &now.block, &corrected),
+            Next::End(assessment) => {
+                self.rows.close();
+                if assessment.loss.is_none() {
+                    self.rows.see(&now.cell, &self.plan, &now.block, &corrected);
+                }
+                *now = before;
+                self.assessment = Some(*assessment);
+            }
         }
-        let state = corrected.state(0);
-        let time_day = cell.time_day(plan);
-        let growth = block.growth(0);
-        let measured = plan.megno && growth.samples > 1;
-        self.rows.push(Row {
-            time_day,
-            elements: Moment { time_day, state: &state }.astrocentric(),
-            energy_error: cell.last_energy_error(),
-            megno: measured.then_some(growth.y),
-            mean_megno: measured.then_some(growth.mean_y),
-            lyapunov_per_day: measured.then_some(growth.log / time_day),
-        });
+    }
+
+    pub fn progress(&self) -> FollowProgress {
+        let Some(OnItsWay { cell, .. }) = &self.on_its_way else {
+            let (share, time_day, step_day) = (1.0, 0.0, f64::NAN);
+            return FollowProgress {
+                share,
+                time_day,
+                step_day,
+                energy_error: 0.0,
+                mean_megno: None,
+                redone: 0,
+            };
+        };
+        FollowProgress {
+            share: cell.share_done(),
+            time_day: cell.time_day(&self.plan),
+            step_day: cell.step_day(),
+            energy_error: cell.worst_energy_error(),
+            mean_megno: cell.mean_megno(),
+            redone: cell.redone(),
+        }
+    }
+
+    /// Assessment and rows; none before the end.
+    pub fn finish(self) -> Option<(Assessment, Vec<Row>)> {
+        Some((self.assessment?, self.rows.finish()))
+    }
+
+    /// Everything that does not follow from configuration, plan and number of rows, to the last bit.
+    pub fn keep(&self) -> Kept {
+        let mut kept = Kept::default();
+        if let Some(OnItsWay { cell, block }) = &self.on_its_way {
+            cell.keep(&mut kept);
+            block.keep(&mut kept);
+            self.rows.keep(&mut kept);
+        }
+        kept
+    }
+
+    /// Takes up what [`Follower::keep`] put down under the same configuration, plan and number of rows.
+    ///
+    /// None when it does not fit them.
+    pub fn restored(
+        configuration: &Configuration,
+        plan: &Plan,
+        rows: usize,
+        kept: &Kept,
+    ) -> Option<Follower> {
+        let mut follower = Follower::new(configuration, plan, rows);
+        let mut reader = kept.reader();
+        if let Some(OnItsWay { cell, block }) = &mut follower.on_its_way {
+            cell.restore(&mut reader)?;
+            block.restore(&mut reader)?;
+            follower.rows = follower.rows.again(cell.start());
+            follower.rows.restore(&mut reader)?;
+        }
+        reader.is_empty().then_some(follower)
     }
 }

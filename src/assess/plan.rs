@@ -2,10 +2,12 @@
 
 use std::fmt;
 
-use crate::coords::Configuration;
+use super::calibrate::calibrate;
+use super::physics::{has_companion, massless};
+use crate::coords::{BodyKind, Configuration};
 use crate::integrate::{Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
-use crate::system::{Encounter, Engine, Frame, Limits, Measure, Span, Step, Study};
+use crate::system::{CoordinateChoice, Encounter, Engine, Frame, Group, Limits, Measure, Span, Step, Study};
 
 /// Steps in the shortest pericentre passage time scale when the step is chosen for the user.
 ///
@@ -25,20 +27,68 @@ const ESCAPE_APOCENTRES: f64 = 20.0;
 /// Why the step is what it is (a value, so that it can be tested, stored and printed).
 #[derive(Clone, Debug, PartialEq)]
 pub enum StepWhy {
-    /// So many steps in the shortest pericentre passage time scale of each cell's own orbits.
-    Pericentre { steps_per_passage: f64 },
+    /// So many steps in the shortest pericentre passage time scale of each cell's own orbits; with the largest energy
+    /// error of the short runs that settled it and how many configurations they followed.
+    Pericentre { steps_per_passage: f64, trial: Option<(f64, usize)> },
     /// The study asked for it; how many steps it makes per passage in the stated configuration.
     Asked { steps_per_passage: f64 },
+}
+
+/// Why the coordinates are what they are.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum CoordinatesWhy {
+    Asked,
+    /// A second star makes a hierarchy.
+    Companion,
+    /// A planet heavier than this share of the star.
+    Heavy,
+    /// Every planet is much lighter than the star, where heliocentric coordinates are as exact and cheaper.
+    Light,
+}
+
+/// Above this share of the star's mass the star's own motion (the jump) is no small part of B.
+const HEAVY: f64 = 0.03;
+
+impl fmt::Display for CoordinatesWhy {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            CoordinatesWhy::Asked => f.write_str("as asked"),
+            CoordinatesWhy::Companion => f.write_str("a second star makes a hierarchy"),
+            CoordinatesWhy::Heavy => write!(f, "a planet has more than {HEAVY} of the star's mass"),
+            CoordinatesWhy::Light => f.write_str("the planets are light, and these are the cheaper"),
+        }
+    }
+}
+
+fn coordinates(choice: CoordinateChoice, nominal: &Configuration) -> (Coordinates, CoordinatesWhy) {
+    let heaviest = nominal.planets.iter().map(|p| p.gm).fold(0.0, f64::max);
+    match choice {
+        CoordinateChoice::Heliocentric => (Coordinates::Heliocentric, CoordinatesWhy::Asked),
+        CoordinateChoice::Jacobi => (Coordinates::Jacobi, CoordinatesWhy::Asked),
+        CoordinateChoice::Auto if has_companion(nominal) => (Coordinates::Jacobi, CoordinatesWhy::Companion),
+        CoordinateChoice::Auto if heaviest > HEAVY * nominal.star_gm => {
+            (Coordinates::Jacobi, CoordinatesWhy::Heavy)
+        }
+        CoordinateChoice::Auto => (Coordinates::Heliocentric, CoordinatesWhy::Light),
+    }
 }
 
 impl fmt::Display for StepWhy {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            StepWhy::Pericentre { steps_per_passage } => {
+            StepWhy::Pericentre { steps_per_passage, trial } => {
                 write!(
                     f,
                     "{steps_per_passage:.0} steps in the shortest pericentre passage of each configuration"
-                )
+                )?;
+                if let Some((error, configurations)) = trial {
+                    let s = if *configurations == 1 { "" } else { "s" };
+                    write!(
+                        f,
+                        "; short runs of {configurations} configuration{s} err by at most {error:.1e} then"
+                    )?;
+                }
+                Ok(())
             }
             StepWhy::Asked { steps_per_passage } => {
                 write!(f, "as asked; {steps_per_passage:.1} steps in the shortest pericentre passage")?;
@@ -61,6 +111,7 @@ pub struct Plan {
     /// "(2,2)" with corrector.
     pub scheme: &'static str,
     pub coordinates: Coordinates,
+    pub coordinates_why: CoordinatesWhy,
     pub energy_error: f64,
     pub escape_au: Option<f64>,
     /// Stop below this many mutual Hill radii; absent: go through.
@@ -69,22 +120,41 @@ pub struct Plan {
     pub megno: bool,
     /// A cell ends as chaotic once nothing that follows could make it regular; what would be lost later is not seen.
     pub stop_when_chaotic: bool,
+    /// Go through encounters with the adaptive engine.
+    pub resolve: bool,
+    /// Do everything with the adaptive engine.
+    pub adaptive: bool,
+    /// So many planets are massless in every cell.
+    pub massless: usize,
     /// Steps between two looks at a cell, a multiple of [`SAMPLE_EVERY`]. A cell's steps are a whole number of blocks.
     pub block_steps: usize,
 }
 
 impl Plan {
-    /// The plan of a study whose stated system is `nominal`.
-    pub fn for_study(study: &Study, nominal: &Configuration) -> Plan {
+    /// The plan of a study whose stated system is `nominal` and whose most demanding cells are among `corners`.
+    pub fn for_study(study: &Study, nominal: &Configuration, corners: &[Configuration]) -> Plan {
         let wants = |measure| study.measure.contains(&measure);
-        let mut plan = Plan::new(study.span, &study.limits, &study.engine, nominal);
+        let mut plan = Plan::with_corners(study.span, &study.limits, &study.engine, nominal, corners);
         plan.extent = wants(Measure::Extent);
         plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
+        if study.axes.iter().any(|axis| axis.target.key.group() == Group::Mass) {
+            plan.massless = 0;
+        }
         plan
     }
 
-    /// A plan that measures everything.
+    /// A plan for one configuration, that measures everything.
     pub fn new(span: Span, limits: &Limits, engine: &Engine, nominal: &Configuration) -> Plan {
+        Plan::with_corners(span, limits, engine, nominal, &[])
+    }
+
+    fn with_corners(
+        span: Span,
+        limits: &Limits,
+        engine: &Engine,
+        nominal: &Configuration,
+        corners: &[Configuration],
+    ) -> Plan {
         let auto = auto_step_day(nominal);
         let period = innermost_period_day(nominal);
         let span_day = match span {
@@ -97,28 +167,53 @@ impl Plan {
             Step::PerOrbit(steps) => Some(period / steps),
         };
         let step_why = match step_day {
-            None => StepWhy::Pericentre { steps_per_passage: STEPS_PER_PASSAGE },
+            None => StepWhy::Pericentre { steps_per_passage: STEPS_PER_PASSAGE, trial: None },
             Some(step) => StepWhy::Asked { steps_per_passage: STEPS_PER_PASSAGE * auto / step },
         };
         let scheme = Scheme::named(&engine.scheme).unwrap_or(Scheme::leapfrog()).name;
         let encounter_hill = match limits.encounter {
             Encounter::Stop { hill } => Some(hill),
-            Encounter::Off => None,
+            Encounter::Off | Encounter::Resolve => None,
         };
-        Plan {
+        let (coordinates, coordinates_why) = coordinates(engine.coordinates, nominal);
+        let plan = Plan {
             span_day,
             step_day,
             step_why,
             scheme,
-            coordinates: Coordinates::Heliocentric,
+            coordinates,
+            coordinates_why,
+            resolve: limits.encounter == Encounter::Resolve,
+            adaptive: false,
+            massless: corners.iter().map(massless).fold(massless(nominal), usize::min),
             energy_error: engine.energy_error,
             escape_au: limits.escape_au,
             encounter_hill,
             extent: true,
             megno: true,
             stop_when_chaotic: limits.stop_when_chaotic,
-            block_steps: block_steps(span_day / step_day.unwrap_or(auto)),
+            block_steps: Plan::block_for(span_day / step_day.unwrap_or(auto)),
+        };
+        let steps = span_day / step_day.unwrap_or(auto);
+        calibrate(plan, steps, Scheme::named(&engine.scheme).is_none(), nominal, corners)
+    }
+
+    /// Largest step for this configuration, day.
+    pub(super) fn step_for(&self, configuration: &Configuration) -> f64 {
+        match (self.step_day, &self.step_why) {
+            (Some(step), _) => step,
+            (None, StepWhy::Pericentre { steps_per_passage, .. }) => {
+                auto_step_day(configuration) * STEPS_PER_PASSAGE / steps_per_passage
+            }
+            (None, StepWhy::Asked { .. }) => auto_step_day(configuration),
         }
+    }
+
+    /// Steps between two looks for that many steps in all: fewer when the span is short, so that it is still looked at
+    /// often enough.
+    pub(super) fn block_for(steps: f64) -> usize {
+        let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, BLOCK_STEPS as f64);
+        (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
     }
 
     /// The scheme itself.
@@ -135,35 +230,39 @@ impl Plan {
     }
 }
 
-/// Fewer steps per block when the span is short, so that it is still looked at often enough.
-fn block_steps(steps: f64) -> usize {
-    let most = BLOCK_STEPS as f64;
-    let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, most);
-    (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
-}
-
 /// The step that the plan gives a configuration when none is asked: 1/20 of the shortest pericentre
-/// passage time scale of its planets, day. Not a number when no planet is bound.
+/// passage time scale of its bodies, day. Not a number when none is bound.
 pub fn auto_step_day(configuration: &Configuration) -> f64 {
-    let orbits = configuration.elements_in(Frame::Astrocentric);
-    let passages =
-        configuration.planets.iter().zip(&orbits).filter(|(_, o)| o.eccentricity < 1.0).map(|(p, o)| {
-            pericentre_passage_day(o.semi_major_axis_au, o.eccentricity, configuration.star_gm + p.gm)
-        });
+    let frame = telling_frame(configuration);
+    let orbits = configuration.elements_in(frame);
+    let periods = configuration.periods_of(frame, &orbits);
+    let passages = orbits.iter().zip(periods).filter_map(|(orbit, period)| {
+        // A mass parameter of which only the period is known: G M = a³ (2π/P)².
+        let gm = orbit.semi_major_axis_au.powi(3) * (std::f64::consts::TAU / period?).powi(2);
+        Some(pericentre_passage_day(orbit.semi_major_axis_au, orbit.eccentricity, gm))
+    });
     passages.fold(f64::NAN, f64::min) / STEPS_PER_PASSAGE
 }
 
-/// Shortest period of the configuration, day, astrocentric.
+/// Shortest period of the planets, day.
 pub fn innermost_period_day(configuration: &Configuration) -> f64 {
     periods_day(configuration).fold(f64::NAN, f64::min)
 }
 
-/// Longest period of the configuration, day, astrocentric.
+/// Longest period of the planets, day.
 pub fn outermost_period_day(configuration: &Configuration) -> f64 {
     periods_day(configuration).fold(f64::NAN, f64::max)
 }
 
+/// About the star; about everything inside where a second star may be inside.
+fn telling_frame(configuration: &Configuration) -> Frame {
+    if has_companion(configuration) { Frame::Jacobi } else { Frame::Astrocentric }
+}
+
 fn periods_day(configuration: &Configuration) -> impl Iterator<Item = f64> {
-    let orbits = configuration.elements_in(Frame::Astrocentric);
-    configuration.periods_of(Frame::Astrocentric, &orbits).into_iter().flatten()
+    let frame = telling_frame(configuration);
+    let orbits = configuration.elements_in(frame);
+    let periods = configuration.periods_of(frame, &orbits);
+    let planets: Vec<bool> = configuration.planets.iter().map(|p| p.kind == BodyKind::Planet).collect();
+    periods.into_iter().zip(planets).filter(|(_, planet)| *planet).filter_map(|(period, _)| period)
 }

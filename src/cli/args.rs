@@ -38,7 +38,7 @@ pub struct FollowArgs {
     /// System file (TOML)
     pub system: PathBuf,
     /// How long: "1e5 orbits" of the innermost planet, or a time such as "2 Myr"
-    #[arg(long, default_value = "1e4 orbits")]
+    #[arg(long, default_value = "1e4 orbits", allow_hyphen_values = true)]
     pub span: String,
     /// Folder for series.ecsv and series.png (default: reports/runs/NAME)
     #[arg(long, value_name = "DIR")]
@@ -46,9 +46,27 @@ pub struct FollowArgs {
     /// How many rows the series has at most
     #[arg(long, default_value_t = 2000)]
     pub rows: usize,
-    /// Step, e.g. "0.5 d" (default: auto)
+    /// Step: "auto", a time such as "0.5 d", or "30 per orbit" of the innermost planet
+    #[arg(long, default_value = "auto", allow_hyphen_values = true)]
+    pub step: String,
+    /// Splitting: "auto", or a generalised order such as "(2,2)" or "(10,6,4)"
+    #[arg(long, default_value = "auto")]
+    pub scheme: String,
+    /// Largest relative energy error; what misses it is done again with a smaller step, then untrusted
+    #[arg(long, value_name = "NUMBER", default_value = "1e-6", allow_hyphen_values = true)]
+    pub energy_error: String,
+    /// A planet this far from the star has escaped, e.g. "100 au" (default: 20 times the largest apocentre)
+    #[arg(long, value_name = "DISTANCE", allow_hyphen_values = true)]
+    pub escape: Option<String>,
+    /// Planets this close to each other end the run: mutual Hill radii, or "off" (then only collisions do)
+    #[arg(long, value_name = "DISTANCE", default_value = "1 hill", allow_hyphen_values = true)]
+    pub encounter: String,
+    /// Time between two checkpoints; writing them never takes more than a twentieth of the time
+    #[arg(long, value_name = "TIME", default_value = "10 s", allow_hyphen_values = true)]
+    pub checkpoint: String,
+    /// Drop what the folder holds of a former command and begin again
     #[arg(long)]
-    pub step: Option<String>,
+    pub anew: bool,
     /// Print nothing but errors
     #[arg(long)]
     pub quiet: bool,

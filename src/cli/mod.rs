@@ -3,6 +3,7 @@
 pub mod args;
 mod command;
 mod error;
+mod manners;
 mod outputs;
 mod progress;
 mod vary;

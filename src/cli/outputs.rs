@@ -42,7 +42,7 @@ impl Finished<'_> {
         if some && !study.measure.contains(&Measure::Lyapunov) {
             study.measure.push(Measure::Lyapunov);
         }
-        let planets: Vec<String> = self.system.planets.iter().map(|planet| planet.name.clone()).collect();
+        let planets: Vec<String> = self.system.orbiting().map(|body| body.name.clone()).collect();
         let text = |records: &[Record]| {
             let table = report::cells_table(&study, &planets, self.plan, records).to_ecsv();
             table.map_err(CliError::working)

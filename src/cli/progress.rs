@@ -150,7 +150,8 @@ fn shares(tally: &Tally) -> String {
     found.iter().map(word).collect::<Vec<_>>().join(", ")
 }
 
-fn ending_words(left: Option<Duration>) -> String {
+/// When something ends that has so long to go.
+pub(super) fn ending_words(left: Option<Duration>) -> String {
     let Some((left, end)) = left.and_then(|l| Some((l, SystemTime::now().checked_add(l)?))) else {
         return String::new();
     };

@@ -1,58 +1,99 @@
 //! What can go wrong between statements and states.
 
+use crate::system::COMPANION;
+
+/// "planet b", or "the companion".
+fn told(name: &str) -> String {
+    if name == COMPANION { format!("the {COMPANION}") } else { format!("planet {name}") }
+}
+
+/// "planets b and c", or "planet b and the companion".
+fn both(first: &str, second: &str) -> String {
+    if [first, second].contains(&COMPANION) {
+        format!("{} and {}", told(first), told(second))
+    } else {
+        format!("planets {first} and {second}")
+    }
+}
+
 /// Why a description is not a configuration, or not one that can start.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CoordsError {
     #[error(
-        "planets {first} and {second} are at one place: {gap_au:.3e} au apart, but their radii add up to \
-         {radii_au:.3e} au; change the phase or the size of one of them"
+        "{} are at one place: {gap_au:.3e} au apart, but their radii add up to \
+         {radii_au:.3e} au; change the phase or the size of one of them",
+        both(first, second)
     )]
     Coincident { first: String, second: String, gap_au: f64, radii_au: f64 },
     #[error(
-        "planet {planet} is inside the star: its pericentre is {pericentre_au:.4e} au, but the star's radius is \
-         {star_radius_au:.4e} au; lower the eccentricity or enlarge the orbit"
+        "{} is inside the star: its pericentre is {pericentre_au:.4e} au, but the star's radius is \
+         {star_radius_au:.4e} au; lower the eccentricity or enlarge the orbit",
+        told(planet)
     )]
     InsideStar { planet: String, pericentre_au: f64, star_radius_au: f64 },
     #[error("the star's mass is not stated; give [star] mass, such as \"0.9 Msun\"")]
     StarMassMissing,
     #[error("the star's mass comes out as {found:e} au^3/day^2 (G × mass); it must be positive")]
     StarMass { found: f64 },
-    #[error("planet {planet} states no mass; give one of mass, minimum_mass, mass_ratio, rv_semi_amplitude")]
+    #[error("{} states no mass; give one of mass, minimum_mass, mass_ratio, rv_semi_amplitude", told(planet))]
     MassMissing { planet: String },
     #[error(
-        "planet {planet}: the mass comes out as {found:e} au^3/day^2 (G × mass) from {key}; it must be zero or \
-         positive and finite"
+        "{}: the mass comes out as {found:e} au^3/day^2 (G × mass) from {key}; it must be zero or \
+         positive and finite",
+        told(planet)
     )]
     Mass { planet: String, key: &'static str, found: f64 },
     #[error(
-        "planet {planet}: no mass fits {key} together with the size of the orbit (after {rounds} rounds the \
-         masses still change by {change:e}); state mass or minimum_mass instead"
+        "{}: no mass fits {key} together with the size of the orbit (after {rounds} rounds the \
+         masses still change by {change:e}); state mass or minimum_mass instead",
+        told(planet)
     )]
     MassNotSolvable { planet: String, key: &'static str, rounds: usize, change: f64 },
     #[error(
-        "planet {planet}: {key} says nothing about the mass of an orbit seen face-on (inclination \
-         {inclination_deg} deg, sin i = 0); state mass, or an inclination between 0 and 180 deg"
+        "{}: {key} says nothing about the mass of an orbit seen face-on (inclination \
+         {inclination_deg} deg, sin i = 0); state mass, or an inclination between 0 and 180 deg",
+        told(planet)
     )]
     FaceOn { planet: String, key: &'static str, inclination_deg: f64 },
-    #[error("planet {planet} states no size of its orbit; give period or semi_major_axis")]
+    #[error("{} states no size of its orbit; give period or semi_major_axis", told(planet))]
     SizeMissing { planet: String },
-    #[error("planet {planet}: {key} is {found:e} (inner units); it must be positive and finite")]
+    #[error("{}: {key} is {found:e} (inner units); it must be positive and finite", told(planet))]
     Size { planet: String, key: &'static str, found: f64 },
     #[error(
-        "planet {planet}: the eccentricity comes out as {found}, but a bound orbit needs 0 <= e < 1; if it is a \
-         percentage, divide by 100"
+        "{}: the eccentricity comes out as {found}, but a bound orbit needs 0 <= e < 1; if it is a \
+         percentage, divide by 100",
+        told(planet)
     )]
     NotBound { planet: String, found: f64 },
     #[error(
-        "planet {planet} states {given} without {missing}; the two are one vector, give both or use \
-         eccentricity and argument_of_pericentre"
+        "{} states {given} without {missing}; the two are one vector, give both or use \
+         eccentricity and argument_of_pericentre",
+        told(planet)
     )]
     HalfVector { planet: String, given: &'static str, missing: &'static str },
-    #[error("planet {planet}: {key} is {found}; it must be a finite number")]
+    #[error("{}: {key} is {found}; it must be a finite number", told(planet))]
     NotFinite { planet: String, key: &'static str, found: f64 },
     #[error(
-        "planet {planet} states {key}, but the system has no epoch to count it from; give epoch, such as \
-         \"2460310.5 JD\", or use mean_anomaly"
+        "{} states {key}, but the system has no epoch to count it from; give epoch, such as \
+         \"2460310.5 JD\", or use mean_anomaly",
+        told(planet)
     )]
     NoEpoch { planet: String, key: &'static str },
+    #[error(
+        "{} is outside the companion's orbit and circles both stars, where astrocentric elements have no meaning; \
+         state Jacobi elements and write elements = \"jacobi\"",
+        told(planet)
+    )]
+    CirclesPair { planet: String },
+    #[error(
+        "barycentric elements have no meaning with a companion; state Jacobi elements and write \
+         elements = \"jacobi\""
+    )]
+    BarycentricCompanion,
+    #[error("{} states {given} without {missing}; give both or none", told(planet))]
+    HalfSatellite { planet: String, given: &'static str, missing: &'static str },
+    #[error(
+        "no order of the orbits by period fits their stated sizes and masses; state every size as a period"
+    )]
+    OrderNotSolvable,
 }

@@ -5,18 +5,18 @@ use std::f64::consts::TAU;
 use super::CoordsError;
 use super::convert::mass_parameters;
 use super::outline::Outline;
-use crate::system::{Body, Key, System};
+use crate::system::{Body, Frame, Key, System};
 
 /// Rounds of the search for masses; its error shrinks at least by 2/3 in each.
 const ROUNDS: usize = 200;
 /// Below this sine of the inclination an orbit counts as seen face-on.
 const FACE_ON: f64 = 1e-12;
 
-/// What the statements say about masses and sizes, all in the order of the file.
+/// What the statements say about masses and sizes, all in the order of [`System::orbiting`].
 pub(super) struct Solved {
     /// G × mass, au³ day⁻².
     pub gm: Vec<f64>,
-    /// Planets by period; counts for Jacobi elements only.
+    /// Bodies by period; counts for Jacobi elements only.
     pub order: Vec<usize>,
     /// Of each planet's orbit in the frame of the file, au³ day⁻².
     pub mass_parameter: Vec<f64>,
@@ -61,55 +61,78 @@ impl Size {
 /// A mass from K needs the mass parameter of its orbit, which holds the masses; they are put into each
 /// other until they stay. The map contracts by at most 2/3, so it settles on the only solution.
 /// Errors: the variants of [`CoordsError`] about masses and sizes.
-pub(super) fn solve(system: &System, outlines: &[Outline]) -> Result<Solved, CoordsError> {
+pub(super) fn solve(system: &System, bodies: &[&Body], outlines: &[Outline]) -> Result<Solved, CoordsError> {
     let star_gm = star_gm(system)?;
-    let sizes = system.planets.iter().map(Size::read).collect::<Result<Vec<_>, _>>()?;
-    let statements = system
-        .planets
+    let frame = system.convention.elements;
+    let sizes = bodies.iter().map(|body| Size::read(body)).collect::<Result<Vec<_>, _>>()?;
+    let statements = bodies
         .iter()
         .zip(outlines)
         .map(|(body, outline)| mass_statement(body, outline))
         .collect::<Result<Vec<_>, _>>()?;
-    let order = order_by_period(star_gm, &sizes);
-    let frame = system.convention.elements;
-    let mut gm = vec![0.0; sizes.len()];
-    let mut last_change = f64::INFINITY;
-    let mut rounds = 0;
-    loop {
+    let mut order = order_by_period(&sizes, &vec![star_gm; sizes.len()]);
+    // A stated semi-major axis has its period only when the masses inside it are known, a companion's above all.
+    for _ in 0..=sizes.len() {
+        let wish =
+            Wish { frame, star_gm, order: &order, bodies, outlines, sizes: &sizes, statements: &statements };
+        let gm = wish.masses()?;
         let mass_parameter = mass_parameters(frame, &order, star_gm, &gm);
-        let next: Vec<f64> = (0..gm.len())
-            .map(|planet| {
-                let outline = &outlines[planet];
-                mass(statements[planet], star_gm, mass_parameter[planet], outline, sizes[planet])
-            })
-            .collect();
-        for (body, (statement, gm)) in system.planets.iter().zip(statements.iter().zip(&next)) {
-            if !(*gm >= 0.0 && gm.is_finite()) {
-                return Err(CoordsError::Mass {
-                    planet: body.name.clone(),
-                    key: statement.0.word(),
-                    found: *gm,
-                });
-            }
+        let next = order_by_period(&sizes, &mass_parameter);
+        if next == order || frame != Frame::Jacobi {
+            let axes = sizes.iter().zip(&mass_parameter);
+            let semi_major_axis_au = axes.map(|(size, mu)| size.semi_major_axis_au(*mu)).collect();
+            return Ok(Solved { gm, order, mass_parameter, semi_major_axis_au });
         }
-        let (worst, change) = largest_change(&gm, &next);
-        gm = next;
-        rounds += 1;
-        // Settled: the rest of the change is rounding, and no longer shrinks.
-        if change == 0.0 || (change < 16.0 * f64::EPSILON && change >= last_change) {
-            break;
-        }
-        if rounds == ROUNDS {
-            let planet = system.planets[worst].name.clone();
-            let key = statements[worst].0.word();
-            return Err(CoordsError::MassNotSolvable { planet, key, rounds, change });
-        }
-        last_change = change;
+        order = next;
     }
-    let mass_parameter = mass_parameters(frame, &order, star_gm, &gm);
-    let semi_major_axis_au =
-        sizes.iter().zip(&mass_parameter).map(|(size, mu)| size.semi_major_axis_au(*mu)).collect();
-    Ok(Solved { gm, order, mass_parameter, semi_major_axis_au })
+    Err(CoordsError::OrderNotSolvable)
+}
+
+/// All that the masses depend on.
+struct Wish<'a> {
+    frame: Frame,
+    star_gm: f64,
+    order: &'a [usize],
+    bodies: &'a [&'a Body],
+    outlines: &'a [Outline],
+    sizes: &'a [Size],
+    statements: &'a [(Key, f64)],
+}
+
+impl Wish<'_> {
+    /// The masses that fulfil the statements, the bodies taken in this order.
+    fn masses(&self) -> Result<Vec<f64>, CoordsError> {
+        let mut gm = vec![0.0; self.sizes.len()];
+        let mut last_change = f64::INFINITY;
+        for _ in 0..ROUNDS {
+            let next = self.round(&gm)?;
+            let change = largest_change(&gm, &next).1;
+            // Settled: the rest of the change is rounding, and no longer shrinks.
+            if change == 0.0 || (change < 16.0 * f64::EPSILON && change >= last_change) {
+                return Ok(next);
+            }
+            last_change = change;
+            gm = next;
+        }
+        let (worst, change) = largest_change(&gm, &self.round(&gm)?);
+        let planet = self.bodies[worst].name.clone();
+        let key = self.statements[worst].0.word();
+        Err(CoordsError::MassNotSolvable { planet, key, rounds: ROUNDS, change })
+    }
+
+    fn round(&self, gm: &[f64]) -> Result<Vec<f64>, CoordsError> {
+        let parameters = mass_parameters(self.frame, self.order, self.star_gm, gm);
+        let body = |index: usize| {
+            let (statement, outline) = (self.statements[index], &self.outlines[index]);
+            let found = mass(statement, self.star_gm, parameters[index], outline, self.sizes[index]);
+            if found >= 0.0 && found.is_finite() {
+                return Ok(found);
+            }
+            let planet = self.bodies[index].name.clone();
+            Err(CoordsError::Mass { planet, key: statement.0.word(), found })
+        };
+        (0..gm.len()).map(body).collect()
+    }
 }
 
 pub(super) fn star_gm(system: &System) -> Result<f64, CoordsError> {
@@ -117,11 +140,11 @@ pub(super) fn star_gm(system: &System) -> Result<f64, CoordsError> {
     if found > 0.0 && found.is_finite() { Ok(found) } else { Err(CoordsError::StarMass { found }) }
 }
 
-/// The order in which Jacobi elements take the planets: by period, ties as in the file. A stated
-/// semi-major axis counts here with the period it would have around the star alone.
-fn order_by_period(star_gm: f64, sizes: &[Size]) -> Vec<usize> {
+/// The order in which Jacobi elements take the bodies: by period, ties as in the file.
+fn order_by_period(sizes: &[Size], mass_parameter: &[f64]) -> Vec<usize> {
+    let period_day = |body: usize| sizes[body].period_day(mass_parameter[body]);
     let mut order: Vec<usize> = (0..sizes.len()).collect();
-    order.sort_by(|&one, &other| sizes[one].period_day(star_gm).total_cmp(&sizes[other].period_day(star_gm)));
+    order.sort_by(|&one, &other| period_day(one).total_cmp(&period_day(other)));
     order
 }
 

@@ -2,6 +2,7 @@
 
 use std::f64::consts::{PI, TAU};
 
+use super::configure::Cast;
 use super::convert::elements_in_order;
 use super::masses::{self, semi_amplitude_per_gm};
 use super::outline::{Outline, owner_turn};
@@ -20,8 +21,10 @@ use crate::system::{Body, Convention, Key, Measured, System};
 ///
 /// Errors: those of [`super::configure()`], when the system itself states no configuration.
 pub fn restate(system: &System, configuration: &Configuration) -> Result<System, CoordsError> {
-    let outlines = system.planets.iter().map(Outline::read).collect::<Result<Vec<_>, _>>()?;
-    let order = masses::solve(system, &outlines)?.order;
+    let cast = Cast::of(system);
+    let bodies = cast.bodies(system);
+    let outlines = bodies.iter().map(|body| Outline::read(body)).collect::<Result<Vec<_>, _>>()?;
+    let order = masses::solve(system, &bodies, &outlines)?.order;
     let frame = system.convention.elements;
     let gm: Vec<f64> = configuration.planets.iter().map(|planet| planet.gm).collect();
     let pos: Vec<[f64; 3]> = configuration.planets.iter().map(|planet| planet.position_au).collect();
@@ -34,7 +37,7 @@ pub fn restate(system: &System, configuration: &Configuration) -> Result<System,
         Key::Radius => configuration.star_radius_au,
         _ => stated,
     });
-    for (index, body) in answer.planets.iter_mut().enumerate() {
+    for (index, body) in answer.planets.iter_mut().chain(&mut answer.companion).enumerate() {
         let found = Found::new(&elements[index], &outlines[index], &system.convention);
         let source = Source {
             gm: gm[index],
@@ -120,7 +123,8 @@ impl Found {
                 source.gm * semi_amplitude_per_gm(source.mass_parameter, mean_motion, outline)
             }
             Key::Radius => source.radius_au,
-            Key::Age => stated,
+            // A satellite leaves one number, which two keys state.
+            Key::Age | Key::SatelliteMassRatio | Key::SatelliteSemiMajorAxis => stated,
             Key::Period => TAU / mean_motion,
             Key::SemiMajorAxis => self.semi_major_axis_au,
             Key::Eccentricity => e,

@@ -2,24 +2,24 @@
 
 use nalgebra::Vector3;
 
-use super::{Configuration, CoordsError};
-use crate::system::Frame;
+use super::{BodyKind, Configuration, CoordsError, Planet};
+use crate::system::COMPANION;
 
-/// Finds bodies that touch before anything moved: a planet whose astrocentric pericentre is below the star's
-/// radius, or two planets closer than the sum of their radii.
+/// Finds bodies that touch before anything moved: a body whose pericentre (of its orbit about what it circles) is
+/// below the star's radius, or two bodies closer than the sum of their radii.
 ///
 /// Kept apart from [`super::configure()`], so that a cell of a survey can be judged lost where a single
 /// configuration is refused. Errors: `InsideStar`, `Coincident`.
 pub fn check_start(configuration: &Configuration) -> Result<(), CoordsError> {
     let planets = &configuration.planets;
-    for (planet, elements) in planets.iter().zip(configuration.elements_in(Frame::Astrocentric)) {
-        let pericentre_au = elements.pericentre_au();
+    for (planet, orbit) in planets.iter().zip(configuration.orbits()) {
+        let pericentre_au = orbit.elements.pericentre_au();
         let distance_au = Vector3::from(planet.position_au).norm();
         // Asked this way round, so that what is not a number counts as inside.
         let outside = pericentre_au.min(distance_au) > configuration.star_radius_au;
         if !outside {
             return Err(CoordsError::InsideStar {
-                planet: planet.name.clone(),
+                planet: called(planet),
                 pericentre_au,
                 star_radius_au: configuration.star_radius_au,
             });
@@ -31,8 +31,8 @@ pub fn check_start(configuration: &Configuration) -> Result<(), CoordsError> {
             let radii_au = first.radius_au + second.radius_au;
             if gap_au <= radii_au {
                 return Err(CoordsError::Coincident {
-                    first: first.name.clone(),
-                    second: second.name.clone(),
+                    first: called(first),
+                    second: called(second),
                     gap_au,
                     radii_au,
                 });
@@ -40,4 +40,12 @@ pub fn check_start(configuration: &Configuration) -> Result<(), CoordsError> {
         }
     }
     Ok(())
+}
+
+/// The name, or the word by which messages call a companion.
+fn called(body: &Planet) -> String {
+    match body.kind {
+        BodyKind::Planet => body.name.clone(),
+        BodyKind::Companion => COMPANION.to_string(),
+    }
 }

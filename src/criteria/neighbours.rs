@@ -1,7 +1,7 @@
 //! Pairs of planets next to each other.
 
 use super::{HillBalance, NearResonance, hill_balance, mutual_hill_radius_au, near_resonances};
-use crate::coords::{Configuration, Elements};
+use crate::coords::{BodyKind, Configuration, Elements, Orbit};
 use crate::system::Frame;
 
 /// Mutual inclination up to which two orbits count as coplanar for [`two_planet_balance`], rad (5°).
@@ -16,39 +16,43 @@ pub struct Neighbours {
     /// Outer over inner, of the elements in the frame of the configuration.
     pub period_ratio: f64,
     pub mutual_hill_radius_au: f64,
-    /// (a₂ − a₁) over the mutual Hill radius, astrocentric; infinite for massless planets.
+    /// (a₂ − a₁) over the mutual Hill radius, about what both circle ([`Configuration::own_frame`]); infinite for massless planets.
     pub spacing_hill: f64,
     /// Angle between the orbits, rad.
     pub mutual_inclination: f64,
-    /// Whether the inner apocentre reaches the outer pericentre, astrocentric.
+    /// Whether the inner apocentre reaches the outer pericentre, in the same frame.
     pub crossing: bool,
     pub resonances: Vec<NearResonance>,
 }
 
-/// All neighbouring pairs of bound planets, from the inside out.
+/// All neighbouring pairs of bound planets, from the inside out. A companion is no neighbour, and planets with its
+/// orbit between theirs are none either: Hill radii and resonances say nothing about a body as heavy as a star.
 pub fn neighbours(configuration: &Configuration) -> Vec<Neighbours> {
-    let astrocentric = configuration.elements_in(Frame::Astrocentric);
+    let orbits: Vec<Elements> = configuration.orbits().iter().map(|orbit| orbit.elements).collect();
     let periods = configuration.periods_day();
-    let mut bound: Vec<(usize, f64)> = periods
-        .iter()
-        .enumerate()
-        .filter(|(planet, _)| astrocentric[*planet].eccentricity < 1.0)
-        .filter_map(|(planet, period)| period.map(|period| (planet, period)))
+    let mut bound: Vec<(usize, f64)> = configuration
+        .planet_indices()
+        .filter(|planet| orbits[*planet].eccentricity < 1.0)
+        .filter_map(|planet| periods[planet].map(|period| (planet, period)))
         .collect();
     bound.sort_by(|one, other| one.1.total_cmp(&other.1));
-    bound.windows(2).map(|pair| pair_of(configuration, &astrocentric, pair[0], pair[1])).collect()
+    bound
+        .windows(2)
+        .filter(|pair| configuration.circles_pair(pair[0].0) == configuration.circles_pair(pair[1].0))
+        .map(|pair| pair_of(configuration, &orbits, pair[0], pair[1]))
+        .collect()
 }
 
 fn pair_of(
     configuration: &Configuration,
-    astrocentric: &[Elements],
+    all: &[Elements],
     (inner, inner_day): (usize, f64),
     (outer, outer_day): (usize, f64),
 ) -> Neighbours {
     let gm = [inner, outer].map(|planet| configuration.planets[planet].gm);
-    let orbits = [inner, outer].map(|planet| astrocentric[planet]);
+    let orbits = [inner, outer].map(|planet| all[planet]);
     let axes = orbits.map(|orbit| orbit.semi_major_axis_au);
-    let mutual_hill_radius_au = mutual_hill_radius_au(configuration.star_gm, gm, axes);
+    let mutual_hill_radius_au = mutual_hill_radius_au(configuration.central_gm(inner), gm, axes);
     Neighbours {
         inner,
         outer,
@@ -61,6 +65,18 @@ fn pair_of(
     }
 }
 
+/// Mutual Hill radius of two bodies, au, from their orbits about what they circle; none where one is the companion,
+/// whose encounters Hill radii do not measure.
+pub fn encounter_radius_au(configuration: &Configuration, orbits: &[Orbit], pair: [usize; 2]) -> Option<f64> {
+    let bodies = pair.map(|index| &configuration.planets[index]);
+    if bodies.iter().any(|body| body.kind == BodyKind::Companion) {
+        return None;
+    }
+    let central = configuration.central_gm(pair[0]).max(configuration.central_gm(pair[1]));
+    let axes = pair.map(|index| orbits[index].elements.semi_major_axis_au);
+    Some(mutual_hill_radius_au(central, bodies.map(|body| body.gm), axes))
+}
+
 /// Angle between two orbits, rad: half-angle form, exact for small ones.
 ///
 /// sin²(I/2) = sin²((i₁−i₂)/2) + sin i₁ sin i₂ sin²((Ω₁−Ω₂)/2).
@@ -71,7 +87,7 @@ fn mutual_inclination(one: &Elements, other: &Elements) -> f64 {
     2.0 * square.sqrt().min(1.0).asin()
 }
 
-/// Hill balance of a system of exactly two planets whose orbits lie within 5° of each other; none otherwise.
+/// Hill balance of a system of exactly two planets and no companion whose orbits lie within 5° of each other; none otherwise.
 pub fn two_planet_balance(configuration: &Configuration) -> Option<HillBalance> {
     let pairs = neighbours(configuration);
     let [pair] = pairs.as_slice() else { return None };

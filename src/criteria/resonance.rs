@@ -31,11 +31,20 @@ impl NearResonance {
 /// A resonance of order k is named within 5/k percent, q ≤ 12, at most three: those with the smallest distance times
 /// order, since a resonance is the narrower the higher its order. Empty for a ratio that is not above 1.
 pub fn near_resonances(period_ratio: f64) -> Vec<NearResonance> {
+    let mut found = resonances_to_order(period_ratio, HIGHEST_ORDER);
+    found.truncate(MOST);
+    found
+}
+
+/// The resonances up to `highest_order` near a period ratio, all of them, nearest first as in [`near_resonances`].
+///
+/// For a look at the angles themselves, where one of high order costs no more than one of low order.
+pub fn resonances_to_order(period_ratio: f64, highest_order: u32) -> Vec<NearResonance> {
     if !(period_ratio > 1.0 && period_ratio.is_finite()) {
         return Vec::new();
     }
     let rank = |near: &NearResonance| near.offset_percent.abs() * f64::from(near.order());
-    let mut found: Vec<NearResonance> = (1..=HIGHEST_ORDER)
+    let mut found: Vec<NearResonance> = (1..=highest_order)
         .flat_map(|order| (1..=LARGEST_Q).map(move |q| (q + order, q)))
         .filter(|(p, q)| greatest_common_divisor(*p, *q) == 1)
         .map(|(p, q)| NearResonance {
@@ -46,7 +55,6 @@ pub fn near_resonances(period_ratio: f64) -> Vec<NearResonance> {
         .filter(|near| rank(near) <= REACH_PERCENT)
         .collect();
     found.sort_by(|one, other| rank(one).total_cmp(&rank(other)));
-    found.truncate(MOST);
     found
 }
 
@@ -74,6 +82,13 @@ mod tests {
             assert!(near[0].offset_percent.abs() < 1e-13);
         }
         assert!(!names(2.0).contains(&(4, 2)));
+    }
+
+    #[test]
+    fn higher_orders_when_asked() {
+        let eighth = resonances_to_order(11.0 / 3.0, 8);
+        assert_eq!((eighth[0].p, eighth[0].q), (11, 3));
+        assert!(resonances_to_order(11.0 / 3.0, 7).iter().all(|near| near.order() < 8));
     }
 
     #[test]

@@ -32,7 +32,7 @@ impl Column {
     /// The name in the table of cells.
     pub fn name(self, system: &System) -> String {
         let of = |planet: usize, part: &str| {
-            let name = system.planets.get(planet).map_or("?", |p| p.name.as_str());
+            let name = system.orbiting_name(planet).unwrap_or("?");
             format!("{name}.{part}")
         };
         match self {
@@ -102,7 +102,7 @@ impl Column {
     }
 
     pub(crate) fn label(self, system: &System) -> Label {
-        let name = |planet: usize| system.planets.get(planet).map_or("?", |p| p.name.as_str()).to_owned();
+        let name = |planet: usize| system.orbiting_name(planet).unwrap_or("?").to_owned();
         match self {
             Column::Megno => Label::plain("MEGNO ⟨").italic("Y").then("⟩"),
             Column::LyapunovTime => names::with_unit(Label::plain("Lyapunov time"), "yr"),
@@ -195,7 +195,7 @@ pub fn columns(system: &System, records: &[Record]) -> Vec<Column> {
         Column::SmallestApproach,
         Column::SmallestApproachHill,
     ];
-    for planet in 0..system.planets.len() {
+    for planet in 0..system.orbiting().count() {
         all.extend([
             Column::EMax(planet),
             Column::EMin(planet),

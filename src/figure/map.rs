@@ -188,7 +188,7 @@ fn pin_words(input: &MapInput<'_>, panel: &Panel) -> Option<String> {
         let mut others: Vec<usize> = pins.iter().map(|p| p.resonance.other).collect();
         others.sort_unstable();
         others.dedup();
-        let name = |i: &usize| input.system.planets.get(*i).map(|p| p.name.clone());
+        let name = |i: &usize| input.system.orbiting_name(*i).map(str::to_owned);
         let names: Vec<String> = others.iter().filter_map(name).collect();
         (!names.is_empty())
             .then(|| format!("of {} with {}", name(&planet).unwrap_or_default(), names.join(" and ")))

@@ -28,6 +28,8 @@ fn words(key: Key) -> (&'static str, &'static str) {
         Key::TransitTime => ("transit time", "T"),
         Key::Inclination => ("inclination", "i"),
         Key::AscendingNode => ("ascending node", "Ω"),
+        Key::SatelliteMassRatio => ("mass ratio of the satellite", "q"),
+        Key::SatelliteSemiMajorAxis => ("semi-major axis of the satellite", "a"),
     }
 }
 
@@ -77,8 +79,8 @@ fn body_words(body: &BodyRef, system: &System) -> (String, String) {
     match body {
         BodyRef::Star => (" of the star".to_owned(), "⋆".to_owned()),
         BodyRef::All => (" of all planets".to_owned(), String::new()),
-        BodyRef::Planet(index) => {
-            let name = system.planets.get(*index).map_or_else(|| "?".to_owned(), |p| p.name.clone());
+        one @ (BodyRef::Planet(_) | BodyRef::Companion) => {
+            let name = system.body_word(one).to_owned();
             (format!(" of {name}"), name)
         }
     }

@@ -72,8 +72,9 @@ fn turned_into(axis: &Axis, value: f64, turn: f64) -> f64 {
 pub(crate) fn stated(body: &BodyRef, key: Key, system: &System) -> Option<Measured> {
     match body {
         BodyRef::Star => system.star.stated.get(key),
-        BodyRef::Planet(index) => {
-            system.planets.get(*index)?.stated.get(key).or_else(|| derived(*index, key, system))
+        one @ (BodyRef::Planet(_) | BodyRef::Companion) => {
+            let index = system.orbiting_place(one)?;
+            system.orbiting().nth(index)?.stated.get(key).or_else(|| derived(index, key, system))
         }
         BodyRef::All => {
             let first = stated(&BodyRef::Planet(0), key, system)?;
@@ -85,7 +86,7 @@ pub(crate) fn stated(body: &BodyRef, key: Key, system: &System) -> Option<Measur
 }
 
 fn derived(planet: usize, key: Key, system: &System) -> Option<Measured> {
-    let words = &system.planets.get(planet)?.stated;
+    let words = &system.orbiting().nth(planet)?.stated;
     match (key, words.get(Key::Period), words.get(Key::SemiMajorAxis)) {
         (Key::SemiMajorAxis, Some(period), _) => {
             let value = (mass_parameter(system, planet)? * (period.value / TAU).powi(2)).cbrt();

@@ -144,11 +144,21 @@ fn panel(
         y = y.map(|y| Axis { from: -0.04 * high, to: 1.06 * high, ..y });
     }
     let mut marks: Vec<Mark> = level.map(|at| Mark::Level { at }).into_iter().collect();
+    let mut curves = curves;
+    // Fast curves run together into bands; the narrower one goes on top, or it would be hidden.
+    curves.sort_by(|(one, _), (other, _)| spread(other).total_cmp(&spread(one)));
     for (values, colour) in curves {
         let points = time.iter().copied().zip(values).collect();
         marks.push(Mark::Curve(Curve { points, colour }));
     }
     Some(Panel { x: x.clone(), y, marks, top: Vec::new(), right: Vec::new(), height: 0.2 })
+}
+
+/// Largest minus smallest of what is finite.
+fn spread(values: &[f64]) -> f64 {
+    let finite = values.iter().copied().filter(|v| v.is_finite());
+    let (low, high) = finite.fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), v| (l.min(v), h.max(v)));
+    high - low
 }
 
 fn with_short(mut panel: Panel, short: Label) -> Panel {
@@ -180,4 +190,30 @@ fn as_log(mut panel: Panel) -> Panel {
 fn lower_end(mut values: Vec<f64>, low: f64) -> f64 {
     values.sort_by(f64::total_cmp);
     values.get(values.len() / 100).copied().unwrap_or(low)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_narrower_band_lies_on_top() {
+        let planets = [
+            PlanetCurves { name: "b", eccentricity: &[0.1, 0.11, 0.1], semi_major_axis_au: &[1.0; 3] },
+            PlanetCurves { name: "c", eccentricity: &[0.0, 0.3, 0.0], semi_major_axis_au: &[2.0; 3] },
+        ];
+        let input = SeriesInput {
+            title: "",
+            time_day: &[0.0, 1.0, 2.0],
+            planets: &planets,
+            megno_mean: &[],
+            energy_error: &[],
+            caption: &[],
+        };
+        let figure = series(&input).unwrap();
+        let inks: Vec<Rgb> = (figure.panels[0].marks.iter())
+            .filter_map(|mark| if let Mark::Curve(curve) = mark { Some(curve.colour) } else { None })
+            .collect();
+        assert_eq!(inks, [INKS[1], INKS[0]], "c is drawn first");
+    }
 }

@@ -123,7 +123,7 @@ fn path_complaint(error: &PathError, system: &System) -> Complaint {
             .advice(did_you_mean(
                 found,
                 known.iter().map(String::as_str),
-                "use the name of a planet in the system file",
+                "use the name of a body in the system file",
             )),
         PathError::NoKey { found, allowed } => Complaint::new(Fault::UnknownKey, format!("\"{found}\""))
             .allowed(allowed.join(", "))

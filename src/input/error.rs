@@ -29,6 +29,7 @@ pub enum Fault {
     EmptyAxis,
     BadAxis,
     NoUncertainty,
+    Meaning,
     NotYet,
 }
 
@@ -54,12 +55,13 @@ impl Fault {
             Fault::MissingPartner => "half of a pair is missing",
             Fault::Conflict => "two keys answer the same question",
             Fault::BadName => "this name cannot be used",
-            Fault::DuplicateName => "two planets have the same name",
+            Fault::DuplicateName => "two bodies have the same name",
             Fault::DateWithoutEpoch => "a date needs an epoch",
             Fault::BadPath => "this path does not lead to a key",
             Fault::EmptyAxis => "the axis is empty",
             Fault::BadAxis => "the axis cannot be laid out",
             Fault::NoUncertainty => "no uncertainty is stated",
+            Fault::Meaning => "this has no meaning here",
             Fault::NotYet => "this version does not have this",
         }
     }

@@ -8,7 +8,6 @@ use super::source::{Complaint, Source};
 /// When a key is refused.
 enum When {
     Present,
-    True,
     /// The text is one of these.
     Words(&'static [&'static str]),
     /// The list holds this word.
@@ -26,14 +25,7 @@ struct Later {
 
 const TAKE_OUT: &str = "take it out";
 
-const LATER: [Later; 10] = [
-    Later {
-        section: "",
-        key: "companion",
-        when: When::Present,
-        what: "a second star ([companion])",
-        advice: TAKE_OUT,
-    },
+const LATER: [Later; 5] = [
     Later {
         section: "",
         key: "samples",
@@ -56,39 +48,11 @@ const LATER: [Later; 10] = [
         advice: "use \"megno\", \"lyapunov\", \"extent\"",
     },
     Later {
-        section: "physics",
-        key: "relativity",
-        when: When::True,
-        what: "relativity",
-        advice: "write relativity = false, and keep in mind that close-in orbits then precess too slowly",
-    },
-    Later {
-        section: "physics",
-        key: "oblateness",
-        when: When::Present,
-        what: "the oblateness of the star",
-        advice: TAKE_OUT,
-    },
-    Later {
-        section: "limits",
-        key: "encounter",
-        when: When::Words(&["resolve"]),
-        what: "encounter = \"resolve\"",
-        advice: "use a distance such as \"1 hill\" to stop there, or \"off\"",
-    },
-    Later {
         section: "engine",
         key: "scheme",
-        when: When::Words(&["(4,2)", "(6,2)", "(8,2)", "(10,2)", "(8,4)", "(10,4)", "(8,6,4)", "(10,6,4)"]),
+        when: When::Words(&["(6,2)", "(10,2)"]),
         what: "this scheme",
-        advice: "use \"auto\" or \"(2,2)\"",
-    },
-    Later {
-        section: "engine",
-        key: "coordinates",
-        when: When::Words(&["jacobi", "auto"]),
-        what: "a choice of coordinates for the integration",
-        advice: "use \"heliocentric\"; elements may be stated in Jacobi coordinates all the same",
+        advice: "use \"auto\", or a neighbour such as \"(4,2)\" or \"(8,2)\"",
     },
     Later { section: "engine", key: "seed", when: When::Present, what: "random draws", advice: TAKE_OUT },
 ];
@@ -100,7 +64,6 @@ pub(crate) fn refuse(source: &Source, section: &str, table: &RawTable) -> Result
         let is_word = |value: &RawValue, word: &str| matches!(value, RawValue::Text(text) if text == word);
         let at = match (&later.when, &entry.value) {
             (When::Present, _) => Some(entry.key_at.clone()),
-            (When::True, RawValue::Flag(true)) => Some(entry.value_at.clone()),
             (When::Words(words), value) if words.iter().any(|word| is_word(value, word)) => {
                 Some(entry.value_at.clone())
             }

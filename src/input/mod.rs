@@ -5,9 +5,11 @@
 //! once, as an [`InputError`]: where, what was found, what is allowed, what to do.
 
 mod axis;
+mod companion;
 mod error;
 mod later;
 mod nearest;
+mod physics;
 mod plane;
 mod quantity;
 mod raw;
@@ -20,7 +22,7 @@ pub use quantity::Written;
 
 use std::path::{Path, PathBuf};
 
-use crate::system::{Axis, Measured, Spacing, Span, Step, Study, System};
+use crate::system::{Axis, Encounter, Measured, Spacing, Span, Step, Study, System};
 use crate::units::Dimension;
 use axis::{AxisWish, Part};
 use source::{Complaint, Source};
@@ -138,7 +140,7 @@ pub fn is_study(path: impl AsRef<Path>) -> Result<bool, InputError> {
 
 fn kind_of(top: &raw::RawTable) -> Option<FileKind> {
     let has = |keys: &[&str]| keys.iter().any(|key| top.get(key).is_some());
-    if has(&["star", "planet"]) {
+    if has(&["star", "planet", "companion"]) {
         Some(FileKind::System)
     } else if has(&["system", "axis", "span", "samples"]) {
         Some(FileKind::Study)
@@ -155,6 +157,21 @@ pub fn parse_span(text: &str) -> Result<Span, InputError> {
 /// A step such as `auto`, `0.5 d` or `30 per orbit`.
 pub fn parse_step(text: &str) -> Result<Step, InputError> {
     study_file::read_step(text).map_err(|fail| in_words("step", text, fail))
+}
+
+/// A distance from the star such as `100 au`, in au.
+pub fn parse_escape(text: &str) -> Result<f64, InputError> {
+    study_file::read_escape(text).map_err(|fail| in_words("escape", text, fail))
+}
+
+/// Where an encounter ends a configuration, such as `1 hill` or `off`.
+pub fn parse_encounter(text: &str) -> Result<Encounter, InputError> {
+    study_file::read_encounter(text).map_err(|fail| in_words("encounter", text, fail))
+}
+
+/// A relative energy error such as `1e-7`.
+pub fn parse_energy_error(text: &str) -> Result<f64, InputError> {
+    study_file::read_energy_error(text).map_err(|fail| in_words("energy-error", text, fail))
 }
 
 /// A time such as `0.5 d`, in days.

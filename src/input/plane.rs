@@ -2,7 +2,7 @@
 
 use super::error::Fault;
 use super::source::Complaint;
-use crate::system::{Axis, Group, Key, Pair, Quantity, System};
+use crate::system::{Axis, CompanionPlace, Frame, Group, Key, Pair, Physics, Quantity, System};
 
 /// Whether axes hinder each other, and whether every corner of the map can be had: the index of the axis to point
 /// at, and why.
@@ -53,11 +53,26 @@ fn corner_fault(axes: &[Axis], place: impl Fn(usize) -> f64, system: &System) ->
             return Some(error.to_string());
         }
     }
+    if let Some(fault) = companion_fault(&corner) {
+        return Some(fault);
+    }
     corner
-        .planets
-        .iter()
+        .orbiting()
         .find_map(|planet| planet.stated.check_together().err())
         .map(|unsound| unsound.to_string())
+}
+
+/// What the system file may not say about planets that circle a pair of stars (see [`super::companion`]).
+fn companion_fault(corner: &System) -> Option<String> {
+    let circumbinary = corner.companion_place().is_some_and(CompanionPlace::has_circumbinary);
+    if circumbinary && corner.convention.elements != Frame::Jacobi {
+        return Some(
+            "a planet is outside the companion's orbit, which needs elements = \"jacobi\"".to_string(),
+        );
+    }
+    let terms = corner.physics != Physics::default();
+    (circumbinary && terms)
+        .then(|| "a planet is outside the companion's orbit, where [physics] has no meaning".to_string())
 }
 
 /// Whether one of the keys undoes the other.

@@ -11,13 +11,21 @@ use super::plane;
 use super::quantity::{self, Fail};
 use super::raw::{Entry, RawTable, RawValue};
 use super::source::{Complaint, Source};
-use crate::system::{Axis, Encounter, Engine, Limits, Measure, Spacing, Span, Step, Study, System};
+use crate::system::{
+    Axis, CoordinateChoice, Encounter, Engine, Limits, Measure, SCHEMES, Spacing, Span, Step, Study, System,
+};
 use crate::units::{Dimension, Unit};
 
 const TOP_KEYS: [&str; 7] = ["title", "system", "span", "measure", "axis", "limits", "engine"];
 const AXIS_KEYS: [&str; 6] = ["vary", "from", "to", "cells", "spacing", "as"];
 const LIMITS_KEYS: [&str; 3] = ["escape", "encounter", "stop_when_chaotic"];
 const ENGINE_KEYS: [&str; 4] = ["scheme", "coordinates", "step", "energy_error"];
+
+const COORDINATES: [(&str, CoordinateChoice); 3] = [
+    ("auto", CoordinateChoice::Auto),
+    ("heliocentric", CoordinateChoice::Heliocentric),
+    ("jacobi", CoordinateChoice::Jacobi),
+];
 
 /// Cells along an axis that does not say.
 pub(crate) const DEFAULT_CELLS: usize = 100;
@@ -35,7 +43,12 @@ impl Default for Limits {
 
 impl Default for Engine {
     fn default() -> Engine {
-        Engine { scheme: "auto".to_string(), step: Step::Auto, energy_error: DEFAULT_ENERGY_ERROR }
+        Engine {
+            scheme: "auto".to_string(),
+            coordinates: CoordinateChoice::Auto,
+            step: Step::Auto,
+            energy_error: DEFAULT_ENERGY_ERROR,
+        }
     }
 }
 
@@ -219,14 +232,11 @@ fn limits(source: &Source, top: &RawTable) -> Result<Limits, InputError> {
     table.check_keys(source, about, &LIMITS_KEYS)?;
     if let Some(entry) = table.get("escape") {
         let written = entry.exact(source, about)?;
-        let measured = written.measured(Dimension::Length).map_err(|fail| entry.fail(source, about, fail))?;
-        above_zero(measured.value, written.value_at).map_err(|fail| entry.fail(source, about, fail))?;
-        limits.escape_au = Some(measured.value);
+        limits.escape_au = Some(escape_au(&written).map_err(|fail| entry.fail(source, about, fail))?);
     }
     if let Some(entry) = table.get("encounter") {
-        let allowed = "\"off\", or mutual Hill radii as \"1 hill\"";
-        let text = entry.text(source, about, allowed)?;
-        limits.encounter = read_encounter(text, allowed).map_err(|fail| entry.fail(source, about, fail))?;
+        let text = entry.text(source, about, ENCOUNTER_FORMS)?;
+        limits.encounter = read_encounter(text).map_err(|fail| entry.fail(source, about, fail))?;
     }
     if let Some(entry) = table.get("stop_when_chaotic") {
         limits.stop_when_chaotic = entry.flag(source, about)?;
@@ -234,9 +244,25 @@ fn limits(source: &Source, top: &RawTable) -> Result<Limits, InputError> {
     Ok(limits)
 }
 
-fn read_encounter(text: &str, allowed: &str) -> Result<Encounter, Fail> {
-    if text == "off" {
-        return Ok(Encounter::Off);
+/// Reads a distance from the star, au.
+pub(crate) fn read_escape(text: &str) -> Result<f64, Fail> {
+    escape_au(&exact(text)?)
+}
+
+fn escape_au(written: &quantity::Written) -> Result<f64, Fail> {
+    let measured = written.measured(Dimension::Length)?;
+    above_zero(measured.value, written.value_at.clone()).map(|()| measured.value)
+}
+
+const ENCOUNTER_FORMS: &str = "mutual Hill radii as \"1 hill\", \"resolve\" or \"off\"";
+
+/// Reads at which distance an encounter ends a configuration.
+pub(crate) fn read_encounter(text: &str) -> Result<Encounter, Fail> {
+    let allowed = ENCOUNTER_FORMS;
+    match text {
+        "off" => return Ok(Encounter::Off),
+        "resolve" => return Ok(Encounter::Resolve),
+        _ => {}
     }
     let restate = |(range, complaint): Fail| (range, complaint.allowed(allowed));
     let written = exact(text).map_err(restate)?;
@@ -261,11 +287,12 @@ fn engine(source: &Source, top: &RawTable) -> Result<Engine, InputError> {
     later::refuse(source, about, table)?;
     table.check_keys(source, about, &ENGINE_KEYS)?;
     if let Some(entry) = table.get("scheme") {
-        let scheme = entry.choice(source, about, &[("auto", "auto"), ("(2,2)", "(2,2)")])?;
+        let words: Vec<(&str, &str)> = ["auto"].into_iter().chain(SCHEMES).map(|word| (word, word)).collect();
+        let scheme = entry.choice(source, about, &words)?;
         engine.scheme = scheme.to_string();
     }
     if let Some(entry) = table.get("coordinates") {
-        entry.choice(source, about, &[("heliocentric", ())])?;
+        engine.coordinates = entry.choice(source, about, &COORDINATES)?;
     }
     if let Some(entry) = table.get("step") {
         let text = entry.text(source, about, STEP_FORMS)?;
@@ -273,16 +300,23 @@ fn engine(source: &Source, top: &RawTable) -> Result<Engine, InputError> {
     }
     if let Some(entry) = table.get("energy_error") {
         let written = entry.exact(source, about)?;
-        let value =
-            written.measured(Dimension::Number).map_err(|fail| entry.fail(source, about, fail))?.value;
-        if !(value > 0.0 && value < 1.0) {
-            let complaint =
-                Complaint::new(Fault::OutOfRange, value.to_string()).allowed("0 < energy_error < 1");
-            return Err(entry.refuse(source, about, complaint.advice("write, as an example, 1e-6")));
-        }
-        engine.energy_error = value;
+        engine.energy_error = energy_error(&written).map_err(|fail| entry.fail(source, about, fail))?;
     }
     Ok(engine)
+}
+
+/// Reads the relative energy error asked for.
+pub(crate) fn read_energy_error(text: &str) -> Result<f64, Fail> {
+    energy_error(&exact(text)?)
+}
+
+fn energy_error(written: &quantity::Written) -> Result<f64, Fail> {
+    let value = written.measured(Dimension::Number)?.value;
+    if value > 0.0 && value < 1.0 {
+        return Ok(value);
+    }
+    let complaint = Complaint::new(Fault::OutOfRange, value.to_string()).allowed("0 < energy_error < 1");
+    Err((written.value_at.clone(), complaint.advice("write, as an example, 1e-6")))
 }
 
 const STEP_FORMS: &str = "\"auto\", a time as \"0.5 d\", or \"30 per orbit\" (of the innermost planet)";

@@ -1,18 +1,19 @@
 //! The system file: raw entries → a checked [`System`].
 
+use super::companion;
 use super::error::{Fault, InputError};
 use super::later;
-use super::raw::{Entry, RawTable};
+use super::physics;
+use super::raw::{Entry, RawTable, RawValue};
 use super::source::{Complaint, Source};
 use crate::system::{
-    Body, Convention, Frame, Group, Holder, Key, Measured, Pair, Pericentre, Stated, System, Transit,
-    is_planet_name,
+    Body, COMPANION, Convention, Frame, Group, Holder, Key, Measured, Pair, Pericentre, Physics, Stated,
+    System, Transit, Unsound, is_planet_name,
 };
 use crate::units::Dimension;
 
-const TOP_KEYS: [&str; 6] = ["title", "epoch", "star", "convention", "physics", "planet"];
+const TOP_KEYS: [&str; 7] = ["title", "epoch", "star", "convention", "physics", "planet", "companion"];
 const CONVENTION_KEYS: [&str; 3] = ["elements", "pericentre", "transit"];
-const PHYSICS_KEYS: [&str; 1] = ["relativity"];
 
 /// A date farther than this from the epoch was cut short (as "JD − 2 450 000") on one side only, day.
 const FARTHEST_DATE_DAY: f64 = 2e6;
@@ -27,15 +28,14 @@ pub(crate) fn check(source: &Source, top: &RawTable) -> Result<System, InputErro
     };
     let epoch_jd = top.get("epoch").map(|entry| epoch(source, entry)).transpose()?;
     let convention = top.get("convention").map_or(Ok(Convention::default()), |e| convention(source, e))?;
-    if let Some(entry) = top.get("physics") {
-        let table = entry.table(source)?;
-        later::refuse(source, "physics", table)?;
-        table.check_keys(source, "physics", &PHYSICS_KEYS)?;
-        table.get("relativity").map(|entry| entry.flag(source, "physics")).transpose()?;
-    }
     let star = star(source, top)?;
+    let physics =
+        top.get("physics").map_or(Ok(Physics::default()), |e| physics::check(source, e, &star.stated))?;
     let planets = planets(source, top, epoch_jd)?;
-    Ok(System { title, epoch_jd, star, planets, convention })
+    let companion = top.get(COMPANION).map(|entry| companion(source, entry, epoch_jd)).transpose()?;
+    let system = System { title, epoch_jd, star, planets, companion, convention, physics };
+    companion::check(source, top, &system)?;
+    Ok(system)
 }
 
 fn file_stem(name: &str) -> String {
@@ -162,21 +162,43 @@ fn planets(source: &Source, top: &RawTable, epoch_jd: Option<f64>) -> Result<Vec
 fn planet(source: &Source, table: &RawTable, epoch_jd: Option<f64>) -> Result<Body, InputError> {
     let name = planet_name(source, table)?;
     let about = format!("planet {name}");
-    let allowed: Vec<&str> =
-        ["name"].into_iter().chain(Key::stated_by(Holder::Planet).map(Key::word)).collect();
-    table.check_keys(source, &about, &allowed)?;
-    let stated = statements(source, table, &about, Holder::Planet)?;
-    let check = PlanetCheck { source, table, about: &about, stated: &stated };
+    let stated = orbiting(source, table, &about, Holder::Planet, epoch_jd)?;
+    Ok(Body { name, stated })
+}
+
+fn companion(source: &Source, entry: &Entry, epoch_jd: Option<f64>) -> Result<Body, InputError> {
+    if let RawValue::List(_) = entry.value {
+        let complaint = Complaint::new(Fault::WrongType, "a list").about(COMPANION);
+        let complaint = complaint.allowed("one [companion] table");
+        return Err(source.at(entry.key_at.clone(), complaint.advice("write [companion]; one can be had")));
+    }
+    let table = entry.table(source)?;
+    let name = match table.get("name") {
+        Some(entry) => companion::name(source, entry)?,
+        None => COMPANION.to_string(),
+    };
+    let stated = orbiting(source, table, COMPANION, Holder::Companion, epoch_jd)?;
+    Ok(Body { name, stated })
+}
+
+/// The statements about a body that circles, each alone and all together in order.
+fn orbiting(
+    source: &Source,
+    table: &RawTable,
+    about: &str,
+    holder: Holder,
+    epoch_jd: Option<f64>,
+) -> Result<Stated, InputError> {
+    let allowed: Vec<&str> = ["name"].into_iter().chain(Key::stated_by(holder).map(Key::word)).collect();
+    table.check_keys(source, about, &allowed)?;
+    let stated = statements(source, table, about, holder)?;
+    let check = OrbitCheck { source, table, about, stated: &stated };
     check.alternatives()?;
     check.pairs()?;
     check.needed()?;
     check.dates(epoch_jd)?;
-    if let Err(unsound) = stated.check_together() {
-        let complaint = Complaint::new(Fault::OutOfRange, unsound.to_string());
-        let complaint = complaint.allowed("a bound orbit and a finite mass").advice("check these numbers");
-        return Err(check.at_key(unsound.key(), complaint));
-    }
-    Ok(Body { name, stated })
+    stated.check_together().map_err(|unsound| check.unsound(unsound))?;
+    Ok(stated)
 }
 
 fn planet_name(source: &Source, table: &RawTable) -> Result<String, InputError> {
@@ -186,7 +208,7 @@ fn planet_name(source: &Source, table: &RawTable) -> Result<String, InputError> 
             complaint.allowed("name = \"b\"").advice("add the name; paths such as b.period use it");
         return Err(source.at(table.at.clone(), complaint));
     };
-    let allowed = "letters, digits, _ and -; not \"star\" or \"all\"";
+    let allowed = "letters, digits, _ and -; not \"star\", \"companion\" or \"all\"";
     let name = entry.text(source, "planet", allowed)?;
     if is_planet_name(name) {
         return Ok(name.to_string());
@@ -195,15 +217,26 @@ fn planet_name(source: &Source, table: &RawTable) -> Result<String, InputError> 
     Err(entry.refuse(source, "planet", complaint.advice("choose a short name, as \"b\"")))
 }
 
-/// What must hold between the keys of one planet.
-struct PlanetCheck<'a> {
+/// What must hold between the keys of one planet or companion.
+struct OrbitCheck<'a> {
     source: &'a Source<'a>,
     table: &'a RawTable,
     about: &'a str,
     stated: &'a Stated,
 }
 
-impl PlanetCheck<'_> {
+impl OrbitCheck<'_> {
+    fn unsound(&self, unsound: Unsound) -> InputError {
+        if let Unsound::HalfSatellite { absent, .. } = unsound {
+            let complaint = Complaint::new(Fault::MissingPartner, unsound.to_string());
+            let complaint = complaint.allowed("both keys of a satellite, or none");
+            return self.at_key(unsound.key(), complaint.advice(format!("add {}", absent.word())));
+        }
+        let complaint = Complaint::new(Fault::OutOfRange, unsound.to_string());
+        let complaint = complaint.allowed("a bound orbit and a finite mass").advice("check these numbers");
+        self.at_key(unsound.key(), complaint)
+    }
+
     fn at_key(&self, key: Key, complaint: Complaint) -> InputError {
         let at = self.table.get(key.word()).map_or(self.table.at.clone(), |entry| entry.key_at.clone());
         self.source.at(at, complaint.about(self.about))
@@ -266,7 +299,7 @@ impl PlanetCheck<'_> {
             (Group::Mass, "no mass", "add, as an example, mass = \"6.1 Mearth\""),
             (
                 Group::Phase,
-                "no phase: where the planet is on its orbit",
+                "no phase: where the body is on its orbit",
                 "add, as an example, mean_anomaly = \"0 deg\"",
             ),
         ];

@@ -1,9 +1,10 @@
 //! Many steps of a block in one go.
 
-use super::block::{Block, Coordinates, D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, VEL};
+use super::block::{Block, Coordinates, D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, SATELLITE, VEL};
 use super::jacobi::{self, Relative};
-use super::kick::kick;
+use super::kick::{Beside, kick};
 use super::splitting::Scheme;
+use super::star_terms::Terms;
 use crate::kepler::{Body, Midway, drift};
 use crate::lanes::{Job, Real, WIDTH, ln, run_one, run_wide};
 
@@ -38,27 +39,35 @@ impl Job for Advance<'_> {
     #[inline(always)]
     fn run<R: Real>(self) {
         // The commonest counts are compiled as fixed numbers, which lets the compiler keep more in registers.
-        match (self.block.coordinates(), self.block.planets(), self.tangent) {
-            (Coordinates::Heliocentric, 2, true) => fixed::<R, 2, 1>(self),
-            (Coordinates::Heliocentric, 3, true) => fixed::<R, 3, 3>(self),
-            (Coordinates::Heliocentric, _, true) => any_count::<R, true, false>(self),
-            (Coordinates::Heliocentric, _, false) => any_count::<R, false, false>(self),
-            (Coordinates::Jacobi, _, true) => any_count::<R, true, true>(self),
-            (Coordinates::Jacobi, _, false) => any_count::<R, false, true>(self),
+        let plain = self.block.pulling() == self.block.planets() && !self.block.has_star_terms();
+        match (self.block.coordinates(), plain, self.block.planets(), self.tangent) {
+            (Coordinates::Heliocentric, true, 2, true) => fixed::<R, 2, 1>(self),
+            (Coordinates::Heliocentric, true, 3, true) => fixed::<R, 3, 3>(self),
+            (Coordinates::Heliocentric, true, _, true) => any_count::<R, true, false, false>(self),
+            (Coordinates::Heliocentric, true, _, false) => any_count::<R, false, false, false>(self),
+            // The rarer kinds always carry the tangent vector: fewer kernels to compile.
+            (Coordinates::Heliocentric, false, _, _) => any_count::<R, true, false, true>(self),
+            (Coordinates::Jacobi, _, _, _) => any_count::<R, true, true, true>(self),
         }
     }
 }
 
 #[inline(always)]
-fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool>(call: Advance<'_>) {
+fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(call: Advance<'_>) {
     let n = call.block.planets();
     let mut bodies = vec![Body::<R>::still(); n];
     let mut midway = vec![Midway::<R>::blank(); n];
-    let mut pairs = vec![R::splat(0.0); n * n.saturating_sub(1) / 2];
+    let mut pairs = vec![R::splat(0.0); call.block.pairs()];
+    let mut satellites = vec![R::splat(0.0); n];
     let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
-    let rooms =
-        Rooms { bodies: &mut bodies, midway: &mut midway, pairs: &mut pairs, relative: &mut relative };
-    steps::<R, TANGENT, JACOBI>(call, rooms);
+    let rooms = Rooms {
+        bodies: &mut bodies,
+        midway: &mut midway,
+        pairs: &mut pairs,
+        relative: &mut relative,
+        satellites: &mut satellites,
+    };
+    steps::<R, TANGENT, JACOBI, BESIDE>(call, rooms);
 }
 
 #[inline(always)]
@@ -66,8 +75,14 @@ fn fixed<R: Real, const N: usize, const PAIRS: usize>(call: Advance<'_>) {
     let mut bodies = [Body::<R>::still(); N];
     let mut midway = [Midway::<R>::blank(); N];
     let mut pairs = [R::splat(0.0); PAIRS];
-    let rooms = Rooms { bodies: &mut bodies, midway: &mut midway, pairs: &mut pairs, relative: &mut [] };
-    steps::<R, true, false>(call, rooms);
+    let rooms = Rooms {
+        bodies: &mut bodies,
+        midway: &mut midway,
+        pairs: &mut pairs,
+        relative: &mut [],
+        satellites: &mut [],
+    };
+    steps::<R, true, false, false>(call, rooms);
 }
 
 /// Where the kernel keeps its numbers.
@@ -76,13 +91,19 @@ struct Rooms<'a, R: Real> {
     midway: &'a mut [Midway<R>],
     pairs: &'a mut [R],
     relative: &'a mut [Relative<R>],
+    satellites: &'a mut [R],
 }
 
 #[inline(always)]
-fn steps<R: Real, const TANGENT: bool, const JACOBI: bool>(call: Advance<'_>, rooms: Rooms<'_, R>) {
+fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(
+    call: Advance<'_>,
+    rooms: Rooms<'_, R>,
+) {
     let Advance { block, scheme, steps, .. } = call;
-    let Rooms { bodies, midway, pairs, relative } = rooms;
+    let Rooms { bodies, midway, pairs, relative, satellites } = rooms;
     read(block, bodies, pairs);
+    let beside = read_beside(block, satellites);
+    let pulling = if BESIDE { block.pulling() } else { bodies.len() };
     let star_gm = R::load(block.slot(Global::StarGm as usize));
     let h = R::load(block.slot(Global::Step as usize));
     let active = R::splat(0.5).lt(R::load(block.slot(Global::Active as usize)));
@@ -108,9 +129,9 @@ fn steps<R: Real, const TANGENT: bool, const JACOBI: bool>(call: Advance<'_>, ro
         }
         let length = h * R::splat(b[stage]);
         if JACOBI {
-            jacobi::kick::<R, TANGENT>(bodies, relative, pairs, star_gm, length, window);
+            jacobi::kick::<R, TANGENT, BESIDE>(bodies, relative, pairs, star_gm, &beside, length, window);
         } else {
-            kick::<R, TANGENT, true>(bodies, pairs, star_gm, length, window);
+            kick::<R, TANGENT, true, BESIDE>(bodies, pulling, pairs, star_gm, &beside, length, window);
         }
         stage += 1;
         if stage == b.len() {
@@ -193,6 +214,25 @@ impl<R: Real> Sums<R> {
     }
 }
 
+/// One sample of a block of one lane outside the kernel.
+pub(super) fn sample(block: &mut Block) {
+    struct Sample<'a>(&'a mut Block);
+    impl Job for Sample<'_> {
+        type Output = ();
+        #[inline(always)]
+        fn run<R: Real>(self) {
+            let mut bodies = vec![Body::<R>::still(); self.0.planets()];
+            let mut pairs = vec![R::splat(0.0); self.0.pairs()];
+            read(self.0, &mut bodies, &mut pairs);
+            let mut growth = Sums::<R>::read(self.0);
+            growth.sample(&bodies);
+            growth.write(self.0);
+        }
+    }
+    assert_eq!(block.width(), 1, "only a block of one lane is sampled from outside");
+    run_one(Sample(block));
+}
+
 #[inline(always)]
 fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
     for (p, body) in bodies.iter_mut().enumerate() {
@@ -211,6 +251,21 @@ fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
     for (p, pair) in pairs.iter_mut().enumerate() {
         *pair = R::load(block.slot(block.pair_slot(p)));
     }
+}
+
+/// The star's terms; none where `satellites` is empty.
+#[inline(always)]
+fn read_beside<'a, R: Real>(block: &Block, satellites: &'a mut [R]) -> Beside<'a, R> {
+    let get = |global: Global| R::load(block.slot(global as usize));
+    for (p, satellite) in satellites.iter_mut().enumerate() {
+        *satellite = R::load(block.slot(block.planet_slot(p, SATELLITE)));
+    }
+    let terms = Terms {
+        relativity: get(Global::Relativity),
+        oblateness: get(Global::Oblateness),
+        pole: [get(Global::PoleX), get(Global::PoleY), get(Global::PoleZ)],
+    };
+    Beside { acting: block.has_star_terms(), terms, satellites }
 }
 
 /// Writes positions, velocities and the tangent vector back.
@@ -269,9 +324,12 @@ fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
     let n = block.planets();
     let mut bodies = vec![Body::<R>::still(); n];
     let mut midway = vec![Midway::<R>::blank(); n];
-    let mut pairs = vec![R::splat(0.0); n * n.saturating_sub(1) / 2];
+    let mut pairs = vec![R::splat(0.0); block.pairs()];
+    let mut satellites = vec![R::splat(0.0); n];
     let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
     read(block, &mut bodies, &mut pairs);
+    let beside = read_beside(block, &mut satellites);
+    let pulling = block.pulling();
     let star_gm = R::load(block.slot(Global::StarGm as usize));
     let h = R::load(block.slot(Global::Step as usize));
     let active = R::splat(0.5).lt(R::load(block.slot(Global::Active as usize)));
@@ -279,9 +337,17 @@ fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
         drift::<R, false, false>(&mut bodies, &mut midway, h * R::splat(*a), active);
         let length = h * R::splat(*b);
         if JACOBI {
-            jacobi::kick::<R, false>(&mut bodies, &mut relative, &mut pairs, star_gm, length, h);
+            jacobi::kick::<R, false, true>(
+                &mut bodies,
+                &mut relative,
+                &mut pairs,
+                star_gm,
+                &beside,
+                length,
+                h,
+            );
         } else {
-            kick::<R, false, false>(&mut bodies, &mut pairs, star_gm, length, h);
+            kick::<R, false, false, true>(&mut bodies, pulling, &mut pairs, star_gm, &beside, length, h);
         }
     }
     // What was met on the way to other times is not part of the motion: the watch is not written.

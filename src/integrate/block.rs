@@ -3,8 +3,9 @@
 //! States come and go in democratic heliocentric canonical coordinates (Duncan, Levison & Lee 1998): heliocentric
 //! positions and barycentric velocities; inside, a block holds them or Jacobi coordinates.
 
-use super::jacobi;
+use super::{StarTerms, jacobi};
 use crate::lanes::WIDTH;
+use crate::num::{Kept, KeptReader};
 
 /// The coordinates in which the Hamiltonian is split.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -48,10 +49,16 @@ pub(super) enum Global {
     Y,
     YSum,
     Samples,
+    /// The star's terms.
+    Relativity,
+    Oblateness,
+    PoleX,
+    PoleY,
+    PoleZ,
 }
 
-pub(super) const GLOBALS: usize = 11;
-pub(super) const PER_PLANET: usize = 16;
+pub(super) const GLOBALS: usize = 16;
+pub(super) const PER_PLANET: usize = 17;
 
 /// Where in a planet's numbers each begins.
 pub(super) const GM: usize = 0;
@@ -63,6 +70,7 @@ pub(super) const NEAR2: usize = 13;
 pub(super) const FAR2: usize = 14;
 /// Mass parameter of its Kepler motion.
 pub(super) const MU: usize = 15;
+pub(super) const SATELLITE: usize = 16;
 
 /// One lane's configuration: heliocentric positions (au), barycentric velocities (au/day), masses as GM.
 #[derive(Clone, Debug, PartialEq)]
@@ -99,6 +107,9 @@ pub struct Block {
     coordinates: Coordinates,
     /// Per lane: which planet stands at each place. The order of the state, but for Jacobi chains.
     orders: Vec<Vec<usize>>,
+    /// How many places can hold a body with mass; the others are massless (heliocentric only).
+    pulling: usize,
+    star_terms: bool,
     data: Vec<f64>,
 }
 
@@ -110,10 +121,18 @@ impl Block {
 
     /// A block in the coordinates given.
     pub fn in_coordinates(coordinates: Coordinates, width: usize, planets: usize) -> Block {
+        Block::with_massless(coordinates, width, planets, 0)
+    }
+
+    /// A block whose configurations have at least `massless` planets without mass. These feel the others but do not
+    /// pull; in heliocentric coordinates they are not paired with one another.
+    pub fn with_massless(coordinates: Coordinates, width: usize, planets: usize, massless: usize) -> Block {
         assert!(width == 1 || width == WIDTH, "a block has 1 or {WIDTH} lanes, not {width}");
-        let slots = GLOBALS + planets * PER_PLANET + planets * planets.saturating_sub(1) / 2;
+        let pulling = if coordinates == Coordinates::Heliocentric { planets - massless } else { planets };
+        let slots = GLOBALS + planets * PER_PLANET + pairs(pulling, planets);
         let orders = vec![(0..planets).collect(); width];
-        let mut block = Block { width, planets, coordinates, orders, data: vec![0.0; slots * width] };
+        let data = vec![0.0; slots * width];
+        let mut block = Block { width, planets, coordinates, orders, pulling, star_terms: false, data };
         let idle = State {
             star_gm: 1.0,
             gm: vec![0.0; planets],
@@ -140,6 +159,35 @@ impl Block {
         self.planets
     }
 
+    /// How many bodies may pull; they stand first.
+    pub(super) fn pulling(&self) -> usize {
+        self.pulling
+    }
+
+    pub(super) fn has_star_terms(&self) -> bool {
+        self.star_terms
+    }
+
+    /// How many pairs are computed, each once.
+    pub fn pairs(&self) -> usize {
+        pairs(self.pulling, self.planets)
+    }
+
+    /// Sets the star's terms of a lane, after [`Block::start`].
+    pub fn set_star_terms(&mut self, lane: usize, terms: &StarTerms) {
+        self.star_terms |= !terms.none();
+        self.set(Global::Relativity, lane, terms.relativity);
+        self.set(Global::Oblateness, lane, terms.oblateness);
+        for (global, x) in [Global::PoleX, Global::PoleY, Global::PoleZ].into_iter().zip(terms.pole) {
+            self.set(global, lane, x);
+        }
+        for planet in 0..self.planets {
+            let satellite = terms.satellites.get(planet).copied().unwrap_or(0.0);
+            let place = self.place_of(planet, lane);
+            self.set_planet(place, SATELLITE, lane, satellite);
+        }
+    }
+
     /// Puts a configuration into a lane: state, tangent vector, step (day) and the metric time (day).
     pub fn start(&mut self, lane: usize, state: &State, tangent: &Tangent, step: f64, metric_day: f64) {
         for g in 0..GLOBALS {
@@ -150,28 +198,22 @@ impl Block {
         self.set(Global::Active, lane, 1.0);
         self.set(Global::Metric, lane, metric_day * metric_day);
         let heliocentric = self.coordinates == Coordinates::Heliocentric;
-        let order = if heliocentric { (0..self.planets).collect() } else { jacobi::chain_order(state) };
+        let order = if heliocentric { massive_first(&state.gm) } else { jacobi::chain_order(state) };
+        let massive = state.gm.iter().filter(|gm| **gm != 0.0).count();
+        assert!(
+            massive <= self.pulling || !heliocentric,
+            "{massive} bodies with mass in {} places",
+            self.pulling
+        );
         let gm = jacobi::pick(&order, &state.gm);
-        let pick = |from: &[[f64; 3]]| jacobi::pick(&order, from);
-        let (mut pos, mut vel) = (pick(&state.pos), pick(&state.vel));
-        let (mut d_pos, mut d_vel) = (pick(&tangent.pos), pick(&tangent.vel));
-        if !heliocentric {
-            (pos, vel) = jacobi::to_jacobi(state.star_gm, &gm, &pos, &vel);
-            (d_pos, d_vel) = jacobi::to_jacobi(state.star_gm, &gm, &d_pos, &d_vel);
-        }
         let mut inside = state.star_gm;
-        for k in 0..self.planets {
-            inside += gm[k];
-            self.set_planet(k, GM, lane, gm[k]);
+        for (k, gm) in gm.iter().enumerate() {
+            inside += gm;
+            self.set_planet(k, GM, lane, *gm);
             self.set_planet(k, MU, lane, if heliocentric { state.star_gm } else { inside });
-            for axis in 0..3 {
-                self.set_planet(k, POS + axis, lane, pos[k][axis]);
-                self.set_planet(k, VEL + axis, lane, vel[k][axis]);
-                self.set_planet(k, D_POS + axis, lane, d_pos[k][axis]);
-                self.set_planet(k, D_VEL + axis, lane, d_vel[k][axis]);
-            }
         }
         self.orders[lane] = order;
+        self.replace(lane, state, tangent);
         self.forget_watch(lane);
     }
 
@@ -187,9 +229,37 @@ impl Block {
             self.set_planet(k, NEAR2, lane, f64::MAX);
             self.set_planet(k, FAR2, lane, 0.0);
         }
-        for p in 0..self.planets * self.planets.saturating_sub(1) / 2 {
+        for p in 0..self.pairs() {
             let at = self.pair_slot(p) * self.width + lane;
             self.data[at] = f64::MAX;
+        }
+    }
+
+    /// Forgets the smallest distances of pairs only.
+    pub fn forget_pairs(&mut self, lane: usize) {
+        for p in 0..self.pairs() {
+            let at = self.pair_slot(p) * self.width + lane;
+            self.data[at] = f64::MAX;
+        }
+    }
+
+    /// Puts another state and tangent vector into a lane and keeps its masses, step, sums and watch.
+    pub fn replace(&mut self, lane: usize, state: &State, tangent: &Tangent) {
+        let order = self.orders[lane].clone();
+        let pick = |from: &[[f64; 3]]| jacobi::pick(&order, from);
+        let (mut pos, mut vel) = (pick(&state.pos), pick(&state.vel));
+        let (mut d_pos, mut d_vel) = (pick(&tangent.pos), pick(&tangent.vel));
+        if self.coordinates == Coordinates::Jacobi {
+            let gm = jacobi::pick(&order, &state.gm);
+            (pos, vel) = jacobi::to_jacobi(state.star_gm, &gm, &pos, &vel);
+            (d_pos, d_vel) = jacobi::to_jacobi(state.star_gm, &gm, &d_pos, &d_vel);
+        }
+        for k in 0..self.planets {
+            for (field, from) in [(POS, &pos), (VEL, &vel), (D_POS, &d_pos), (D_VEL, &d_vel)] {
+                for axis in 0..3 {
+                    self.set_planet(k, field + axis, lane, from[k][axis]);
+                }
+            }
         }
     }
 
@@ -247,10 +317,14 @@ impl Block {
         }
     }
 
-    /// Smallest distance of the pair of planets `(i, j)` since the watch was last forgotten, au.
+    /// Smallest distance of the pair of planets `(i, j)` since the watch was last forgotten, au; the largest number
+    /// there is for two massless ones, which are not watched.
     pub fn nearest_pair_au(&self, i: usize, j: usize, lane: usize) -> f64 {
         let (i, j) = (self.place_of(i, lane), self.place_of(j, lane));
         let (i, j) = (i.min(j), i.max(j));
+        if i >= self.pulling {
+            return f64::MAX;
+        }
         let index = i * self.planets - i * (i + 1) / 2 + (j - i - 1);
         self.data[self.pair_slot(index) * self.width + lane].sqrt()
     }
@@ -264,11 +338,23 @@ impl Block {
 
     /// Copies one lane into lane `to` of another block.
     pub fn copy_lane(&self, lane: usize, other: &mut Block, to: usize) {
-        debug_assert_eq!((self.planets, self.coordinates), (other.planets, other.coordinates));
+        debug_assert_eq!(self.data.len() / self.width, other.data.len() / other.width);
         for slot in 0..self.data.len() / self.width {
             other.data[slot * other.width + to] = self.data[slot * self.width + lane];
         }
         other.orders[to].clone_from(&self.orders[lane]);
+        other.star_terms |= self.star_terms;
+    }
+
+    /// Puts down every number of every lane.
+    pub fn keep(&self, kept: &mut Kept) {
+        kept.floats(&self.data);
+    }
+
+    /// Takes up what [`Block::keep`] put down of a block of the same width and number of planets.
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        self.data = kept.floats(self.data.len())?;
+        Some(())
     }
 
     /// Divides a tangent vector that has grown beyond 2^±200 by a power of two; exact.
@@ -289,6 +375,11 @@ impl Block {
         }
         let taken = self.log_taken(lane) + twos * std::f64::consts::LN_2;
         self.set(Global::LogTaken, lane, taken);
+    }
+
+    /// Takes one sample of the tangent vector's length in a block of one lane, as the kernel does.
+    pub fn sample(&mut self) {
+        super::advance::sample(self);
     }
 
     pub(super) fn slot(&self, slot: usize) -> &[f64] {
@@ -327,4 +418,15 @@ impl Block {
     fn triple(&self, planet: usize, field: usize, lane: usize) -> [f64; 3] {
         [0, 1, 2].map(|axis| self.planet(planet, field + axis, lane))
     }
+}
+
+/// Pairs of `planets` bodies of which the first `pulling` have mass: each once, massless ones not with each other.
+fn pairs(pulling: usize, planets: usize) -> usize {
+    (0..pulling).map(|i| planets - 1 - i).sum()
+}
+
+/// Places for planets with mass first, in their order, then the massless ones.
+fn massive_first(gm: &[f64]) -> Vec<usize> {
+    let (massive, massless): (Vec<usize>, Vec<usize>) = (0..gm.len()).partition(|k| gm[*k] != 0.0);
+    massive.into_iter().chain(massless).collect()
 }

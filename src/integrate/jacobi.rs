@@ -6,6 +6,7 @@
 //! Source: Wisdom & Holman (1991).
 
 use super::State;
+use super::kick::Beside;
 use crate::kepler::Body;
 use crate::lanes::Real;
 
@@ -58,18 +59,24 @@ fn tidal<R: Real>(x: &[R; 3], dx: &[R; 3], inv2: R) -> [R; 3] {
 /// Pair forces are computed once per pair in star-centred positions, carried to Jacobi accelerations
 /// aₖ − A₍ₖ₋₁₎ (A the acceleration of the centre of mass inside), and the Kepler pull is added back.
 #[inline(always)]
-pub fn kick<R: Real, const TANGENT: bool>(
+pub fn kick<R: Real, const TANGENT: bool, const BESIDE: bool>(
     bodies: &mut [Body<R>],
     relative: &mut [Relative<R>],
     pairs: &mut [R],
     star_gm: R,
+    beside: &Beside<'_, R>,
     h: R,
     window: R,
 ) {
     let relative = &mut relative[..bodies.len()];
     star_centred::<R, TANGENT>(bodies, relative);
     planet_pairs::<R, TANGENT>(bodies, relative, pairs, window);
-    apply::<R, TANGENT>(bodies, relative, star_gm, h);
+    let reaction = if BESIDE && beside.acting {
+        star_pull::<R, TANGENT>(bodies, relative, star_gm, beside)
+    } else {
+        ([R::splat(0.0); 3], [R::splat(0.0); 3])
+    };
+    apply::<R, TANGENT>(bodies, relative, star_gm, reaction, h);
 }
 
 /// Star-centred positions and velocities: the Jacobi ones plus the offsets of the centres of mass inside.
@@ -137,6 +144,31 @@ fn planet_pairs<R: Real, const TANGENT: bool>(
     }
 }
 
+/// The star's terms beside Newton's pull on each body; answers with the star's reaction −Σ(m/M) a and its change.
+#[inline(always)]
+fn star_pull<R: Real, const TANGENT: bool>(
+    bodies: &[Body<R>],
+    relative: &mut [Relative<R>],
+    star_gm: R,
+    beside: &Beside<'_, R>,
+) -> ([R; 3], [R; 3]) {
+    let zero = R::splat(0.0);
+    let (mut star, mut d_star) = ([zero; 3], [zero; 3]);
+    for ((b, r), satellite) in bodies.iter().zip(relative.iter_mut()).zip(beside.satellites) {
+        let (a, da) = beside.terms.pull::<TANGENT>(*satellite, &r.pos, &r.d_pos);
+        let weight = b.gm / star_gm;
+        for k in 0..3 {
+            r.pull[k] = r.pull[k] + a[k];
+            star[k] = weight.neg_mul_add(a[k], star[k]);
+            if TANGENT {
+                r.d_pull[k] = r.d_pull[k] + da[k];
+                d_star[k] = weight.neg_mul_add(da[k], d_star[k]);
+            }
+        }
+    }
+    (star, d_star)
+}
+
 /// The star's pairs (but for the innermost, which its Kepler motion holds whole), then from accelerations of bodies to
 /// those of Jacobi coordinates.
 #[inline(always)]
@@ -144,10 +176,11 @@ fn apply<R: Real, const TANGENT: bool>(
     bodies: &mut [Body<R>],
     relative: &mut [Relative<R>],
     star_gm: R,
+    reaction: ([R; 3], [R; 3]),
     h: R,
 ) {
     let zero = R::splat(0.0);
-    let (mut inner, mut d_inner) = ([zero; 3], [zero; 3]);
+    let (mut inner, mut d_inner) = reaction;
     for i in 1..bodies.len() {
         let r = &mut relative[i];
         let (inv2, inv3) = inverse(dot(&r.pos, &r.pos));

@@ -1,27 +1,70 @@
 //! B: the planets' pull on one another and the jump from the star's motion about the centre of mass.
 
+use super::star_terms::Terms;
 use crate::kepler::Body;
 use crate::lanes::Real;
 
-/// Runs kick and jump for the time `h`; with `TANGENT` for the tangent vector too.
+/// Runs B for the time `h`; with `TANGENT` for the tangent vector too.
 ///
-/// Jump: qᵢ += h Σ mⱼvⱼ / M. Kick: vᵢ += h Σ G mⱼ (qⱼ − qᵢ)/d³, each pair once.
+/// Jump: qᵢ += h Σ mⱼvⱼ / M. Kick: vᵢ += h Σ G mⱼ (qⱼ − qᵢ)/d³, each pair once, and the star's `beside` terms.
 /// With `WATCH`, `pairs` keeps the smallest distance² of each pair, taken along the straight relative motion
-/// within `window` of now, so that an encounter between two kicks is not missed.
+/// within `window` of now, so that an encounter between two kicks is not missed. Only the first `pulling` bodies
+/// have mass: the rest feel them but pull nobody, so their cost is linear in their number.
+///
+/// Pair forces keep the total momentum, so jump and kick commute and B is exact; the star's terms do not, so with
+/// them the jump is split in halves around the kick.
 #[inline(always)]
-pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
+pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool, const BESIDE: bool>(
     bodies: &mut [Body<R>],
+    pulling: usize,
     pairs: &mut [R],
     star_gm: R,
+    beside: &Beside<'_, R>,
     h: R,
     window: R,
 ) {
-    let count = bodies.len();
+    if BESIDE {
+        let half = h * R::splat(0.5);
+        for part in 0..2 {
+            jump::<R, TANGENT>(&mut *bodies, pulling, star_gm, half);
+            if part == 0 {
+                pull_pairs::<R, TANGENT, WATCH>(bodies, pulling, pairs, h, window);
+                if beside.acting {
+                    star_pull::<R, TANGENT>(bodies, beside, h);
+                }
+            }
+        }
+    } else {
+        jump::<R, TANGENT>(bodies, pulling, star_gm, h);
+        pull_pairs::<R, TANGENT, WATCH>(bodies, pulling, pairs, h, window);
+    }
+}
+
+/// The star's terms beside Newton's pull, and the satellite constant of each body.
+pub struct Beside<'a, R> {
+    /// Whether there are any.
+    pub(super) acting: bool,
+    pub(super) terms: Terms<R>,
+    pub(super) satellites: &'a [R],
+}
+
+impl<R: Real> Beside<'_, R> {
+    /// Newton's pull alone.
+    #[inline(always)]
+    pub fn none() -> Self {
+        let zero = R::splat(0.0);
+        let terms = Terms { relativity: zero, oblateness: zero, pole: [zero; 3] };
+        Beside { acting: false, terms, satellites: &[] }
+    }
+}
+
+#[inline(always)]
+fn jump<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], pulling: usize, star_gm: R, h: R) {
     let zero = R::splat(0.0);
     let share = h / star_gm;
     let mut shift = [zero; 3];
     let mut d_shift = [zero; 3];
-    for b in bodies.iter() {
+    for b in bodies[..pulling].iter() {
         let weight = share * b.gm;
         for k in 0..3 {
             shift[k] = weight.mul_add(b.vel[k], shift[k]);
@@ -38,18 +81,46 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
             }
         }
     }
+}
+
+#[inline(always)]
+fn star_pull<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], beside: &Beside<'_, R>, h: R) {
+    for (b, satellite) in bodies.iter_mut().zip(beside.satellites) {
+        let (a, da) = beside.terms.pull::<TANGENT>(*satellite, &b.pos, &b.d_pos);
+        for k in 0..3 {
+            b.vel[k] = h.mul_add(a[k], b.vel[k]);
+            if TANGENT {
+                b.d_vel[k] = h.mul_add(da[k], b.d_vel[k]);
+            }
+        }
+    }
+}
+
+#[inline(always)]
+fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
+    bodies: &mut [Body<R>],
+    pulling: usize,
+    pairs: &mut [R],
+    h: R,
+    window: R,
+) {
+    let zero = R::splat(0.0);
     let mut pair = 0;
-    for i in 0..count {
-        for j in i + 1..count {
+    for i in 0..pulling {
+        // What body i gathers stays out of memory until its last pair.
+        let (front, others) = bodies.split_at_mut(i + 1);
+        let me = &mut front[i];
+        let (mut vel, mut d_vel) = (me.vel, me.d_vel);
+        for b in others {
             let mut d = [zero; 3];
             for k in 0..3 {
-                d[k] = bodies[j].pos[k] - bodies[i].pos[k];
+                d[k] = b.pos[k] - me.pos[k];
             }
             let d2 = d[2].mul_add(d[2], d[1].mul_add(d[1], d[0] * d[0]));
             if WATCH {
                 let mut w = [zero; 3];
                 for k in 0..3 {
-                    w[k] = bodies[j].vel[k] - bodies[i].vel[k];
+                    w[k] = b.vel[k] - vel[k];
                 }
                 let nearest = nearest2(&d, &w, d2, window);
                 pairs[pair] = nearest.min(pairs[pair]);
@@ -58,26 +129,27 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool>(
             let inv_d2 = R::splat(1.0) / d2;
             let inv_d3 = inv_d2 * inv_d2.sqrt();
             let strength = h * inv_d3;
-            let on_i = strength * bodies[j].gm;
-            let on_j = strength * bodies[i].gm;
+            let on_me = strength * b.gm;
+            let on_b = strength * me.gm;
             for k in 0..3 {
-                bodies[i].vel[k] = d[k].mul_add(on_i, bodies[i].vel[k]);
-                bodies[j].vel[k] = d[k].neg_mul_add(on_j, bodies[j].vel[k]);
+                vel[k] = d[k].mul_add(on_me, vel[k]);
+                b.vel[k] = d[k].neg_mul_add(on_b, b.vel[k]);
             }
             if TANGENT {
                 let mut dd = [zero; 3];
                 for k in 0..3 {
-                    dd[k] = bodies[j].d_pos[k] - bodies[i].d_pos[k];
+                    dd[k] = b.d_pos[k] - me.d_pos[k];
                 }
                 let along = dd[2].mul_add(d[2], dd[1].mul_add(d[1], dd[0] * d[0]));
                 let pull = R::splat(3.0) * along * inv_d2;
                 for k in 0..3 {
                     let w = d[k].neg_mul_add(pull, dd[k]);
-                    bodies[i].d_vel[k] = w.mul_add(on_i, bodies[i].d_vel[k]);
-                    bodies[j].d_vel[k] = w.neg_mul_add(on_j, bodies[j].d_vel[k]);
+                    d_vel[k] = w.mul_add(on_me, d_vel[k]);
+                    b.d_vel[k] = w.neg_mul_add(on_b, b.d_vel[k]);
                 }
             }
         }
+        (me.vel, me.d_vel) = (vel, d_vel);
     }
 }
 

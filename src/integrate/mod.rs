@@ -7,12 +7,17 @@ mod advance;
 mod block;
 mod conserved;
 mod corrector;
+pub mod forces;
 mod jacobi;
 mod kick;
+pub mod radau;
 mod splitting;
+mod star_terms;
 
 pub use advance::{Advance, SAMPLE_EVERY, advance};
 pub use block::{Block, Coordinates, Growth, State, Tangent};
 pub use conserved::{angular_momentum, energy};
 pub use corrector::{from_map, to_map};
+pub use kick::{Beside, kick};
 pub use splitting::Scheme;
+pub use star_terms::StarTerms;

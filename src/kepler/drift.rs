@@ -5,7 +5,7 @@
 
 use super::stumpff::Gs;
 use super::universal::{self, Orbit, Solved};
-use crate::lanes::{Mask, Real};
+use crate::lanes::{Mask, Real, Twin};
 
 /// A body on its way round a centre. Lengths au, times day, `mu` = G × mass of the centre in au³ day⁻².
 #[derive(Clone, Copy)]
@@ -103,9 +103,18 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
         m.solved.s = universal::guess(&m.orbit, inv_r0, h);
     }
     let mut all_good = R::splat(0.0).lt(R::splat(1.0));
-    for m in midway.iter_mut() {
-        (m.solved, m.good) = universal::solve_fast(&m.orbit, m.solved.s, h);
-        all_good = all_good.and(m.good);
+    for twins in midway.chunks_mut(if R::SIDE_BY_SIDE { 2 } else { 1 }) {
+        match &mut *twins {
+            [a, b] => solve_two(a, b, h),
+            others => {
+                for m in others.iter_mut() {
+                    (m.solved, m.good) = universal::solve_fast(&m.orbit, m.solved.s, h);
+                }
+            }
+        }
+        for m in twins {
+            all_good = all_good.and(m.good);
+        }
     }
     if active.and(all_good.not()).any() {
         for m in midway.iter_mut() {
@@ -120,6 +129,15 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
     }
 }
 
+/// The long chain of dependent operations of two bodies, side by side.
+#[inline(always)]
+fn solve_two<R: Real>(a: &mut Midway<R>, b: &mut Midway<R>, h: R) {
+    let orbit = universal::twin(&a.orbit, &b.orbit);
+    let (solved, good) = universal::solve_fast(&orbit, Twin(a.solved.s, b.solved.s), Twin(h, h));
+    (a.solved, b.solved) = universal::part(&solved);
+    (a.good, b.good) = (good.0, good.1);
+}
+
 #[inline(always)]
 fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
     let Orbit { mu, r0, eta, beta, zeta } = m.orbit;
@@ -127,11 +145,12 @@ fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
     let inv_r0 = m.inv_r0;
     let r = r0 + eta.mul_add(g.g1, zeta * g.g2);
     let inv_r = R::splat(1.0) / r;
-    let mu_g2 = mu * g.g2;
-    let f_less_1 = -(mu_g2 * inv_r0);
+    let (mu_by_r0, mu_by_r) = (mu * inv_r0, mu * inv_r);
+    let mu_by_both = mu_by_r0 * inv_r;
+    let f_less_1 = -(mu_by_r0 * g.g2);
     let g_time = mu.neg_mul_add(g.g3, h);
-    let f_dot = -(mu * g.g1 * inv_r0 * inv_r);
-    let g_dot_less_1 = -(mu_g2 * inv_r);
+    let f_dot = -(mu_by_both * g.g1);
+    let g_dot_less_1 = -(mu_by_r * g.g2);
     let (pos, vel) = (b.pos, b.vel);
     for k in 0..3 {
         b.pos[k] = pos[k] + f_less_1.mul_add(pos[k], g_time * vel[k]);
@@ -144,26 +163,27 @@ fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
     let (d_pos, d_vel) = (b.d_pos, b.d_vel);
     let d_r0 = dot(&pos, &d_pos) * inv_r0;
     let d_eta = dot(&d_pos, &vel) + dot(&pos, &d_vel);
-    let d_beta = -(R::splat(2.0) * (mu * d_r0 * inv_r0).mul_add(inv_r0, dot(&vel, &d_vel)));
+    let r0_change = d_r0 * inv_r0;
+    let d_beta = R::splat(-2.0) * mu_by_r0.mul_add(r0_change, dot(&vel, &d_vel));
     // ∂Gₙ/∂β at fixed s = (n Gₙ₊₂ − s Gₙ₊₁)/2.
+    let half_s = half * s;
+    let g1_beta = half_s.neg_mul_add(g.g2, half * g.g3);
+    let g2_beta = half_s.neg_mul_add(g.g3, g.g4);
+    let g3_beta = half_s.neg_mul_add(g.g4, R::splat(1.5) * g.g5);
     let g0 = g.g2.neg_mul_add(beta, R::splat(1.0));
-    let g0_beta = -(half * s * g.g1);
-    let g1_beta = half * s.neg_mul_add(g.g2, g.g3);
-    let g2_beta = half * s.neg_mul_add(g.g3, R::splat(2.0) * g.g4);
-    let g3_beta = half * s.neg_mul_add(g.g4, R::splat(3.0) * g.g5);
     let at_fixed_s = r0.mul_add(g1_beta, eta.mul_add(g2_beta, mu * g3_beta));
     let d_h = h_by_beta * d_beta;
-    let d_s = (d_h - d_r0.mul_add(g.g1, d_eta.mul_add(g.g2, at_fixed_s * d_beta))) * inv_r;
-    let d_g0 = g0_beta.mul_add(d_beta, -(beta * g.g1 * d_s));
+    let d_s = (d_r0.neg_mul_add(g.g1, d_eta.neg_mul_add(g.g2, at_fixed_s.neg_mul_add(d_beta, d_h)))) * inv_r;
     let d_g1 = g1_beta.mul_add(d_beta, g0 * d_s);
     let d_g2 = g2_beta.mul_add(d_beta, g.g1 * d_s);
     let d_g3 = g3_beta.mul_add(d_beta, g.g2 * d_s);
+    let d_g0 = -beta.mul_add(d_g2, d_beta * g.g2);
     let d_r = d_r0.mul_add(g0, r0.mul_add(d_g0, d_eta.mul_add(g.g1, eta.mul_add(d_g1, mu * d_g2))));
-    let d_f = -(mu * inv_r0) * d_g2 - f_less_1 * d_r0 * inv_r0;
+    let d_f = -mu_by_r0.mul_add(d_g2, f_less_1 * r0_change);
     let d_g = mu.neg_mul_add(d_g3, d_h);
-    let shrink = d_r.mul_add(inv_r, d_r0 * inv_r0);
-    let d_f_dot = -(mu * inv_r0 * inv_r) * d_g1 - f_dot * shrink;
-    let d_g_dot = -(mu * inv_r) * d_g2 - g_dot_less_1 * d_r * inv_r;
+    let r_change = d_r * inv_r;
+    let d_f_dot = -mu_by_both.mul_add(d_g1, f_dot * (r_change + r0_change));
+    let d_g_dot = -mu_by_r.mul_add(d_g2, g_dot_less_1 * r_change);
     for k in 0..3 {
         let of_coefficients = d_f.mul_add(pos[k], d_g * vel[k]);
         b.d_pos[k] = d_pos[k] + f_less_1.mul_add(d_pos[k], g_time.mul_add(d_vel[k], of_coefficients));

@@ -46,12 +46,10 @@ pub(super) fn series<R: Real>(beta: R, s: R) -> Gs<R> {
     ];
     let s2 = s * s;
     let z = beta * s2;
-    let mut p4 = R::splat(C4[6]);
-    let mut p5 = R::splat(C5[6]);
-    for k in (0..6).rev() {
-        p4 = p4.neg_mul_add(z, R::splat(C4[k]));
-        p5 = p5.neg_mul_add(z, R::splat(C5[k]));
-    }
+    let z2 = z * z;
+    let z4 = z2 * z2;
+    let p4 = tail(&C4, z, z2, z4);
+    let p5 = tail(&C5, z, z2, z4);
     let c4 = p4.neg_mul_add(z, R::splat(LOW_24)) + R::splat(1.0 / 24.0);
     let c5 = p5.neg_mul_add(z, R::splat(LOW_120)) + R::splat(1.0 / 120.0);
     let c3 = c5.neg_mul_add(z, R::splat(LOW_6)) + R::splat(1.0 / 6.0);
@@ -59,6 +57,15 @@ pub(super) fn series<R: Real>(beta: R, s: R) -> Gs<R> {
     let s3 = s2 * s;
     let g3 = s3 * c3;
     Gs { g1: g3.neg_mul_add(beta, s), g2: s2 * c2, g3, g4: s2 * s2 * c4, g5: s3 * s2 * c5 }
+}
+
+/// Σ cₖ (−z)ᵏ in pairs and pairs of pairs: three operations deep instead of six.
+#[inline(always)]
+fn tail<R: Real>(c: &[f64; 7], z: R, z2: R, z4: R) -> R {
+    let ab = z.neg_mul_add(R::splat(c[1]), R::splat(c[0]));
+    let cd = z.neg_mul_add(R::splat(c[3]), R::splat(c[2]));
+    let ef = z.neg_mul_add(R::splat(c[5]), R::splat(c[4]));
+    z4.mul_add(z2.mul_add(R::splat(c[6]), ef), z2.mul_add(cd, ab))
 }
 
 /// G₁ … G₅ for any s: s is halved until the series holds, then doubled back, each lane by its own count.

@@ -4,7 +4,7 @@
 //! (Stumpff 1962; Battin 1987). Good for ellipse, parabola and hyperbola alike.
 
 use super::stumpff::{self, Gs, SERIES_REACH};
-use crate::lanes::{Mask, Piece, Real};
+use crate::lanes::{Mask, Piece, Real, Twin};
 
 /// What Kepler's equation needs to know of an orbit.
 #[derive(Clone, Copy)]
@@ -25,6 +25,39 @@ pub(super) struct Solved<R> {
     pub h: R,
     /// ∂h/∂β through the periods taken off; 0 where none were.
     pub h_by_beta: R,
+}
+
+/// Two orbits as one.
+#[inline(always)]
+pub(super) fn twin<R: Real>(a: &Orbit<R>, b: &Orbit<R>) -> Orbit<Twin<R>> {
+    Orbit {
+        mu: Twin(a.mu, b.mu),
+        r0: Twin(a.r0, b.r0),
+        eta: Twin(a.eta, b.eta),
+        beta: Twin(a.beta, b.beta),
+        zeta: Twin(a.zeta, b.zeta),
+    }
+}
+
+/// Two solved equations from one.
+#[inline(always)]
+pub(super) fn part<R: Real>(both: &Solved<Twin<R>>) -> (Solved<R>, Solved<R>) {
+    let Solved { s, g, h, h_by_beta } = both;
+    let Gs { g1, g2, g3, g4, g5 } = g;
+    (
+        Solved {
+            s: s.0,
+            g: Gs { g1: g1.0, g2: g2.0, g3: g3.0, g4: g4.0, g5: g5.0 },
+            h: h.0,
+            h_by_beta: h_by_beta.0,
+        },
+        Solved {
+            s: s.1,
+            g: Gs { g1: g1.1, g2: g2.1, g3: g3.1, g4: g4.1, g5: g5.1 },
+            h: h.1,
+            h_by_beta: h_by_beta.1,
+        },
+    )
 }
 
 /// The limit of [`Correction::miss`] below which one correction of order five ends at round-off.
@@ -49,7 +82,8 @@ pub(super) fn guess<R: Real>(o: &Orbit<R>, inv_r0: R, h: R) -> R {
             (aa * aa).mul_add(R::splat(14.0), (aa * b).neg_mul_add(R::splat(21.0), -d)),
         ),
     );
-    x * x.mul_add(x.mul_add(x.mul_add(x.mul_add(k5, k4), k3), k2), R::splat(1.0))
+    let xx = x * x;
+    x * xx.mul_add(xx.mul_add(k5, x.mul_add(k4, k3)), x.mul_add(k2, R::splat(1.0)))
 }
 
 /// The correction w at s, and how far from converged it is.
@@ -75,15 +109,18 @@ fn correct<R: Real>(o: &Orbit<R>, s: R, g: &Gs<R>, h: R) -> Correction<R> {
     let f2 = o.eta.mul_add(g0, o.zeta * g.g1);
     let f3 = o.zeta.mul_add(g0, -(o.beta * o.eta) * g.g1);
     let inv = R::splat(1.0) / f1;
+    let (half_f2, sixth_f3) = (f2 * R::splat(0.5), f3 * R::splat(1.0 / 6.0));
     let y = -(f * inv);
-    let a = f2 * inv * R::splat(0.5);
-    let b = f3 * inv * R::splat(1.0 / 6.0);
-    let c = -(o.beta * a) * R::splat(1.0 / 12.0);
-    let k3 = (a * a).mul_add(R::splat(2.0), -b);
-    let k4 = (a * b).mul_add(R::splat(5.0), (a * a * a).neg_mul_add(R::splat(5.0), -c));
-    let w = y * y.mul_add(y.mul_add(y.mul_add(k4, k3), -a), R::splat(1.0));
+    let a = half_f2 * inv;
+    let b = sixth_f3 * inv;
+    let c = o.beta * a * R::splat(-1.0 / 12.0);
+    let aa = a * a;
+    let k3 = aa.mul_add(R::splat(2.0), -b);
+    let k4 = a.mul_add(b * R::splat(5.0), (a * aa).neg_mul_add(R::splat(5.0), -c));
+    let yy = y * y;
+    let w = y * yy.mul_add(y.mul_add(k4, k3), y.neg_mul_add(a, R::splat(1.0)));
     let ay = a * y;
-    let miss = ay.mul_add(ay, (y * y) * o.beta.abs().mul_add(R::splat(0.02), b.abs()));
+    let miss = ay.mul_add(ay, yy * o.beta.abs().mul_add(R::splat(0.02), b.abs()));
     Correction { w, miss, f, f1, f2 }
 }
 

@@ -7,8 +7,10 @@
 
 mod processor;
 mod scalar;
+mod twin;
 
 pub use processor::{Level, run_one, run_wide, run_wide_at};
+pub use twin::Twin;
 
 use std::ops::{Add, Div, Mul, Neg, Sub};
 
@@ -21,8 +23,10 @@ pub trait Real:
 {
     /// One truth value per lane.
     type Mask: Mask;
-    /// 1 or [`WIDTH`].
+    /// 1 or [`WIDTH`]; twice that for a [`Twin`].
     const LANES: usize;
+    /// Whether there are registers enough for two chains of operations side by side, as a [`Twin`].
+    const SIDE_BY_SIDE: bool = true;
 
     fn splat(value: f64) -> Self;
     /// Reads `LANES` numbers from the front of `from`.

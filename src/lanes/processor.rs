@@ -329,6 +329,7 @@ mod x86 {
     impl Real for Pair {
         type Mask = PairMask;
         const LANES: usize = WIDTH;
+        const SIDE_BY_SIDE: bool = false;
         #[inline(always)]
         fn splat(value: f64) -> Self {
             // SAFETY: see above.

@@ -1,6 +1,7 @@
 //! Ranges of a, e and i over the moments seen.
 
-use super::Moment;
+use crate::coords::Elements;
+use crate::num::{Kept, KeptReader};
 
 /// Smallest and largest value seen.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -29,6 +30,30 @@ pub struct Extent {
     pub inclination: Range,
 }
 
+impl Extent {
+    /// Holds everything that either holds.
+    #[must_use]
+    pub fn joined(&self, other: &Extent) -> Extent {
+        let join = |a: Range, b: Range| Range { min: a.min.min(b.min), max: a.max.max(b.max) };
+        Extent {
+            semi_major_axis_au: join(self.semi_major_axis_au, other.semi_major_axis_au),
+            eccentricity: join(self.eccentricity, other.eccentricity),
+            inclination: join(self.inclination, other.inclination),
+        }
+    }
+
+    pub fn keep(&self, kept: &mut Kept) {
+        for range in [self.semi_major_axis_au, self.eccentricity, self.inclination] {
+            kept.floats(&[range.min, range.max]);
+        }
+    }
+
+    pub fn restored(kept: &mut KeptReader<'_>) -> Option<Extent> {
+        let mut range = || Some(Range { min: kept.float()?, max: kept.float()? });
+        Some(Extent { semi_major_axis_au: range()?, eccentricity: range()?, inclination: range()? })
+    }
+}
+
 /// Widens the extents at every moment seen.
 #[derive(Clone, Debug, PartialEq)]
 pub struct ExtentWatch(Vec<Extent>);
@@ -40,11 +65,31 @@ impl ExtentWatch {
         ExtentWatch(vec![extent; planets])
     }
 
-    pub fn see(&mut self, moment: &Moment<'_>) {
-        for (extent, elements) in self.0.iter_mut().zip(moment.astrocentric()) {
+    pub fn keep(&self, kept: &mut Kept) {
+        self.0.iter().for_each(|extent| extent.keep(kept));
+    }
+
+    /// Takes up what was put down for as many planets.
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        for extent in &mut self.0 {
+            *extent = Extent::restored(kept)?;
+        }
+        Some(())
+    }
+
+    /// Takes the osculating astrocentric elements of every planet at a moment.
+    pub fn see(&mut self, orbits: &[Elements]) {
+        for (extent, elements) in self.0.iter_mut().zip(orbits) {
             extent.semi_major_axis_au.take(elements.semi_major_axis_au);
             extent.eccentricity.take(elements.eccentricity);
             extent.inclination.take(elements.inclination);
+        }
+    }
+
+    /// Takes in what was seen elsewhere, one per planet.
+    pub fn join(&mut self, seen: &[Extent]) {
+        for (extent, seen) in self.0.iter_mut().zip(seen) {
+            *extent = extent.joined(seen);
         }
     }
 

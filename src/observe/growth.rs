@@ -1,5 +1,7 @@
 //! The maximal Lyapunov exponent from the growth of the tangent vector.
 
+use crate::num::{Kept, KeptReader};
+
 /// Maximal Lyapunov exponent with its standard error.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Lyapunov {
@@ -23,6 +25,23 @@ impl GrowthRecord {
     /// `call_day` is the time between two calls of [`GrowthRecord::see`].
     pub fn new(call_day: f64) -> GrowthRecord {
         GrowthRecord { marks: vec![0.0], stride: 1, calls: 0, call_day }
+    }
+
+    pub fn keep(&self, kept: &mut Kept) {
+        kept.count(self.stride);
+        kept.count(self.calls);
+        kept.float(self.call_day);
+        kept.count(self.marks.len() as u64);
+        kept.floats(&self.marks);
+    }
+
+    pub fn restore(&mut self, kept: &mut KeptReader<'_>) -> Option<()> {
+        self.stride = kept.count()?;
+        self.calls = kept.count()?;
+        self.call_day = kept.float()?;
+        let marks = kept.size().filter(|marks| (1..=GrowthRecord::MOST).contains(marks))?;
+        self.marks = kept.floats(marks)?;
+        Some(())
     }
 
     pub fn see(&mut self, log: f64) {

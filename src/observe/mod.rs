@@ -1,12 +1,24 @@
 //! Observers: they see moments of the motion and never change it.
 
+mod combination;
 mod conserved;
 mod extent;
+mod frequency;
 mod growth;
+mod libration;
+mod quasi_periodic;
+mod resonance;
+mod series;
 
+pub use combination::{Combination, Fundamental, Kind, Namer, Rule};
 pub use conserved::ConservedWatch;
 pub use extent::{Extent, ExtentWatch, Range};
+pub use frequency::{FrequencyDrift, MotionDrift, frequency_drift, fundamental_nodes, fundamentals};
 pub use growth::{GrowthRecord, Lyapunov};
+pub use libration::{AngleMotion, Libration, WhyNot, angle_motion};
+pub use quasi_periodic::{NamedLine, QuasiPeriodic, quasi_periodic};
+pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
+pub use series::{ElementSeries, SeriesError};
 
 use crate::coords::Elements;
 use crate::integrate::State;

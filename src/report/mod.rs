@@ -19,5 +19,7 @@ pub use series::{PlanetSeries, Series, series_table};
 pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};
 pub use table::{Column, Datatype, Entry, Meta, Table};
 
+pub(crate) use words::{printed, short, time_words};
+
 /// The version that tables, summaries and figures name.
 pub const VERSION: &str = concat!("abide ", env!("CARGO_PKG_VERSION"));

@@ -2,6 +2,7 @@
 
 use super::VERSION;
 use super::table::{Column, Datatype, Entry, Meta, Table};
+use crate::assess::Extent;
 use crate::coords::Elements;
 use crate::units::{DEGREE, YEAR_DAY};
 
@@ -19,6 +20,8 @@ pub struct Series {
     pub title: String,
     pub time_day: Vec<f64>,
     pub planets: Vec<PlanetSeries>,
+    /// Per planet, one per time: ranges since the time before.
+    pub extents: Vec<Vec<Extent>>,
     /// Relative.
     pub energy_error: Vec<f64>,
     pub angular_momentum_error: Vec<f64>,
@@ -46,8 +49,11 @@ pub fn series_table(series: &Series) -> Table {
     };
     let years: Vec<f64> = series.time_day.iter().map(|t| t / YEAR_DAY).collect();
     push(&mut table, "time", "yr", "time from the epoch", &years);
-    for planet in &series.planets {
+    for (index, planet) in series.planets.iter().enumerate() {
         push_planet(&mut table, planet);
+        if let Some(extents) = series.extents.get(index) {
+            push_extents(&mut table, &planet.name, extents);
+        }
     }
     push(&mut table, "energy_error", "", "relative error of the energy", &series.energy_error);
     let momentum = "relative error of the total angular momentum";
@@ -75,6 +81,25 @@ fn push_planet(table: &mut Table, planet: &PlanetSeries) {
         let values: Vec<f64> = planet.elements.iter().map(take).collect();
         let meaning = format!("{meaning} of {}", planet.name);
         push(table, &format!("{}.{part}", planet.name), unit, &meaning, &values);
+    }
+}
+
+type Bound = (&'static str, &'static str, &'static str, fn(&Extent) -> f64);
+
+const BOUNDS: [Bound; 6] = [
+    ("a_min", "au", "smallest semi-major axis", |e| e.semi_major_axis_au.min),
+    ("a_max", "au", "largest semi-major axis", |e| e.semi_major_axis_au.max),
+    ("e_min", "", "smallest eccentricity", |e| e.eccentricity.min),
+    ("e_max", "", "largest eccentricity", |e| e.eccentricity.max),
+    ("i_min", "deg", "smallest inclination", |e| e.inclination.min / DEGREE),
+    ("i_max", "deg", "largest inclination", |e| e.inclination.max / DEGREE),
+];
+
+fn push_extents(table: &mut Table, name: &str, extents: &[Extent]) {
+    for (bound, unit, meaning, take) in BOUNDS {
+        let values: Vec<f64> = extents.iter().map(take).collect();
+        let meaning = format!("{meaning} of {name} since the row before");
+        push(table, &format!("{name}.{bound}"), unit, &meaning, &values);
     }
 }
 

@@ -80,7 +80,7 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
         format!("{} to {} d", short(low), short(high))
     };
     let why = match plan.step_why {
-        StepWhy::Pericentre { steps_per_passage } => {
+        StepWhy::Pericentre { steps_per_passage, .. } => {
             format!("1/{} of the shortest pericentre passage", short(steps_per_passage))
         }
         StepWhy::Asked { .. } => "as the study asks".to_owned(),
@@ -103,6 +103,10 @@ pub(crate) fn held_words(study: &Study, system: &System) -> String {
             BodyRef::Star => ("the star", &moved.star.stated),
             BodyRef::Planet(index) => match moved.planets.get(*index) {
                 Some(planet) => (planet.name.as_str(), &planet.stated),
+                None => continue,
+            },
+            BodyRef::Companion => match &moved.companion {
+                Some(companion) => (companion.name.as_str(), &companion.stated),
                 None => continue,
             },
             BodyRef::All => match moved.planets.first() {

@@ -59,7 +59,7 @@ impl Grid {
     }
 
     fn impossible(&self, error: &CoordsError, configuration: Option<&Configuration>) -> Settled {
-        let index = |name: &str| self.system.planet_index(name);
+        let index = |name: &str| self.system.orbiting_index(name);
         let gm = |planet: usize| configuration.map_or(0.0, |c| c.planets[planet].gm);
         let at_start = |planet, other, how| Loss { time_day: 0.0, planet, other, how };
         let loss = match error {

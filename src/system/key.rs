@@ -28,6 +28,10 @@ pub enum Key {
     TransitTime,
     Inclination,
     AscendingNode,
+    /// Mass of a planet's satellite over the mass of the planet alone.
+    SatelliteMassRatio,
+    /// Of the satellite's orbit about the planet.
+    SatelliteSemiMajorAxis,
 }
 
 /// Keys of one group answer the same question; a body states one answer (the vector shapes take two keys).
@@ -43,10 +47,12 @@ pub enum Group {
     Phase,
     Inclination,
     Node,
+    SatelliteMass,
+    SatelliteSize,
 }
 
 impl Key {
-    pub const ALL: [Key; 22] = [
+    pub const ALL: [Key; 24] = [
         Key::Mass,
         Key::MinimumMass,
         Key::MassRatio,
@@ -69,6 +75,8 @@ impl Key {
         Key::TransitTime,
         Key::Inclination,
         Key::AscendingNode,
+        Key::SatelliteMassRatio,
+        Key::SatelliteSemiMajorAxis,
     ];
 
     /// The word used in files, tables and output.
@@ -96,6 +104,8 @@ impl Key {
             Key::TransitTime => "transit_time",
             Key::Inclination => "inclination",
             Key::AscendingNode => "ascending_node",
+            Key::SatelliteMassRatio => "satellite_mass_ratio",
+            Key::SatelliteSemiMajorAxis => "satellite_semi_major_axis",
         }
     }
 
@@ -107,10 +117,11 @@ impl Key {
         match self {
             Key::Mass | Key::MinimumMass => Dimension::Mass,
             Key::RvSemiAmplitude => Dimension::Speed,
-            Key::Radius | Key::SemiMajorAxis => Dimension::Length,
+            Key::Radius | Key::SemiMajorAxis | Key::SatelliteSemiMajorAxis => Dimension::Length,
             Key::Age | Key::Period => Dimension::Time,
             Key::PericentreTime | Key::TransitTime => Dimension::Date,
             Key::MassRatio
+            | Key::SatelliteMassRatio
             | Key::Eccentricity
             | Key::ECosW
             | Key::ESinW
@@ -141,6 +152,8 @@ impl Key {
             | Key::TransitTime => Group::Phase,
             Key::Inclination => Group::Inclination,
             Key::AscendingNode => Group::Node,
+            Key::SatelliteMassRatio => Group::SatelliteMass,
+            Key::SatelliteSemiMajorAxis => Group::SatelliteSize,
         }
     }
 }

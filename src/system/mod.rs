@@ -4,19 +4,24 @@
 //! statement of its [`Group`] and leaves every other statement as it was; the room `coords` turns
 //! statements into masses and orbits.
 
+mod companion;
 mod key;
 mod path;
+mod physics;
 mod range;
 mod stated;
 mod study;
 mod vary;
 
+pub use companion::CompanionPlace;
 pub use key::{Group, Key};
-pub use path::{PathError, is_planet_name};
+pub use path::{COMPANION, PathError, is_planet_name};
+pub use physics::{Oblateness, Physics, satellite_strength_au2};
 pub use range::{Allowed, Holder, Unsound};
 pub use stated::{Body, Measured, Pair, SetError, Stated};
 pub use study::{
-    Axis, BodyRef, Encounter, Engine, Limits, Measure, Quantity, Spacing, Span, Step, Study, Target,
+    Axis, BodyRef, CoordinateChoice, Encounter, Engine, Limits, Measure, Quantity, SCHEMES, Spacing, Span,
+    Step, Study, Target,
 };
 pub use vary::VaryError;
 
@@ -27,7 +32,7 @@ pub enum Frame {
     #[default]
     Astrocentric,
     /// Planet relative to the centre of mass of the star and the planets before it (ordered by
-    /// period); mass parameter G (star + planets up to and including this one).
+    /// period, a companion among them); mass parameter G (star + bodies up to and including this one).
     Jacobi,
     /// Planet relative to the centre of mass of the whole system; mass parameter G (total mass).
     Barycentric,
@@ -68,5 +73,8 @@ pub struct System {
     pub star: Body,
     /// In the order of the file. Names are unique.
     pub planets: Vec<Body>,
+    /// A second star, outside the planets' orbits or inside them. Its orbit is read in the frame of the convention.
+    pub companion: Option<Body>,
     pub convention: Convention,
+    pub physics: Physics,
 }

@@ -7,6 +7,7 @@ use super::{Group, Key, Stated};
 pub enum Holder {
     Star,
     Planet,
+    Companion,
 }
 
 /// The numbers that a key may have, in inner units; `low` and `high` belong to it where they are closed.
@@ -70,6 +71,9 @@ impl Key {
         match holder {
             Holder::Star => matches!(self, Key::Mass | Key::Radius | Key::Age),
             Holder::Planet => self != Key::Age,
+            Holder::Companion => {
+                !matches!(self, Key::Age | Key::SatelliteMassRatio | Key::SatelliteSemiMajorAxis)
+            }
         }
     }
 
@@ -78,7 +82,7 @@ impl Key {
         match self {
             Key::Mass if holder == Holder::Star => above_zero("a mass above 0"),
             Key::Mass | Key::MinimumMass => from_zero("a mass of 0 or more"),
-            Key::MassRatio => from_zero("0 or more (mass of the planet / mass of the star)"),
+            Key::MassRatio => from_zero("0 or more (mass of the body / mass of the star)"),
             Key::RvSemiAmplitude => from_zero("a speed of 0 or more"),
             Key::Radius => from_zero("a radius of 0 or more"),
             Key::Age => above_zero("an age above 0"),
@@ -99,6 +103,12 @@ impl Key {
             | Key::MeanLongitude
             | Key::TrueAnomaly
             | Key::AscendingNode => Allowed { words: "any finite angle", ..ANY },
+            Key::SatelliteMassRatio => Allowed {
+                high: 1.0,
+                high_closed: true,
+                ..from_zero("0 <= ratio <= 1 (mass of the satellite / mass of the planet alone)")
+            },
+            Key::SatelliteSemiMajorAxis => above_zero("a semi-major axis above 0 (of the satellite's orbit)"),
             Key::PericentreTime | Key::TransitTime => Allowed { words: "any finite date", ..ANY },
         }
     }
@@ -111,13 +121,17 @@ pub enum Unsound {
     PairUnbound { key: Key, eccentricity: f64 },
     #[error("{} at inclination 0 or 180 deg would need an infinite mass", key.word())]
     FaceOn { key: Key },
+    #[error("{} without {} describes no satellite", key.word(), absent.word())]
+    HalfSatellite { key: Key, absent: Key },
 }
 
 impl Unsound {
     /// The key to point at.
     pub fn key(&self) -> Key {
         match *self {
-            Unsound::PairUnbound { key, .. } | Unsound::FaceOn { key } => key,
+            Unsound::PairUnbound { key, .. }
+            | Unsound::FaceOn { key }
+            | Unsound::HalfSatellite { key, .. } => key,
         }
     }
 }
@@ -129,7 +143,7 @@ impl Stated {
     /// Whether statements that are allowed one by one also go together.
     ///
     /// Errors: a pair of shape components of 1 or more; a minimum mass or velocity semi-amplitude of an
-    /// orbit seen face-on.
+    /// orbit seen face-on; one of the two keys of a satellite without the other.
     pub fn check_together(&self) -> Result<(), Unsound> {
         let eccentricity = self.eccentricity();
         if let Some(pair) = self.pair()
@@ -137,6 +151,7 @@ impl Stated {
         {
             return Err(Unsound::PairUnbound { key: pair.keys().0, eccentricity });
         }
+        self.check_satellite()?;
         let sine = self.value(Key::Inclination).map_or(1.0, f64::sin);
         let masses = self.iter().find(|(key, _)| {
             key.group() == Group::Mass && matches!(key, Key::MinimumMass | Key::RvSemiAmplitude)
@@ -145,6 +160,15 @@ impl Stated {
             Some((key, measured)) if sine.abs() < FACE_ON_SINE && measured.value > 0.0 => {
                 Err(Unsound::FaceOn { key })
             }
+            _ => Ok(()),
+        }
+    }
+
+    fn check_satellite(&self) -> Result<(), Unsound> {
+        let (mass, size) = (Key::SatelliteMassRatio, Key::SatelliteSemiMajorAxis);
+        match (self.get(mass), self.get(size)) {
+            (Some(_), None) => Err(Unsound::HalfSatellite { key: mass, absent: size }),
+            (None, Some(_)) => Err(Unsound::HalfSatellite { key: size, absent: mass }),
             _ => Ok(()),
         }
     }
@@ -157,7 +181,7 @@ mod tests {
     #[test]
     fn ranges_refuse_what_is_no_number() {
         for key in Key::ALL {
-            for holder in [Holder::Star, Holder::Planet] {
+            for holder in [Holder::Star, Holder::Planet, Holder::Companion] {
                 let allowed = key.allowed(holder);
                 for bad in [f64::NAN, f64::INFINITY, f64::NEG_INFINITY] {
                     assert!(!allowed.contains(bad), "{key:?} takes {bad}");

@@ -10,7 +10,9 @@ pub enum BodyRef {
     Star,
     /// Index into `System::planets`.
     Planet(usize),
-    /// Every planet.
+    /// The second star.
+    Companion,
+    /// Every planet (never the companion).
     All,
 }
 
@@ -76,7 +78,9 @@ pub enum Measure {
 pub enum Encounter {
     /// Stop when two planets come closer than this many mutual Hill radii.
     Stop { hill: f64 },
-    /// Go on through encounters; only collisions end a cell.
+    /// Go through encounters with the adaptive integrator; only collisions end a cell.
+    Resolve,
+    /// Go on through encounters as if there were none; only collisions end a cell.
     Off,
 }
 
@@ -99,10 +103,25 @@ pub enum Step {
     PerOrbit(f64),
 }
 
+/// The splittings that a study may name, beside "auto": their generalised orders, cheapest first.
+pub const SCHEMES: [&str; 7] = ["(2,2)", "(4,2)", "(8,2)", "(8,4)", "(10,4)", "(8,6,4)", "(10,6,4)"];
+
+/// In which coordinates the study wants its cells integrated.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum CoordinateChoice {
+    /// Jacobi where a companion makes a hierarchy, else heliocentric.
+    #[default]
+    Auto,
+    /// Democratic heliocentric.
+    Heliocentric,
+    Jacobi,
+}
+
 #[derive(Clone, Debug, PartialEq)]
 pub struct Engine {
-    /// As in the file: "auto", "(2,2)", …
+    /// "auto" or one of [`SCHEMES`].
     pub scheme: String,
+    pub coordinates: CoordinateChoice,
     pub step: Step,
     pub energy_error: f64,
 }

@@ -12,7 +12,9 @@ pub fn system(elements: Frame, pericentre: Pericentre, transit: Transit) -> Syst
         epoch_jd: Some(EPOCH_JD),
         star: planet("star", &[(Key::Mass, 0.87 * GM_SUN)]),
         planets: Vec::new(),
+        companion: None,
         convention: Convention { elements, pericentre, transit },
+        physics: Default::default(),
     }
 }
 

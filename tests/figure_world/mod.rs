@@ -5,7 +5,7 @@ use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range};
 use abide::survey::Record;
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Key, Limits, Measure, Measured, Quantity, Spacing,
-    Span, Stated, Step, Study, System, Target,
+    Span, Stated, Study, System, Target,
 };
 use abide::units::{DEGREE, GM_EARTH, GM_SUN};
 use abide::verdict::{LostHow, Verdict};
@@ -43,7 +43,9 @@ pub fn system() -> System {
             planet("b", measured(11.862, 0.004, "d"), 6.1, measured(0.05, 0.03, "")),
             planet("c", measured(17.79, 0.12, "d"), 9.4, measured(0.08, 0.03, "")),
         ],
+        companion: None,
         convention: Convention::default(),
+        physics: Default::default(),
     }
 }
 
@@ -81,7 +83,7 @@ pub fn study(columns: usize, rows: usize) -> Study {
             encounter: Encounter::Stop { hill: 1.0 },
             stop_when_chaotic: false,
         },
-        engine: Engine { scheme: "auto".to_owned(), step: Step::Auto, energy_error: 1e-7 },
+        engine: Engine { energy_error: 1e-7, ..Engine::default() },
     }
 }
 
@@ -90,7 +92,7 @@ pub const SPAN_DAY: f64 = 1e4 * 11.862;
 /// What a survey would do with [`study`].
 pub fn plan() -> Plan {
     let nominal = abide::coords::configure(&system()).unwrap();
-    let plan = Plan::for_study(&study(2, 2), &nominal);
+    let plan = Plan::for_study(&study(2, 2), &nominal, &[]);
     assert!((plan.span_day / SPAN_DAY - 1.0).abs() < 1e-9 && plan.extent && plan.megno);
     plan
 }

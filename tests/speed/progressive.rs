@@ -6,10 +6,9 @@
 
 use std::path::Path;
 
-use abide::assess::Plan;
 use abide::coords;
 use abide::input;
-use abide::survey::{Calm, Policy, Record, Refine, View, read_run};
+use abide::survey::{Calm, Policy, Record, Refine, View, plan_of, read_run};
 use abide::verdict::Verdict;
 
 fn main() {
@@ -31,7 +30,7 @@ fn row(folder: &Path) -> Result<String, Box<dyn std::error::Error>> {
     let stored = read_run(folder)?;
     let system = input::parse_system("system.toml", &stored.system_text)?;
     let file = input::parse_study("study.toml", &stored.study_text, system)?;
-    let plan = Plan::for_study(&file.study, &coords::configure(&file.system.system)?);
+    let plan = plan_of(&file.study, &file.system.system, &coords::configure(&file.system.system)?);
     let records = &stored.records;
     let shape = [0, 1].map(|axis| file.study.axes.get(axis).map_or(1, |axis| axis.cells));
     let whole = records.len() == shape[0] * shape[1] && records.iter().all(|r| r.filled.is_none());

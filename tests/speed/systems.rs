@@ -1,5 +1,7 @@
 //! Invented systems for the benches, in units G = star = 1.
 
+#![allow(dead_code, reason = "each bench uses its own part")]
+
 use abide::coords::{Elements, star_centred};
 use abide::integrate::{Block, State, Tangent};
 use abide::system::Frame;
@@ -14,45 +16,39 @@ fn planets(n: usize) -> Vec<(f64, f64)> {
     }
 }
 
-/// `lanes` neighbouring configurations, 20 steps per inner orbit.
-pub fn block(n: usize, lanes: usize) -> Block {
-    let mut block = Block::new(lanes, n);
-    for lane in 0..lanes {
-        let (gm, elements): (Vec<f64>, Vec<Elements>) = planets(n)
-            .into_iter()
-            .enumerate()
-            .map(|(k, (gm, axis))| {
-                let nudge = if k == 1 { 1.0 + 1e-3 * lane as f64 } else { 1.0 };
-                let elements = Elements {
-                    semi_major_axis_au: axis * nudge,
-                    eccentricity: 0.05 + if k == 1 { 2e-3 * lane as f64 } else { 0.0 },
-                    inclination: 0.02 * k as f64,
-                    ascending_node: 1.1 * k as f64,
-                    argument_of_pericentre: 0.7 * k as f64,
-                    mean_anomaly: 2.1 * k as f64,
-                };
-                (gm, elements)
-            })
-            .unzip();
-        let (pos, vel) = star_centred(Frame::Astrocentric, 1.0, &gm, &elements);
-        let total: f64 = 1.0 + gm.iter().sum::<f64>();
-        let star: Vec<f64> =
-            (0..3).map(|k| -gm.iter().zip(&vel).map(|(m, v)| m * v[k]).sum::<f64>() / total).collect();
-        let vel = vel.iter().map(|v| [v[0] + star[0], v[1] + star[1], v[2] + star[2]]).collect();
-        let tangent = Tangent { pos: vec![[1.0, 0.3, -0.2]; n], vel: vec![[0.1, -0.7, 0.4]; n] };
-        let state = State { star_gm: 1.0, gm, pos, vel };
-        block.start(lane, &state, &tangent, std::f64::consts::TAU / 20.0, 1.0);
-    }
-    block
+/// The start in a lane: neighbouring configurations.
+pub fn start(n: usize, lane: usize) -> (State, Tangent) {
+    let (gm, elements): (Vec<f64>, Vec<Elements>) = planets(n)
+        .into_iter()
+        .enumerate()
+        .map(|(k, (gm, axis))| {
+            let nudge = if k == 1 { 1.0 + 1e-3 * lane as f64 } else { 1.0 };
+            let elements = Elements {
+                semi_major_axis_au: axis * nudge,
+                eccentricity: 0.05 + if k == 1 { 2e-3 * lane as f64 } else { 0.0 },
+                inclination: 0.02 * k as f64,
+                ascending_node: 1.1 * k as f64,
+                argument_of_pericentre: 0.7 * k as f64,
+                mean_anomaly: 2.1 * k as f64,
+            };
+            (gm, elements)
+        })
+        .unzip();
+    let (pos, vel) = star_centred(Frame::Astrocentric, 1.0, &gm, &elements);
+    let total: f64 = 1.0 + gm.iter().sum::<f64>();
+    let star: Vec<f64> =
+        (0..3).map(|k| -gm.iter().zip(&vel).map(|(m, v)| m * v[k]).sum::<f64>() / total).collect();
+    let vel = vel.iter().map(|v| [v[0] + star[0], v[1] + star[1], v[2] + star[2]]).collect();
+    let tangent = Tangent { pos: vec![[1.0, 0.3, -0.2]; n], vel: vec![[0.1, -0.7, 0.4]; n] };
+    (State { star_gm: 1.0, gm, pos, vel }, tangent)
 }
 
-/// Floating-point operations of one planet-step with tangent vector (a fused multiply-add counts two).
-pub fn flops_per_planet_step(n: usize) -> f64 {
-    // Drift 370, jump 24, and half of N − 1 pairs of 68 (SPEED table: 421, 448, 502, 583 for N = 2, 3, 5, 8).
-    match n {
-        2 => 421.0,
-        3 => 448.0,
-        5 => 502.0,
-        _ => 583.0,
+/// `lanes` neighbouring configurations.
+pub fn block(n: usize, lanes: usize, steps_per_orbit: f64) -> Block {
+    let mut block = Block::new(lanes, n);
+    for lane in 0..lanes {
+        let (state, tangent) = start(n, lane);
+        block.start(lane, &state, &tangent, std::f64::consts::TAU / steps_per_orbit, 1.0);
     }
+    block
 }

@@ -24,7 +24,7 @@ pub fn plan() -> Plan {
     Plan {
         span_day: 1e4,
         step_day: None,
-        step_why: StepWhy::Pericentre { steps_per_passage: 20.0 },
+        step_why: StepWhy::Pericentre { steps_per_passage: 20.0, trial: None },
         scheme: "(2,2)",
         energy_error: 1e-7,
         escape_au: Some(100.0),
@@ -34,6 +34,10 @@ pub fn plan() -> Plan {
         stop_when_chaotic: false,
         block_steps: 508,
         coordinates: abide::integrate::Coordinates::Heliocentric,
+        coordinates_why: abide::assess::CoordinatesWhy::Light,
+        resolve: false,
+        adaptive: false,
+        massless: 0,
     }
 }
 
@@ -128,13 +132,21 @@ fn configuration(cell: u64) -> Configuration {
     };
     let planet = Planet {
         name: "b".to_string(),
+        kind: Default::default(),
         gm: cell as f64,
         radius_au: 0.0,
         position_au: [1.0, 0.0, 0.0],
         velocity_au_day: [0.0; 3],
         elements,
+        satellite_k_au2: None,
     };
-    Configuration { star_gm: 1.0, star_radius_au: 0.0, frame: Frame::Jacobi, planets: vec![planet] }
+    Configuration {
+        star_gm: 1.0,
+        star_radius_au: 0.0,
+        frame: Frame::Jacobi,
+        planets: vec![planet],
+        terms: Default::default(),
+    }
 }
 
 /// Keeps eight cells in flight, ends them in a scrambled order, and knows a cell by its configuration only.

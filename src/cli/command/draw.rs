@@ -3,7 +3,6 @@
 use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
-use crate::assess::Plan;
 use crate::cli::CliError;
 use crate::cli::args::DrawArgs;
 use crate::coords;
@@ -42,7 +41,7 @@ fn read_back(folder: &Path, stored: &Stored) -> Result<StudyFile, CliError> {
 fn draw(file: &StudyFile, records: &[Record], asked: Option<&str>) -> Result<(Figure, String), CliError> {
     let (study, system) = (&file.study, &file.system.system);
     let nominal = coords::configure(system).map_err(CliError::input)?;
-    let plan = Plan::for_study(study, &nominal);
+    let plan = survey::plan_of(study, system, &nominal);
     let measured = records.iter().any(|record| record.assessment.megno.is_some());
     let column = asked.unwrap_or(if measured { FIRST_CHOICE } else { SECOND_CHOICE });
     let caption = report::caption(study, system, &plan, records);

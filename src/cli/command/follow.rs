@@ -1,9 +1,140 @@
-use std::process::ExitCode;
+//! `abide follow`: one configuration → its series, its figure, and the verdict in words.
 
+mod checkpoint;
+mod outputs;
+mod pace;
+mod view;
+mod why;
+mod wish;
+
+use std::path::Path;
+use std::process::ExitCode;
+use std::sync::atomic::{AtomicBool, Ordering};
+use std::time::Instant;
+
+use crate::assess::{Assessment, Follower, Row};
 use crate::cli::CliError;
 use crate::cli::args::FollowArgs;
+use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
+use crate::disk::{self, DiskError, Lock};
+use crate::survey;
+use checkpoint::Checkpoint;
+use pace::Pace;
+use view::View;
+use wish::Wish;
+
+const LOCK: &str = ".lock";
+/// Writing checkpoints takes at most one part in so many of the time.
+const SHARE_OF_TIME: u32 = 20;
+/// The clock is asked once in so many blocks, each a fraction of a millisecond.
+const BLOCKS_PER_LOOK: u32 = 16;
 
 pub fn run(args: FollowArgs) -> Result<ExitCode, CliError> {
-    let _ = args;
+    let wish = Wish::check(&args)?;
+    let _lock = take_folder(&wish.folder)?;
+    let checkpoint = Checkpoint::of(&wish);
+    let follower = begin_or_go_on(&wish, &checkpoint, args.anew)?;
+    let stop = stop_on_signal()?;
+    let Some((assessment, rows)) = follow(follower, &wish, &checkpoint, &stop)? else {
+        wish.say(format_args!(
+            "stopped; what was followed is kept in {}. The same command goes on from there",
+            wish.folder.display()
+        ));
+        return Ok(ExitCode::from(INTERRUPTED));
+    };
+    show(&wish, &assessment, &rows)?;
     Ok(ExitCode::SUCCESS)
+}
+
+/// Proves the folder writable and claims it for this process.
+fn take_folder(folder: &Path) -> Result<Lock, CliError> {
+    disk::make_writable_folder(folder).map_err(refused)?;
+    if folder.join(survey::JOURNAL).exists() {
+        return Err(CliError::Input(format!(
+            "{} holds a survey; choose another folder with --into",
+            folder.display()
+        )));
+    }
+    let holder = format!("process {} on {}", std::process::id(), survey::host());
+    Lock::take(&folder.join(LOCK), &holder).map_err(|error| {
+        refused(match error {
+            DiskError::Held { holder, .. } => DiskError::Held { path: folder.to_path_buf(), holder },
+            other => other,
+        })
+    })
+}
+
+/// The words of a [`DiskError`] hold its cause already.
+fn refused(error: DiskError) -> CliError {
+    CliError::Input(error.to_string())
+}
+
+fn begin_or_go_on(wish: &Wish, checkpoint: &Checkpoint, anew: bool) -> Result<Follower, CliError> {
+    checkpoint.tidy();
+    let found = if anew { None } else { checkpoint.read()? };
+    let Some(found) = found else {
+        checkpoint.drop_outputs()?;
+        wish.say(format_args!("{}: {} over {}", wish.folder.display(), wish.title(), wish.span_words()));
+        return Ok(Follower::new(&wish.configuration, &wish.plan, wish.rows));
+    };
+    let follower = Follower::restored(&wish.configuration, &wish.plan, wish.rows, &found.kept)
+        .ok_or_else(|| checkpoint.damaged("its numbers do not fit what they are numbers of"))?;
+    let folder = wish.folder.display();
+    if found.finished {
+        wish.say(format_args!("{folder} is finished; nothing is left to follow"));
+    } else {
+        let share = 100.0 * follower.progress().share;
+        wish.say(format_args!("{folder}: goes on, {share:.1} % of {} are done", wish.span_words()));
+    }
+    Ok(follower)
+}
+
+/// Follows to the end; none when stopped before it, with all that was done in the checkpoint.
+fn follow(
+    mut follower: Follower,
+    wish: &Wish,
+    checkpoint: &Checkpoint,
+    stop: &AtomicBool,
+) -> Result<Option<(Assessment, Vec<Row>)>, CliError> {
+    let mut pace = Pace::new(wish, &follower.progress());
+    let (mut saved, mut pause) = (Instant::now(), wish.pause);
+    while follower.assessment().is_none() {
+        for _ in 0..BLOCKS_PER_LOOK {
+            follower.one_block();
+        }
+        let stopped = stop.load(Ordering::Relaxed) && follower.assessment().is_none();
+        if stopped || saved.elapsed() >= pause {
+            let began = Instant::now();
+            checkpoint.write(&follower)?;
+            saved = Instant::now();
+            pause = wish.pause.max((saved - began) * SHARE_OF_TIME);
+        }
+        if stopped {
+            pace.finish(follower.progress().share);
+            return Ok(None);
+        }
+        pace.note(&follower.progress());
+    }
+    checkpoint.write(&follower)?;
+    let end_day = follower.assessment().map_or(0.0, |assessment| assessment.end_time_day);
+    pace.finish(end_day / wish.plan.span_day);
+    Ok(follower.finish())
+}
+
+fn show(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Result<(), CliError> {
+    let view = View::new(wish, assessment);
+    let written = outputs::write(wish, &view, assessment, rows)?;
+    for path in &written {
+        wish.say(format_args!("wrote {}", path.display()));
+    }
+    if rows.len() < 2 {
+        wish.say(format_args!("it ended before the second row: there is nothing to draw"));
+    }
+    if wish.json {
+        print(&view.json()?)
+    } else if wish.quiet {
+        Ok(())
+    } else {
+        print(&view.text())
+    }
 }

@@ -1,7 +1,10 @@
 //! `abide inspect`: what a system file says, how it is read, and what can be told without integrating.
 
 mod caveat;
-mod table;
+mod criteria_text;
+mod criteria_view;
+mod second;
+pub(super) mod table;
 mod text;
 mod view;
 

@@ -1,6 +1,5 @@
 //! `abide survey`: a study → a run with its tables and its map.
 
-use std::io::{ErrorKind, Write};
 use std::path::PathBuf;
 use std::process::ExitCode;
 use std::sync::Arc;
@@ -9,6 +8,7 @@ use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
 use crate::assess::{self, BatchWork, Plan};
 use crate::cli::CliError;
 use crate::cli::args::SurveyArgs;
+use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
 use crate::cli::outputs::Finished;
 use crate::cli::progress::Progress;
 use crate::cli::vary;
@@ -17,7 +17,7 @@ use crate::figure;
 use crate::input::{self, StudyFile};
 use crate::survey::{
     Calm, Desk, Ended, Found, Grid, Identity, LARGE, OUTPUTS, Policy, Recovered, Run, Source, SurveyError,
-    cell_count, fill,
+    cell_count, fill, plan_of,
 };
 use crate::system::Study;
 
@@ -25,8 +25,6 @@ use crate::system::Study;
 const MANY_CELLS: u64 = 10_000_000;
 /// Up to so many cells each is looked at before the work for whether it can be followed; of more, so many.
 const LOOKED_AT: u64 = 20_000;
-/// Interrupted and resumable.
-const INTERRUPTED: u8 = 130;
 
 pub fn run(args: SurveyArgs) -> Result<ExitCode, CliError> {
     let wish = Wish::check(&args)?;
@@ -67,7 +65,7 @@ impl Wish {
         let grid = Grid::new(system.clone(), file.study.clone())
             .map_err(|error| CliError::Input(format!("{}: {}", file.system.path.display(), chain(&error))))?;
         let nominal = coords::configure(system).map_err(CliError::input)?;
-        let plan = Plan::for_study(&file.study, &nominal);
+        let plan = plan_of(&file.study, system, &nominal);
         let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
         let filling = args.fill || !args.every_cell && is_large(&file.study);
         let grid = Arc::new(grid);
@@ -100,7 +98,7 @@ impl Wish {
             plan: self.plan.clone(),
             cells: self.grid.cells(),
             axes: study.axes.iter().map(|axis| axis.path.clone()).collect(),
-            planets: system.planets.iter().map(|planet| planet.name.clone()).collect(),
+            planets: system.orbiting().map(|body| body.name.clone()).collect(),
         }
     }
 
@@ -264,27 +262,6 @@ fn refuse_many(cells: u64, really: bool) -> Result<(), CliError> {
         "the study has {cells} cells, more than {MANY_CELLS}; \
          if that is meant, confirm it with --really, else give its axes fewer cells"
     )))
-}
-
-/// Set by the first Ctrl-C or termination signal; a second one ends the process at once.
-fn stop_on_signal() -> Result<Arc<AtomicBool>, CliError> {
-    let stop = Arc::new(AtomicBool::new(false));
-    let seen = Arc::clone(&stop);
-    let handler = move || {
-        if seen.swap(true, Ordering::SeqCst) {
-            std::process::exit(i32::from(INTERRUPTED));
-        }
-    };
-    ctrlc::set_handler(handler).map_err(CliError::working)?;
-    Ok(stop)
-}
-
-/// To standard output; a reader that has seen enough and left is no failure.
-fn print(text: &str) -> Result<(), CliError> {
-    match std::io::stdout().write_all(text.as_bytes()) {
-        Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(CliError::working(error)),
-        _ => Ok(()),
-    }
 }
 
 fn told(error: SurveyError) -> CliError {

@@ -132,7 +132,9 @@ mod tests {
             epoch_jd: None,
             star: crate::system::Body { name: "star".to_owned(), stated: Default::default() },
             planets: Vec::new(),
+            companion: None,
             convention: Default::default(),
+            physics: Default::default(),
         };
         let units =
             ["d", "deg", "Msun", "Mjup", "Mearth", "Rsun", "Rjup", "Rearth", "m/s", "km/s", "au", "JD"];

@@ -1,5 +1,7 @@
 //! The view as a page of at most 100 columns.
 
+use super::criteria_text;
+use super::second::{companion_lines, physics_lines};
 use super::table::{PAGE_WIDTH, lines, short, significant, wrapped};
 use super::view::{FrameView, PairView, StepView, View};
 
@@ -19,6 +21,16 @@ pub fn page(view: &View) -> String {
     out.push(String::new());
     out.push("Bodies".to_string());
     out.extend(bodies(view));
+    if let Some(companion) = &view.companion {
+        out.push(String::new());
+        out.extend(companion_lines(companion));
+    }
+    let physics = physics_lines(&view.physics);
+    if !physics.is_empty() {
+        out.push(String::new());
+        out.push("Beside the pull of point masses".to_string());
+        out.extend(physics);
+    }
     out.push(String::new());
     out.push("Osculating elements (deg; the argument is that of the planet's pericentre)".to_string());
     out.extend(elements(&view.elements));
@@ -36,6 +48,7 @@ pub fn page(view: &View) -> String {
         );
         out.push(wrapped("  ", &text));
     }
+    out.extend(criteria_text::section(&view.criteria));
     out.push(String::new());
     out.push("Step".to_string());
     out.extend(step(view.step.as_ref()));
@@ -64,14 +77,16 @@ fn star(view: &View) -> String {
     line
 }
 
-/// What the file leaves out, planets that leave out the same together.
+/// What the file leaves out, bodies that leave out the same together.
 fn assumed(view: &View) -> Vec<String> {
     let mut groups: Vec<(&[&str], Vec<String>)> = Vec::new();
-    for planet in view.planets.iter().filter(|planet| !planet.assumed.is_empty()) {
-        let name = short(&planet.name, NAME);
-        match groups.iter_mut().find(|(keys, _)| *keys == planet.assumed.as_slice()) {
+    let planets = view.planets.iter().map(|planet| (&planet.name, &planet.assumed));
+    let companion = view.companion.iter().map(|body| (&body.name, &body.assumed));
+    for (name, assumed) in planets.chain(companion).filter(|(_, assumed)| !assumed.is_empty()) {
+        let name = short(name, NAME);
+        match groups.iter_mut().find(|(keys, _)| *keys == assumed.as_slice()) {
             Some((_, names)) => names.push(name),
-            None => groups.push((&planet.assumed, vec![name])),
+            None => groups.push((assumed, vec![name])),
         }
     }
     groups

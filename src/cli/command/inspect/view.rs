@@ -3,6 +3,8 @@
 use serde::Serialize;
 
 use super::caveat::{Caveat, caveats};
+use super::criteria_view::CriteriaView;
+use super::second::{CompanionView, PhysicsView, companion, has_meaning, physics};
 use crate::assess;
 use crate::coords::{Configuration, Elements};
 use crate::criteria::{self, Neighbours};
@@ -18,10 +20,14 @@ pub struct View {
     pub star: StarView,
     pub convention: ConventionView,
     pub planets: Vec<PlanetView>,
+    pub companion: Option<CompanionView>,
+    pub physics: PhysicsView,
+    /// In the frames that have a meaning for every body.
     pub elements: Vec<FrameView>,
     pub neighbours: Vec<PairView>,
     /// For two coplanar planets only.
     pub hill_balance: Option<BalanceView>,
+    pub criteria: CriteriaView,
     pub step: Option<StepView>,
     pub warnings: Vec<Caveat>,
 }
@@ -136,14 +142,19 @@ impl View {
             star: star(system, configuration),
             convention: convention(&system.convention, system.epoch_jd.is_some()),
             planets: planets(system, configuration),
+            companion: companion(system, configuration),
+            physics: physics(configuration),
             elements: [Frame::Astrocentric, Frame::Jacobi, Frame::Barycentric]
+                .into_iter()
+                .filter(|frame| has_meaning(*frame, configuration))
                 .map(|frame| in_frame(frame, configuration))
-                .into(),
+                .collect(),
             hill_balance: criteria::two_planet_balance(configuration).map(|balance| BalanceView {
                 found: balance.found,
                 needed: balance.needed,
                 stable: balance.stable(),
             }),
+            criteria: CriteriaView::new(configuration, &pairs),
             step: step(configuration, assess::auto_step_day(configuration)),
             warnings: caveats(configuration, &pairs),
             neighbours: pairs.iter().map(|pair| pair_view(pair, configuration)).collect(),
@@ -172,7 +183,7 @@ fn convention(convention: &Convention, has_epoch: bool) -> ConventionView {
     let elements = match convention.elements {
         Frame::Astrocentric => "astrocentric: each orbit about the star, mass parameter G (star + planet)",
         Frame::Jacobi => {
-            "Jacobi: about the centre of mass of star and planets of shorter period, G (these + planet)"
+            "Jacobi: about the centre of mass of star and bodies of shorter period, G (these + body)"
         }
         Frame::Barycentric => "barycentric: about the centre of mass of the whole system, G (total mass)",
     };
@@ -245,12 +256,12 @@ fn planets(system: &System, configuration: &Configuration) -> Vec<PlanetView> {
         .collect()
 }
 
-fn stated_key(body: &Body, group: Group) -> Option<Key> {
+pub(super) fn stated_key(body: &Body, group: Group) -> Option<Key> {
     body.stated.iter().map(|(key, _)| key).find(|key| key.group() == group)
 }
 
 /// The unit the file used for that quantity, if it is a unit of the same kind as `usual`.
-fn unit_of(body: &Body, group: Group, usual: &'static str) -> Unit {
+pub(super) fn unit_of(body: &Body, group: Group, usual: &'static str) -> Unit {
     let usual = Unit::from_word(usual).expect("the usual units are units");
     stated_key(body, group)
         .and_then(|key| body.stated.get(key))
@@ -259,7 +270,7 @@ fn unit_of(body: &Body, group: Group, usual: &'static str) -> Unit {
         .unwrap_or(usual)
 }
 
-fn assumed(body: &Body) -> Vec<&'static str> {
+pub(super) fn assumed(body: &Body) -> Vec<&'static str> {
     let has = |group: Group| body.stated.iter().any(|(key, _)| key.group() == group);
     let vector = [Key::ECosW, Key::SqrtECosW].into_iter().any(|key| body.stated.get(key).is_some());
     let all = [
@@ -320,20 +331,18 @@ fn pair_view(pair: &Neighbours, configuration: &Configuration) -> PairView {
     }
 }
 
-/// The step that a survey would take, with the planet that decides it; none when no planet is bound.
+/// The step that a survey would take, with the body that decides it; none when no planet is bound.
 fn step(configuration: &Configuration, step_d: f64) -> Option<StepView> {
-    let elements = configuration.elements_in(Frame::Astrocentric);
-    let periods = configuration.periods_of(Frame::Astrocentric, &elements);
-    let passage = |planet: usize| {
-        let mass_parameter = configuration.star_gm + configuration.planets[planet].gm;
-        let orbit = &elements[planet];
+    let orbits = configuration.orbits();
+    let passage = |body: usize| {
+        let orbit = &orbits[body].elements;
+        let mass_parameter = orbits[body].mass_parameter;
         kepler::pericentre_passage_day(orbit.semi_major_axis_au, orbit.eccentricity, mass_parameter)
     };
-    let deciding = (0..elements.len()).min_by(|&one, &other| passage(one).total_cmp(&passage(other)))?;
-    let (innermost, period_d) = periods
-        .iter()
-        .enumerate()
-        .filter_map(|(planet, period)| period.map(|period| (planet, period)))
+    let deciding = (0..orbits.len()).min_by(|&one, &other| passage(one).total_cmp(&passage(other)))?;
+    let (innermost, period_d) = configuration
+        .planet_indices()
+        .filter_map(|planet| orbits[planet].period_day().map(|period| (planet, period)))
         .min_by(|one, other| one.1.total_cmp(&other.1))?;
     (step_d > 0.0).then(|| StepView {
         step_d,

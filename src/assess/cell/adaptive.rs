@@ -1,0 +1,145 @@
+//! Blocks of steps done by the adaptive engine: inside encounters, and for what the symplectic scheme cannot hold.
+
+use std::ops::ControlFlow;
+
+use super::{Approach, Cell, Loss, Next};
+use crate::assess::plan::Plan;
+use crate::integrate::radau::{Engine, EventKind, RadauError, Stop, TOLERANCE, Watch};
+use crate::integrate::{Block, SAMPLE_EVERY, from_map, to_map};
+use crate::verdict::LostHow;
+
+/// A block done, or the end met in it (time since the start of the block).
+enum Passed {
+    Through,
+    Ended(f64, End),
+}
+
+#[derive(Clone, Copy)]
+struct End {
+    planet: usize,
+    other: Option<usize>,
+    how: LostHow,
+}
+
+impl Cell {
+    /// Does again the block that `after` holds in `lane`, from `before`, with the adaptive engine; the lane then holds
+    /// the end of the block in the map's variables, as if it had got there itself.
+    pub(super) fn pass(&mut self, plan: &Plan, before: &Block, after: &mut Block, lane: usize) -> Next {
+        let mut alone = self.alone(plan);
+        before.copy_lane(lane, &mut alone, 0);
+        from_map(&mut alone, plan.splitting());
+        let passed = self.run(plan, &mut alone);
+        match passed {
+            Ok(Passed::Through) => {
+                alone.forget_pairs(0);
+                let corrected = alone.clone();
+                to_map(&mut alone, plan.splitting());
+                alone.copy_lane(0, after, lane);
+                self.note_block(plan, after, &corrected, 0, lane)
+            }
+            Ok(Passed::Ended(day, end)) => {
+                let time_day = self.time_day(plan) + day;
+                self.part_steps = (day / self.step_day).ceil() as u64;
+                let loss = Loss { time_day, planet: end.planet, other: end.other, how: end.how };
+                Next::End(Box::new(self.assessment(plan, Some(loss))))
+            }
+            Err(_) => {
+                // The engine could not go on (a passage too sharp for its smallest step): nothing can be trusted.
+                self.conserved.worst_energy = f64::INFINITY;
+                self.passage_error = f64::INFINITY;
+                self.part_steps = 1;
+                Next::End(Box::new(self.assessment(plan, None)))
+            }
+        }
+    }
+
+    /// From the start again, every block with the adaptive engine.
+    pub(super) fn all_adaptive(&mut self, plan: &Plan) -> Next {
+        self.adaptive = true;
+        self.set_step(self.step_day, plan);
+        Next::Again
+    }
+
+    /// Advances the true state in lane 0 of `alone` by one block, with the samples of the kernel.
+    fn run(&mut self, plan: &Plan, alone: &mut Block) -> Result<Passed, RadauError> {
+        let tangents: Vec<_> = if plan.megno { vec![alone.tangent(0)] } else { Vec::new() };
+        let mut engine = Engine::from_state(&alone.state(0), &tangents, &self.forces, TOLERANCE)?;
+        let watch = Watch {
+            approach_au: f64::INFINITY,
+            radii_au: self.limits.radii_au.clone(),
+            escape_au: Some(self.limits.escape_au),
+            apart: None,
+        };
+        let step = self.step_day;
+        let mut scratch = alone.clone();
+        for sample in 0..=plan.block_steps / SAMPLE_EVERY {
+            // The kernel samples half a step into every fourth step; the last round goes to the end of the block.
+            let last = sample * SAMPLE_EVERY == plan.block_steps;
+            let day =
+                step * if last { plan.block_steps as f64 } else { (sample * SAMPLE_EVERY) as f64 + 0.5 };
+            let mut met = None;
+            let stop = engine.advance(day, &watch, |event| {
+                if event.kind != EventKind::Approach {
+                    return ControlFlow::Break(());
+                }
+                if event.first > 0 && self.approach_ends(event.first - 1, event.second - 1, event.distance_au)
+                {
+                    met = Some((event.first - 1, event.second - 1, event.distance_au));
+                    return ControlFlow::Break(());
+                }
+                ControlFlow::Continue(())
+            })?;
+            if let Stop::At(event) = stop {
+                let (first, second) = (event.first.saturating_sub(1), event.second - 1);
+                let end = match (event.kind, met) {
+                    (EventKind::Escape, _) => End { planet: second, other: None, how: LostHow::Escape },
+                    (EventKind::Collision, _) if event.first == 0 => {
+                        End { planet: second, other: None, how: LostHow::Star }
+                    }
+                    (_, Some((i, j, au))) => self.met(i, j, au),
+                    _ => self.met(first, second, 0.0),
+                };
+                self.note_energy(&engine);
+                return Ok(Passed::Ended(event.day, end));
+            }
+            if plan.megno && !last {
+                let tangent = engine.tangent(0).unwrap_or_else(|| alone.tangent(0));
+                scratch.replace(0, &engine.state(), &tangent);
+                scratch.sample();
+            }
+        }
+        self.note_energy(&engine);
+        let tangent = engine.tangent(0).unwrap_or_else(|| alone.tangent(0));
+        scratch.replace(0, &engine.state(), &tangent);
+        *alone = scratch;
+        Ok(Passed::Through)
+    }
+
+    fn met(&self, i: usize, j: usize, au: f64) -> End {
+        let pair = self.limits.pairs.iter().find(|p| (p.i, p.j) == (i.min(j), i.max(j)));
+        let how = pair.map_or(LostHow::Collision, |pair| pair.how(au));
+        let (planet, other) = if self.start.gm[i] < self.start.gm[j] { (i, j) } else { (j, i) };
+        End { planet, other: Some(other), how }
+    }
+
+    /// Keeps the smallest approach, located to rounding; says whether it ends the configuration.
+    fn approach_ends(&mut self, i: usize, j: usize, au: f64) -> bool {
+        let Some(pair) = self.limits.pairs.iter().find(|p| (p.i, p.j) == (i.min(j), i.max(j))) else {
+            return false;
+        };
+        let now = Approach { au, hill: au / pair.hill_au, pair: (pair.i, pair.j) };
+        if self.approach.is_none_or(|old| now.hill < old.hill) {
+            self.approach = Some(now);
+        }
+        au < pair.end_au
+    }
+
+    /// The error of the passage itself counts too: with relativity in full the potential's energy says nothing of it.
+    fn note_energy(&mut self, engine: &Engine) {
+        if let Some(error) = engine.energy_error() {
+            let error = if error.is_finite() { error.abs() } else { f64::INFINITY };
+            self.passages += 1;
+            self.passage_error = self.passage_error.max(error);
+        }
+    }
+}

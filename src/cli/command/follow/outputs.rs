@@ -1,0 +1,128 @@
+//! What a followed configuration leaves: its series as a table and as a figure.
+
+use std::path::PathBuf;
+
+use super::checkpoint::{PICTURE, SERIES};
+use super::view::View;
+use super::wish::Wish;
+use crate::assess::{Assessment, Range, Row};
+use crate::cli::CliError;
+use crate::disk;
+use crate::figure::render::{self, Width};
+use crate::figure::{self, Figure, PlanetCurves, SeriesInput};
+use crate::report::{PlanetSeries, Series, VERSION, printed, series_table};
+use crate::system::Frame;
+
+/// Writes table and figure, and names them. A configuration that ends at its start has nothing to draw.
+pub fn write(
+    wish: &Wish,
+    view: &View<'_>,
+    assessment: &Assessment,
+    rows: &[Row],
+) -> Result<Vec<PathBuf>, CliError> {
+    let series = series(wish, assessment, rows);
+    let table = series_table(&series).to_ecsv().map_err(CliError::working)?;
+    let mut written = vec![wish.folder.join(SERIES)];
+    disk::write_beside_then_rename(&written[0], table.as_bytes())?;
+    if rows.len() > 1 {
+        let figure = picture(wish, view, assessment, rows)?;
+        let bytes = render::png(&figure, Width::PAGE).map_err(CliError::working)?;
+        let path = wish.folder.join(PICTURE);
+        disk::write_beside_then_rename(&path, &bytes)?;
+        written.push(path);
+    }
+    Ok(written)
+}
+
+fn series(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Series {
+    let planets = wish.configuration.planets.iter().enumerate();
+    let absent = |number: Option<f64>| number.unwrap_or(f64::NAN);
+    Series {
+        title: wish.title().to_owned(),
+        time_day: rows.iter().map(|row| row.time_day).collect(),
+        planets: planets
+            .clone()
+            .map(|(index, planet)| PlanetSeries {
+                name: planet.name.clone(),
+                elements: rows.iter().map(|row| row.elements[index]).collect(),
+            })
+            .collect(),
+        extents: planets.map(|(index, _)| rows.iter().map(|row| row.extent[index]).collect()).collect(),
+        energy_error: rows.iter().map(|row| row.energy_error).collect(),
+        angular_momentum_error: rows.iter().map(|row| row.angular_momentum_error).collect(),
+        megno: rows.iter().map(|row| absent(row.megno)).collect(),
+        megno_mean: rows.iter().map(|row| absent(row.mean_megno)).collect(),
+        lyapunov_per_day: rows.iter().map(|row| absent(row.lyapunov_per_day)).collect(),
+        scheme: assessment.scheme.to_owned(),
+        step_day: assessment.step_day,
+    }
+}
+
+/// So many rows are needed for the ranges of the rows to run together into bands.
+const BAND_ROWS: usize = 400;
+
+/// Whether each row stands with the smallest and the largest value since the row before, so that thinning hides no
+/// extreme; fewer rows would give a comb, and rows of one moment each have no range.
+fn has_bands(rows: &[Row]) -> bool {
+    let wide = |row: &Row| row.extent.iter().any(|extent| extent.eccentricity.min < extent.eccentricity.max);
+    rows.len() >= BAND_ROWS && rows.iter().any(wide)
+}
+
+fn picture(wish: &Wish, view: &View<'_>, assessment: &Assessment, rows: &[Row]) -> Result<Figure, CliError> {
+    let bands = has_bands(rows);
+    let each = |of: &dyn Fn(&Row) -> (f64, Range)| -> Vec<f64> {
+        let points = rows.iter().map(of);
+        if bands {
+            points.flat_map(|(_, range)| [range.min, range.max]).collect()
+        } else {
+            points.map(|(now, _)| now).collect()
+        }
+    };
+    let once = |of: fn(&Row) -> f64| each(&|row| (of(row), Range { min: of(row), max: of(row) }));
+    let planets = 0..wish.configuration.planets.len();
+    let values: Vec<(Vec<f64>, Vec<f64>)> = planets
+        .map(|k| {
+            let e = |row: &Row| (row.elements[k].eccentricity, row.extent[k].eccentricity);
+            let a = |row: &Row| (row.elements[k].semi_major_axis_au, row.extent[k].semi_major_axis_au);
+            (each(&e), each(&a))
+        })
+        .collect();
+    let curves = wish.configuration.planets.iter().zip(&values).map(|(planet, (e, a))| PlanetCurves {
+        name: &planet.name,
+        eccentricity: e,
+        semi_major_axis_au: a,
+    });
+    let caption = caption(wish, view, assessment, bands);
+    let input = SeriesInput {
+        title: wish.title(),
+        time_day: &once(|row| row.time_day),
+        planets: &curves.collect::<Vec<_>>(),
+        megno_mean: &once(|row| row.mean_megno.unwrap_or(f64::NAN)),
+        energy_error: &once(|row| row.energy_error),
+        caption: &caption,
+    };
+    figure::series(&input).map_err(CliError::working)
+}
+
+fn caption(wish: &Wish, view: &View<'_>, assessment: &Assessment, bands: bool) -> Vec<String> {
+    let headline = view.headline();
+    let mut letters = headline.chars();
+    let headline: String = letters.next().into_iter().flat_map(char::to_uppercase).chain(letters).collect();
+    let error = assessment.energy_error.map_or("not measured".to_owned(), printed);
+    let frame = match wish.file.system.convention.elements {
+        Frame::Astrocentric => "",
+        Frame::Jacobi => " (the file states Jacobi ones)",
+        Frame::Barycentric => " (the file states barycentric ones)",
+    };
+    let bands =
+        if bands { "; at each time the smallest and the largest value since the time before" } else { "" };
+    vec![
+        format!("{headline}."),
+        format!("Osculating astrocentric elements{frame}{bands}."),
+        format!(
+            "Scheme {}, step {} d; largest relative energy error {error}. {VERSION}.",
+            view.scheme(),
+            printed(assessment.step_day),
+        ),
+    ]
+}

@@ -1,0 +1,301 @@
+//! The verdict with its numbers, in words and as JSON.
+
+use serde_json::{Map, Value, json};
+
+use super::why::{Why, megno};
+use super::wish::{Wish, count};
+use crate::assess::{
+    Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day, outermost_period_day,
+};
+use crate::cli::CliError;
+use crate::cli::command::inspect::table::{lines, significant, wrapped};
+use crate::kepler::pericentre_passage_day;
+use crate::report::{VERSION, short, time_words};
+use crate::system::Frame;
+use crate::units::{DEGREE, YEAR_DAY};
+use crate::verdict::{CHAOTIC_FROM, LEAST_OUTER_ORBITS, REGULAR_UP_TO, Verdict};
+
+/// Width of the words that lead the lines.
+const LEAD: usize = 11;
+
+pub struct View<'a> {
+    wish: &'a Wish,
+    assessment: &'a Assessment,
+    pub why: Why,
+    names: Vec<&'a str>,
+    inner: Counted,
+    outer: Counted,
+    passage: Passage,
+}
+
+/// A planet and how many of its orbits were followed.
+struct Counted {
+    planet: usize,
+    period_day: f64,
+    orbits: f64,
+}
+
+/// The shortest pericentre passage time scale and whose it is.
+struct Passage {
+    planet: usize,
+    day: f64,
+}
+
+impl<'a> View<'a> {
+    pub fn new(wish: &'a Wish, assessment: &'a Assessment) -> View<'a> {
+        let configuration = &wish.configuration;
+        let names: Vec<&str> = configuration.planets.iter().map(|planet| planet.name.as_str()).collect();
+        let orbits = configuration.elements_in(Frame::Astrocentric);
+        let periods = configuration.periods_of(Frame::Astrocentric, &orbits);
+        let counted = |period_day: f64| Counted {
+            planet: periods.iter().position(|period| *period == Some(period_day)).unwrap_or(0),
+            period_day,
+            orbits: assessment.end_time_day / period_day,
+        };
+        let passages = configuration.planets.iter().zip(&orbits).map(|(planet, orbit)| {
+            let mass_parameter = configuration.star_gm + planet.gm;
+            pericentre_passage_day(orbit.semi_major_axis_au, orbit.eccentricity, mass_parameter)
+        });
+        let shortest = passages.enumerate().filter(|(_, day)| day.is_finite());
+        let shortest = shortest.min_by(|one, other| one.1.total_cmp(&other.1)).unwrap_or((0, f64::NAN));
+        let outer = counted(outermost_period_day(configuration));
+        let escape_au = wish.plan.escape_limit_au(configuration);
+        View {
+            why: Why::of(assessment, &wish.plan, &names, escape_au, (outer.planet, outer.orbits)),
+            inner: counted(innermost_period_day(configuration)),
+            outer,
+            passage: Passage { planet: shortest.0, day: shortest.1 },
+            names,
+            wish,
+            assessment,
+        }
+    }
+
+    /// The verdict and when, as a title has it: "regular over 1e4 orbits of b (850 yr)".
+    pub fn headline(&self) -> String {
+        let a = self.assessment;
+        let orbits = format!("{} orbits of {}", count(self.inner.orbits), self.names[self.inner.planet]);
+        let time = time_words(a.end_time_day);
+        match (a.verdict, a.loss) {
+            (Verdict::Lost, Some(loss)) if a.end_time_day > 0.0 => {
+                format!("lost by {} after {orbits} ({time})", loss.how.word())
+            }
+            (Verdict::Lost, Some(loss)) => format!("lost by {} at the start", loss.how.word()),
+            (verdict, _) => format!("{} over {orbits} ({time})", verdict.word()),
+        }
+    }
+
+    fn span(&self) -> String {
+        let (inner, outer) = (&self.inner, &self.outer);
+        let mut text = format!("{} orbits of {}", count(inner.orbits), self.names[inner.planet]);
+        if outer.planet != inner.planet {
+            text.push_str(&format!(", {} of {}", count(outer.orbits), self.names[outer.planet]));
+        }
+        text.push_str(&format!(", {}", time_words(self.assessment.end_time_day)));
+        if self.assessment.end_time_day < self.wish.plan.span_day {
+            text.push_str(&format!("; asked: {}", self.wish.span_words()));
+        }
+        text
+    }
+
+    pub fn scheme(&self) -> String {
+        let corrected = self.wish.plan.splitting().corrected;
+        let auto = self.wish.options.iter().any(|o| o.flag == "--scheme" && o.meaning == "auto");
+        format!(
+            "{}{}, democratic heliocentric coordinates{}",
+            self.assessment.scheme,
+            if corrected { " with symplectic corrector" } else { "" },
+            if auto { " (auto)" } else { "" }
+        )
+    }
+
+    fn step(&self) -> String {
+        let a = self.assessment;
+        let per_passage = self.passage.day / a.step_day;
+        let mut text = format!(
+            "{} d, {}; {per_passage:.1} in the shortest pericentre passage ({}: {} d), {:.1} per orbit of {}",
+            significant(a.step_day, 4),
+            match (&self.wish.plan.step_why, a.redone) {
+                (StepWhy::Asked { .. }, 0) => "as asked".to_owned(),
+                (StepWhy::Pericentre { .. }, 0) =>
+                    "auto: 20 or more to a passage, so that step resonance does not feign chaos".to_owned(),
+                (_, redone) => format!(
+                    "made smaller {} for the energy error",
+                    match redone {
+                        1 => "once".to_owned(),
+                        2 => "twice".to_owned(),
+                        more => format!("{more} times"),
+                    }
+                ),
+            },
+            self.names[self.passage.planet],
+            significant(self.passage.day, 4),
+            self.inner.period_day / a.step_day,
+            self.names[self.inner.planet],
+        );
+        if per_passage < FEWEST_STEPS_PER_PASSAGE {
+            text.push_str(&format!(
+                ". Warning: below {FEWEST_STEPS_PER_PASSAGE} to a passage step resonance can feign chaos"
+            ));
+        }
+        let attempt = if a.redone > 0 { "at the last attempt" } else { "in all" };
+        text.push_str(&format!(". {} steps {attempt}", count(self.steps())));
+        text
+    }
+
+    /// Steps up to the end, also of the last block when the end came within it.
+    fn steps(&self) -> f64 {
+        (self.assessment.end_time_day / self.assessment.step_day).round()
+    }
+
+    fn chaos(&self) -> String {
+        let a = self.assessment;
+        let mean = a.megno.map_or("⟨Y⟩ not measured".to_owned(), |y| format!("⟨Y⟩ = {}", megno(y)));
+        match self.lyapunov_yr() {
+            Some((time, error)) => {
+                let (unit, size) = if time < 1.0 { ("d", YEAR_DAY) } else { ("yr", 1.0) };
+                let orbits = time * YEAR_DAY / self.inner.period_day;
+                format!(
+                    "{mean}; Lyapunov time {} ± {} {unit} ({} orbits of {})",
+                    short(time * size),
+                    short(error * size),
+                    short(orbits),
+                    self.names[self.inner.planet]
+                )
+            }
+            None if a.verdict == Verdict::Regular => {
+                format!("{mean}; no Lyapunov time: of a regular orbit it would only reflect the span")
+            }
+            None => mean,
+        }
+    }
+
+    /// 1/λ and its standard error σ/λ², yr.
+    fn lyapunov_yr(&self) -> Option<(f64, f64)> {
+        let l = self.assessment.lyapunov.filter(|l| l.per_day > 0.0)?;
+        Some((1.0 / l.per_day / YEAR_DAY, l.error_per_day / l.per_day.powi(2) / YEAR_DAY))
+    }
+
+    pub fn energy(&self) -> String {
+        let asked = short(self.wish.plan.energy_error);
+        match self.assessment.energy_error {
+            None => format!("not measured ({asked} asked)"),
+            Some(error) => format!("largest relative error {} ({asked} asked)", short(error)),
+        }
+    }
+
+    fn approach(&self) -> Option<String> {
+        let found = self.assessment.smallest_approach?;
+        let (i, j) = found.pair;
+        Some(format!(
+            "{} and {} to {} mutual Hill radii ({} au){}",
+            self.names[i],
+            self.names[j],
+            short(found.hill),
+            significant(found.au, 4),
+            if self.names.len() > 2 { ", the closest of all pairs" } else { "" }
+        ))
+    }
+
+    /// Lines ending in a newline.
+    pub fn text(&self) -> String {
+        let a = self.assessment;
+        let momentum = a.angular_momentum_error.map_or("not measured".to_owned(), |e| {
+            format!("largest relative error of the total angular momentum {}", short(e))
+        });
+        let mut entries = vec![
+            ("why", self.why.to_string()),
+            ("span", self.span()),
+            ("chaos", self.chaos()),
+            ("scheme", self.scheme()),
+            ("step", self.step()),
+            ("energy", self.energy()),
+            ("momentum", momentum),
+        ];
+        entries.extend(self.approach().map(|approach| ("approach", approach)));
+        let mut out = vec![format!("{}: {}", self.wish.title(), self.headline()), String::new()];
+        out.extend(entries.iter().map(|(lead, words)| wrapped(&format!("{lead:<LEAD$}"), words)));
+        if !a.extent.is_empty() {
+            out.push(String::new());
+            out.extend(self.extents());
+        }
+        out.join("\n") + "\n"
+    }
+
+    fn extents(&self) -> Vec<String> {
+        let from_to = |range: &Range, scale: f64, decimals: usize| {
+            format!("{:.decimals$} to {:.decimals$}", range.min / scale, range.max / scale)
+        };
+        let rows = self.names.iter().zip(&self.assessment.extent).map(|(name, extent)| {
+            let axes = extent.semi_major_axis_au;
+            vec![
+                (*name).to_owned(),
+                format!("{} to {}", significant(axes.min, 6), significant(axes.max, 6)),
+                from_to(&extent.eccentricity, 1.0, 5),
+                from_to(&extent.inclination, DEGREE, 3),
+            ]
+        });
+        lines(&["range of", "a (au)", "e", "i (deg)"], &rows.collect::<Vec<_>>(), &[])
+    }
+
+    /// The same for scripts; what is absent is null. Ends in a newline.
+    pub fn json(&self) -> Result<String, CliError> {
+        let a = self.assessment;
+        let name = |planet: usize| self.names[planet];
+        let extent: Map<String, Value> = self
+            .names
+            .iter()
+            .zip(&a.extent)
+            .map(|(name, extent)| {
+                let pair = |range: &Range, scale: f64| json!([range.min / scale, range.max / scale]);
+                let ranges = json!({
+                    "a_au": pair(&extent.semi_major_axis_au, 1.0),
+                    "e": pair(&extent.eccentricity, 1.0),
+                    "i_deg": pair(&extent.inclination, DEGREE),
+                });
+                ((*name).to_owned(), ranges)
+            })
+            .collect();
+        let value = json!({
+            "title": self.wish.title(),
+            "version": VERSION,
+            "verdict": a.verdict.word(),
+            "why": self.why.to_string(),
+            "thresholds": {
+                "regular_up_to": REGULAR_UP_TO,
+                "chaotic_from": CHAOTIC_FROM,
+                "least_outer_orbits": LEAST_OUTER_ORBITS,
+            },
+            "loss": a.loss.map(|loss| json!({
+                "time_yr": loss.time_day / YEAR_DAY,
+                "planet": name(loss.planet),
+                "other": loss.other.map(name),
+                "how": loss.how.word(),
+            })),
+            "span_yr": self.wish.plan.span_day / YEAR_DAY,
+            "end_time_yr": a.end_time_day / YEAR_DAY,
+            "inner": { "planet": name(self.inner.planet), "orbits": self.inner.orbits },
+            "outer": { "planet": name(self.outer.planet), "orbits": self.outer.orbits },
+            "megno_mean": a.megno,
+            "lyapunov_time_yr": self.lyapunov_yr().map(|(time, error)| json!({ "value": time, "error": error })),
+            "energy_error": a.energy_error,
+            "energy_error_asked": self.wish.plan.energy_error,
+            "angular_momentum_error": a.angular_momentum_error,
+            "scheme": a.scheme,
+            "step_d": a.step_day,
+            "step_why": self.wish.plan.step_why.to_string(),
+            "steps_per_passage": self.passage.day / a.step_day,
+            "steps": self.steps() as u64,
+            "redone": a.redone,
+            "smallest_approach": a.smallest_approach.map(|found| json!({
+                "pair": [name(found.pair.0), name(found.pair.1)],
+                "hill": found.hill,
+                "au": found.au,
+            })),
+            "extent": extent,
+        });
+        let mut text = serde_json::to_string_pretty(&value).map_err(CliError::working)?;
+        text.push('\n');
+        Ok(text)
+    }
+}

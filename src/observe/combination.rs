@@ -1,0 +1,268 @@
+//! Integer combinations of fundamental frequencies, to name the lines of a signal.
+
+use std::fmt;
+
+/// How a fundamental frequency behaves when the whole system is turned.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Kind {
+    /// n: turns with the system.
+    Motion,
+    /// g: turns with the system.
+    Pericentre,
+    /// s: turns with the system; only an even number of them is seen by quantities of the plane.
+    Node,
+    /// Of a libration: the same however the system is turned.
+    Libration,
+}
+
+/// A fundamental frequency with its name.
+///
+/// They must be independent: in a p:q resonance p n_outer − q n_inner − (p−q) g = 0, and one n has to give way to the
+/// frequency of the libration.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Fundamental {
+    pub name: String,
+    pub kind: Kind,
+    pub rad_day: f64,
+}
+
+/// Which combinations a signal can have (d'Alembert's rules).
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Rule {
+    /// Sum of the coefficients of n, g and s: 1 for exp(iλ), e exp(iϖ) and sin(i/2) exp(iΩ), 0 for a resonant angle.
+    pub turns: i32,
+    /// Whether the number of s is odd: for sin(i/2) exp(iΩ) only.
+    pub odd_nodes: bool,
+}
+
+impl Rule {
+    pub const PLANE: Rule = Rule { turns: 1, odd_nodes: false };
+    pub const NODE: Rule = Rule { turns: 1, odd_nodes: true };
+    pub const ANGLE: Rule = Rule { turns: 0, odd_nodes: false };
+}
+
+/// Σ k_i ν_i with small integers.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Combination {
+    pub coefficients: Vec<i32>,
+    /// The line less the combination, rad/day.
+    pub misfit_rad_day: f64,
+    /// How many other combinations of no larger Σ|k| fit within the tolerance too: with any, the name is a guess.
+    pub rivals: usize,
+}
+
+impl Combination {
+    /// Σ |k|.
+    pub fn size(&self) -> u32 {
+        self.coefficients.iter().map(|k| k.unsigned_abs()).sum()
+    }
+
+    /// In the names of the fundamentals, as "2n_b − 3n_c + g1"; "0" for none.
+    pub fn words(&self, fundamentals: &[Fundamental]) -> String {
+        let mut words = String::new();
+        for (k, fundamental) in self.coefficients.iter().zip(fundamentals).filter(|(k, _)| **k != 0) {
+            let sign = match (words.is_empty(), *k < 0) {
+                (true, true) => "−",
+                (true, false) => "",
+                (false, true) => " − ",
+                (false, false) => " + ",
+            };
+            let count = if k.unsigned_abs() == 1 { String::new() } else { k.unsigned_abs().to_string() };
+            words += &format!("{sign}{count}{}", fundamental.name);
+        }
+        if words.is_empty() { "0".into() } else { words }
+    }
+}
+
+impl fmt::Display for Kind {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(match self {
+            Kind::Motion => "mean motion",
+            Kind::Pericentre => "pericentre frequency",
+            Kind::Node => "node frequency",
+            Kind::Libration => "libration frequency",
+        })
+    }
+}
+
+/// All combinations that a rule allows, ready to be compared with lines.
+#[derive(Clone, Debug)]
+pub struct Namer {
+    /// Σ k ν and k, by Σ|k|.
+    table: Vec<(f64, Vec<i32>)>,
+    /// Whole turns per sample, rad/day: lines are known up to these; 0 when sampling folds nothing.
+    fold_rad_day: f64,
+}
+
+/// Most combinations looked at: the largest Σ|k| is what this allows, and at most [`LARGEST_SIZE`].
+const MOST: usize = 100_000;
+const LARGEST_SIZE: u32 = 14;
+
+impl Namer {
+    /// Combinations of these fundamentals with Σ|k| as large as a bound on their number allows (14 for up to four, 6 or so for
+    /// eight).
+    ///
+    /// `fold_rad_day` is 2π over the sampling time when the lines come from samples too sparse for the fastest of them,
+    /// else 0.
+    pub fn new(fundamentals: &[Fundamental], rule: Rule, fold_rad_day: f64) -> Namer {
+        let mut table = Vec::new();
+        for size in 0..=LARGEST_SIZE {
+            let before = table.len();
+            fill(fundamentals, rule, size, &mut vec![0; fundamentals.len()], 0, &mut table);
+            if table.len() > MOST {
+                table.truncate(before);
+                break;
+            }
+        }
+        Namer { table, fold_rad_day }
+    }
+
+    /// The simplest combination, not all of it 0, that vanishes within `tolerance_rad_day`: fundamentals that are not
+    /// independent, as 2n_b − 3n_c + g1 = 0 in a 3:2 resonance. Ask it of a rule for angles; the first coefficient that
+    /// is not 0 is positive.
+    pub fn relation(&self, tolerance_rad_day: f64) -> Option<Combination> {
+        let leading = |k: &[i32]| k.iter().copied().find(|k| *k != 0).unwrap_or(0) > 0;
+        let near = |value: &f64| value.abs() <= tolerance_rad_day;
+        let mut fitting = self.table.iter().filter(|(value, k)| leading(k) && near(value));
+        let (value, coefficients) = fitting.next()?;
+        let size: u32 = coefficients.iter().map(|k| k.unsigned_abs()).sum();
+        let alike = |k: &[i32]| k.iter().map(|k| k.unsigned_abs()).sum::<u32>() == size;
+        let rivals = fitting.take_while(|(_, k)| alike(k)).count();
+        Some(Combination { coefficients: coefficients.clone(), misfit_rad_day: -value, rivals })
+    }
+
+    /// The simplest combination within `tolerance_rad_day` of a frequency; the nearest of those equally simple.
+    pub fn name(&self, rad_day: f64, tolerance_rad_day: f64) -> Option<Combination> {
+        let misfit = |value: f64| {
+            let gap = rad_day - value;
+            if self.fold_rad_day > 0.0 {
+                gap - (gap / self.fold_rad_day).round() * self.fold_rad_day
+            } else {
+                gap
+            }
+        };
+        let size = |k: &[i32]| k.iter().map(|k| k.unsigned_abs()).sum::<u32>();
+        let mut fitting = self.table.iter().filter(|(value, _)| misfit(*value).abs() <= tolerance_rad_day);
+        let first = fitting.next()?;
+        let simplest = size(&first.1);
+        let alike: Vec<&(f64, Vec<i32>)> =
+            std::iter::once(first).chain(fitting.take_while(|(_, k)| size(k) == simplest)).collect();
+        let best = alike.iter().min_by(|one, other| misfit(one.0).abs().total_cmp(&misfit(other.0).abs()))?;
+        Some(Combination {
+            coefficients: best.1.clone(),
+            misfit_rad_day: misfit(best.0),
+            rivals: alike.len() - 1,
+        })
+    }
+}
+
+/// Adds the combinations whose coefficients from `at` on have Σ|k| = `left` exactly.
+fn fill(
+    fundamentals: &[Fundamental],
+    rule: Rule,
+    left: u32,
+    k: &mut Vec<i32>,
+    at: usize,
+    table: &mut Vec<(f64, Vec<i32>)>,
+) {
+    if table.len() > MOST {
+        return;
+    }
+    if at == fundamentals.len() {
+        if left == 0 && allowed(fundamentals, rule, k) {
+            let value = k.iter().zip(fundamentals).map(|(k, f)| f64::from(*k) * f.rad_day).sum();
+            table.push((value, k.clone()));
+        }
+        return;
+    }
+    for size in 0..=left {
+        for sign in [1, -1] {
+            if size == 0 && sign < 0 {
+                continue;
+            }
+            k[at] = sign * size as i32;
+            fill(fundamentals, rule, left - size, k, at + 1, table);
+        }
+    }
+    k[at] = 0;
+}
+
+fn allowed(fundamentals: &[Fundamental], rule: Rule, k: &[i32]) -> bool {
+    let of = |wanted: fn(Kind) -> bool| -> i32 {
+        k.iter().zip(fundamentals).filter(|(_, f)| wanted(f.kind)).map(|(k, _)| k).sum()
+    };
+    let turns = of(|kind| kind != Kind::Libration);
+    let nodes = of(|kind| kind == Kind::Node);
+    turns == rule.turns && (nodes.rem_euclid(2) == 1) == rule.odd_nodes
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn two_planets() -> Vec<Fundamental> {
+        [
+            ("n_b", Kind::Motion, 0.713),
+            ("n_c", Kind::Motion, 0.3131),
+            ("g1", Kind::Pericentre, 1.17e-3),
+            ("g2", Kind::Pericentre, 3.31e-4),
+        ]
+        .map(|(name, kind, rad_day)| Fundamental { name: name.into(), kind, rad_day })
+        .into()
+    }
+
+    #[test]
+    fn a_combination_is_found_and_written() {
+        let fundamentals = two_planets();
+        let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
+        let line = 2.0 * 0.713 - 3.0 * 0.3131 + 2.0 * 1.17e-3;
+        let found = namer.name(line + 1e-9, 1e-8).unwrap();
+        assert_eq!(found.coefficients, [2, -3, 2, 0]);
+        assert_eq!(found.words(&fundamentals), "2n_b − 3n_c + 2g1");
+        assert_eq!((found.size(), found.rivals), (7, 0));
+        assert!((found.misfit_rad_day - 1e-9).abs() < 1e-14);
+        assert_eq!(namer.name(1.17e-3, 1e-9).unwrap().words(&fundamentals), "g1");
+        assert!(namer.name(0.05, 1e-12).is_none());
+    }
+
+    #[test]
+    fn the_rule_holds_for_everything_offered() {
+        for (rule, turns) in [(Rule::PLANE, 1), (Rule::ANGLE, 0)] {
+            let namer = Namer::new(&two_planets(), rule, 0.0);
+            assert!(namer.table.len() > 500);
+            assert!(namer.table.iter().all(|(_, k)| k.iter().sum::<i32>() == turns));
+        }
+        // The difference of two lines of the plane is a line of an angle, and a line alone is not.
+        let angle = Namer::new(&two_planets(), Rule::ANGLE, 0.0);
+        assert!(angle.name(0.713, 1e-10).is_none());
+        assert_eq!(angle.name(0.713 - 0.3131, 1e-10).unwrap().coefficients, [1, -1, 0, 0]);
+    }
+
+    #[test]
+    fn nodes_come_in_pairs_in_the_plane() {
+        let mut fundamentals = two_planets();
+        fundamentals.push(Fundamental { name: "s2".into(), kind: Kind::Node, rad_day: -9.1e-4 });
+        let plane = Namer::new(&fundamentals, Rule::PLANE, 0.0);
+        let line = 2.0 * -9.1e-4 - 1.17e-3;
+        assert_eq!(plane.name(line, 1e-10).unwrap().words(&fundamentals), "−g1 + 2s2");
+        assert!(plane.name(-9.1e-4, 1e-12).is_none());
+        let node = Namer::new(&fundamentals, Rule::NODE, 0.0);
+        assert_eq!(node.name(-9.1e-4, 1e-10).unwrap().words(&fundamentals), "s2");
+    }
+
+    #[test]
+    fn librations_do_not_count_as_turns() {
+        let fundamentals = [
+            Fundamental { name: "g1".into(), kind: Kind::Pericentre, rad_day: 1e-3 },
+            Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: 0.0301 },
+        ];
+        let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
+        assert_eq!(namer.name(1e-3 + 2.0 * 0.0301, 1e-10).unwrap().words(&fundamentals), "g1 + 2l");
+    }
+
+    #[test]
+    fn folded_lines_are_found_too() {
+        let namer = Namer::new(&two_planets(), Rule::PLANE, 0.2);
+        assert_eq!(namer.name(0.713 - 0.8, 1e-10).unwrap().coefficients, [1, 0, 0, 0]);
+    }
+}

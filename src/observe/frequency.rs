@@ -1,0 +1,154 @@
+//! Fundamental frequencies from a series of elements, and their drift as a sign of chaos.
+
+use super::ElementSeries;
+use super::combination::{Fundamental, Kind};
+use crate::num::{Complex, FourierError, Search, Spectrum, decompose};
+
+/// Power of the window for a mean motion: its neighbours in the spectrum are far.
+const MOTION_WINDOW: u32 = 3;
+/// A drift below this is rounding of the elements.
+const FINEST_DRIFT: f64 = f64::EPSILON;
+/// Lines looked at to tell the modes of slow variables apart.
+const MODE_LINES: usize = 12;
+
+/// The mean motion of one planet over the two halves of a span.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct MotionDrift {
+    pub first_rad_day: f64,
+    pub second_rad_day: f64,
+}
+
+impl MotionDrift {
+    /// log₁₀ |1 − n₂/n₁|; not below log₁₀ of the machine epsilon.
+    pub fn log10(&self) -> f64 {
+        (1.0 - self.second_rad_day / self.first_rad_day).abs().max(FINEST_DRIFT).log10()
+    }
+}
+
+/// The drift of every planet.
+#[derive(Clone, Debug, PartialEq)]
+pub struct FrequencyDrift {
+    pub of_planets: Vec<MotionDrift>,
+    /// The planet with the largest drift.
+    pub worst: usize,
+}
+
+impl FrequencyDrift {
+    /// log₁₀ |1 − n₂/n₁| of the worst planet.
+    pub fn worst_log10(&self) -> f64 {
+        self.of_planets[self.worst].log10()
+    }
+}
+
+/// Drift of the mean motions between the two halves of a series.
+///
+/// n is the strongest line of a exp(iλ). Regular motion has the same n in both halves, up to the error of the analysis
+/// (falls as T⁻⁴ and faster); chaotic motion wanders. When samples are further apart than half an orbit, n is known up to
+/// whole turns per sample and taken next to the osculating √(μ/a³): the difference n₂ − n₁ is right all the same.
+/// Errors: [`FourierError`]; the halves need [`crate::num::FEWEST_SAMPLES`] rows each. No planets give `TooFew`.
+/// Source: Laskar (1990, 1993); as an indicator for planetary systems Correia et al. (2005).
+pub fn frequency_drift(series: &ElementSeries<'_>) -> Result<FrequencyDrift, FourierError> {
+    let half = series.rows().len() / 2;
+    let of_planets = (0..series.planets())
+        .map(|planet| {
+            let signal = series.motion_signal(planet);
+            let osculating = series.osculating_motion(planet);
+            // Both halves have as many rows; an odd one in the middle is left out.
+            let (early, late) = (&signal[..half], &signal[signal.len() - half..]);
+            let first = series.unfolded(strongest(early, series.step_day())?, osculating);
+            let second = series.unfolded(strongest(late, series.step_day())?, first);
+            Ok(MotionDrift { first_rad_day: first, second_rad_day: second })
+        })
+        .collect::<Result<Vec<_>, FourierError>>()?;
+    let worst = (0..of_planets.len())
+        .max_by(|one, other| of_planets[*one].log10().total_cmp(&of_planets[*other].log10()))
+        .ok_or(FourierError::TooFew { found: 0 })?;
+    Ok(FrequencyDrift { of_planets, worst })
+}
+
+fn strongest(signal: &[Complex], step_day: f64) -> Result<f64, FourierError> {
+    let spectrum = decompose(signal, step_day, Search { most: 1, window_power: MOTION_WINDOW })?;
+    // A signal a exp(iλ) with a > 0 is never so noisy that it has no line, unless λ is.
+    Ok(spectrum.lines.first().map_or(f64::NAN, |line| line.frequency))
+}
+
+/// Fundamental frequencies of a series: n of every planet, then a g for every planet, each the strongest line of
+/// a e exp(iϖ)-like signals that no other planet has taken.
+///
+/// n from a exp(iλ); g from e exp(iϖ): planets choose in the order of the strength of their lines, so a planet whose
+/// eccentricity is forced by another takes its next line. In a resonance the n and g are not independent: see
+/// [`super::Fundamental`]; use [`fundamental_nodes`] for the s. Errors: [`FourierError`].
+/// Source: Laskar (1990).
+pub fn fundamentals(
+    series: &ElementSeries<'_>,
+    names: &[String],
+    search: Search,
+) -> Result<Vec<Fundamental>, FourierError> {
+    let mut all = Vec::new();
+    for (planet, name) in names.iter().enumerate().take(series.planets()) {
+        let line = strongest(&series.motion_signal(planet), series.step_day())?;
+        let frequency = series.unfolded(line, series.osculating_motion(planet));
+        all.push(Fundamental { name: format!("n_{name}"), kind: Kind::Motion, rad_day: frequency });
+    }
+    let spectra = (0..series.planets())
+        .map(|planet| decompose(&series.pericentre_signal(planet), series.step_day(), search))
+        .collect::<Result<Vec<_>, _>>()?;
+    let modes = modes(&spectra, series.span_day(), series.planets());
+    all.extend(numbered(modes, "g", Kind::Pericentre));
+    Ok(all)
+}
+
+/// Frequencies s of the nodes, each planet's own line of sin(i/2) exp(iΩ); the fixed line of the plane itself is no mode
+/// and is left out, so there is one mode fewer than planets. Elements should refer to the invariable plane.
+/// Errors: [`FourierError`].
+pub fn fundamental_nodes(
+    series: &ElementSeries<'_>,
+    search: Search,
+) -> Result<Vec<Fundamental>, FourierError> {
+    let resolution = std::f64::consts::TAU / series.span_day();
+    let spectra = (0..series.planets())
+        .map(|planet| {
+            let mut spectrum = decompose(&series.node_signal(planet), series.step_day(), search)?;
+            spectrum.lines.retain(|line| line.frequency.abs() > 0.5 * resolution);
+            Ok(spectrum)
+        })
+        .collect::<Result<Vec<_>, FourierError>>()?;
+    let most = series.planets().saturating_sub(1);
+    Ok(numbered(modes(&spectra, series.span_day(), most), "s", Kind::Node))
+}
+
+fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
+    modes
+        .into_iter()
+        .enumerate()
+        .filter_map(|(planet, mode)| {
+            mode.map(|rad_day| Fundamental { name: format!("{letter}{}", planet + 1), kind, rad_day })
+        })
+        .collect()
+}
+
+/// One line per planet, none taken twice and at most `most`: the largest share of its planet's signal chooses first.
+///
+/// Lines nearer than a resolution element are one mode.
+fn modes(spectra: &[Spectrum], span_day: f64, most: usize) -> Vec<Option<f64>> {
+    let resolution = std::f64::consts::TAU / span_day;
+    let mut offers: Vec<(f64, usize, f64)> = spectra
+        .iter()
+        .enumerate()
+        .flat_map(|(planet, spectrum)| {
+            let whole = spectrum.signal_rms;
+            let lines = spectrum.lines.iter().filter(|line| line.resolved).take(MODE_LINES);
+            lines.map(move |line| (line.amplitude.norm() / whole, planet, line.frequency))
+        })
+        .collect();
+    offers.sort_by(|one, other| other.0.total_cmp(&one.0));
+    let mut taken: Vec<Option<f64>> = vec![None; spectra.len()];
+    for (_, planet, frequency) in offers {
+        let free = taken.iter().flatten().all(|other| (other - frequency).abs() > resolution);
+        let room = taken.iter().flatten().count() < most;
+        if taken[planet].is_none() && free && room {
+            taken[planet] = Some(frequency);
+        }
+    }
+    taken
+}

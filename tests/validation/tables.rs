@@ -1,0 +1,45 @@
+//! Tables of reports/validation: what was checked, against what, how far off, what was allowed.
+//!
+//! `cargo bench --bench validation` writes all of them; `cargo bench --bench validation -- catalogue` one. The same facts
+//! are held by `cargo test`; here they are spread out with longer spans.
+
+#[path = "../shelf/mod.rs"]
+mod shelf;
+#[path = "../truth_support/mod.rs"]
+mod truth_support;
+
+mod catalogue;
+mod hd_45364;
+mod report;
+mod schemes;
+mod solar_system;
+mod variational;
+
+use std::process::ExitCode;
+
+/// Name of a table and what makes it.
+const TABLES: [(&str, fn()); 5] = [
+    ("hd-45364", hd_45364::write),
+    ("catalogue", catalogue::write),
+    ("variational", variational::write),
+    ("solar-system", solar_system::write),
+    ("schemes", schemes::write),
+];
+
+fn main() -> ExitCode {
+    // The bench harness' own flag is not a name.
+    let asked: Vec<String> = std::env::args().skip(1).filter(|word| !word.starts_with("--")).collect();
+    let known = |word: &String| TABLES.iter().any(|(name, _)| name == word);
+    if let Some(word) = asked.iter().find(|word| !known(word)) {
+        let names: Vec<&str> = TABLES.iter().map(|(name, _)| *name).collect();
+        eprintln!("no table is called {word}; there are {}", names.join(", "));
+        return ExitCode::from(2);
+    }
+    for (name, write) in TABLES {
+        if asked.is_empty() || asked.iter().any(|word| word == name) {
+            write();
+            eprintln!("wrote reports/validation/{name}");
+        }
+    }
+    ExitCode::SUCCESS
+}
