@@ -205,6 +205,7 @@ impl Source for Field {
                 star_radius_au: 0.0,
                 frame: abide::system::Frame::Jacobi,
                 planets: Vec::new(),
+                terms: Default::default(),
             })
         }
     }
