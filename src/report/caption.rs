@@ -28,7 +28,12 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
     };
     vec![
         format!("{cells}, each followed for {}.", words::span_words(study, plan, words::printed)),
-        format!("Scheme {}, step {}; {energy}.", plan.scheme, words::step_words(plan, records)),
+        format!(
+            "Scheme {} in {} coordinates, step {}; {energy}.",
+            plan.scheme,
+            plan.coordinates.words(),
+            words::step_words(plan, records)
+        ),
         format!("{}.", capital(&words::held_words(study, system))),
         format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),
     ]

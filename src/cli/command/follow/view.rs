@@ -5,7 +5,8 @@ use serde_json::{Map, Value, json};
 use super::why::{Why, megno};
 use super::wish::{Wish, count};
 use crate::assess::{
-    Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day, outermost_period_day,
+    ADAPTIVE, Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
+    outermost_period_day,
 };
 use crate::cli::CliError;
 use crate::cli::command::inspect::table::{lines, significant, wrapped};
@@ -99,13 +100,18 @@ impl<'a> View<'a> {
     }
 
     pub fn scheme(&self) -> String {
-        let corrected = self.wish.plan.splitting().corrected;
+        let plan = &self.wish.plan;
+        if self.assessment.scheme == ADAPTIVE {
+            return "15th-order Gauss-Radau with adaptive steps (Everhart 1985)".to_owned();
+        }
         let auto = self.wish.options.iter().any(|o| o.flag == "--scheme" && o.meaning == "auto");
         format!(
-            "{}{}, democratic heliocentric coordinates{}",
+            "{}{}{}, {} coordinates ({})",
             self.assessment.scheme,
-            if corrected { " with symplectic corrector" } else { "" },
-            if auto { " (auto)" } else { "" }
+            if plan.splitting().corrected { " with symplectic corrector" } else { "" },
+            if auto { " (auto)" } else { "" },
+            plan.coordinates.words(),
+            plan.coordinates_why,
         )
     }
 
@@ -117,8 +123,7 @@ impl<'a> View<'a> {
             significant(a.step_day, 4),
             match (&self.wish.plan.step_why, a.redone) {
                 (StepWhy::Asked { .. }, 0) => "as asked".to_owned(),
-                (StepWhy::Pericentre { .. }, 0) =>
-                    "auto: 20 or more to a passage, so that step resonance does not feign chaos".to_owned(),
+                (why @ StepWhy::Pericentre { .. }, 0) => format!("auto: {why}"),
                 (_, redone) => format!(
                     "made smaller {} for the energy error",
                     match redone {
