@@ -12,7 +12,6 @@ use crate::cli::CliError;
 use crate::cli::command::inspect::table::{lines, significant, wrapped};
 use crate::kepler::pericentre_passage_day;
 use crate::report::{VERSION, short, time_words};
-use crate::system::Frame;
 use crate::units::{DEGREE, YEAR_DAY};
 use crate::verdict::{CHAOTIC_FROM, LEAST_OUTER_ORBITS, REGULAR_UP_TO, Verdict};
 
@@ -46,16 +45,18 @@ impl<'a> View<'a> {
     pub fn new(wish: &'a Wish, assessment: &'a Assessment) -> View<'a> {
         let configuration = &wish.configuration;
         let names: Vec<&str> = configuration.planets.iter().map(|planet| planet.name.as_str()).collect();
-        let orbits = configuration.elements_in(Frame::Astrocentric);
-        let periods = configuration.periods_of(Frame::Astrocentric, &orbits);
+        let frame = configuration.own_frame();
+        let orbits = configuration.orbits();
+        let elements: Vec<_> = orbits.iter().map(|orbit| orbit.elements).collect();
+        let periods = configuration.periods_of(frame, &elements);
         let counted = |period_day: f64| Counted {
             planet: periods.iter().position(|period| *period == Some(period_day)).unwrap_or(0),
             period_day,
             orbits: assessment.end_time_day / period_day,
         };
-        let passages = configuration.planets.iter().zip(&orbits).map(|(planet, orbit)| {
-            let mass_parameter = configuration.star_gm + planet.gm;
-            pericentre_passage_day(orbit.semi_major_axis_au, orbit.eccentricity, mass_parameter)
+        let passages = orbits.iter().map(|orbit| {
+            let elements = orbit.elements;
+            pericentre_passage_day(elements.semi_major_axis_au, elements.eccentricity, orbit.mass_parameter)
         });
         let shortest = passages.enumerate().filter(|(_, day)| day.is_finite());
         let shortest = shortest.min_by(|one, other| one.1.total_cmp(&other.1)).unwrap_or((0, f64::NAN));
