@@ -89,7 +89,7 @@ impl Cell {
             passages: 0,
             passage_error: 0.0,
         };
-        if let Some(loss) = cell.lost_at_start() {
+        if let Some(loss) = cell.lost_at_start(plan) {
             return Err(Box::new(cell.assessment(plan, Some(loss))));
         }
         cell.set_step(step_most, plan);
@@ -178,7 +178,7 @@ impl Cell {
         if error > plan.energy_error {
             return self.again(error, plan);
         }
-        let orbits = moment.astrocentric();
+        let orbits = moment.elements(plan.frame);
         if plan.extent {
             self.extent.see(&orbits);
         }
@@ -226,7 +226,7 @@ impl Cell {
         Next::Again
     }
 
-    fn lost_at_start(&self) -> Option<Loss> {
+    fn lost_at_start(&self, plan: &Plan) -> Option<Loss> {
         let at = |planet, other, how| Some(Loss { time_day: 0.0, planet, other, how });
         let moment = Moment { time_day: 0.0, state: &self.start };
         for (planet, pos) in self.start.pos.iter().enumerate() {
@@ -238,7 +238,7 @@ impl Cell {
                 return at(planet, None, LostHow::Star);
             }
         }
-        if let Some(planet) = self.falls_into_star(&moment.astrocentric()) {
+        if let Some(planet) = self.falls_into_star(&moment.elements(plan.frame)) {
             return at(planet, None, LostHow::Star);
         }
         self.limits.pairs.iter().find_map(|pair| {
@@ -306,7 +306,7 @@ impl Cell {
             let state = last.state(0);
             let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
             self.conserved.see(&moment, &self.terms);
-            self.extent.see(&moment.astrocentric());
+            self.extent.see(&moment.elements(plan.frame));
         }
         self.part_steps = ended as u64;
         let at_end = run(ended);

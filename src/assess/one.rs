@@ -82,11 +82,11 @@ impl Follower {
                 let mut block =
                     Block::with_massless(plan.coordinates, 1, configuration.planets.len(), plan.massless);
                 cell.enter(&mut block, 0, &plan);
-                let rows = Rows::new(cell.start(), rows);
+                let rows = Rows::new(cell.start(), plan.frame, rows);
                 Follower { plan, rows, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
             }
             Err(assessment) => {
-                let rows = Rows::new(&super::physics::barycentric(configuration), rows);
+                let rows = Rows::new(&super::physics::barycentric(configuration), plan.frame, rows);
                 Follower { plan, rows, on_its_way: None, assessment: Some(*assessment) }
             }
         }

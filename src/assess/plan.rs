@@ -112,6 +112,8 @@ pub struct Plan {
     pub scheme: &'static str,
     pub coordinates: Coordinates,
     pub coordinates_why: CoordinatesWhy,
+    /// Of the elements that are observed: astrocentric, or Jacobi where planets circle a pair of stars.
+    pub frame: Frame,
     pub energy_error: f64,
     pub escape_au: Option<f64>,
     /// Stop below this many mutual Hill radii; absent: go through.
@@ -183,6 +185,7 @@ impl Plan {
             scheme,
             coordinates,
             coordinates_why,
+            frame: nominal.own_frame(),
             resolve: limits.encounter == Encounter::Resolve,
             adaptive: false,
             massless: corners.iter().map(massless).fold(massless(nominal), usize::min),
@@ -224,7 +227,7 @@ impl Plan {
     /// Where a planet of this configuration has escaped, au.
     pub fn escape_limit_au(&self, configuration: &Configuration) -> f64 {
         self.escape_au.unwrap_or_else(|| {
-            let orbits = configuration.elements_in(Frame::Astrocentric);
+            let orbits = configuration.elements_in(configuration.own_frame());
             ESCAPE_APOCENTRES * orbits.iter().map(|o| o.apocentre_au()).fold(0.0, f64::max)
         })
     }
@@ -233,7 +236,7 @@ impl Plan {
 /// The step that the plan gives a configuration when none is asked: 1/20 of the shortest pericentre
 /// passage time scale of its bodies, day. Not a number when none is bound.
 pub fn auto_step_day(configuration: &Configuration) -> f64 {
-    let frame = telling_frame(configuration);
+    let frame = configuration.own_frame();
     let orbits = configuration.elements_in(frame);
     let periods = configuration.periods_of(frame, &orbits);
     let passages = orbits.iter().zip(periods).filter_map(|(orbit, period)| {
@@ -254,13 +257,8 @@ pub fn outermost_period_day(configuration: &Configuration) -> f64 {
     periods_day(configuration).fold(f64::NAN, f64::max)
 }
 
-/// About the star; about everything inside where a second star may be inside.
-fn telling_frame(configuration: &Configuration) -> Frame {
-    if has_companion(configuration) { Frame::Jacobi } else { Frame::Astrocentric }
-}
-
 fn periods_day(configuration: &Configuration) -> impl Iterator<Item = f64> {
-    let frame = telling_frame(configuration);
+    let frame = configuration.own_frame();
     let orbits = configuration.elements_in(frame);
     let periods = configuration.periods_of(frame, &orbits);
     let planets: Vec<bool> = configuration.planets.iter().map(|p| p.kind == BodyKind::Planet).collect();

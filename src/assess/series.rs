@@ -7,12 +7,13 @@ use crate::coords::Elements;
 use crate::integrate::{Block, State};
 use crate::num::{Kept, KeptReader};
 use crate::observe::{ExtentWatch, Moment};
+use crate::system::Frame;
 
 /// The motion at one time.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Row {
     pub time_day: f64,
-    /// Astrocentric osculating elements per planet.
+    /// Osculating elements per planet in the plan's frame.
     pub elements: Vec<Elements>,
     /// Ranges of a, e and i per planet since the row before, at the ends of blocks; the first row has its own values.
     pub extent: Vec<Extent>,
@@ -31,6 +32,7 @@ pub struct Row {
 #[derive(Clone, Debug)]
 pub(super) struct Rows {
     most: usize,
+    frame: Frame,
     /// Blocks per row.
     stride: u64,
     since: ExtentWatch,
@@ -41,15 +43,15 @@ pub(super) struct Rows {
 
 impl Rows {
     /// At most `most` rows (2 at least), the first at the start.
-    pub fn new(start: &State, most: usize) -> Rows {
+    pub fn new(start: &State, frame: Frame, most: usize) -> Rows {
         let most = most.max(2);
         let planets = start.gm.len();
         let moment = Moment { time_day: 0.0, state: start };
         let mut at_start = ExtentWatch::new(planets);
-        at_start.see(&moment.astrocentric());
+        at_start.see(&moment.elements(frame));
         let first = Row {
             time_day: 0.0,
-            elements: moment.astrocentric(),
+            elements: moment.elements(frame),
             extent: at_start.finish(),
             energy_error: 0.0,
             angular_momentum_error: 0.0,
@@ -57,19 +59,19 @@ impl Rows {
             mean_megno: None,
             lyapunov_per_day: None,
         };
-        Rows { most, stride: 1, since: ExtentWatch::new(planets), rows: vec![first], settled: None }
+        Rows { most, frame, stride: 1, since: ExtentWatch::new(planets), rows: vec![first], settled: None }
     }
 
     /// From the beginning.
     pub fn again(&self, start: &State) -> Rows {
-        Rows::new(start, self.most)
+        Rows::new(start, self.frame, self.most)
     }
 
     pub fn see(&mut self, cell: &Cell, plan: &Plan, block: &Block, corrected: &Block) {
         let state = corrected.state(0);
         let time_day = cell.time_day(plan);
         let moment = Moment { time_day, state: &state };
-        self.since.see(&moment.astrocentric());
+        self.since.see(&moment.elements(self.frame));
         let done = cell.blocks_done();
         if !done.is_multiple_of(self.stride) && done != cell.blocks() {
             return;
@@ -80,7 +82,7 @@ impl Rows {
         let since = std::mem::replace(&mut self.since, ExtentWatch::new(state.gm.len()));
         self.rows.push(Row {
             time_day,
-            elements: moment.astrocentric(),
+            elements: moment.elements(self.frame),
             extent: since.finish(),
             energy_error,
             angular_momentum_error,

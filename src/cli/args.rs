@@ -52,13 +52,20 @@ pub struct FollowArgs {
     /// Splitting: "auto", or a generalised order such as "(2,2)" or "(10,6,4)"
     #[arg(long, default_value = "auto")]
     pub scheme: String,
-    /// Largest relative energy error; what misses it is done again with a smaller step, then untrusted
+    /// Coordinates of the splitting
+    #[arg(long, value_enum, default_value_t = CoordinateWord::Auto)]
+    pub coordinates: CoordinateWord,
+    /// Which integrator: the symplectic splitting, or the adaptive one alone (slower, to rounding, for checks)
+    #[arg(long, value_enum, default_value_t = EngineWord::Symplectic)]
+    pub engine: EngineWord,
+    /// Largest relative energy error; what misses it is done again with a smaller step, then with the adaptive engine
     #[arg(long, value_name = "NUMBER", default_value = "1e-6", allow_hyphen_values = true)]
     pub energy_error: String,
     /// A planet this far from the star has escaped, e.g. "100 au" (default: 20 times the largest apocentre)
     #[arg(long, value_name = "DISTANCE", allow_hyphen_values = true)]
     pub escape: Option<String>,
-    /// Planets this close to each other end the run: mutual Hill radii, or "off" (then only collisions do)
+    /// Planets this close to each other end the run: mutual Hill radii; "resolve" goes through encounters with the
+    /// adaptive engine; "off" goes straight through (with both only collisions end the run)
     #[arg(long, value_name = "DISTANCE", default_value = "1 hill", allow_hyphen_values = true)]
     pub encounter: String,
     /// Time between two checkpoints; writing them never takes more than a twentieth of the time
@@ -125,4 +132,20 @@ pub struct DrawArgs {
     /// Width on paper, e.g. "88 mm" for one column; text keeps its size
     #[arg(long, value_name = "WIDTH", default_value = "180 mm")]
     pub width: String,
+}
+
+/// Which integrator does the work.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, clap::ValueEnum)]
+pub enum EngineWord {
+    Symplectic,
+    Adaptive,
+}
+
+/// The coordinates in which the symplectic scheme splits.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, clap::ValueEnum)]
+pub enum CoordinateWord {
+    /// Jacobi with a second star or a heavy planet, else heliocentric
+    Auto,
+    Heliocentric,
+    Jacobi,
 }

@@ -1,6 +1,7 @@
 //! Many steps of a block in one go.
 
-use super::block::{Block, Coordinates, D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, SATELLITE, VEL};
+use super::block::{Block, D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, SATELLITE, VEL};
+use super::coordinates::Coordinates;
 use super::jacobi::{self, Relative};
 use super::kick::{Beside, kick};
 use super::splitting::Scheme;

@@ -3,32 +3,10 @@
 //! States come and go in democratic heliocentric canonical coordinates (Duncan, Levison & Lee 1998): heliocentric
 //! positions and barycentric velocities; inside, a block holds them or Jacobi coordinates.
 
+use super::coordinates::Coordinates;
 use super::{StarTerms, jacobi};
 use crate::lanes::WIDTH;
 use crate::num::{Kept, KeptReader};
-
-/// The coordinates in which the Hamiltonian is split.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
-pub enum Coordinates {
-    /// Democratic heliocentric: cheapest, for planets much lighter than their star.
-    Heliocentric,
-    /// Jacobi: for hierarchies and any mass ratio.
-    Jacobi,
-}
-
-impl Coordinates {
-    /// The word that files and output use.
-    pub fn word(self) -> &'static str {
-        match self {
-            Coordinates::Heliocentric => "heliocentric",
-            Coordinates::Jacobi => "jacobi",
-        }
-    }
-
-    pub fn from_word(word: &str) -> Option<Coordinates> {
-        [Coordinates::Heliocentric, Coordinates::Jacobi].into_iter().find(|c| c.word() == word)
-    }
-}
 
 /// Per-lane numbers that are not of a planet.
 #[derive(Clone, Copy, Debug)]

@@ -6,6 +6,7 @@
 mod advance;
 mod block;
 mod conserved;
+mod coordinates;
 mod corrector;
 pub mod forces;
 mod jacobi;
@@ -15,8 +16,9 @@ mod splitting;
 mod star_terms;
 
 pub use advance::{Advance, SAMPLE_EVERY, advance};
-pub use block::{Block, Coordinates, Growth, State, Tangent};
+pub use block::{Block, Growth, State, Tangent};
 pub use conserved::{angular_momentum, energy};
+pub use coordinates::Coordinates;
 pub use corrector::{from_map, to_map};
 pub use kick::{Beside, kick};
 pub use splitting::Scheme;

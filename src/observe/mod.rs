@@ -20,8 +20,9 @@ pub use quasi_periodic::{NamedLine, QuasiPeriodic, quasi_periodic};
 pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
 pub use series::{ElementSeries, SeriesError};
 
-use crate::coords::Elements;
+use crate::coords::{Elements, elements_in};
 use crate::integrate::State;
+use crate::system::Frame;
 
 /// A state of the motion at a time since the epoch.
 #[derive(Clone, Copy, Debug)]
@@ -32,8 +33,8 @@ pub struct Moment<'a> {
 }
 
 impl Moment<'_> {
-    /// Osculating astrocentric elements of every planet.
-    pub fn astrocentric(&self) -> Vec<Elements> {
+    /// Osculating elements of every body in a frame.
+    pub fn elements(&self, frame: Frame) -> Vec<Elements> {
         let state = self.state;
         let mut star = [0.0; 3];
         for (gm, vel) in state.gm.iter().zip(&state.vel) {
@@ -41,11 +42,12 @@ impl Moment<'_> {
                 star[k] -= gm * vel[k] / state.star_gm;
             }
         }
-        let each = state.gm.iter().zip(&state.pos).zip(&state.vel);
-        each.map(|((gm, pos), vel)| {
-            let relative = [0, 1, 2].map(|k| vel[k] - star[k]);
-            Elements::from_state(state.star_gm + gm, *pos, relative)
-        })
-        .collect()
+        let relative = |vel: &[f64; 3]| [0, 1, 2].map(|k| vel[k] - star[k]);
+        let vel: Vec<[f64; 3]> = state.vel.iter().map(relative).collect();
+        if frame != Frame::Astrocentric {
+            return elements_in(frame, state.star_gm, &state.gm, &state.pos, &vel);
+        }
+        let each = state.gm.iter().zip(&state.pos).zip(&vel);
+        each.map(|((gm, pos), vel)| Elements::from_state(state.star_gm + gm, *pos, *vel)).collect()
     }
 }

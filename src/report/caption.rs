@@ -40,7 +40,12 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
     let early = words::early_end_words(plan).map_or_else(String::new, |w| format!(" Chaotic cells: {w}."));
     vec![
         followed + &early,
-        format!("Scheme {}, step {}; {energy}.", plan.scheme, words::step_words(plan, records)),
+        format!(
+            "Scheme {} in {} coordinates, step {}; {energy}.",
+            plan.scheme,
+            plan.coordinates.words(),
+            words::step_words(plan, records)
+        ),
         format!("{}.", capital(&words::held_words(study, system))),
         format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),
     ]

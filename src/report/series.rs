@@ -68,7 +68,7 @@ pub fn series_table(series: &Series) -> Table {
 type Part = (&'static str, &'static str, &'static str, fn(&Elements) -> f64);
 
 const PARTS: [Part; 6] = [
-    ("a", "au", "astrocentric semi-major axis", |e| e.semi_major_axis_au),
+    ("a", "au", "osculating semi-major axis", |e| e.semi_major_axis_au),
     ("e", "", "eccentricity", |e| e.eccentricity),
     ("i", "deg", "inclination to the sky plane", |e| e.inclination / DEGREE),
     ("node", "deg", "ascending node", |e| e.ascending_node / DEGREE),

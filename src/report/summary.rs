@@ -59,6 +59,8 @@ pub struct Summary {
     pub span: String,
     pub span_day: f64,
     pub scheme: &'static str,
+    /// Of the splitting, and why.
+    pub coordinates: String,
     pub step: String,
     pub energy_error_target: f64,
     pub held: String,
@@ -101,6 +103,7 @@ impl Summary {
             span: words::span_words(study, plan, words::short),
             span_day: plan.span_day,
             scheme: plan.scheme,
+            coordinates: format!("{} ({})", plan.coordinates.words(), plan.coordinates_why),
             step: words::step_words(plan, records),
             energy_error_target: plan.energy_error,
             held: words::held_words(study, system),
@@ -145,6 +148,7 @@ impl Summary {
         lines.push(format!("nominal      {}", self.nominal_words()));
         lines.push(format!("energy error {}", self.energy_words()));
         lines.push(format!("scheme       {}", self.scheme));
+        lines.push(format!("coordinates  {}", self.coordinates));
         lines.push(format!("step         {}", self.step));
         lines.push(format!("redone       {} cells with a smaller step", self.redone));
         lines.push(format!("axes         {}", self.held));
@@ -221,6 +225,7 @@ impl Summary {
             "span": self.span,
             "span_d": self.span_day,
             "scheme": self.scheme,
+            "coordinates": self.coordinates,
             "step": self.step,
             "axes": self.held,
             "convention": self.convention,

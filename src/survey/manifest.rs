@@ -36,6 +36,8 @@ pub struct Manifest {
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct PlanWords {
     pub scheme: String,
+    pub coordinates: String,
+    pub coordinates_why: String,
     pub span_day: f64,
     /// Absent: each cell has its own.
     pub step_day: Option<f64>,
@@ -52,6 +54,8 @@ impl PlanWords {
     pub fn of(plan: &Plan) -> PlanWords {
         PlanWords {
             scheme: plan.scheme.to_string(),
+            coordinates: plan.coordinates.word().to_string(),
+            coordinates_why: plan.coordinates_why.to_string(),
             span_day: plan.span_day,
             step_day: plan.step_day,
             step_why: plan.step_why.to_string(),

@@ -35,6 +35,7 @@ pub fn plan() -> Plan {
         block_steps: 508,
         coordinates: abide::integrate::Coordinates::Heliocentric,
         coordinates_why: abide::assess::CoordinatesWhy::Light,
+        frame: Frame::Astrocentric,
         resolve: false,
         adaptive: false,
         massless: 0,

@@ -20,7 +20,7 @@ pub(super) struct Limits {
     pub pairs: Vec<Pair>,
     /// Radii, the star first.
     pub radii_au: Vec<f64>,
-    /// Whether a planet bound for the star can be told from its orbit (not with a second star).
+    /// Whether a planet bound for the star can be told from its orbit (not where it circles a pair).
     pub orbits_tell: bool,
 }
 
@@ -45,8 +45,11 @@ impl Pair {
 impl Limits {
     pub fn new(configuration: &Configuration, plan: &Plan) -> Limits {
         let planets = &configuration.planets;
-        let axes: Vec<f64> =
-            configuration.elements_in(Frame::Astrocentric).iter().map(|o| o.semi_major_axis_au).collect();
+        let axes: Vec<f64> = configuration
+            .elements_in(configuration.own_frame())
+            .iter()
+            .map(|o| o.semi_major_axis_au)
+            .collect();
         let mut pairs = Vec::new();
         for i in 0..planets.len() {
             for j in i + 1..planets.len() {
@@ -74,7 +77,7 @@ impl Limits {
             escape_au: plan.escape_limit_au(configuration),
             pairs,
             radii_au: std::iter::once(configuration.star_radius_au).chain(radii).collect(),
-            orbits_tell: planets.iter().all(|p| p.kind == BodyKind::Planet),
+            orbits_tell: configuration.own_frame() == Frame::Astrocentric,
         }
     }
 }

@@ -110,7 +110,8 @@ fn caption(wish: &Wish, view: &View<'_>, assessment: &Assessment, bands: bool) -
     let headline: String = letters.next().into_iter().flat_map(char::to_uppercase).chain(letters).collect();
     let error = assessment.energy_error.map_or("not measured".to_owned(), printed);
     let frame = match wish.file.system.convention.elements {
-        Frame::Astrocentric => "",
+        stated if stated == wish.plan.frame => "",
+        Frame::Astrocentric => " (the file states astrocentric ones)",
         Frame::Jacobi => " (the file states Jacobi ones)",
         Frame::Barycentric => " (the file states barycentric ones)",
     };
@@ -118,11 +119,19 @@ fn caption(wish: &Wish, view: &View<'_>, assessment: &Assessment, bands: bool) -
         if bands { "; at each time the smallest and the largest value since the time before" } else { "" };
     vec![
         format!("{headline}."),
-        format!("Osculating astrocentric elements{frame}{bands}."),
+        format!("Osculating {} elements{frame}{bands}.", shown(wish.plan.frame)),
         format!(
             "Scheme {}, step {} d; largest relative energy error {error}. {VERSION}.",
             view.scheme(),
             printed(assessment.step_day),
         ),
     ]
+}
+
+fn shown(frame: Frame) -> &'static str {
+    match frame {
+        Frame::Astrocentric => "astrocentric",
+        Frame::Jacobi => "Jacobi",
+        Frame::Barycentric => "barycentric",
+    }
 }

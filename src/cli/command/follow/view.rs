@@ -5,13 +5,13 @@ use serde_json::{Map, Value, json};
 use super::why::{Why, megno};
 use super::wish::{Wish, count};
 use crate::assess::{
-    Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day, outermost_period_day,
+    ADAPTIVE, Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
+    outermost_period_day,
 };
 use crate::cli::CliError;
 use crate::cli::command::inspect::table::{lines, significant, wrapped};
 use crate::kepler::pericentre_passage_day;
 use crate::report::{VERSION, short, time_words};
-use crate::system::Frame;
 use crate::units::{DEGREE, YEAR_DAY};
 use crate::verdict::{CHAOTIC_FROM, LEAST_OUTER_ORBITS, REGULAR_UP_TO, Verdict};
 
@@ -45,16 +45,18 @@ impl<'a> View<'a> {
     pub fn new(wish: &'a Wish, assessment: &'a Assessment) -> View<'a> {
         let configuration = &wish.configuration;
         let names: Vec<&str> = configuration.planets.iter().map(|planet| planet.name.as_str()).collect();
-        let orbits = configuration.elements_in(Frame::Astrocentric);
-        let periods = configuration.periods_of(Frame::Astrocentric, &orbits);
+        let frame = configuration.own_frame();
+        let orbits = configuration.orbits();
+        let elements: Vec<_> = orbits.iter().map(|orbit| orbit.elements).collect();
+        let periods = configuration.periods_of(frame, &elements);
         let counted = |period_day: f64| Counted {
             planet: periods.iter().position(|period| *period == Some(period_day)).unwrap_or(0),
             period_day,
             orbits: assessment.end_time_day / period_day,
         };
-        let passages = configuration.planets.iter().zip(&orbits).map(|(planet, orbit)| {
-            let mass_parameter = configuration.star_gm + planet.gm;
-            pericentre_passage_day(orbit.semi_major_axis_au, orbit.eccentricity, mass_parameter)
+        let passages = orbits.iter().map(|orbit| {
+            let elements = orbit.elements;
+            pericentre_passage_day(elements.semi_major_axis_au, elements.eccentricity, orbit.mass_parameter)
         });
         let shortest = passages.enumerate().filter(|(_, day)| day.is_finite());
         let shortest = shortest.min_by(|one, other| one.1.total_cmp(&other.1)).unwrap_or((0, f64::NAN));
@@ -99,13 +101,18 @@ impl<'a> View<'a> {
     }
 
     pub fn scheme(&self) -> String {
-        let corrected = self.wish.plan.splitting().corrected;
+        let plan = &self.wish.plan;
+        if self.assessment.scheme == ADAPTIVE {
+            return "15th-order Gauss-Radau with adaptive steps (Everhart 1985)".to_owned();
+        }
         let auto = self.wish.options.iter().any(|o| o.flag == "--scheme" && o.meaning == "auto");
         format!(
-            "{}{}, democratic heliocentric coordinates{}",
+            "{}{}{}, {} coordinates ({})",
             self.assessment.scheme,
-            if corrected { " with symplectic corrector" } else { "" },
-            if auto { " (auto)" } else { "" }
+            if plan.splitting().corrected { " with symplectic corrector" } else { "" },
+            if auto { " (auto)" } else { "" },
+            plan.coordinates.words(),
+            plan.coordinates_why,
         )
     }
 
@@ -117,8 +124,7 @@ impl<'a> View<'a> {
             significant(a.step_day, 4),
             match (&self.wish.plan.step_why, a.redone) {
                 (StepWhy::Asked { .. }, 0) => "as asked".to_owned(),
-                (StepWhy::Pericentre { .. }, 0) =>
-                    "auto: 20 or more to a passage, so that step resonance does not feign chaos".to_owned(),
+                (why @ StepWhy::Pericentre { .. }, 0) => format!("auto: {why}"),
                 (_, redone) => format!(
                     "made smaller {} for the energy error",
                     match redone {

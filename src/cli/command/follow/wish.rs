@@ -5,7 +5,7 @@ use std::time::Duration;
 
 use crate::assess::{Plan, auto_step_day, innermost_period_day, plan_for_rows};
 use crate::cli::CliError;
-use crate::cli::args::FollowArgs;
+use crate::cli::args::{CoordinateWord, EngineWord, FollowArgs};
 use crate::coords::{self, Configuration};
 use crate::input::{self, SystemFile};
 use crate::integrate::Scheme;
@@ -40,6 +40,19 @@ pub struct Choice {
     pub typed: String,
 }
 
+/// The word as typed.
+fn lower(word: impl std::fmt::Debug) -> String {
+    format!("{word:?}").to_lowercase()
+}
+
+fn coordinates(word: CoordinateWord) -> CoordinateChoice {
+    match word {
+        CoordinateWord::Auto => CoordinateChoice::Auto,
+        CoordinateWord::Heliocentric => CoordinateChoice::Heliocentric,
+        CoordinateWord::Jacobi => CoordinateChoice::Jacobi,
+    }
+}
+
 impl Wish {
     /// Errors: what was typed, each pointing at the word; what the file says.
     pub fn check(args: &FollowArgs) -> Result<Wish, CliError> {
@@ -47,7 +60,7 @@ impl Wish {
         let span = input::parse_span(&args.span).map_err(CliError::input)?;
         let engine = Engine {
             scheme: scheme(&args.scheme)?,
-            coordinates: CoordinateChoice::Auto,
+            coordinates: coordinates(args.coordinates),
             step: input::parse_step(&args.step).map_err(CliError::input)?,
             energy_error: input::parse_energy_error(&args.energy_error).map_err(CliError::input)?,
         };
@@ -66,12 +79,16 @@ impl Wish {
             |error: coords::CoordsError| CliError::Input(format!("{}: {error}", args.system.display()));
         let configuration = coords::configure(&file.system).map_err(at_file)?;
         coords::check_start(&configuration).map_err(at_file)?;
-        let plan = plan_for_rows(&Plan::new(span, &limits, &engine, &configuration), &configuration, rows);
+        let mut plan = Plan::new(span, &limits, &engine, &configuration);
+        plan.adaptive = args.engine == EngineWord::Adaptive;
+        let plan = plan_for_rows(&plan, &configuration, rows);
         check_plan(args, &plan, &configuration)?;
         let meanings = [
             ("--span", format!("{span:?}"), args.span.clone()),
             ("--step", format!("{:?}", engine.step), args.step.clone()),
             ("--scheme", engine.scheme.clone(), args.scheme.clone()),
+            ("--coordinates", format!("{:?}", args.coordinates), lower(args.coordinates)),
+            ("--engine", format!("{:?}", args.engine), lower(args.engine)),
             ("--energy-error", engine.energy_error.to_string(), args.energy_error.clone()),
             ("--escape", format!("{:?}", limits.escape_au), args.escape.clone().unwrap_or_default()),
             ("--encounter", format!("{:?}", limits.encounter), args.encounter.clone()),
