@@ -42,7 +42,7 @@ cells = 24
 [[axis]]
 vary = "c.eccentricity"
 from = 0.0
-to = 0.3
+to = 0.32
 cells = 20
 "#;
 
@@ -89,7 +89,7 @@ fn lanes_are_full_where_half_of_the_cells_are_lost_early() {
     let blocks: u64 = found.values().map(|a| a.steps / map.plan.block_steps as u64).sum();
     assert!(work.used >= blocks, "{work:?} {blocks}");
     // A change that is right but dearer must be seen.
-    assert_eq!((work.used, work.again), (16_170, 52));
+    assert_eq!((work.used, work.again), (16_382, 102));
 }
 
 #[test]
@@ -115,7 +115,7 @@ fn certain_chaos_ends_early_and_changes_no_other_verdict() {
     let chaotic = to_the_end.values().filter(|a| a.verdict == Verdict::Chaotic).count();
     assert!(chaotic > 40 && early > chaotic / 2, "{early} ended early, {chaotic} chaotic");
     assert!(less.used < all.used, "{less:?} {all:?}");
-    assert_eq!((early, less.used), (72, 11_593));
+    assert_eq!((early, less.used), (67, 11_511));
 }
 
 #[test]
