@@ -177,7 +177,7 @@ proptest! {
     /// Jacobi elements found from a state alone, the order of the orbits included, are the stated ones.
     #[test]
     fn orbits_of_hierarchies_come_back_from_states(
-        ratio in -3.0..1.0f64, shape in 0.0..0.6f64, wide in 3.0..12.0f64, phases in prop::array::uniform4(0.0..6.28f64),
+        ratio in -3.0..1.0f64, shape in 0.0..0.6f64, wide in 3.0..12.0f64, phases in prop::array::uniform4(0.0..std::f64::consts::TAU),
         outside in any::<bool>(),
     ) {
         let mut second = circle(10f64.powf(ratio), 1.0, phases[0]);
