@@ -32,7 +32,7 @@ pub struct ElementSeries<'a> {
 impl<'a> ElementSeries<'a> {
     pub const FEWEST_ROWS: usize = 16;
 
-    /// Checks the series: rows[k] holds the elements of all planets at times_day[k].
+    /// Checks the series: `rows[k]` holds the elements of all planets at `times_day[k]`.
     ///
     /// Errors: [`SeriesError`]; planets and rows are counted from 0.
     pub fn new(

@@ -1,7 +1,7 @@
 //! The adaptive integrator: order 15 by collocation at Radau's nodes, steps from the force's own series, tangent
 //! vectors by the same nodes, events to rounding.
 //!
-//! It serves inside close encounters ([`pass`]), as an engine of its own ([`Engine`], [`advance`]) and as the
+//! It serves inside close encounters ([`pass()`]), as an engine of its own ([`Engine`], [`advance`]) and as the
 //! independent check of the symplectic one: it shares no formula with it. Source of the method: Everhart (1985).
 
 mod balance;

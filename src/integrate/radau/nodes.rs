@@ -51,9 +51,9 @@ pub(super) struct Table {
     pub inverse_gap: [[f64; STAGES]; STAGES + 1],
     /// ∏ (hᵢ − hⱼ) over j < i.
     pub product: [f64; STAGES + 1],
-    /// ∏_{i ≤ k} (s − hᵢ) = Σⱼ power[k][j] s^{j+1}: Newton's basis polynomial k in powers.
+    /// ∏_{i ≤ k} (s − hᵢ) = Σⱼ `power[k][j]` s^{j+1}: Newton's basis polynomial k in powers.
     pub power: [[f64; STAGES]; STAGES],
-    /// s^{j+1} = Σₖ newton[j][k] ∏_{i ≤ k} (s − hᵢ): the inverse.
+    /// s^{j+1} = Σₖ `newton[j][k]` ∏_{i ≤ k} (s − hᵢ): the inverse.
     pub newton: [[f64; STAGES]; STAGES],
 }
 
