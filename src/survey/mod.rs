@@ -15,7 +15,7 @@ mod tally;
 
 pub use axis::{cell_count, cell_indices, cell_system, cell_values};
 pub use bitmap::Bitmap;
-pub use changes::changes;
+pub use changes::{changes, first_few};
 pub use error::{Failure, SurveyError};
 pub use grid::Grid;
 pub use journal::{Journal, Recovered};
