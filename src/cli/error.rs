@@ -67,6 +67,9 @@ mod tests {
         let refused = || io::Error::from_raw_os_error(13);
         let disk = DiskError::Write { path: "out/map.png".into(), source: refused() };
         let told = CliError::working(Outer(disk)).chain();
-        assert_eq!(told, format!("error: the map cannot be drawn: out/map.png cannot be written: {}\n", refused()));
+        assert_eq!(
+            told,
+            format!("error: the map cannot be drawn: out/map.png cannot be written: {}\n", refused())
+        );
     }
 }

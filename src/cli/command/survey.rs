@@ -58,11 +58,10 @@ impl Wish {
         let (file, name) = read(args)?;
         refuse_many(cell_count(&file.study), args.really)?;
         let system = &file.system.system;
-        let grid = Grid::new(system.clone(), file.study.clone())
-            .map_err(|error| match error {
-                SurveyError::Nominal(cause) => unfit(&file.system, &cause),
-                other => told(other),
-            })?;
+        let grid = Grid::new(system.clone(), file.study.clone()).map_err(|error| match error {
+            SurveyError::Nominal(cause) => unfit(&file.system, &cause),
+            other => told(other),
+        })?;
         let nominal = coords::configure(system).map_err(|error| unfit(&file.system, &error))?;
         let plan = Plan::for_study(&file.study, &nominal, &[]);
         let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
