@@ -79,15 +79,24 @@ pub fn make_writable_folder(path: &Path) -> Result<(), DiskError> {
     tried.map_err(|source| DiskError::Unwritable { path: path.to_path_buf(), source })
 }
 
+/// The first by name of what a folder holds beside `ours` and hidden files; none where it holds nothing else.
+pub fn stranger(folder: &Path, ours: &[&str]) -> Option<String> {
+    let entries = fs::read_dir(folder).ok()?.flatten();
+    let names = entries.map(|entry| entry.file_name().to_string_lossy().into_owned());
+    names.filter(|name| !name.starts_with('.') && !ours.contains(&name.as_str())).min()
+}
+
 /// The text of a file, which must be UTF-8.
 pub fn read_text(path: &Path) -> Result<String, DiskError> {
     fs::read_to_string(path).map_err(|source| DiskError::Read { path: path.to_path_buf(), source })
 }
 
-/// An exclusive claim on a file, let go when dropped or when the process ends in whatever way.
+/// An exclusive claim on a file, let go when dropped or when the process ends in whatever way; dropped, it takes the
+/// file away.
 #[derive(Debug)]
 pub struct Lock {
-    _file: File,
+    file: File,
+    path: PathBuf,
 }
 
 impl Lock {
@@ -96,28 +105,63 @@ impl Lock {
     /// Errors: `Held` with that note when another process has it; nothing is waited for.
     pub fn take(path: &Path, holder: &str) -> Result<Lock, DiskError> {
         let failed = |source| DiskError::Lock { path: path.to_path_buf(), source };
-        let mut file = OpenOptions::new()
-            .read(true)
-            .write(true)
-            .create(true)
-            .truncate(false)
-            .open(path)
+        let mut lock = Lock::claim(path)?;
+        // Between opening and claiming, the holder before may have taken the file away: then the name is free again.
+        while !still_named(&lock.file, path).map_err(failed)? {
+            lock = Lock::claim(path)?;
+        }
+        lock.file
+            .set_len(0)
+            .and_then(|()| lock.file.seek(SeekFrom::Start(0)))
+            .and_then(|_| lock.file.write_all(holder.as_bytes()))
             .map_err(failed)?;
+        Ok(lock)
+    }
+
+    fn claim(path: &Path) -> Result<Lock, DiskError> {
+        let failed = |source| DiskError::Lock { path: path.to_path_buf(), source };
+        let mut options = OpenOptions::new();
+        let options = options.read(true).write(true).create(true).truncate(false);
+        let mut file = options.open(path).map_err(failed)?;
         match file.try_lock() {
-            Ok(()) => {}
+            Ok(()) => Ok(Lock { file, path: path.to_path_buf() }),
             Err(TryLockError::WouldBlock) => {
                 let mut holder = String::new();
                 file.read_to_string(&mut holder).map_err(failed)?;
-                return Err(DiskError::Held { path: path.to_path_buf(), holder: holder.trim().to_string() });
+                Err(DiskError::Held { path: path.to_path_buf(), holder: holder.trim().to_string() })
             }
-            Err(TryLockError::Error(source)) => return Err(failed(source)),
+            Err(TryLockError::Error(source)) => Err(failed(source)),
         }
-        file.set_len(0)
-            .and_then(|()| file.seek(SeekFrom::Start(0)))
-            .and_then(|_| file.write_all(holder.as_bytes()))
-            .map_err(failed)?;
-        Ok(Lock { _file: file })
     }
+}
+
+#[cfg(unix)]
+impl Drop for Lock {
+    /// The file goes while it is still claimed, so that nobody's claim is on a name that is gone ([`still_named`]).
+    fn drop(&mut self) {
+        if still_named(&self.file, &self.path).is_ok_and(|named| named) {
+            // A lock file that stays does no harm.
+            let _ = fs::remove_file(&self.path);
+        }
+    }
+}
+
+/// Whether the path still leads to this very file.
+#[cfg(unix)]
+fn still_named(file: &File, path: &Path) -> io::Result<bool> {
+    use std::os::unix::fs::MetadataExt;
+    let own = file.metadata()?;
+    match fs::metadata(path) {
+        Ok(named) => Ok((own.dev(), own.ino()) == (named.dev(), named.ino())),
+        Err(error) if error.kind() == io::ErrorKind::NotFound => Ok(false),
+        Err(error) => Err(error),
+    }
+}
+
+/// Elsewhere the file stays after use.
+#[cfg(not(unix))]
+fn still_named(_file: &File, _path: &Path) -> io::Result<bool> {
+    Ok(true)
 }
 
 #[cfg(test)]
@@ -177,6 +221,24 @@ mod tests {
         let error = Lock::take(&path, "process 18").unwrap_err();
         assert!(error.to_string().contains("process 17 on lanthorn"), "{error}");
         drop(first);
-        Lock::take(&path, "process 18").unwrap();
+        assert!(!path.exists(), "a lock let go leaves no file");
+        let second = Lock::take(&path, "process 18").unwrap();
+        assert_eq!(fs::read_to_string(&path).unwrap(), "process 18");
+        drop(second);
+        // What a killed process left is taken over.
+        fs::write(&path, "process 19, which is gone").unwrap();
+        let third = Lock::take(&path, "process 20").unwrap();
+        assert_eq!(fs::read_to_string(&path).unwrap(), "process 20");
+        drop(third);
+    }
+
+    #[test]
+    fn a_stranger_is_neither_ours_nor_hidden() {
+        let folder = tempfile::tempdir().unwrap();
+        for name in ["study.toml", ".lock"] {
+            fs::write(folder.path().join(name), "").unwrap();
+        }
+        assert_eq!(stranger(folder.path(), &["study.toml"]), None);
+        assert_eq!(stranger(folder.path(), &[]), Some("study.toml".to_string()));
     }
 }

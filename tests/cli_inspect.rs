@@ -119,6 +119,22 @@ fn eight_planets_with_long_names_fit_a_terminal() {
     assert!(page.contains("planet-8"), "the end of a long name stays");
 }
 
+/// The message points at the name in the text and says what is found, allowed and to do.
+fn assert_placed(message: &str, text: &str, name: &str) {
+    let line = text.lines().position(|line| line == format!("name = {name}")).unwrap() + 1;
+    let place = format!(".toml:{line}:8: the system cannot start like this\n  {line} | name = {name}\n");
+    assert!(message.contains(&place), "{place} in {message}");
+    for label in ["found:", "allowed:", "to do:"] {
+        assert_eq!(message.matches(label).count(), 1, "{label} in {message}");
+    }
+}
+
+#[test]
+fn a_study_is_no_system() {
+    let message = refusal("system = \"pair.toml\"\nspan = \"100 orbits\"\n[[axis]]\nvary = \"c.period\"\n");
+    assert!(message.contains("this is a study file") && message.contains("`abide survey`"), "{message}");
+}
+
 #[test]
 fn what_cannot_start_is_refused() {
     let together = HD_45364
@@ -129,9 +145,11 @@ fn what_cannot_start_is_refused() {
         .replace("\"jacobi\"", "\"astrocentric\"")
         .replace("0.6579", "0.1872");
     let message = refusal(&together);
-    assert!(message.contains("b and c are at one place"), "{message}");
+    assert!(message.contains("b and c are at one place: 0 au apart"), "{message}");
+    assert_placed(&message, &together, "\"c\"");
     let message = refusal(&HD_45364.replace("0.1684", "0.995"));
     assert!(message.contains("planet b is inside the star"), "{message}");
+    assert_placed(&message, HD_45364, "\"b\"");
     let message = refusal(
         &HD_45364.replace("mass = \"0.1872 Mjup\"", "minimum_mass = \"0.2 Mjup\"\ninclination = \"0 deg\""),
     );

@@ -87,7 +87,7 @@ fn a_damaged_journal_is_mended_and_told() {
         .args(["map.toml", "--into", "out"])
         .run()
         .done()
-        .said("torn or damaged")
+        .said("2 lines of the journal were torn or damaged and dropped; the cells are done again")
         .said("goes on");
     assert_eq!(desk.read("out/cells.ecsv"), table);
 }
@@ -178,6 +178,29 @@ fn a_folder_with_files_of_its_own_is_left_alone() {
     let desk = Desk::with_pair().file("system.toml", "title = \"mine\"");
     desk.abide("survey").args(["map.toml", "--into", "."]).run().refused().said("system.toml of its own");
     assert_eq!(desk.text("system.toml"), "title = \"mine\"");
+    std::fs::create_dir(desk.path("data")).unwrap();
+    desk.write("data/notes.txt", "mine");
+    desk.abide("survey")
+        .args(["map.toml", "--into", "data"])
+        .run()
+        .refused()
+        .said("data is no run, but holds other files, as notes.txt")
+        .said("--into");
+    assert_eq!(std::fs::read_dir(desk.path("data")).unwrap().count(), 1);
+}
+
+#[test]
+fn a_finished_run_leaves_no_lock() {
+    let desk = Desk::with_pair();
+    desk.abide("survey").args(["map.toml", "--into", "out"]).run().done();
+    assert!(desk.path("out/journal.csv").exists() && !desk.path("out/.lock").exists());
+}
+
+#[test]
+fn a_failed_write_is_told_with_its_cause_once() {
+    let desk = Desk::with_pair().file("taken", "");
+    let told = desk.abide("survey").args(["map.toml", "--into", "taken/run"]).run().refused().stderr;
+    assert_eq!(told.matches("(os error").count(), 1, "{told}");
 }
 
 #[test]
@@ -188,7 +211,7 @@ fn usage_that_does_not_fit_is_refused() {
     refused(&["map.toml", "--cells", "5"]).said("--cells goes with --vary");
     refused(&["map.toml", "--span", "5 d"]).said("--span goes with --vary");
     refused(&["map.toml", "--threads", "0"]).said("--threads");
-    refused(&["pair.toml"]).said("--vary");
+    refused(&["pair.toml"]).said("this is a system file").said("name a study, or keys").said("--vary");
     refused(&["pair.toml", "--vary", "d.period"]).said("d");
     refused(&["pair.toml", "--vary", "c.argument_of_pericentre"]).said("without uncertainty");
     let three = ["pair.toml", "--vary", "c.period", "--vary", "c.eccentricity", "--vary", "c.mass"];
@@ -200,7 +223,7 @@ fn usage_that_does_not_fit_is_refused() {
 fn an_impossible_system_is_refused_and_an_impossible_cell_is_recorded() {
     let desk = Desk::with_pair();
     desk.write("pair.toml", PAIR.replace("\"0.82 Rsun\"", "\"40 Rsun\""));
-    desk.abide("survey").arg("map.toml").run().refused().said("inside the star").said("pair.toml");
+    desk.abide("survey").arg("map.toml").run().refused().said("inside the star").said("pair.toml:8:8: ");
     desk.write("pair.toml", PAIR.replace("\"0.82 Rsun\"", "\"15 Rsun\""));
     // At e = 0.6 the pericentre of c is inside such a star; the first row is outside.
     desk.write("map.toml", PAIR_MAP.replace("to = 0.3", "to = 0.6"));

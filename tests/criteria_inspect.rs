@@ -93,3 +93,38 @@ fn modes_have_their_signs() {
     assert_eq!(s.iter().filter(|s| s.abs() < 1e-12 * fastest).count(), 1, "{s:?}");
     assert!(s.iter().all(|s| *s < 1e-12 * fastest), "{s:?}");
 }
+
+/// A flat system has a node mode of frequency 0; a planet alone has no modes at all.
+#[test]
+fn a_mode_at_rest_is_zero_and_one_planet_has_none() {
+    let planets = [(4.3, 5.0, 0.02), (7.9, 8.0, 0.03), (15.1, 6.0, 0.01), (33.0, 9.0, 0.02)];
+    let view = json(&planets);
+    let nodes = view["criteria"]["secular"]["nodes"].as_array().unwrap();
+    let rates: Vec<f64> = nodes.iter().map(|mode| mode["deg_yr"].as_f64().unwrap()).collect();
+    assert_eq!(rates.iter().filter(|rate| **rate == 0.0).count(), 1, "{rates:?}");
+    assert!(rates.iter().all(|rate| *rate == 0.0 || rate.abs() > 1e-4), "{rates:?}");
+    let alone = [(10.0, 5.0, 0.1)];
+    assert!(json(&alone)["criteria"]["secular"].is_null());
+    let page = inspect(&system(&alone), &[]);
+    assert!(!page.contains("Secular modes") && !page.contains("Not said"), "{page}");
+}
+
+/// Two pairs outside one domain: each sentence is there once and says of which pair it speaks.
+#[test]
+fn each_reason_names_its_pairs() {
+    let view = json(&[(100.0, 10.0, 0.1), (900.0, 10.0, 0.1), (8100.0, 10.0, 0.1)]);
+    let silent: Vec<&str> =
+        view["criteria"]["silent"].as_array().unwrap().iter().map(|s| s.as_str().unwrap()).collect();
+    let of_pairs: Vec<&&str> = silent.iter().filter(|s| s.contains("Hadden & Lithwick")).collect();
+    assert!(!of_pairs.is_empty(), "{silent:?}");
+    for sentence in &of_pairs {
+        assert!(sentence.starts_with("a-rather-long-name-"), "{sentence}");
+    }
+    for pair in
+        ["a-rather-long-name-0 and a-rather-long-name-1", "a-rather-long-name-1 and a-rather-long-name-2"]
+    {
+        assert!(of_pairs.iter().any(|sentence| sentence.contains(pair)), "{pair}: {silent:?}");
+    }
+    let once: std::collections::BTreeSet<&&str> = silent.iter().collect();
+    assert_eq!(once.len(), silent.len(), "{silent:?}");
+}

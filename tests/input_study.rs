@@ -183,8 +183,8 @@ fn wrong_paths() {
 
 #[test]
 fn wrong_axes() {
-    check(&changed("cells = 200", "cells = 0"), Fault::EmptyAxis, 9, 9, &["0"]);
-    check(&changed("cells = 200", "cells = -3"), Fault::OutOfRange, 9, 9, &["-3"]);
+    check(&changed("cells = 200", "cells = 0"), Fault::EmptyAxis, 9, 9, &["0", "give 1 or more"]);
+    check(&changed("cells = 200", "cells = -3"), Fault::OutOfRange, 9, 9, &["-3", "give 1 or more"]);
     check(&changed("cells = 200", "cells = 20.5"), Fault::WrongType, 9, 9, &["a whole number"]);
     check(&changed("cells = 200", "cells = 1"), Fault::EmptyAxis, 9, 9, &["1 cell for two different ends"]);
     check(&changed("\"264 h\"", "\"9 d\""), Fault::EmptyAxis, 9, 9, &["200 cells from 9"]);

@@ -22,6 +22,8 @@ pub enum Command {
     Survey(SurveyArgs),
     /// Draw figures again from a stored run
     Draw(DrawArgs),
+    /// Print the completion of command lines for a shell
+    Completions(CompletionsArgs),
 }
 
 #[derive(Debug, clap::Args)]
@@ -132,6 +134,13 @@ pub struct DrawArgs {
     /// Width on paper, e.g. "88 mm" for one column; text keeps its size
     #[arg(long, value_name = "WIDTH", default_value = "180 mm")]
     pub width: String,
+}
+
+#[derive(Debug, clap::Args)]
+pub struct CompletionsArgs {
+    /// The shell
+    #[arg(value_enum)]
+    pub shell: clap_complete::Shell,
 }
 
 /// Which integrator does the work.

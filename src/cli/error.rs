@@ -40,9 +40,36 @@ fn chain(error: &dyn Error) -> String {
     let mut text = error.to_string();
     let mut cause = error.source();
     while let Some(inner) = cause {
-        text.push_str(": ");
-        text.push_str(&inner.to_string());
+        let words = inner.to_string();
+        // Many errors hold the words of their cause already, where they read best.
+        if !text.contains(&words) {
+            text.push_str(": ");
+            text.push_str(&words);
+        }
         cause = inner.source();
     }
     text
+}
+
+#[cfg(test)]
+mod tests {
+    use std::io;
+
+    use super::*;
+    use crate::disk::DiskError;
+
+    #[derive(Debug, thiserror::Error)]
+    #[error("the map cannot be drawn")]
+    struct Outer(#[source] DiskError);
+
+    #[test]
+    fn a_cause_is_said_once() {
+        let refused = || io::Error::from_raw_os_error(13);
+        let disk = DiskError::Write { path: "out/map.png".into(), source: refused() };
+        let told = CliError::working(Outer(disk)).chain();
+        assert_eq!(
+            told,
+            format!("error: the map cannot be drawn: out/map.png cannot be written: {}\n", refused())
+        );
+    }
 }

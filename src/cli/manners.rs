@@ -24,7 +24,12 @@ pub fn stop_on_signal() -> Result<Arc<AtomicBool>, CliError> {
 
 /// To standard output; a reader that has seen enough and left is no failure.
 pub fn print(text: &str) -> Result<(), CliError> {
-    match std::io::stdout().write_all(text.as_bytes()) {
+    print_bytes(text.as_bytes())
+}
+
+/// [`print`] for what is text already in bytes.
+pub fn print_bytes(bytes: &[u8]) -> Result<(), CliError> {
+    match std::io::stdout().write_all(bytes) {
         Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(CliError::working(error)),
         _ => Ok(()),
     }

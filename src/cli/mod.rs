@@ -6,6 +6,7 @@ mod error;
 mod manners;
 mod outputs;
 mod progress;
+mod unfit;
 mod vary;
 
 pub use command::run;

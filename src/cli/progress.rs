@@ -51,11 +51,11 @@ impl Progress {
             News::Passing(stage) => stage,
         };
         let elapsed = self.started.elapsed();
-        let state = self.state(elapsed, stage);
+        let (state, short) = (self.state(elapsed, stage), self.short_state(elapsed, stage));
         match &mut self.face {
             Face::Bar(bar) => {
                 bar.set_position(self.tally.total());
-                bar.set_message(state);
+                bar.set_message(short);
             }
             Face::Log { next, pause } if elapsed >= *next => {
                 let (done, total) = (self.tally.total(), self.total);
@@ -91,15 +91,33 @@ impl Progress {
         (done > 0 && elapsed > Duration::ZERO).then(|| done as f64 / elapsed.as_secs_f64())
     }
 
-    fn state(&self, elapsed: Duration, stage: Stage) -> String {
-        let rate = self.rate(elapsed);
+    /// How long it will take from here.
+    fn left(&self, rate: Option<f64>, stage: Stage) -> Option<Duration> {
         let all = self.total.saturating_sub(self.tally.total());
         let left = if stage.filling { all.min(expected(stage)) } else { all };
-        let ending = match rate {
-            Some(rate) if left > 0 => ending_words(Duration::try_from_secs_f64(left as f64 / rate).ok()),
-            _ => String::new(),
-        };
+        rate.filter(|_| left > 0).and_then(|rate| Duration::try_from_secs_f64(left as f64 / rate).ok())
+    }
+
+    fn state(&self, elapsed: Duration, stage: Stage) -> String {
+        let rate = self.rate(elapsed);
+        let ending = ending_words(self.left(rate, stage));
         pieces(&[stage_words(stage), rate_words(rate), ending, shares(&self.tally)])
+    }
+
+    /// What stands beside the bar on a terminal: the shares always, then what else there is room for.
+    fn short_state(&self, elapsed: Duration, stage: Stage) -> String {
+        let rate = self.rate(elapsed);
+        let shares = short_shares(&self.tally);
+        let (end, left) = short_ending(self.left(rate, stage), SystemTime::now());
+        let pace = rate_words(rate);
+        let wishes = [vec![&shares, &end, &left, &pace], vec![&shares, &end, &left], vec![&shares, &end]];
+        let room = TERMINAL_COLUMNS - bar_columns(self.total);
+        let joined = wishes.into_iter().map(|parts| {
+            let parts = parts.into_iter().filter(|part| !part.is_empty());
+            parts.map(String::as_str).collect::<Vec<_>>().join(" ")
+        });
+        let fits = joined.into_iter().find(|words| words.chars().count() <= room);
+        fits.unwrap_or_else(|| shares.clone())
     }
 }
 
@@ -120,9 +138,19 @@ fn filled_words(filled: u64) -> String {
     if filled == 0 { String::new() } else { format!("{} filled", HumanCount(filled)) }
 }
 
+const TERMINAL_COLUMNS: usize = 80;
+const BAR_COLUMNS: usize = 5;
+
+/// What the template of [`bar`] takes before the message.
+fn bar_columns(total: u64) -> usize {
+    BAR_COLUMNS + " 100% of ".len() + HumanCount(total).to_string().len() + 1
+}
+
 fn bar(total: u64, before: u64) -> ProgressBar {
-    let style = ProgressStyle::with_template("{bar:16} {percent:>3}% {human_pos}/{human_len}  {wide_msg}")
-        .unwrap_or_else(|_| ProgressStyle::default_bar());
+    let style = ProgressStyle::with_template(&format!(
+        "{{bar:{BAR_COLUMNS}}} {{percent:>3}}% of {{human_len}} {{wide_msg}}"
+    ))
+    .unwrap_or_else(|_| ProgressStyle::default_bar());
     ProgressBar::new(total).with_style(style).with_position(before)
 }
 
@@ -148,6 +176,52 @@ fn shares(tally: &Tally) -> String {
     found.sort_by_key(|(count, _)| std::cmp::Reverse(*count));
     let word = |(n, word): &(u64, &str)| format!("{word} {:.0} %", 100.0 * *n as f64 / total as f64);
     found.iter().map(word).collect::<Vec<_>>().join(", ")
+}
+
+/// [`shares`] in few letters: "reg 67 cha 20 lost 13%".
+fn short_shares(tally: &Tally) -> String {
+    let total = tally.total();
+    let mut found: Vec<(u64, &str)> =
+        Verdict::ALL.iter().map(|v| (tally.of(*v), short_word(*v))).filter(|(n, _)| *n > 0).collect();
+    found.sort_by_key(|(count, _)| std::cmp::Reverse(*count));
+    let word = |(n, word): &(u64, &str)| format!("{word} {:.0}", 100.0 * *n as f64 / total as f64);
+    let words = found.iter().map(word).collect::<Vec<_>>().join(" ");
+    if words.is_empty() { words } else { format!("{words}%") }
+}
+
+fn short_word(verdict: Verdict) -> &'static str {
+    match verdict.word() {
+        "lost" => "lost",
+        long => &long[..long.len().min(3)],
+    }
+}
+
+/// "ends 13:45Z" (universal time, as the Z of ISO 8601 says) and "(15 s)"; empty where nobody knows.
+fn short_ending(left: Option<Duration>, now: SystemTime) -> (String, String) {
+    let Some((left, end)) = left.and_then(|left| Some((left, now.checked_add(left)?))) else {
+        return (String::new(), String::new());
+    };
+    let (end, now) = (utc(end), utc(now));
+    // Of "2026-12-01T13:45:07Z" the minutes, another day with its month and date, another year as a date alone.
+    let when = match (end.get(..10) == now.get(..10), end.get(..4) == now.get(..4)) {
+        (true, _) => format!("{}Z", end.get(11..16).unwrap_or_default()),
+        (false, true) => {
+            format!("{} {}Z", end.get(5..10).unwrap_or_default(), end.get(11..16).unwrap_or_default())
+        }
+        (false, false) => end.split('T').next().unwrap_or_default().to_string(),
+    };
+    (format!("ends {when}"), format!("({})", short_time(left)))
+}
+
+/// A time in its largest unit.
+fn short_time(time: Duration) -> String {
+    let seconds = time.as_secs_f64();
+    match seconds {
+        ..99.5 => format!("{seconds:.0} s"),
+        ..5_970.0 => format!("{:.0} min", seconds / 60.0),
+        ..171_000.0 => format!("{:.0} h", seconds / 3600.0),
+        _ => format!("{:.0} d", seconds / 86_400.0),
+    }
 }
 
 /// When something ends that has so long to go.
@@ -204,6 +278,43 @@ mod tests {
         let state = progress.state(Duration::from_secs(2), stage);
         assert!(state.starts_with("grid of every 4th cell; 10 cells/s; ends about "), "{state}");
         assert!(state.contains("(in 7 seconds)"), "{state}");
+    }
+
+    #[test]
+    fn the_words_beside_the_bar_are_short_and_the_shares_lead() {
+        let mut progress = Progress::new(200, tally(60, 40), true);
+        (0..20).for_each(|_| progress.note(News::Integrated(Verdict::Regular)));
+        let stage = Stage { stride: 1, levels_left: 0, awaited: 80, filling: false };
+        let short = progress.short_state(Duration::from_secs(2), stage);
+        assert!(short.starts_with("reg 67 lost 33% ends "), "{short}");
+        assert!(short.ends_with("Z (8 s) 10 cells/s"), "{short}");
+    }
+
+    #[test]
+    fn all_verdicts_and_the_ending_fit_the_terminal() {
+        let mut tally = Tally::default();
+        for (verdict, count) in Verdict::ALL.into_iter().zip([2001, 2002, 2003, 2004, 2005]) {
+            (0..count).for_each(|_| tally.add(verdict));
+        }
+        for (total, hours) in [(50_000, 1), (1_000_000, 30), (1_000_000, 300), (1_000_000, 99_000)] {
+            let mut progress = Progress::new(total, Tally::default(), true);
+            progress.tally = tally.clone();
+            let pace_s = hours as f64 * 3600.0 / (total - 10_015) as f64;
+            let stage = Stage { stride: 1, levels_left: 0, awaited: 0, filling: false };
+            let short = progress.short_state(Duration::from_secs_f64(10_015.0 * pace_s), stage);
+            let columns = bar_columns(total) + short.chars().count();
+            assert!(columns <= TERMINAL_COLUMNS, "{columns}: {short}");
+            assert!(short.matches(" 20").count() >= 5 && short.contains("ends "), "{short}");
+        }
+    }
+
+    #[test]
+    fn another_day_is_named() {
+        let now = SystemTime::UNIX_EPOCH + Duration::from_secs(1_709_251_199); // 2024-02-29T23:59:59Z
+        let ending = |seconds| short_ending(Some(Duration::from_secs(seconds)), now);
+        assert_eq!(ending(0), ("ends 23:59Z".to_string(), "(0 s)".to_string()));
+        assert_eq!(ending(7201), ("ends 03-01 02:00Z".to_string(), "(2 h)".to_string()));
+        assert_eq!(ending(400 * 86_400), ("ends 2025-04-04".to_string(), "(400 d)".to_string()));
     }
 
     #[test]

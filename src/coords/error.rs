@@ -16,19 +16,31 @@ fn both(first: &str, second: &str) -> String {
     }
 }
 
+/// A length with its unit: four digits, with an exponent only where plain decimals would be long.
+fn length(length_au: f64) -> String {
+    let decade = length_au.abs().log10().floor();
+    if length_au == 0.0 {
+        "0 au".to_string()
+    } else if (-3.0..4.0).contains(&decade) {
+        format!("{length_au:.*} au", (3.0 - decade) as usize)
+    } else {
+        format!("{length_au:.3e} au")
+    }
+}
+
 /// Why a description is not a configuration, or not one that can start.
 #[derive(Clone, Debug, PartialEq, thiserror::Error)]
 pub enum CoordsError {
     #[error(
-        "{} are at one place: {gap_au:.3e} au apart, but their radii add up to \
-         {radii_au:.3e} au; change the phase or the size of one of them",
-        both(first, second)
+        "{} are at one place: {} apart, but their radii add up to \
+         {}; change the phase or the size of one of them",
+        both(first, second), length(*gap_au), length(*radii_au)
     )]
     Coincident { first: String, second: String, gap_au: f64, radii_au: f64 },
     #[error(
-        "{} is inside the star: its pericentre is {pericentre_au:.4e} au, but the star's radius is \
-         {star_radius_au:.4e} au; lower the eccentricity or enlarge the orbit",
-        told(planet)
+        "{} is inside the star: its pericentre is {}, but the star's radius is {}; lower the \
+         eccentricity or enlarge the orbit",
+        told(planet), length(*pericentre_au), length(*star_radius_au)
     )]
     InsideStar { planet: String, pericentre_au: f64, star_radius_au: f64 },
     #[error("the star's mass is not stated; give [star] mass, such as \"0.9 Msun\"")]
@@ -96,4 +108,69 @@ pub enum CoordsError {
         "no order of the orbits by period fits their stated sizes and masses; state every size as a period"
     )]
     OrderNotSolvable,
+}
+
+impl CoordsError {
+    /// The body it is about: its name, "companion" or "star"; of two the second; none for the whole system.
+    pub fn body(&self) -> Option<&str> {
+        match self {
+            CoordsError::Coincident { second, .. } => Some(second),
+            CoordsError::StarMassMissing | CoordsError::StarMass { .. } => Some("star"),
+            CoordsError::BarycentricCompanion => Some(COMPANION),
+            CoordsError::OrderNotSolvable => None,
+            CoordsError::InsideStar { planet, .. }
+            | CoordsError::MassMissing { planet }
+            | CoordsError::Mass { planet, .. }
+            | CoordsError::MassNotSolvable { planet, .. }
+            | CoordsError::FaceOn { planet, .. }
+            | CoordsError::SizeMissing { planet }
+            | CoordsError::Size { planet, .. }
+            | CoordsError::NotBound { planet, .. }
+            | CoordsError::HalfVector { planet, .. }
+            | CoordsError::NotFinite { planet, .. }
+            | CoordsError::NoEpoch { planet, .. }
+            | CoordsError::CirclesPair { planet }
+            | CoordsError::HalfSatellite { planet, .. } => Some(planet),
+        }
+    }
+
+    /// What is allowed instead.
+    pub fn allowed(&self) -> &'static str {
+        match self {
+            CoordsError::Coincident { .. } => "bodies farther apart than the sum of their radii",
+            CoordsError::InsideStar { .. } => "a pericentre outside the star",
+            CoordsError::StarMassMissing => "a star with its mass",
+            CoordsError::StarMass { .. } => "a mass above 0",
+            CoordsError::Mass { .. } => "a mass of 0 or more",
+            CoordsError::MassMissing { .. } => "one statement of the mass",
+            CoordsError::MassNotSolvable { .. } => "statements that some mass fits",
+            CoordsError::FaceOn { .. } => "an orbit that is not seen face-on, or the mass itself",
+            CoordsError::SizeMissing { .. } => "one statement of the size",
+            CoordsError::Size { .. } => "a size above 0",
+            CoordsError::NotBound { .. } => "0 <= e < 1",
+            CoordsError::HalfVector { .. } | CoordsError::HalfSatellite { .. } => "both keys of a pair",
+            CoordsError::NotFinite { .. } => "a finite number",
+            CoordsError::NoEpoch { .. } => "dates together with an epoch",
+            CoordsError::CirclesPair { .. } | CoordsError::BarycentricCompanion => "Jacobi elements",
+            CoordsError::OrderNotSolvable => "sizes and masses from which the periods follow",
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::length;
+
+    #[test]
+    fn lengths_are_plain_where_they_are_short() {
+        for (length_au, words) in [
+            (0.0, "0 au"),
+            (0.0046505, "0.004650 au"),
+            (1.25, "1.250 au"),
+            (2.5e-5, "2.500e-5 au"),
+            (f64::NAN, "NaN au"),
+        ] {
+            assert_eq!(length(length_au), words);
+        }
+    }
 }

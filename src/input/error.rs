@@ -31,6 +31,10 @@ pub enum Fault {
     NoUncertainty,
     Meaning,
     NotYet,
+    StudyFile,
+    SystemFile,
+    /// What only the bodies together show.
+    Unstartable,
 }
 
 impl Fault {
@@ -63,6 +67,9 @@ impl Fault {
             Fault::NoUncertainty => "no uncertainty is stated",
             Fault::Meaning => "this has no meaning here",
             Fault::NotYet => "this version does not have this",
+            Fault::StudyFile => "this is a study file",
+            Fault::SystemFile => "this is a system file",
+            Fault::Unstartable => "the system cannot start like this",
         }
     }
 }

@@ -35,6 +35,21 @@ pub struct SystemFile {
     pub system: System,
 }
 
+impl SystemFile {
+    /// What is wrong with a body as a whole, told at its name: a planet by its name, or "companion", "star"; without
+    /// one at the beginning of the file.
+    pub fn at_body(&self, body: Option<&str>, fault: Fault, texts: Texts) -> InputError {
+        let name = self.path.to_string_lossy();
+        let source = Source { name: &name, text: &self.text };
+        let at = body.and_then(|body| {
+            let top = raw::parse(&source).ok()?;
+            system_file::place_of(&source, &top, body)
+        });
+        let complaint = Complaint::new(fault, texts.found).about(texts.about);
+        source.at(at.unwrap_or(0..0), complaint.allowed(texts.allowed).advice(texts.advice))
+    }
+}
+
 /// A study file with its system file.
 #[derive(Clone, Debug, PartialEq)]
 pub struct StudyFile {
@@ -88,9 +103,10 @@ pub fn parse_system(name: &str, text: &str) -> Result<SystemFile, InputError> {
     let source = Source { name, text };
     let top = raw::parse(&source)?;
     if kind_of(&top) == Some(FileKind::Study) {
-        let complaint = Complaint::new(Fault::UnknownKey, "a study file where a system file is needed");
-        let complaint = complaint.allowed("a file with [star] and [[planet]]");
-        return Err(source.at(0..0, complaint.advice("give the file that the study names under system = ")));
+        let complaint = Complaint::new(Fault::StudyFile, "a study where a system is needed");
+        let complaint = complaint.allowed("a system file: one with [star] and [[planet]]");
+        let advice = "give it to `abide survey`, or name the file that stands behind its system = ";
+        return Err(complaint.advice(advice).of_file(name));
     }
     let system = system_file::check(&source, &top)?;
     Ok(SystemFile { path: PathBuf::from(name), text: text.to_string(), system })
@@ -108,12 +124,9 @@ pub fn parse_study(name: &str, text: &str, system: SystemFile) -> Result<StudyFi
 }
 
 fn not_a_study(source: &Source) -> InputError {
-    let complaint = Complaint::new(Fault::UnknownKey, "a system file where a study file is needed");
-    let complaint = complaint.allowed("a file with system, span and [[axis]]");
-    source.at(
-        0..0,
-        complaint.advice("give a study file, or say with --vary what a survey of this system varies"),
-    )
+    let complaint = Complaint::new(Fault::SystemFile, "a system where a study is needed");
+    let complaint = complaint.allowed("a study file: one with system, span and [[axis]]");
+    complaint.advice("name a study, or keys of this system with --vary").of_file(source.name)
 }
 
 /// Whether a file is a study or a system, from its top-level keys.

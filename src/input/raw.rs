@@ -264,7 +264,13 @@ impl Entry {
     pub fn count(&self, source: &Source, about: &str, zero: Fault) -> Result<usize, InputError> {
         let allowed = "a whole number of 1 or more";
         let refuse = |fault, found: String| {
-            let complaint = Complaint::new(fault, found).allowed(allowed).advice("write it without quotes");
+            let advice = match self.value {
+                RawValue::Integer(..1) => "give 1 or more",
+                RawValue::Integer(_) => "give fewer",
+                RawValue::Text(_) => "write it without quotes",
+                _ => "write a whole number, without quotes",
+            };
+            let complaint = Complaint::new(fault, found).allowed(allowed).advice(advice);
             Err(self.refuse(source, about, complaint))
         };
         match self.value {

@@ -1,5 +1,7 @@
 //! The system file: raw entries → a checked [`System`].
 
+use std::ops::Range;
+
 use super::companion;
 use super::error::{Fault, InputError};
 use super::later;
@@ -157,6 +159,14 @@ fn planets(source: &Source, top: &RawTable, epoch_jd: Option<f64>) -> Result<Vec
         bodies.push(body);
     }
     if bodies.is_empty() { Err(none(entry.value_at.clone())) } else { Ok(bodies) }
+}
+
+/// Where the name of a planet, or else the header of its table, of the companion or the star stands.
+pub(crate) fn place_of(source: &Source, top: &RawTable, body: &str) -> Option<Range<usize>> {
+    let tables = top.get("planet").and_then(|entry| entry.tables(source).ok()).unwrap_or_default();
+    let names = tables.iter().filter_map(|table| table.get("name"));
+    let named = names.clone().find(|name| matches!(&name.value, RawValue::Text(text) if text == body));
+    named.map(|name| name.value_at.clone()).or_else(|| Some(top.get(body)?.key_at.clone()))
 }
 
 fn planet(source: &Source, table: &RawTable, epoch_jd: Option<f64>) -> Result<Body, InputError> {

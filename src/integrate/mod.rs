@@ -14,12 +14,14 @@ mod kick;
 pub mod radau;
 mod splitting;
 mod star_terms;
+mod state;
 
 pub use advance::{Advance, SAMPLE_EVERY, advance};
-pub use block::{Block, Growth, State, Tangent};
+pub use block::Block;
 pub use conserved::{angular_momentum, energy};
 pub use coordinates::Coordinates;
 pub use corrector::{from_map, to_map};
 pub use kick::{Beside, kick};
 pub use splitting::Scheme;
 pub use star_terms::StarTerms;
+pub use state::{Growth, State, Tangent};

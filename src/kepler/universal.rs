@@ -142,30 +142,14 @@ pub(super) fn solve_fast<R: Real>(o: &Orbit<R>, s: R, h: R) -> (Solved<R>, R::Ma
 /// has converged is frozen, so no lane's bits depend on its neighbours.
 #[inline(always)]
 fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
-    let (zero, one, half) = (R::splat(0.0), R::splat(1.0), R::splat(0.5));
-    let two_pi = R::splat(2.0 * std::f64::consts::PI);
-    let bound = zero.lt(o.beta);
-    let safe_beta = R::select(bound, o.beta, one);
-    let turn = two_pi / safe_beta.sqrt();
-    let period = turn * o.mu / safe_beta;
-    let turns = (h / period).round();
-    let taken = bound.and(turns.lt(zero).or(zero.lt(turns)));
-    let turns = R::select(taken, turns, zero);
-    // The part of 2π that a double misses matters once many periods are taken off.
-    const TWO_PI_LOW: f64 = 2.449_293_598_294_706_4e-16;
-    let low = period * R::splat(TWO_PI_LOW / (2.0 * std::f64::consts::PI));
-    let left = turns.neg_mul_add(low, turns.neg_mul_add(period, h));
-    let left = R::select(taken, left, h);
-    let h_by_beta = R::select(taken, R::splat(1.5) * turns * period / safe_beta, zero);
-
+    let zero = R::splat(0.0);
+    let less = less_whole_periods(o, h);
     // Time runs forward from here on; a backward step is the mirror image.
-    let backward = left.lt(zero);
+    let backward = less.left.lt(zero);
     let forward = Orbit { eta: R::select(backward, -o.eta, o.eta), ..*o };
-    let time = left.abs();
-    let infinite = R::splat(f64::MAX);
-    let mut low_end = zero;
-    let mut high_end = R::select(bound, turn, infinite);
-    let mut s = R::select(bound, time * safe_beta / o.mu, time / o.r0);
+    let time = less.left.abs();
+    let mut bracket = Bracket { low: zero, high: R::select(less.bound, less.turn, R::splat(f64::MAX)) };
+    let mut s = R::select(less.bound, time * less.safe_beta / o.mu, time / o.r0);
     let mut done_s = s;
     let mut done_w = zero;
     let mut done_g = stumpff::full_range(o.beta, s, wanted);
@@ -181,21 +165,7 @@ fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
         if !open.any() {
             break;
         }
-        let below = c.f.lt(zero);
-        low_end = R::select(open.and(below), s, low_end);
-        high_end = R::select(open.and(below.not()), s, high_end);
-        let under_root = (R::splat(16.0) * c.f1).mul_add(c.f1, -(R::splat(20.0) * c.f * c.f2));
-        let laguerre = s - R::splat(5.0) * c.f / (c.f1 + under_root.sqrt());
-        let unbounded = high_end.lt(infinite).not();
-        let middle = R::select(unbounded, s + s, half * (low_end + high_end));
-        // Far out on a hyperbola time grows like an exponential of s, where Laguerre steps are short (or overflow
-        // to no step at all) and halving the bracket is the faster way; one step at most quadruples s.
-        let inside = zero
-            .lt(under_root)
-            .and(low_end.lt(laguerre))
-            .and(laguerre.lt(high_end))
-            .and(laguerre.lt(R::splat(4.0) * s));
-        let next = R::select(inside, laguerre, middle);
+        let next = bracket.next(s, &c, open);
         let stuck = (next - s).abs().lt(R::splat(1e-16) * s);
         open = open.and(stuck.not());
         s = R::select(open, next, s);
@@ -205,6 +175,73 @@ fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
     }
     let g = stumpff::at_small_sum(o.beta, &done_g, done_w);
     let s = done_s + done_w;
+    mirrored(backward, Solved { s, g, h: less.left, h_by_beta: less.h_by_beta })
+}
+
+/// A step without its whole periods.
+struct Less<R: Real> {
+    bound: R::Mask,
+    /// β where the orbit is bound, else 1.
+    safe_beta: R,
+    /// s of one period.
+    turn: R,
+    left: R,
+    h_by_beta: R,
+}
+
+#[inline(always)]
+fn less_whole_periods<R: Real>(o: &Orbit<R>, h: R) -> Less<R> {
+    let (zero, one) = (R::splat(0.0), R::splat(1.0));
+    let two_pi = R::splat(2.0 * std::f64::consts::PI);
+    let bound = zero.lt(o.beta);
+    let safe_beta = R::select(bound, o.beta, one);
+    let turn = two_pi / safe_beta.sqrt();
+    let period = turn * o.mu / safe_beta;
+    let turns = (h / period).round();
+    let taken = bound.and(turns.lt(zero).or(zero.lt(turns)));
+    let turns = R::select(taken, turns, zero);
+    // The part of 2π that a double misses matters once many periods are taken off.
+    const TWO_PI_LOW: f64 = 2.449_293_598_294_706_4e-16;
+    let low = period * R::splat(TWO_PI_LOW / (2.0 * std::f64::consts::PI));
+    let left = turns.neg_mul_add(low, turns.neg_mul_add(period, h));
+    let left = R::select(taken, left, h);
+    let h_by_beta = R::select(taken, R::splat(1.5) * turns * period / safe_beta, zero);
+    Less { bound, safe_beta, turn, left, h_by_beta }
+}
+
+/// Between which s the solution lies; `high` is the largest number there is while nothing is known.
+struct Bracket<R> {
+    low: R,
+    high: R,
+}
+
+impl<R: Real> Bracket<R> {
+    /// Draws the bracket in by what was found at s, in the lanes still open, and gives the next s.
+    #[inline(always)]
+    fn next(&mut self, s: R, c: &Correction<R>, open: R::Mask) -> R {
+        let (zero, half) = (R::splat(0.0), R::splat(0.5));
+        let below = c.f.lt(zero);
+        self.low = R::select(open.and(below), s, self.low);
+        self.high = R::select(open.and(below.not()), s, self.high);
+        let under_root = (R::splat(16.0) * c.f1).mul_add(c.f1, -(R::splat(20.0) * c.f * c.f2));
+        let laguerre = s - R::splat(5.0) * c.f / (c.f1 + under_root.sqrt());
+        let unbounded = self.high.lt(R::splat(f64::MAX)).not();
+        let middle = R::select(unbounded, s + s, half * (self.low + self.high));
+        // Far out on a hyperbola time grows like an exponential of s, where Laguerre steps are short (or overflow
+        // to no step at all) and halving the bracket is the faster way; one step at most quadruples s.
+        let inside = zero
+            .lt(under_root)
+            .and(self.low.lt(laguerre))
+            .and(laguerre.lt(self.high))
+            .and(laguerre.lt(R::splat(4.0) * s));
+        R::select(inside, laguerre, middle)
+    }
+}
+
+/// The solution of the forward step turned back in the lanes of `backward`: s, G₁, G₃ and G₅ are odd.
+#[inline(always)]
+fn mirrored<R: Real>(backward: R::Mask, forward: Solved<R>) -> Solved<R> {
+    let Solved { s, g, h, h_by_beta } = forward;
     Solved {
         s: R::select(backward, -s, s),
         g: Gs {
@@ -214,7 +251,7 @@ fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
             g4: g.g4,
             g5: R::select(backward, -g.g5, g.g5),
         },
-        h: left,
+        h,
         h_by_beta,
     }
 }

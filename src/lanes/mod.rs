@@ -2,14 +2,16 @@
 //!
 //! A kernel is written once over [`Real`]. Every operation here is exact to IEEE 754 (add, subtract,
 //! multiply, divide, square root, fused multiply-add, comparisons, blends), so a kernel gives the same bits
-//! for one number as for any of the eight lanes, on every processor. [`processor`] is the one place that asks
-//! what the processor can do and the only file with `unsafe`.
+//! for one number as for any of the eight lanes, on every processor. [`level`] is the one place that asks
+//! what the processor can do, [`processor`] the only file with `unsafe`.
 
+mod level;
 mod processor;
 mod scalar;
 mod twin;
 
-pub use processor::{Level, run_one, run_wide, run_wide_at};
+pub use level::Level;
+pub use processor::{run_one, run_wide, run_wide_at};
 pub use twin::Twin;
 
 use std::ops::{Add, Div, Mul, Neg, Sub};

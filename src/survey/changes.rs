@@ -23,6 +23,17 @@ pub fn changes(file: &str, before: &str, now: &str) -> Vec<String> {
     keys.into_iter().filter_map(line).collect()
 }
 
+/// The first five lines, and how many more there are.
+pub fn first_few(mut lines: Vec<String>) -> Vec<String> {
+    const SHOWN: usize = 5;
+    let more = lines.len().saturating_sub(SHOWN);
+    lines.truncate(SHOWN);
+    if more > 0 {
+        lines.push(format!("and {more} more"));
+    }
+    lines
+}
+
 fn flat(text: &str) -> Option<BTreeMap<String, String>> {
     let table: toml::Table = text.parse().ok()?;
     let mut entries = BTreeMap::new();
@@ -57,7 +68,7 @@ fn label(index: usize, item: &Value) -> String {
 
 #[cfg(test)]
 mod tests {
-    use super::changes;
+    use super::{changes, first_few};
 
     const BEFORE: &str =
         "span = \"1e4 orbits\"\n[[axis]]\nvary = \"c.period\"\ncells = 100\nfrom = \"16 d\"\n";
@@ -87,6 +98,13 @@ mod tests {
             changes("study", BEFORE, &now),
             ["study: axis[b.mass].vary was absent, is now \"b.mass\""]
         );
+    }
+
+    #[test]
+    fn a_long_list_is_cut_and_counted() {
+        let lines = |count: usize| (1..=count).map(|k| k.to_string()).collect::<Vec<_>>();
+        assert_eq!(first_few(lines(5)), lines(5));
+        assert_eq!(first_few(lines(32)), ["1", "2", "3", "4", "5", "and 27 more"]);
     }
 
     #[test]

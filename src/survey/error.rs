@@ -24,6 +24,11 @@ pub enum SurveyError {
     )]
     Foreign { folder: PathBuf, file: &'static str },
     #[error(
+        "{} is no run, but holds other files, as {other}; choose another folder with --into, a new or an empty one",
+        folder.display()
+    )]
+    Occupied { folder: PathBuf, other: String },
+    #[error(
         "{}: {file} was edited since the run was begun, so its cells are of other input; restore it, or survey the \
          edited one into a folder of its own", folder.display()
     )]

@@ -19,7 +19,7 @@ mod view;
 
 pub use axis::{cell_count, cell_indices, cell_system, cell_values};
 pub use bitmap::Bitmap;
-pub use changes::changes;
+pub use changes::{changes, first_few};
 pub use error::{Failure, SurveyError};
 pub use grid::Grid;
 pub use journal::{Journal, Recovered};

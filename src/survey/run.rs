@@ -2,7 +2,7 @@
 
 use std::path::{Path, PathBuf};
 
-use super::changes::changes;
+use super::changes::{changes, first_few};
 use super::journal::{self, Journal, Recovered};
 use super::manifest::{Identity, Manifest, VERSION, host, sha256};
 use super::{Record, SurveyError};
@@ -144,6 +144,9 @@ fn begin(folder: &Path, manifest: &Manifest, identity: &Identity) -> Result<(), 
             return Err(SurveyError::Foreign { folder: folder.to_path_buf(), file });
         }
     }
+    if let Some(other) = disk::stranger(folder, &[STUDY, SYSTEM, JOURNAL]) {
+        return Err(SurveyError::Occupied { folder: folder.to_path_buf(), other });
+    }
     disk::write_beside_then_rename(&folder.join(STUDY), identity.study_text.as_bytes())?;
     disk::write_beside_then_rename(&folder.join(SYSTEM), identity.system_text.as_bytes())?;
     manifest.write(&folder.join(MANIFEST))
@@ -170,7 +173,7 @@ fn refuse_changed(
     if list.is_empty() {
         list.push("the plan that follows from the same files (scheme, step, limits)".to_string());
     }
-    Err(SurveyError::Changed { folder: folder.to_path_buf(), changes: list })
+    Err(SurveyError::Changed { folder: folder.to_path_buf(), changes: first_few(list) })
 }
 
 /// What differs between the stored file and the text read now.

@@ -18,7 +18,7 @@ use crate::cli::args::FollowArgs;
 use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
 use crate::disk::{self, DiskError, Lock};
 use crate::survey;
-use checkpoint::Checkpoint;
+use checkpoint::{CHECKPOINT, Checkpoint, PICTURE, SERIES};
 use pace::Pace;
 use view::View;
 use wish::Wish;
@@ -52,6 +52,14 @@ fn take_folder(folder: &Path) -> Result<Lock, CliError> {
     if folder.join(survey::JOURNAL).exists() {
         return Err(CliError::Input(format!(
             "{} holds a survey; choose another folder with --into",
+            folder.display()
+        )));
+    }
+    let begun = [CHECKPOINT, SERIES].iter().any(|file| folder.join(file).exists());
+    if let Some(other) = disk::stranger(folder, &[PICTURE]).filter(|_| !begun) {
+        return Err(CliError::Input(format!(
+            "{} holds other files, as {other}, and nothing that was followed; choose another folder with --into, a \
+             new or an empty one",
             folder.display()
         )));
     }

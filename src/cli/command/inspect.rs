@@ -13,15 +13,13 @@ use std::process::ExitCode;
 
 use crate::cli::CliError;
 use crate::cli::args::InspectArgs;
-use crate::coords;
+use crate::cli::unfit;
 use crate::input;
 use view::View;
 
 pub fn run(args: InspectArgs) -> Result<ExitCode, CliError> {
     let file = input::read_system(&args.system).map_err(CliError::input)?;
-    let at_file = |error: coords::CoordsError| CliError::Input(format!("{}: {error}", args.system.display()));
-    let configuration = coords::configure(&file.system).map_err(at_file)?;
-    coords::check_start(&configuration).map_err(at_file)?;
+    let configuration = unfit::startable(&file)?;
     let view = View::new(&file.system, &configuration);
     let output = if args.json { json(&view)? } else { text::page(&view) };
     std::io::stdout().write_all(output.as_bytes()).map_err(CliError::working)?;

@@ -1,5 +1,6 @@
 //! One file per command; each is a screen of named steps.
 
+mod completions;
 mod draw;
 mod follow;
 mod inspect;
@@ -17,5 +18,6 @@ pub fn run(args: Args) -> Result<ExitCode, CliError> {
         Command::Follow(args) => follow::run(args),
         Command::Survey(args) => survey::run(args),
         Command::Draw(args) => draw::run(args),
+        Command::Completions(args) => completions::run(args),
     }
 }

@@ -11,6 +11,7 @@ use crate::cli::args::SurveyArgs;
 use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
 use crate::cli::outputs::Finished;
 use crate::cli::progress::Progress;
+use crate::cli::unfit::unfit;
 use crate::cli::vary;
 use crate::coords;
 use crate::figure;
@@ -62,9 +63,11 @@ impl Wish {
         let (file, name) = read(args)?;
         refuse_many(cell_count(&file.study), args.really)?;
         let system = &file.system.system;
-        let grid = Grid::new(system.clone(), file.study.clone())
-            .map_err(|error| CliError::Input(format!("{}: {}", file.system.path.display(), chain(&error))))?;
-        let nominal = coords::configure(system).map_err(CliError::input)?;
+        let grid = Grid::new(system.clone(), file.study.clone()).map_err(|error| match error {
+            SurveyError::Nominal(cause) => unfit(&file.system, &cause),
+            other => told(other),
+        })?;
+        let nominal = coords::configure(system).map_err(|error| unfit(&file.system, &error))?;
         let plan = plan_of(&file.study, system, &nominal);
         let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
         let filling = args.fill || !args.every_cell && is_large(&file.study);
@@ -149,8 +152,8 @@ impl Wish {
         if found.recovered.dropped > 0 {
             let lines = found.recovered.dropped;
             self.say(format_args!(
-                "{lines} {} of the journal torn or damaged, dropped; the cells are done again",
-                if lines == 1 { "line was" } else { "lines were" }
+                "{lines} torn or damaged and dropped; the cells are done again",
+                lines = damaged(lines)
             ));
         }
         if found.only_layout {
@@ -218,6 +221,13 @@ impl Lanes {
     }
 }
 
+fn damaged(lines: u64) -> String {
+    match lines {
+        1 => "1 line of the journal was".to_string(),
+        _ => format!("{lines} lines of the journal were"),
+    }
+}
+
 /// The study with the name of its run.
 fn read(args: &SurveyArgs) -> Result<(StudyFile, String), CliError> {
     if !args.vary.is_empty() {
@@ -266,9 +276,4 @@ fn refuse_many(cells: u64, really: bool) -> Result<(), CliError> {
 
 fn told(error: SurveyError) -> CliError {
     if error.is_input() { CliError::input(error) } else { CliError::working(error) }
-}
-
-fn chain(error: &dyn std::error::Error) -> String {
-    let cause = error.source().map(|cause| format!(": {cause}")).unwrap_or_default();
-    format!("{error}{cause}")
 }

@@ -181,7 +181,7 @@ impl Checkpoint {
             "{} holds something else, which {state}:\n  {}\n  to do:   choose another folder with --into, drop what is \
              there with --anew, or go back to what was given before",
             self.folder.display(),
-            list.join("\n  ")
+            survey::first_few(list).join("\n  ")
         )))
     }
 }

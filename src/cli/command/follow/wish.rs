@@ -6,7 +6,8 @@ use std::time::Duration;
 use crate::assess::{Plan, auto_step_day, innermost_period_day, plan_for_rows};
 use crate::cli::CliError;
 use crate::cli::args::{CoordinateWord, EngineWord, FollowArgs};
-use crate::coords::{self, Configuration};
+use crate::cli::unfit;
+use crate::coords::Configuration;
 use crate::input::{self, SystemFile};
 use crate::integrate::Scheme;
 use crate::report::time_words;
@@ -75,10 +76,7 @@ impl Wish {
             stop_when_chaotic: false,
         };
         let rows = rows(args.rows)?;
-        let at_file =
-            |error: coords::CoordsError| CliError::Input(format!("{}: {error}", args.system.display()));
-        let configuration = coords::configure(&file.system).map_err(at_file)?;
-        coords::check_start(&configuration).map_err(at_file)?;
+        let configuration = unfit::startable(&file)?;
         let mut plan = Plan::new(span, &limits, &engine, &configuration);
         plan.adaptive = args.engine == EngineWord::Adaptive;
         let plan = plan_for_rows(&plan, &configuration, rows);

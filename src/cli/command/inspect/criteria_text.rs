@@ -141,8 +141,8 @@ fn modes(view: &SecularView) -> Vec<String> {
         vec![
             format!("{letter}{}", index + 1),
             significant(mode.deg_yr, 5),
-            // A mode at rest has no period; what is left of its frequency is rounding.
-            if period < 1e12 { significant(period, 4) } else { "-".to_string() },
+            // A mode at rest has no period.
+            if period.is_finite() { significant(period, 4) } else { "-".to_string() },
             format!("{:.1}", 100.0 * mode.amd_share),
             taking_part(mode, &names),
         ]

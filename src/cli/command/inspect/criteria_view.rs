@@ -7,6 +7,9 @@ use crate::criteria::{self, AmdBudget, Neighbours, OutOfDomain, SecularMode, Sec
 use crate::system::Frame;
 use crate::units::{DEGREE, YEAR_DAY};
 
+/// A frequency below this part of the largest is what rounding left of a mode at rest.
+const AT_REST: f64 = 1e-12;
+
 #[derive(Debug, Serialize)]
 pub struct CriteriaView {
     pub pairs: Vec<PairCriteria>,
@@ -100,44 +103,69 @@ impl CriteriaView {
                 silent: vec![why],
             };
         }
-        let mut silent = Vec::new();
-        let budget = heard(criteria::amd_budget(configuration), &mut silent);
+        let mut silent = Silent::default();
+        let budget = silent.heard("", criteria::amd_budget(configuration));
         let exact_hill = (configuration.planets.len() == 2)
-            .then(|| heard(criteria::exact_hill_balance(configuration), &mut silent))
+            .then(|| silent.heard("", criteria::exact_hill_balance(configuration)))
             .flatten()
             .map(|b| ExactHill { found: b.found, needed: b.needed, stable: b.stable() });
-        let secular = heard(SecularSystem::of(configuration, true), &mut silent)
+        // The modes are what planets do to one another.
+        let secular = (configuration.planets.len() > 1)
+            .then(|| silent.heard("", SecularSystem::of(configuration, true)))
+            .flatten()
             .map(|system| secular(configuration, &system));
+        let chains = chains(configuration, pairs);
+        let pairs =
+            pairs.iter().map(|pair| of_pair(configuration, pair, budget.as_ref(), &mut silent)).collect();
         CriteriaView {
-            pairs: pairs
-                .iter()
-                .map(|pair| of_pair(configuration, pair, budget.as_ref(), &mut silent))
-                .collect(),
+            pairs,
             exact_hill,
             innermost_amd: budget.map(|budget| budget.innermost_relative),
-            chains: chains(configuration, pairs),
+            chains,
             secular,
-            silent,
+            silent: silent.sentences(),
         }
     }
 }
 
-/// What a criterion says; its reason for saying nothing is kept once.
-fn heard<T>(said: Result<T, OutOfDomain>, silent: &mut Vec<String>) -> Option<T> {
-    said.map_err(|error| {
-        let reason = error.to_string();
-        if !silent.contains(&reason) {
-            silent.push(reason);
+/// Why criteria say nothing: each reason once, with what it is the reason for.
+#[derive(Default)]
+struct Silent {
+    reasons: Vec<(String, Vec<String>)>,
+}
+
+impl Silent {
+    /// What a criterion says about a pair, or with an empty name about the whole system.
+    fn heard<T>(&mut self, about: &str, said: Result<T, OutOfDomain>) -> Option<T> {
+        let reason = match said {
+            Ok(said) => return Some(said),
+            Err(error) => error.to_string(),
+        };
+        let known = self.reasons.iter().position(|(other, _)| *other == reason);
+        let index = known.unwrap_or_else(|| {
+            self.reasons.push((reason, Vec::new()));
+            self.reasons.len() - 1
+        });
+        let named = &mut self.reasons[index].1;
+        if !about.is_empty() && !named.iter().any(|other| other == about) {
+            named.push(about.to_string());
         }
-    })
-    .ok()
+        None
+    }
+
+    fn sentences(self) -> Vec<String> {
+        let sentence = |(reason, named): (String, Vec<String>)| {
+            if named.is_empty() { reason } else { format!("{}: {reason}", named.join(", ")) }
+        };
+        self.reasons.into_iter().map(sentence).collect()
+    }
 }
 
 fn of_pair(
     configuration: &Configuration,
     pair: &Neighbours,
     budget: Option<&AmdBudget>,
-    silent: &mut Vec<String>,
+    silent: &mut Silent,
 ) -> PairCriteria {
     let orbits = configuration.elements_in(Frame::Astrocentric);
     let both = [pair.inner, pair.outer];
@@ -145,16 +173,18 @@ fn of_pair(
     let masses = both.map(|k| configuration.planets[k].gm / configuration.star_gm);
     let total = masses[0] + masses[1];
     let name = |k: usize| configuration.planets[k].name.clone();
+    let about = format!("{} and {}", name(pair.inner), name(pair.outer));
     let crossing = criteria::outer_eccentricity_at_crossing(axes, orbits[pair.inner].eccentricity);
     PairCriteria {
         inner: name(pair.inner),
         outer: name(pair.outer),
         gap: axes[1] / axes[0] - 1.0,
-        first_order_overlap: heard(criteria::first_order_overlap(total), silent),
-        quarter_power_spacing: heard(criteria::quarter_power_spacing(masses, axes), silent),
+        first_order_overlap: silent.heard(&about, criteria::first_order_overlap(total)),
+        quarter_power_spacing: silent.heard(&about, criteria::quarter_power_spacing(masses, axes)),
         relative_eccentricity: criteria::relative_eccentricity(&orbits[pair.inner], &orbits[pair.outer]),
-        critical_relative_eccentricity: heard(criteria::critical_relative_eccentricity(total, axes), silent),
-        outer_eccentricity_at_crossing: heard(crossing, silent),
+        critical_relative_eccentricity: silent
+            .heard(&about, criteria::critical_relative_eccentricity(total, axes)),
+        outer_eccentricity_at_crossing: silent.heard(&about, crossing),
         amd: budget.and_then(|budget| budget.pairs.iter().find(|(a, b, _)| [*a, *b] == both)).map(
             |(_, _, amd)| AmdView {
                 relative: amd.relative,
@@ -185,8 +215,14 @@ fn chains(configuration: &Configuration, pairs: &[Neighbours]) -> Vec<ChainView>
 
 fn secular(configuration: &Configuration, system: &SecularSystem) -> SecularView {
     let modes = system.modes();
+    let all = modes.pericentres.iter().chain(&modes.nodes);
+    let fastest = all.map(|mode| mode.frequency_rad_day.abs()).fold(0.0, f64::max);
     let view = |mode: &SecularMode| ModeView {
-        deg_yr: mode.frequency_rad_day * YEAR_DAY / DEGREE,
+        deg_yr: if mode.frequency_rad_day.abs() < AT_REST * fastest {
+            0.0
+        } else {
+            mode.frequency_rad_day * YEAR_DAY / DEGREE
+        },
         amd_share: mode.amd_share,
         amplitude: mode.amplitude.clone(),
         participation: mode.participation.clone(),
