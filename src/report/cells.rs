@@ -151,6 +151,6 @@ fn trust_columns(columns: &mut Columns<'_>) {
     columns.text("scheme", "integration scheme", |r| Some(r.assessment.scheme.to_owned()));
     columns.float("step", "d", "step of the final attempt", |r| Some(r.assessment.step_day));
     columns.count("steps", "steps of the final attempt", |r| r.assessment.steps);
-    columns
-        .count("redone", "times the cell was redone with a smaller step", |r| u64::from(r.assessment.redone));
+    let meaning = "attempts after the first: with smaller steps, the last with the adaptive engine where scheme says so";
+    columns.count("redone", meaning, |r| u64::from(r.assessment.redone));
 }
