@@ -58,8 +58,13 @@ fn leaves_series_and_figure_and_prints_the_verdict() {
     assert_eq!((time[0], found.1.len() <= 2000), (0.0, true));
     assert!((time[time.len() - 1] - 11.862 * 1000.0 / 365.25).abs() < 1e-9, "{time:?}");
     // The first row is the stated orbit.
-    for (name, value) in [("b.e", 0.05), ("c.e", 0.03), ("b.omega", 75.0), ("c.omega", 190.0), ("b.i", 90.0)]
-    {
+    for (name, value) in [
+        ("b.e", 0.05),
+        ("c.e", 0.03),
+        ("b.argument_of_pericentre", 75.0),
+        ("c.argument_of_pericentre", 190.0),
+        ("b.i", 90.0),
+    ] {
         let first = column(&found, name)[0];
         assert!((first - value).abs() < 1e-10, "{name}: {first}");
     }

@@ -271,8 +271,10 @@ fn the_colour_bar_names_its_ends() {
     let bar = drawn(&study, &records, "megno").colour_bar.unwrap();
     assert_eq!((bar.scale.from, bar.scale.to, bar.scale.kind), (2.0, 10.0, ScaleKind::Log));
     assert!(bar.before && bar.after);
+    assert_eq!(bar.label.text(), "MEGNO ⟨Y⟩ (logarithmic)");
     let bar = drawn(&study, &records, "c.e_max").colour_bar.unwrap();
     assert!(!bar.before && !bar.after && bar.scale.kind == ScaleKind::Linear);
+    assert!(!bar.label.text().contains("log"));
     let largest =
         records.iter().filter(|r| matches!(r.assessment.verdict, Verdict::Regular | Verdict::Chaotic));
     let largest = largest.map(|r| r.assessment.extent[1].eccentricity.max).fold(0.0, f64::max);
@@ -345,17 +347,31 @@ fn one_axis_gives_points_over_it() {
     study.axes.truncate(1);
     let mut records = one(&study, assessment(Verdict::Chaotic, None, 4.0, 1.0));
     records[2].assessment = assessment(Verdict::Lost, Some(LostHow::Escape), 9.0, 0.5);
+    records[3].assessment = assessment(Verdict::Undecided, None, 2.5, 1.0);
     let figure = drawn(&study, &records, "megno");
     let panel = &figure.panels[0];
-    assert_eq!(raster(&figure)[2], Paint::Flat(Region::Escape));
-    assert_eq!(raster(&figure)[1], Paint::Empty);
-    let points =
-        panel.marks.iter().find_map(|m| if let Mark::Points { points } = m { Some(points) } else { None });
-    let places: Vec<(f64, f64)> = points.unwrap().iter().map(|p| (p.0, p.1)).collect();
-    assert_eq!(places.len(), 4);
-    for ((x, y), expected) in places.iter().zip([15.5, 16.875, 19.625, 21.0]) {
+    let (chaotic, escape) = (Region::Chaotic, Region::Escape);
+    let cells = vec![chaotic, chaotic, escape, Region::Undecided, chaotic];
+    let Mark::Strip { cells: strip, height } = &panel.marks[0] else { panic!() };
+    assert_eq!(*strip, cells);
+    let places = |wanted: bool| -> Vec<(f64, f64)> {
+        let points = panel.marks.iter().find_map(|m| match m {
+            Mark::Points { points, hollow } if *hollow == wanted => Some(points),
+            _ => None,
+        });
+        points.unwrap().iter().map(|p| (p.0, p.1)).collect()
+    };
+    assert_eq!((places(false).len(), places(true).len()), (3, 1));
+    for ((x, y), expected) in places(false).iter().zip([15.5, 16.875, 21.0]) {
         assert!((x - expected).abs() < 1e-12 && *y == 4.0);
     }
+    assert!((places(true)[0].0 - 19.625).abs() < 1e-12 && places(true)[0].1 == 2.5);
+    // The strip hides no point.
     let y = panel.y.as_ref().unwrap();
-    assert!(y.from < 4.0 && y.to > 4.0);
+    assert!(y.scale().place(2.5).unwrap() > height + 0.03 && y.to > 4.0);
+    let words = figure.caption.join(" ");
+    assert!(words.contains("bottom edge: verdicts; hollow points: undecided cells."), "{words}");
+    let named: Vec<&Legend> = figure.legend.iter().filter(|l| matches!(l, Legend::Region(_))).collect();
+    let region = Legend::Region;
+    assert_eq!(named, [&region(chaotic), &region(escape), &region(Region::Undecided)]);
 }

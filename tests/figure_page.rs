@@ -387,16 +387,3 @@ fn the_scale_rises_evenly_in_lightness() {
     assert_eq!(scale.colour(f64::NAN), None);
     assert_eq!(scale.colour(-3.0), scale.colour(0.0));
 }
-
-/// Writes every picture, for the eye, where FIGURES_INTO points to.
-#[test]
-#[ignore = "writes pictures; run with FIGURES_INTO=FOLDER and --ignored"]
-fn pictures_for_the_eye() {
-    let folder = std::env::var_os("FIGURES_INTO").expect("FIGURES_INTO names a folder");
-    for (name, figure) in figures() {
-        for mm in [180.0, 88.0] {
-            let file = std::path::Path::new(&folder).join(format!("{name}-{mm}.png"));
-            std::fs::write(file, render::png(&figure, Width { mm }).unwrap()).unwrap();
-        }
-    }
-}

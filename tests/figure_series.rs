@@ -1,6 +1,7 @@
 //! Panels through time as data.
 
-use abide::figure::{FigureError, Legend, Mark, PlanetCurves, ScaleKind, SeriesInput, series};
+use abide::figure::render::{Width, page};
+use abide::figure::{Figure, FigureError, Legend, Mark, PlanetCurves, ScaleKind, SeriesInput, series};
 
 fn input<'a>(
     time: &'a [f64],
@@ -51,4 +52,33 @@ fn what_was_not_measured_has_no_panel() {
     assert_eq!(figure.panels.len(), 2);
     assert_eq!(figure.panels[0].x.label.text(), "time [d]");
     assert!(matches!(series(&input(&[], &[], &[], &[])), Err(FigureError::EmptySeries)));
+}
+
+#[test]
+fn every_panel_through_time_has_at_least_three_numbers() {
+    for mm in [60.0, 88.0, 130.0, 180.0] {
+        let found = page(&narrow_panels(), Width { mm }).unwrap();
+        assert_eq!(found.frames.len(), 4);
+        for (index, frame) in found.frames.iter().enumerate() {
+            let labels: Vec<String> = frame.y.major.iter().map(|t| t.label.text()).collect();
+            assert!(labels.len() >= 3, "panel {index} at {mm} mm: {labels:?}");
+        }
+    }
+}
+
+/// Ranges in which steps of 1, 2 and 5 find little: a narrow one beside a large offset, a single decade of errors.
+fn narrow_panels() -> Figure {
+    let time: Vec<f64> = (0..50).map(|i| f64::from(i) * 60.0).collect();
+    let e: Vec<f64> = (0..50).map(|i| 0.2488 + 2.3e-5 * f64::from(i)).collect();
+    let energy: Vec<f64> = (0..50).map(|i| 1.3e-9 + 1.0e-10 * f64::from(i)).collect();
+    let planets = [PlanetCurves { name: "b", eccentricity: &e, semi_major_axis_au: &[1.0; 50] }];
+    series(&SeriesInput {
+        title: "Lanthorn",
+        time_day: &time,
+        planets: &planets,
+        megno_mean: &[1.97; 50],
+        energy_error: &energy,
+        caption: &[],
+    })
+    .unwrap()
 }

@@ -3,13 +3,14 @@
 #[path = "figure_world/mod.rs"]
 mod figure_world;
 
+use abide::assess::Assessment;
 use abide::coords::Elements;
 use abide::report::{
     self, Column, Datatype, Entry, Meta, PlanetSeries, ReportError, Series, Spread, Summary, Table,
     cells_table, series_table,
 };
 use abide::survey::Record;
-use abide::system::{Key, Step};
+use abide::system::{BodyRef, Key, Measured, Step, Target};
 use abide::units::DEGREE;
 use abide::verdict::{LostHow, Verdict};
 use figure_world::{SPAN_DAY, assessment, plan, records, study, system};
@@ -181,8 +182,8 @@ fn the_series_has_degrees_years_and_gaps() {
         "b.a",
         "b.e",
         "b.i",
-        "b.node",
-        "b.omega",
+        "b.ascending_node",
+        "b.argument_of_pericentre",
         "b.mean_anomaly",
         "energy_error",
         "megno_mean",
@@ -192,8 +193,11 @@ fn the_series_has_degrees_years_and_gaps() {
     assert_eq!(table.column("time").unwrap(), [&Entry::Float(0.0), &Entry::Float(1.0)]);
     assert_eq!(table.column("megno_mean").unwrap(), [&Entry::Absent, &Entry::Float(1.5)]);
     assert_eq!(table.column("lyapunov").unwrap()[1], &Entry::Float(3.6525));
-    let Entry::Float(angle) = table.column("b.omega").unwrap()[0] else { panic!() };
+    let Entry::Float(angle) = table.column("b.argument_of_pericentre").unwrap()[0] else { panic!() };
     assert!((angle - 75.0).abs() < 1e-12);
+    let meaning = |name| table.columns.iter().find(|c| c.name == name).unwrap().description.clone();
+    assert_eq!(meaning("b.argument_of_pericentre"), "argument of pericentre of b");
+    assert_eq!(meaning("b.ascending_node"), "ascending node of b");
     table.to_ecsv().unwrap();
 }
 
@@ -243,7 +247,7 @@ fn the_summary_counts_and_says_what_was_done() {
         "untrusted    0 (0.0 %)",
         "nominal      cell 2 is chaotic, MEGNO 6.000, energy error 3.6e-9",
         "energy error median 3.6e-9, 95 % of cells below 8.1e-9, largest 8.1e-9 (target 1e-7)",
-        "scheme       (2,2)",
+        "scheme       (2,2) with corrector",
         "step         0.42 d (1/20 of the shortest pericentre passage)",
     ] {
         assert!(text.lines().any(|l| l == line), "missing {line:?} in\n{text}");
@@ -272,6 +276,51 @@ fn what_is_held_names_the_statements_that_stay() {
 }
 
 #[test]
+fn what_is_held_goes_body_by_body() {
+    let held = |study: &_, system: &_| Summary::of(study, system, &plan(), &[], None).held;
+    let mut stated = system();
+    for planet in &mut stated.planets {
+        planet.stated.insert(Key::Inclination, Measured::exact(80.0 * DEGREE, "deg"));
+        planet.stated.remove(Key::Mass);
+        planet.stated.insert(Key::RvSemiAmplitude, Measured::exact(1e-6, "m/s"));
+        let anomaly = planet.stated.get(Key::MeanAnomaly).unwrap();
+        planet.stated.remove(Key::MeanAnomaly);
+        planet.stated.insert(Key::PericentreTime, anomaly);
+    }
+    let mut plane = study(4, 2);
+    plane.axes[0].path = "all.inclination".to_owned();
+    plane.axes[0].target = Target { body: BodyRef::All, key: Key::Inclination };
+    (plane.axes[0].from, plane.axes[0].to, plane.axes[0].scale) = (30.0, 80.0, DEGREE);
+    plane.axes[1] = figure_world::axis(1, Key::MeanAnomaly, (0.0, 3.0, 2));
+    // The mean anomaly takes the place of the pericentre time of c, and b keeps its own.
+    let expected = "varied: all.inclination, c.mean_anomaly; held as stated: \
+                    radial-velocity semi-amplitude, period, eccentricity, argument of pericentre, \
+                    pericentre time of b; \
+                    radial-velocity semi-amplitude, period, eccentricity, argument of pericentre of c; \
+                    all of the star";
+    assert_eq!(held(&plane, &stated), expected);
+
+    // An angle that turns with a moved component is not held, though it was stated.
+    let mut vector = study(4, 2);
+    vector.axes = vec![
+        figure_world::axis(1, Key::ECosW, (-0.1, 0.1, 4)),
+        figure_world::axis(1, Key::Eccentricity, (0.1, 0.2, 2)),
+    ];
+    let words = held(&vector, &system());
+    assert!(words.contains("held as stated: mass, period, mean anomaly of c;"), "{words}");
+
+    // All bodies moved: no others are left to be held.
+    let mut everything = study(4, 2);
+    everything.axes[0].target = Target { body: BodyRef::Star, key: Key::Mass };
+    everything.axes[1].target.body = BodyRef::All;
+    let words = held(&everything, &system());
+    assert!(
+        words.ends_with("held as stated: mass, period, argument of pericentre, mean anomaly of b and c"),
+        "{words}"
+    );
+}
+
+#[test]
 fn the_caption_says_when_cells_are_missing() {
     let study = study(40, 30);
     let mut found = records(&study);
@@ -290,23 +339,36 @@ fn the_caption_says_when_cells_are_missing() {
     );
 }
 
-/// Writes a table for the readers of .ci/read_ecsv.py where TABLES_INTO points to.
 #[test]
-#[ignore = "writes a table; run with TABLES_INTO=FOLDER and --ignored"]
-fn a_table_for_other_readers() {
-    let folder = std::env::var_os("TABLES_INTO").expect("TABLES_INTO names a folder");
-    let study = study(40, 30);
-    let text = cells_table(&study, &names(), &plan(), &records(&study)).to_ecsv().unwrap();
-    std::fs::write(std::path::Path::new(&folder).join("cells.ecsv"), text).unwrap();
-    let units = [
-        "d", "yr", "s", "min", "h", "kyr", "Myr", "Gyr", "m", "km", "au", "Rsun", "Rjup", "Rearth", "kg",
-        "Msun", "Mjup", "Mearth", "deg", "rad", "arcsec", "m/s", "km/s", "JD", "1/yr",
+fn second_attempts_are_counted_by_what_they_ended_with() {
+    let study = study(4, 2);
+    let cell = |cell, redone, scheme| {
+        let assessment = Assessment { redone, scheme, ..assessment(Verdict::Regular, None, 2.0, 1.0) };
+        Record { cell, values: vec![0.0; 2], assessment, filled: None }
+    };
+    // Handed over after two smaller steps, and at once because planets met.
+    let records = [
+        cell(0, 0, "(2,2)"),
+        cell(1, 1, "(2,2)"),
+        cell(2, 2, "(2,2)"),
+        cell(3, 3, "adaptive"),
+        cell(4, 0, "adaptive"),
     ];
-    let columns = units.iter().map(|u| Column::new(format!("in {u}"), u, Datatype::Float, "")).collect();
-    let rows = vec![
-        units.iter().map(|_| Entry::Float(0.1)).collect(),
-        units.iter().map(|_| Entry::Absent).collect(),
-    ];
-    let text = Table { columns, rows, meta: vec![("x".to_owned(), Meta::Float(1e-7))] }.to_ecsv().unwrap();
-    std::fs::write(std::path::Path::new(&folder).join("units.ecsv"), text).unwrap();
+    let summary = Summary::of(&study, &system(), &plan(), &records, None);
+    assert!(
+        summary.text().contains("redone       2 cells with smaller steps, 2 cells by the adaptive engine\n"),
+        "{}",
+        summary.text()
+    );
+    assert_eq!(
+        (&summary.json()["redone_with_smaller_steps"], &summary.json()["adaptive"]),
+        (&2.into(), &2.into())
+    );
+    let caption = |records: &[Record]| report::caption(&study, &system(), &plan(), records).join(" ");
+    let all = caption(&records);
+    assert!(all.contains("; 2 cells redone with smaller steps, 2 cells by the adaptive engine;"), "{all}");
+    assert!(all.contains("Scheme (2,2) with corrector in"), "{all}");
+    let one = caption(&records[..2]);
+    assert!(one.contains("; 1 cell redone with smaller steps, no cell by the adaptive engine;"), "{one}");
+    assert!(caption(&records[..1]).contains("; no cell redone;"));
 }

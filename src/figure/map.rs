@@ -1,6 +1,6 @@
 //! The stability map of a run.
 
-use super::colour::{Region, Scale, ScaleKind, even};
+use super::colour::{Region, Rgb, Scale, ScaleKind, even};
 use super::column::{Column, covering};
 use super::label::Label;
 use super::model::{Axis, ColourBar, Figure, Legend, Mark, Paint, Panel, Pin};
@@ -38,10 +38,11 @@ pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
     }
     let column = Column::find(input.column, system, records)?;
     let cells = borrow::paint(study, records, column, input.reach)?;
-    let occurring = regions(&cells);
     let values: Vec<f64> =
         cells.iter().filter_map(|c| if let Paint::Value(v) = c { Some(*v) } else { None }).collect();
     let two = study.axes.len() == 2;
+    let verdicts = borrow::paint(study, records, Column::Verdict, input.reach)?;
+    let occurring = regions(if two { &cells } else { &verdicts });
     let (panel, colour_bar) = if two {
         let scale = column.scale(&values, input.span_day / YEAR_DAY);
         (
@@ -49,7 +50,7 @@ pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
             (!values.is_empty()).then(|| colour_bar(column, system, scale, &values)),
         )
     } else {
-        (points_panel(input, column, cells, &values), None)
+        (points_panel(input, column, &cells, &verdicts), None)
     };
     let title = study.title.clone().unwrap_or_else(|| system.title.clone());
     let mut legend: Vec<Legend> = occurring.into_iter().map(Legend::Region).collect();
@@ -60,6 +61,7 @@ pub fn map(input: &MapInput<'_>) -> Result<Figure, FigureError> {
         legend.push(Legend::Nominal(Label::plain(words)));
     }
     let mut caption: Vec<String> = pin_words(input, &panel).into_iter().collect();
+    caption.extend(strip_words(&panel));
     caption.extend_from_slice(input.caption);
     Ok(Figure { title: Label::plain(title), panels: vec![panel], colour_bar, legend, caption })
 }
@@ -78,9 +80,14 @@ fn colour_bar(column: Column, system: &System, scale: Scale, values: &[f64]) -> 
     let always = column == Column::Megno;
     // Cells that lived through the span would have lived longer.
     let survivors = column == Column::EndTime && places().any(|p| p < 1e-9);
+    // Few decades do not look logarithmic by themselves.
+    let named = |label: Label, words: &str| match scale.kind {
+        ScaleKind::Log => label.then(words),
+        ScaleKind::Linear => label,
+    };
     ColourBar {
-        label: column.label(system),
-        short: column.short(system),
+        label: named(column.label(system), " (logarithmic)"),
+        short: named(column.short(system), " (log)"),
         scale,
         before: always || survivors || places().any(|p| p < -1e-9),
         after: always || places().any(|p| p > 1.0 + 1e-9),
@@ -103,37 +110,59 @@ fn raster_panel(input: &MapInput<'_>, cells: Vec<Paint>, scale: Scale) -> Panel 
     Panel { x, y: Some(y), marks, top: pins(input, 0), right: pins(input, 1), height: 0.74 }
 }
 
-/// With one axis: points where there is a number, else the tone of the cell over the whole height.
-fn points_panel(input: &MapInput<'_>, column: Column, cells: Vec<Paint>, values: &[f64]) -> Panel {
-    let MapInput { study, system, .. } = *input;
+/// Height of the strip of verdicts below points, as a share of the panel, and of the room that is left for it.
+const STRIP: f64 = 0.05;
+const ROOM_FOR_STRIP: f64 = 0.07;
+
+/// With one axis: points over a strip of verdicts; hollow where a cell has a number but is undecided.
+fn points_panel(input: &MapInput<'_>, column: Column, cells: &[Paint], verdicts: &[Paint]) -> Panel {
+    let MapInput { study, system, records, .. } = *input;
     let x = grid::panel_axis(&study.axes[0], system);
-    let columns = cells.len();
     let ink = even(0.05);
-    let mut points = Vec::new();
-    let mut strips = Vec::with_capacity(columns);
-    for (index, cell) in cells.into_iter().enumerate() {
-        if let Paint::Value(value) = cell {
-            points.push((grid::centre(&x, columns, index), value, ink));
-            strips.push(Paint::Empty);
-        } else {
-            strips.push(cell);
-        }
-    }
-    let mut marks = vec![Mark::Raster { columns, rows: 1, cells: strips, scale: None }];
-    let y = (!points.is_empty()).then(|| {
-        let scale = room_around(values);
+    let centre = |index: usize| grid::centre(&x, cells.len(), index);
+    let number = |(index, cell): (usize, &Paint)| match cell {
+        Paint::Value(value) => Some((centre(index), *value, ink)),
+        _ => None,
+    };
+    let points: Vec<(f64, f64, Rgb)> = cells.iter().enumerate().filter_map(number).collect();
+    let undecided = records.iter().filter(|r| cells[r.cell as usize] == Paint::Flat(Region::Undecided));
+    let open = |r: &Record| Some((centre(r.cell as usize), column.value(&r.assessment)?, ink));
+    let hollow: Vec<(f64, f64, Rgb)> = undecided.filter_map(open).collect();
+    let values: Vec<f64> = points.iter().chain(&hollow).map(|p| p.1).collect();
+    let y = (!values.is_empty()).then(|| {
+        let scale = room_around(&values);
         let label = column.label(system);
-        Axis { short: column.short(system), label, from: scale.from, to: scale.to, kind: scale.kind }
+        Axis {
+            short: column.short(system),
+            label,
+            from: scale.value(-ROOM_FOR_STRIP),
+            to: scale.to,
+            kind: scale.kind,
+        }
     });
+    let region = |paint: &Paint| if let Paint::Flat(region) = paint { *region } else { Region::NoValue };
+    let strip = verdicts.iter().map(region).collect();
+    let mut marks = vec![Mark::Strip { cells: strip, height: if y.is_some() { STRIP } else { 1.0 } }];
     if column == Column::Megno && y.as_ref().is_some_and(|y| inside(y, 2.0)) {
         marks.push(Mark::Level { at: 2.0 });
     }
     let height = if y.is_some() { 0.5 } else { 0.15 };
-    marks.push(Mark::Points { points });
+    marks.push(Mark::Points { points: hollow, hollow: true });
+    marks.push(Mark::Points { points, hollow: false });
     if let Some(found) = nominal(&study.axes[0], system).filter(|n| inside(&x, n.value)) {
         marks.push(Mark::Nominal { x: found.value, y: None, x_bar: bar(found), y_bar: None });
     }
     Panel { x, y, marks, top: pins(input, 0), right: Vec::new(), height }
+}
+
+/// Says what the strip is, and what the rings are where there are any.
+fn strip_words(panel: &Panel) -> Option<String> {
+    panel.y.as_ref()?;
+    panel.marks.iter().find(|m| matches!(m, Mark::Strip { .. }))?;
+    let rings =
+        panel.marks.iter().any(|m| matches!(m, Mark::Points { points, hollow: true } if !points.is_empty()));
+    let rings = if rings { "; hollow points: undecided cells" } else { "" };
+    Some(format!("Strip along the bottom edge: verdicts{rings}."))
 }
 
 /// A scale over all values with some room at both ends.
@@ -190,8 +219,11 @@ fn pin_words(input: &MapInput<'_>, panel: &Panel) -> Option<String> {
         others.dedup();
         let name = |i: &usize| input.system.orbiting_name(*i).map(str::to_owned);
         let names: Vec<String> = others.iter().filter_map(name).collect();
+        // Those with planets farther away, or that move as well, are left out.
+        let all = names.len() + 1 >= input.system.planets.len();
+        let with = if all { " with" } else { ", only those with" };
         (!names.is_empty())
-            .then(|| format!("of {} with {}", name(&planet).unwrap_or_default(), names.join(" and ")))
+            .then(|| format!("of {}{with} {}", name(&planet).unwrap_or_default(), names.join(" and ")))
     };
     let top = words(0, &panel.top).map(|w| format!("top edge: mean-motion resonances {w}"));
     let right = words(1, &panel.right).map(|w| format!("right edge: mean-motion resonances {w}"));

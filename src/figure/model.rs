@@ -77,16 +77,23 @@ pub enum Mark {
         cells: Vec<Paint>,
         scale: Option<Scale>,
     },
-    /// Points with colours of their own.
+    /// Points with colours of their own, as rings when hollow.
     Points {
         points: Vec<(f64, f64, Rgb)>,
+        hollow: bool,
+    },
+    /// Even cells along the bottom edge, up to this share of the panel's height.
+    Strip {
+        cells: Vec<Region>,
+        height: f64,
     },
     Curve(Curve),
     /// A level line over the whole panel.
     Level {
         at: f64,
     },
-    /// The stated configuration; low and high ends of its error bars where it has any.
+    /// The stated configuration; low and high ends of its error bars where it has any. Without `y` an upright line,
+    /// with marker and bar on the top edge, where no height can be read.
     Nominal {
         x: f64,
         y: Option<f64>,

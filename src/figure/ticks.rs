@@ -17,7 +17,8 @@ pub struct Ticks {
     pub minor: Vec<f64>,
 }
 
-/// Ticks for the range `from`..`to`, about `wanted` labelled ones, never more than `wanted` + 1 unless two could not be had.
+/// Ticks for the range `from`..`to`, about `wanted` labelled ones, never more than `wanted` + 1 unless three (or
+/// `wanted`, when that is less) could not be had.
 ///
 /// Linear steps are 1, 2 or 5 times a power of ten with 4 or 5 parts between labels. A logarithmic axis labels
 /// decades, thinned when there are many; below 1.3 decades it takes round digits, and below a factor of 4.5
@@ -31,10 +32,10 @@ pub fn ticks(from: f64, to: f64, kind: ScaleKind, wanted: usize) -> Ticks {
     match kind {
         ScaleKind::Log if low > 0.0 && high / low > 20.0 => decades(low, high, wanted),
         ScaleKind::Log if low > 0.0 && high / low > 4.5 => digits(low, high, wanted),
-        // A step that is too round can leave a short axis with a single label; a finer one is tried then.
+        // A step that is too round can leave a short axis with one or two labels; a finer one is tried then.
         _ => (wanted..wanted + 4)
             .map(|w| linear(low, high, w))
-            .find(|t| t.major.len() >= 2)
+            .find(|t| t.major.len() >= wanted.min(3))
             .unwrap_or_else(|| linear(low, high, wanted)),
     }
 }
@@ -104,7 +105,9 @@ fn decades(low: f64, high: f64, wanted: usize) -> Ticks {
     let first = (low.log10() - slack).ceil() as i32;
     let last = (high.log10() + slack).floor() as i32;
     let count = (last - first + 1).max(1) as usize;
-    let every = count.div_ceil(wanted + 1).max(1) as i32;
+    let widest = count.div_ceil(wanted + 1).max(1) as i32;
+    let labelled = |every: i32| (first..=last).filter(|p| p.rem_euclid(every) == 0).count();
+    let every = (1..=widest).rev().find(|every| labelled(*every) >= wanted.min(3)).unwrap_or(1);
     let few = last - first <= 6;
     let plain = first >= -2 && last <= 3;
     let mut found = Ticks::default();

@@ -41,14 +41,34 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
     vec![
         followed + &early,
         format!(
-            "Scheme {} in {} coordinates, step {}; {energy}.",
-            plan.scheme,
+            "Scheme {} in {} coordinates, step {}; {}; {energy}.",
+            words::scheme_words(plan.scheme),
             plan.coordinates.words(),
-            words::step_words(plan, records)
+            words::step_words(plan, records),
+            attempts(records)
         ),
         format!("{}.", capital(&words::held_words(study, system))),
         format!("{}. {VERSION}.", capital(&words::convention_words(system.convention, system.epoch_jd))),
     ]
+}
+
+/// How many cells needed more than the first attempt.
+fn attempts(records: &[Record]) -> String {
+    let cells = |count: u64| match count {
+        0 => "no cell".to_owned(),
+        1 => "1 cell".to_owned(),
+        many => format!("{many} cells"),
+    };
+    match words::second_attempts(records) {
+        (0, 0) => "no cell redone".to_owned(),
+        (smaller, adaptive) => {
+            format!(
+                "{} redone with smaller steps, {} by the adaptive engine",
+                cells(smaller),
+                cells(adaptive)
+            )
+        }
+    }
 }
 
 fn capital(text: &str) -> String {

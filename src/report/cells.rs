@@ -151,7 +151,7 @@ fn trust_columns(columns: &mut Columns<'_>) {
     columns.text("scheme", "integration scheme", |r| computed(r).map(|a| a.scheme.to_owned()));
     columns.float("step", "d", "step of the final attempt", |r| computed(r).map(|a| a.step_day));
     columns.count("steps", "steps of the final attempt", |r| computed(r).map(|a| a.steps));
-    let meaning = "times the cell was redone with a smaller step";
+    let meaning = "attempts after the first: with smaller steps, the last with the adaptive engine where scheme says so";
     columns.count("redone", meaning, |r| computed(r).map(|a| u64::from(a.redone)));
     let meaning =
         "not integrated: verdict of all the cells so many cells away along the axes; absent if integrated";

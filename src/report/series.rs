@@ -71,8 +71,8 @@ const PARTS: [Part; 6] = [
     ("a", "au", "osculating semi-major axis", |e| e.semi_major_axis_au),
     ("e", "", "eccentricity", |e| e.eccentricity),
     ("i", "deg", "inclination to the sky plane", |e| e.inclination / DEGREE),
-    ("node", "deg", "ascending node", |e| e.ascending_node / DEGREE),
-    ("omega", "deg", "argument of pericentre of the planet", |e| e.argument_of_pericentre / DEGREE),
+    ("ascending_node", "deg", "ascending node", |e| e.ascending_node / DEGREE),
+    ("argument_of_pericentre", "deg", "argument of pericentre", |e| e.argument_of_pericentre / DEGREE),
     ("mean_anomaly", "deg", "mean anomaly", |e| e.mean_anomaly / DEGREE),
 ];
 

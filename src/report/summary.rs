@@ -52,7 +52,10 @@ pub struct Summary {
     pub verdicts: Vec<(Verdict, u64)>,
     /// Of the lost ones, in the order of `LostHow::ALL`.
     pub losses: Vec<(LostHow, u64)>,
+    /// Cells that ended with a smaller step than the first.
     pub redone: u64,
+    /// Cells that ended in the adaptive engine.
+    pub adaptive: u64,
     pub energy_error: Option<Spread>,
     /// Absent when the stated values lie outside the axes.
     pub nominal: Option<NominalCell>,
@@ -81,6 +84,7 @@ impl Summary {
             records.iter().filter(|r| test(&r.assessment)).count() as u64
         };
         let cells: usize = study.axes.iter().map(|a| a.cells).product();
+        let (redone, adaptive) = words::second_attempts(records);
         Summary {
             title: study.title.clone().unwrap_or_else(|| system.title.clone()),
             cells: cells as u64,
@@ -94,7 +98,8 @@ impl Summary {
                     (how, records.iter().filter(lost).count() as u64)
                 })
                 .to_vec(),
-            redone: count(&|a| a.redone > 0),
+            redone,
+            adaptive,
             energy_error: Spread::of(records.iter().filter_map(|r| r.assessment.energy_error)),
             nominal: nominal_cell.map(|cell| NominalCell {
                 cell,
@@ -147,10 +152,13 @@ impl Summary {
         }
         lines.push(format!("nominal      {}", self.nominal_words()));
         lines.push(format!("energy error {}", self.energy_words()));
-        lines.push(format!("scheme       {}", self.scheme));
+        lines.push(format!("scheme       {}", words::scheme_words(self.scheme)));
         lines.push(format!("coordinates  {}", self.coordinates));
         lines.push(format!("step         {}", self.step));
-        lines.push(format!("redone       {} cells with a smaller step", self.redone));
+        lines.push(format!(
+            "redone       {} cells with smaller steps, {} cells by the adaptive engine",
+            self.redone, self.adaptive
+        ));
         lines.push(format!("axes         {}", self.held));
         lines.push(format!("convention   {}", self.convention));
         lines.push(format!("version      {VERSION}"));
@@ -210,7 +218,8 @@ impl Summary {
             "filled": self.filled,
             "verdicts": verdicts,
             "lost_how": losses,
-            "redone": self.redone,
+            "redone_with_smaller_steps": self.redone,
+            "adaptive": self.adaptive,
             "nominal": self.nominal.as_ref().map(|n| json!({
                 "cell": n.cell,
                 "verdict": n.assessment.as_ref().map(|a| a.verdict.word()),

@@ -1,8 +1,8 @@
 //! Sentences that more than one output needs.
 
-use crate::assess::{Plan, StepWhy};
+use crate::assess::{ADAPTIVE, Plan, StepWhy};
 use crate::survey::Record;
-use crate::system::{BodyRef, Convention, Frame, Pericentre, Span, Study, System, Transit};
+use crate::system::{Axis, BodyRef, Convention, Frame, Key, Pericentre, Span, Study, System, Transit};
 use crate::units::YEAR_DAY;
 
 /// A number for reading: three significant digits, exponents where plain digits would be long.
@@ -88,42 +88,87 @@ pub(crate) fn step_words(plan: &Plan, records: &[Record]) -> String {
     format!("{size} ({why})")
 }
 
-/// What the axes move and what they leave: the statements of the moved bodies once every axis has been applied.
-pub(crate) fn held_words(study: &Study, system: &System) -> String {
+/// The scheme by name, with what belongs to it.
+pub(crate) fn scheme_words(scheme: &str) -> String {
+    // The leapfrog alone is run with a corrector; the others reach their order without one.
+    if scheme == "(2,2)" { format!("{scheme} with corrector") } else { scheme.to_owned() }
+}
+
+/// How many cells ended with a smaller step, and how many in the adaptive engine.
+pub(crate) fn second_attempts(records: &[Record]) -> (u64, u64) {
+    let adaptive = |r: &&Record| r.assessment.scheme == ADAPTIVE;
+    let smaller = |r: &&Record| r.assessment.redone > 0 && r.assessment.scheme != ADAPTIVE;
+    (records.iter().filter(smaller).count() as u64, records.iter().filter(adaptive).count() as u64)
+}
+
+/// A key as a sentence calls it.
+fn key_words(key: Key) -> String {
+    match key {
+        Key::RvSemiAmplitude => "radial-velocity semi-amplitude".to_owned(),
+        Key::MassRatio => "mass ratio to the star".to_owned(),
+        Key::SemiMajorAxis => "semi-major axis".to_owned(),
+        Key::ECosW => "e cos ω".to_owned(),
+        Key::ESinW => "e sin ω".to_owned(),
+        Key::SqrtECosW => "√e cos ω".to_owned(),
+        Key::SqrtESinW => "√e sin ω".to_owned(),
+        Key::SatelliteMassRatio => "mass ratio of the satellite".to_owned(),
+        Key::SatelliteSemiMajorAxis => "semi-major axis of the satellite".to_owned(),
+        plain => plain.word().replace('_', " "),
+    }
+}
+
+/// The system with every axis at the end that `place` picks.
+fn moved_to(place: fn(&Axis) -> f64, study: &Study, system: &System) -> System {
     let mut moved = system.clone();
     for axis in &study.axes {
         // An axis that cannot be applied was refused when the study was read.
-        let _ = axis.apply(axis.from, &mut moved, system);
+        let _ = axis.apply(place(axis), &mut moved, system);
     }
-    let mut bodies: Vec<&BodyRef> = study.axes.iter().map(|a| &a.target.body).collect();
-    bodies.dedup();
-    let mut parts = Vec::new();
-    for body in bodies {
-        let (name, stated) = match body {
-            BodyRef::Star => ("the star", &moved.star.stated),
-            BodyRef::Planet(index) => match moved.planets.get(*index) {
-                Some(planet) => (planet.name.as_str(), &planet.stated),
-                None => continue,
-            },
-            BodyRef::Companion => match &moved.companion {
-                Some(companion) => (companion.name.as_str(), &companion.stated),
-                None => continue,
-            },
-            BodyRef::All => match moved.planets.first() {
-                Some(planet) => ("each planet", &planet.stated),
-                None => continue,
-            },
-        };
-        let varied = |key| study.axes.iter().any(|a| a.target.body == *body && a.target.key == key);
-        let kept: Vec<&str> =
-            stated.iter().filter(|(key, _)| !varied(*key)).map(|(key, _)| key.word()).collect();
-        if !kept.is_empty() {
-            parts.push(format!("{} of {name}", kept.join(", ").replace('_', " ")));
+    moved
+}
+
+/// The statements of one body that no axis moves or replaces: the same at both ends of the axes.
+fn kept_keys(one: &BodyRef, study: &Study, ends: &[System; 2]) -> Vec<String> {
+    let stated = |end: &System| end.bodies(one).first().map(|body| body.stated.clone()).unwrap_or_default();
+    let (first, last) = (stated(&ends[0]), stated(&ends[1]));
+    let varied = |key| study.axes.iter().any(|a| a.target.key == key && a.target.body.overlaps(one));
+    // Statements turned into others and back may differ in the last digits.
+    let same = |a: f64, b: f64| (a - b).abs() <= 1e-9 * a.abs().max(b.abs());
+    let kept = first.iter().filter(|(key, measured)| {
+        !varied(*key) && last.value(*key).is_some_and(|other| same(measured.value, other))
+    });
+    kept.map(|(key, _)| key_words(key)).collect()
+}
+
+/// What the axes move and what they leave, body by body: the statements that are the same wherever the axes stand.
+pub(crate) fn held_words(study: &Study, system: &System) -> String {
+    let ends = [moved_to(|a| a.from, study, system), moved_to(|a| a.to, study, system)];
+    let mut bodies = vec![(BodyRef::Star, "the star")];
+    let planets = system.planets.iter().enumerate();
+    bodies.extend(planets.map(|(index, planet)| (BodyRef::Planet(index), planet.name.as_str())));
+    bodies.extend(system.companion.iter().map(|body| (BodyRef::Companion, body.name.as_str())));
+    let (moved, others): (Vec<_>, Vec<_>) =
+        bodies.into_iter().partition(|(one, _)| study.axes.iter().any(|a| a.target.body.overlaps(one)));
+    // Bodies that keep the same statements share a part.
+    let mut parts: Vec<(String, Vec<&str>)> = Vec::new();
+    for (one, name) in &moved {
+        let kept = kept_keys(one, study, &ends).join(", ");
+        match parts.iter_mut().find(|(words, _)| *words == kept) {
+            Some((_, names)) => names.push(name),
+            None => parts.push((kept, vec![name])),
         }
     }
-    parts.push("all of the other bodies".to_owned());
+    parts.retain(|(kept, _)| !kept.is_empty());
+    match others.as_slice() {
+        [] => {}
+        [(_, name)] => parts.push(("all".to_owned(), vec![name])),
+        _ => parts.push(("all".to_owned(), vec!["the other bodies"])),
+    }
     let axes: Vec<&str> = study.axes.iter().map(|a| a.path.as_str()).collect();
-    format!("varied: {}; held as stated: {}", axes.join(", "), parts.join("; "))
+    let varied = format!("varied: {}", axes.join(", "));
+    let held: Vec<String> =
+        parts.iter().map(|(kept, names)| format!("{kept} of {}", names.join(" and "))).collect();
+    if held.is_empty() { varied } else { format!("{varied}; held as stated: {}", held.join("; ")) }
 }
 
 pub(crate) fn convention_words(convention: Convention, epoch_jd: Option<f64>) -> String {

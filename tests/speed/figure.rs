@@ -52,13 +52,25 @@ const HUES: [RGBColor; 7] = [
     RGBColor(60, 60, 60),
 ];
 
+/// A number on a logarithmic axis: 10⁻⁸, or 2×10³ between the powers.
+fn power_of_ten(value: f64) -> String {
+    let text = format!("{value:.0e}");
+    let (digit, power) = text.split_once('e').unwrap_or((&text, "0"));
+    let raised = |letter: char| match letter {
+        '-' => '⁻',
+        other => "⁰¹²³⁴⁵⁶⁷⁸⁹".chars().nth(other as usize - '0' as usize).unwrap_or(other),
+    };
+    let power: String = power.chars().map(raised).collect();
+    if digit == "1" { format!("10{power}") } else { format!("{digit}×10{power}") }
+}
+
 macro_rules! draw {
-    ($chart:expr, $lines:expr, $x:expr, $y:expr, $tick:expr) => {{
+    ($chart:expr, $lines:expr, $x:expr, $y:expr, $x_tick:expr, $y_tick:expr) => {{
         $chart
             .configure_mesh()
             .x_desc($x)
-            .x_label_formatter(&|x| format!("{x:.0}"))
-            .y_label_formatter($tick)
+            .x_label_formatter($x_tick)
+            .y_label_formatter($y_tick)
             .y_desc($y)
             .label_style(("words", 20))
             .axis_desc_style(("words", 22))
@@ -90,11 +102,12 @@ fn planets() -> Result<(), Failure> {
     let page = BitMapBackend::new(&file, SIZE).into_drawing_area();
     page.fill(&WHITE)?;
     let mut chart = ChartBuilder::on(&page)
-        .margin(20)
+        .margin(30)
         .x_label_area_size(60)
-        .y_label_area_size(80)
+        .y_label_area_size(100)
         .build_cartesian_2d(1.5f64..8.5, (4.0f64..400.0).log_scale())?;
-    draw!(chart, lines, "planets", "ns per planet-step", &|y| format!("{y:.0}"));
+    let whole = |number: &f64| format!("{number:.0}");
+    draw!(chart, lines, "planets", "ns per planet-step", &whole, &whole);
     page.present()?;
     Ok(())
 }
@@ -106,16 +119,17 @@ fn schemes() -> Result<(), Failure> {
     let page = BitMapBackend::new(&file, SIZE).into_drawing_area();
     page.fill(&WHITE)?;
     let mut chart = ChartBuilder::on(&page)
-        .margin(20)
+        .margin(30)
         .x_label_area_size(60)
-        .y_label_area_size(80)
+        .y_label_area_size(100)
         .build_cartesian_2d((120f64..7_000.0).log_scale(), (1e-15f64..1e-1).log_scale())?;
     draw!(
         chart,
         lines,
         "ns per inner orbit and configuration, two planets",
         "largest |ΔE/E| in 400 inner orbits",
-        &|y| format!("{y:.0e}")
+        &|x| power_of_ten(*x),
+        &|y| power_of_ten(*y)
     );
     page.present()?;
     Ok(())

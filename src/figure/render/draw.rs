@@ -17,22 +17,34 @@ const MINOR: f64 = 2.0;
 pub(super) fn picture(figure: &Figure, page: &Page) -> Result<Picture, RenderError> {
     let pixels = |points: f64| (points / 72.0 * f64::from(page.pixels_per_inch) - 1e-6).ceil() as usize;
     let mut canvas = Canvas::new(pixels(page.width), pixels(page.height), page.pixels_per_inch);
+    let share = marker_share(page.width);
     for (panel, frame) in figure.panels.iter().zip(&page.frames) {
-        for mark in &panel.marks {
+        // The stated configuration may stand on the edge, so it comes after the frame.
+        let (stated, below): (Vec<&Mark>, Vec<&Mark>) =
+            panel.marks.iter().partition(|mark| matches!(mark, Mark::Nominal { .. }));
+        for mark in below {
             draw_mark(&mut canvas, mark, panel, frame)?;
         }
         axes(&mut canvas, panel, frame);
+        for mark in stated {
+            draw_nominal(&mut canvas, mark, panel, frame, share)?;
+        }
     }
     if let Some((frame, bar)) = &page.bar {
         colour_bar(&mut canvas, frame, bar)?;
     }
     for (entry, x, y) in &page.samples {
-        sample(&mut canvas, entry, *x, *y)?;
+        sample(&mut canvas, entry, (*x, *y), share)?;
     }
     for text in &page.texts {
         canvas.text(&text.label, text.size, (text.x, text.y), text.upwards);
     }
     Ok(canvas.finish())
+}
+
+/// Size of the marker on a page of this width (pt), relative to that on 180 mm: narrow axes have short error bars.
+fn marker_share(width: f64) -> f64 {
+    (width / (180.0 / 25.4 * 72.0)).clamp(0.6, 1.0)
 }
 
 /// Data → points, inside a frame.
@@ -66,12 +78,24 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
             raster(canvas, frame, (*columns, *rows), cells, *scale);
             Ok(())
         }
-        Mark::Points { points } => {
+        Mark::Points { points, hollow } => {
             let radius = if points.len() > 120 { 1.0 } else { 1.5 };
             for (x, y, colour) in points {
                 if let (Some(x), Some(y)) = (places.across(*x), places.up(*y)) {
                     canvas.disc((x, y), radius, *colour)?;
+                    if *hollow {
+                        canvas.disc((x, y), 0.55 * radius, WHITE)?;
+                    }
                 }
+            }
+            Ok(())
+        }
+        Mark::Strip { cells, height } => {
+            let top = frame.bottom - height * (frame.bottom - frame.top);
+            let cells: Vec<Paint> = cells.iter().map(|region| Paint::Flat(*region)).collect();
+            raster(canvas, &Frame { top, ..frame.clone() }, (cells.len(), 1), &cells, None);
+            if *height < 1.0 {
+                canvas.rule((frame.left, top), (frame.right, top), THIN, BLACK);
             }
             Ok(())
         }
@@ -90,21 +114,29 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
             }
             None => Ok(()),
         },
-        Mark::Nominal { x, y, x_bar, y_bar } => {
-            let Some(x) = places.across(*x) else { return Ok(()) };
-            if y.is_none() {
-                canvas.rule((x, frame.top), (x, frame.bottom), THIN, GREY);
-            }
-            // Without a height it stands below the top edge, where it is read with the pins.
-            let y = y.map_or(Some(frame.top + 9.0), |y| places.up(y));
-            let Some(y) = y else { return Ok(()) };
-            let clip_x = |v: f64| places.across(v).map(|p| p.clamp(frame.left, frame.right));
-            let clip_y = |v: f64| places.up(v).map(|p| p.clamp(frame.top, frame.bottom));
-            let across = x_bar.and_then(|(low, high)| Some((clip_x(low)?, clip_x(high)?)));
-            let up = y_bar.and_then(|(low, high)| Some((clip_y(low)?, clip_y(high)?)));
-            nominal(canvas, (x, y), across, up)
-        }
+        Mark::Nominal { .. } => Ok(()),
     }
+}
+
+fn draw_nominal(
+    canvas: &mut Canvas,
+    mark: &Mark,
+    panel: &Panel,
+    frame: &Frame,
+    share: f64,
+) -> Result<(), RenderError> {
+    let Mark::Nominal { x, y, x_bar, y_bar } = mark else { return Ok(()) };
+    let places = Places { frame, x: panel.x.scale(), y: panel.y.as_ref().map(Axis::scale) };
+    let Some(x) = places.across(*x) else { return Ok(()) };
+    if y.is_none() {
+        canvas.rule((x, frame.top), (x, frame.bottom), THIN, BLACK);
+    }
+    let Some(y) = y.map_or(Some(frame.top), |y| places.up(y)) else { return Ok(()) };
+    let clip_x = |v: f64| places.across(v).map(|p| p.clamp(frame.left, frame.right));
+    let clip_y = |v: f64| places.up(v).map(|p| p.clamp(frame.top, frame.bottom));
+    let across = x_bar.and_then(|(low, high)| Some((clip_x(low)?, clip_x(high)?)));
+    let up = y_bar.and_then(|(low, high)| Some((clip_y(low)?, clip_y(high)?)));
+    nominal(canvas, (x, y), (across, up), share)
 }
 
 /// Runs of places that are there.
@@ -155,28 +187,39 @@ fn raster(
 
 type Ends = Option<(f64, f64)>;
 
-/// Black on a white edge, so that it stands out on dark and on bright.
-fn nominal(canvas: &mut Canvas, (x, y): (f64, f64), across: Ends, up: Ends) -> Result<(), RenderError> {
+/// Black on a white edge, so that it stands out on dark and on bright; `share` of the full size.
+///
+/// The ring gives way to error bars that would hide behind it.
+fn nominal(
+    canvas: &mut Canvas,
+    (x, y): (f64, f64),
+    (across, up): (Ends, Ends),
+    share: f64,
+) -> Result<(), RenderError> {
+    let cap = 2.0 * share;
     for (edge, colour) in [(0.7, WHITE), (0.0, BLACK)] {
         let thick = 0.8 + 2.0 * edge;
         if let Some((from, to)) = across {
             let (from, to) = (from.min(to), from.max(to));
             canvas.rule((from - edge, y), (to + edge, y), thick, colour);
             for end in [from, to] {
-                canvas.rule((end, y - 2.0 - edge), (end, y + 2.0 + edge), thick, colour);
+                canvas.rule((end, y - cap - edge), (end, y + cap + edge), thick, colour);
             }
         }
         if let Some((from, to)) = up {
             let (from, to) = (from.min(to), from.max(to));
             canvas.rule((x, from - edge), (x, to + edge), thick, colour);
             for end in [from, to] {
-                canvas.rule((x - 2.0 - edge, end), (x + 2.0 + edge, end), thick, colour);
+                canvas.rule((x - cap - edge, end), (x + cap + edge, end), thick, colour);
             }
         }
     }
-    canvas.disc((x, y), 3.4, WHITE)?;
-    canvas.disc((x, y), 2.8, BLACK)?;
-    canvas.disc((x, y), 1.7, WHITE)
+    let longer = |ends: Ends, at: f64| ends.map(|(from, to)| (from - at).abs().max((to - at).abs()));
+    let bars = longer(across, x).into_iter().chain(longer(up, y));
+    let size = bars.map(|half| half / 4.2).fold(share, f64::min).max(0.45);
+    canvas.disc((x, y), 3.4 * size, WHITE)?;
+    canvas.disc((x, y), 2.8 * size, BLACK)?;
+    canvas.disc((x, y), 1.7 * size, WHITE)
 }
 
 fn axes(canvas: &mut Canvas, panel: &Panel, frame: &Frame) {
@@ -238,7 +281,7 @@ fn colour_bar(canvas: &mut Canvas, frame: &Frame, bar: &ColourBar) -> Result<(),
     Ok(())
 }
 
-fn sample(canvas: &mut Canvas, entry: &Legend, x: f64, y: f64) -> Result<(), RenderError> {
+fn sample(canvas: &mut Canvas, entry: &Legend, (x, y): (f64, f64), share: f64) -> Result<(), RenderError> {
     let (right, bottom) = (x + SAMPLE.0, y + SAMPLE.1);
     let (middle_x, middle_y) = (0.5 * (x + right), 0.5 * (y + bottom));
     match entry {
@@ -251,7 +294,7 @@ fn sample(canvas: &mut Canvas, entry: &Legend, x: f64, y: f64) -> Result<(), Ren
         }
         Legend::Nominal(_) => {
             let ends = (middle_x - 7.5, middle_x + 7.5);
-            nominal(canvas, (middle_x, middle_y), Some(ends), None)
+            nominal(canvas, (middle_x, middle_y), (Some(ends), None), share)
         }
         Legend::Curve(_, colour) => canvas.path(&[(x, middle_y), (right, middle_y)], 1.2, *colour),
     }

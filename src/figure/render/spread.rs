@@ -18,7 +18,7 @@ pub(super) fn placed_ticks<'a>(
 /// Ticks of an upright axis of this height.
 pub(super) fn upright_ticks(axis: Option<&Axis>, height: f64, size: f64) -> Ticks {
     let Some(axis) = axis else { return Ticks::default() };
-    let wanted = ((height / (3.4 * size)) as usize).clamp(2, 8);
+    let wanted = ((height / (3.4 * size)) as usize).clamp(3, 8);
     ticks_apart(axis, wanted, 0.5 * size, |at, _| (at * height, size))
 }
 

@@ -1,0 +1,80 @@
+//! The mark of the stated values in the picture itself.
+
+mod figure_world;
+
+use abide::figure::render::{self, Page, Width, page};
+use abide::figure::{Figure, MapInput, map};
+use abide::survey::Record;
+use abide::system::{Key, Study};
+use figure_world::{SPAN_DAY, axis, records, study, system};
+
+fn drawn(study: &Study, records: &[Record]) -> Figure {
+    let input =
+        MapInput { study, system: &system(), records, column: "megno", span_day: SPAN_DAY, caption: &[] };
+    map(&input).unwrap()
+}
+
+struct Pixels {
+    info: png::Info<'static>,
+    rgb: Vec<u8>,
+}
+
+impl Pixels {
+    fn of(bytes: &[u8]) -> Pixels {
+        let mut reader = png::Decoder::new(std::io::Cursor::new(bytes)).read_info().unwrap();
+        let mut rgb = vec![0; reader.output_buffer_size().unwrap()];
+        reader.next_frame(&mut rgb).unwrap();
+        Pixels { info: reader.info().clone(), rgb }
+    }
+
+    /// At a place in points.
+    fn at(&self, page: &Page, (x, y): (f64, f64)) -> [u8; 3] {
+        let pixel = |points: f64| (points / 72.0 * f64::from(page.pixels_per_inch)) as usize;
+        let start = (pixel(y) * self.info.width as usize + pixel(x)) * 3;
+        self.rgb[start..start + 3].try_into().unwrap()
+    }
+}
+
+#[test]
+fn the_stated_error_bar_shows_beside_its_marker_in_a_narrow_figure() {
+    let mut plane = study(60, 40);
+    plane.axes[0] = axis(1, Key::Period, (15.0, 21.0, 60));
+    let found = records(&plane);
+    for width in [Width::COLUMN, Width::PAGE] {
+        let figure = drawn(&plane, &found);
+        let page = page(&figure, width).unwrap();
+        let pixels = Pixels::of(&render::png(&figure, width).unwrap());
+        let (frame, panel) = (&page.frames[0], &figure.panels[0]);
+        let across = |v: f64| frame.left + panel.x.scale().place(v).unwrap() * (frame.right - frame.left);
+        let up = panel.y.as_ref().unwrap().scale().place(0.08).unwrap();
+        let y = frame.bottom - up * (frame.bottom - frame.top);
+        // c is stated at 17.79 ± 0.12 d: outwards from the middle there is the black ring, its white edge, and then
+        // the bar, which is black again before its end.
+        let (from, to) = (across(17.79), across(17.79 + 0.12));
+        let row: Vec<bool> = (0..400)
+            .map(|i| pixels.at(&page, (from + (to - from) * f64::from(i) / 400.0, y)) < [60, 60, 60])
+            .collect();
+        let runs = row.windows(2).filter(|w| !w[0] && w[1]).count();
+        assert!(runs >= 2, "{width:?}: {runs} black runs between the middle and the end of the bar");
+    }
+}
+
+#[test]
+fn a_stated_value_on_one_axis_is_an_upright_line_that_has_no_height() {
+    let mut line = study(150, 1);
+    line.axes.truncate(1);
+    let figure = drawn(&line, &records(&line));
+    let page = page(&figure, Width::PAGE).unwrap();
+    let pixels = Pixels::of(&render::png(&figure, Width::PAGE).unwrap());
+    let frame = &page.frames[0];
+    let x = frame.left + figure.panels[0].x.scale().place(17.79).unwrap() * (frame.right - frame.left);
+    let black = |y: f64| (-2..=2).any(|i| pixels.at(&page, (x + 0.24 * f64::from(i), y)) == [0, 0, 0]);
+    let height = frame.bottom - frame.top;
+    for place in [0.1, 0.3, 0.5, 0.7, 0.9] {
+        assert!(black(frame.top + place * height), "the line reaches over the whole height: {place}");
+    }
+    // The bar lies on the top edge and nowhere below it.
+    let beside = x + 4.0;
+    assert_eq!(pixels.at(&page, (beside, frame.top)), [0, 0, 0]);
+    assert_eq!(pixels.at(&page, (beside, frame.top + 9.0)), [255, 255, 255]);
+}
