@@ -74,8 +74,8 @@ fn tangent_vectors_of_a_particle_at_l4() {
 fn exponent_of_the_unstable_triangle() {
     let (found, stated) = exponent();
     println!("exponent {}, frequency {}", found[0], found[1]);
-    assert!((found[0] - stated[0]).abs() < 2e-8, "{found:?}");
-    assert!((found[1] - stated[1]).abs() < 2e-8, "{found:?}");
+    assert!((found[0] - stated[0]).abs() < 2e-9, "{found:?}");
+    assert!((found[1] - stated[1]).abs() < 2e-9, "{found:?}");
 }
 
 #[test]

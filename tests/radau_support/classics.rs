@@ -162,6 +162,10 @@ pub fn tangent_at_l4(ratio: &str) -> Vec<(f64, f64, f64)> {
     each.collect()
 }
 
+/// From when on the exponent is measured: the decaying modes are e^(−2·0.139·80) = 2e-10 of the growing one, rounding is
+/// 1e-10 of it.
+pub const EXPONENT_FROM: f64 = 80.0;
+
 /// Growth per unit time and turning frequency of the unstable triangle of μ = 0.045, found and stated.
 pub fn exponent() -> ([f64; 2], [f64; 2]) {
     let rows = table("three-body-classics.csv");
@@ -169,7 +173,7 @@ pub fn exponent() -> ([f64; 2], [f64; 2]) {
     let mut engine = displaced_at_l4(&rows, "lagrange-L4-mu0.0450");
     // In the turning frame δ = e^{xt} (a cos yt + b sin yt) once the other modes (decaying, e^{−xt}) have died, so
     // three values at equal spacing obey u₂ − p u₁ + q u₀ = 0 with q = e^{2xh}, p = 2 e^{xh} cos yh.
-    let (first, spacing) = (60.0, 1.5);
+    let (first, spacing) = (EXPONENT_FROM, 1.5);
     let u: Vec<[f64; 2]> = (0..3)
         .map(|k| {
             let t = first + spacing * k as f64;
