@@ -3,29 +3,12 @@
 mod radau_support;
 
 use std::collections::HashMap;
-use std::ops::ControlFlow;
 
 use abide::integrate::State;
-use abide::integrate::forces::{Forces, StarTerm, rate_matched};
-use abide::integrate::radau::{Bodies, Engine, EventKind, Stop, TOLERANCE, Watch, advance};
+use abide::integrate::forces::{Forces, rate_matched};
+use abide::integrate::radau::{Bodies, Engine, TOLERANCE, advance};
+use radau_support::planets::*;
 use radau_support::*;
-
-/// Averaged lunar orbit, au² (tests/truth/reference-integrations.csv was made with it), on the third planet.
-const MOON_K_AU2: f64 = 5.6494891e-8;
-const EARTH: usize = 2;
-
-fn model(name: &str) -> Forces {
-    let relativity = StarTerm::Relativity { light_au_day: LIGHT };
-    match name {
-        "newton" => Forces::newton(),
-        "newton+1pn" => Forces::newton().with(relativity),
-        "newton+potential" => Forces::newton().with(StarTerm::PrecessionPotential { light_au_day: LIGHT }),
-        "newton+1pn+quad" => {
-            Forces::newton().with(relativity).with_on(StarTerm::Satellite { k_au2: MOON_K_AU2 }, EARTH)
-        }
-        other => panic!("model {other}"),
-    }
-}
 
 /// Largest error per body, au, at the asked years of one model; also the energy error.
 fn errors(name: &str, years: &[i32]) -> Vec<(i32, Vec<f64>, f64)> {
@@ -90,31 +73,6 @@ fn four_force_models_over_the_whole_span() {
         check(name, &[-1000, -3000]);
         check(name, &[1000]);
     }
-}
-
-/// Advance of the pericentre of one planet alone with the Sun, arcsec per century, between closest approaches.
-fn advance_per_century(planet: usize, forces: &Forces, orbits: usize) -> f64 {
-    let (_, all) = solar_system("DE406");
-    let one = only(&all, &[planet]);
-    // Massless, as in the table: the mass of Jupiter would change its advance by half a per cent.
-    let helio = one.vel[0].map(|v| v * (1.0 + one.gm[0] / one.star_gm));
-    let state = from_heliocentric(vec![0.0], one.pos, vec![helio]);
-    let mut engine = Engine::from_state(&state, &[], forces, TOLERANCE).unwrap();
-    let watch = Watch { approach_au: f64::INFINITY, ..Watch::default() };
-    let mut passages = Vec::new();
-    for _ in 0..=orbits {
-        let stop = engine.advance(1e9, &watch, |_| ControlFlow::Break(())).unwrap();
-        assert!(matches!(stop, Stop::At(event) if event.kind == EventKind::Approach));
-        passages.push((engine.day(), engine.state().pos[0]));
-    }
-    let (first, last) = (&passages[0], &passages[orbits]);
-    let cross = |a: &[f64; 3], b: &[f64; 3]| {
-        [a[1] * b[2] - a[2] * b[1], a[2] * b[0] - a[0] * b[2], a[0] * b[1] - a[1] * b[0]]
-    };
-    let area = cross(&first.1, &last.1);
-    let sine = distance(&area, &[0.0; 3]).copysign(area[2]);
-    let cosine: f64 = (0..3).map(|k| first.1[k] * last.1[k]).sum();
-    sine.atan2(cosine).to_degrees() * 3600.0 / ((last.0 - first.0) / 36_525.0)
 }
 
 #[test]

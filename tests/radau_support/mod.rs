@@ -1,6 +1,9 @@
 //! Outside data for the tests of the adaptive integrator.
 #![allow(dead_code)]
 
+pub mod classics;
+pub mod planets;
+
 use std::collections::HashMap;
 use std::path::Path;
 

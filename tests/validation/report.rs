@@ -22,16 +22,22 @@ pub fn folder() -> PathBuf {
 }
 
 impl Report {
+    /// Made by the table's own name.
     pub fn write(&self) {
+        self.write_by(self.name);
+    }
+
+    /// Made by a name that makes several.
+    pub fn write_by(&self, command: &str) {
         let stem = folder().join(self.name);
         let mut csv = csv::Writer::from_path(stem.with_extension("csv")).unwrap();
         csv.write_record(&self.columns).unwrap();
         self.rows.iter().for_each(|row| csv.write_record(row).unwrap());
         csv.flush().unwrap();
-        fs::write(stem.with_extension("md"), self.markdown()).unwrap();
+        fs::write(stem.with_extension("md"), self.markdown(command)).unwrap();
     }
 
-    fn markdown(&self) -> String {
+    fn markdown(&self, command: &str) -> String {
         let line = |cells: &[String]| format!("| {} |\n", cells.join(" | "));
         let names: Vec<String> = self.columns.iter().map(|c| c.to_string()).collect();
         let rule: Vec<String> = self.columns.iter().map(|_| "---".to_string()).collect();
@@ -42,7 +48,7 @@ impl Report {
             self.words.trim(),
             today(),
             env!("CARGO_PKG_VERSION"),
-            self.name,
+            command,
             line(&names),
             line(&rule),
         )

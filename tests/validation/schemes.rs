@@ -55,9 +55,10 @@ fn row(scheme: &'static Scheme) -> Vec<String> {
     cells
 }
 
-fn end_error_au(scheme: &Scheme, years: f64) -> f64 {
+/// Largest distance of Jupiter or Saturn from the 128-bit state after so many years, either way.
+pub fn end_error_au(scheme: &Scheme, years: f64) -> f64 {
     let start = state(&sun_jupiter_saturn());
-    let steps = (years * 365.25 / 50.0).ceil();
+    let steps = (years.abs() * 365.25 / 50.0).ceil();
     let mut end = run(&start, scheme, years * 365.25 / steps, steps as usize);
     let mut truth = end.clone();
     let rows = table("sun-jupiter-saturn.csv");

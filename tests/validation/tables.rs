@@ -3,13 +3,20 @@
 //! `cargo bench --bench validation` writes all of them; `cargo bench --bench validation -- catalogue` one. The same facts
 //! are held by `cargo test`; here they are spread out with longer spans.
 
+#[path = "../radau_support/mod.rs"]
+mod radau_support;
 #[path = "../shelf/mod.rs"]
 mod shelf;
 #[path = "../truth_support/mod.rs"]
 mod truth_support;
 
 mod catalogue;
+mod classics;
+mod de406;
 mod hd_45364;
+mod long_runs;
+mod mercury;
+mod reference_integrations;
 mod report;
 mod schemes;
 mod solar_system;
@@ -18,12 +25,16 @@ mod variational;
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 5] = [
+const TABLES: [(&str, fn()); 9] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
     ("variational", variational::write),
     ("solar-system", solar_system::write),
     ("schemes", schemes::write),
+    ("classics", classics::write),
+    ("reference-integrations", reference_integrations::write),
+    ("de406", de406::write),
+    ("mercury", mercury::write),
 ];
 
 fn main() -> ExitCode {

@@ -1,0 +1,62 @@
+//! The planets against outside integrations and the JPL ephemeris; the whole spans are in reports/validation.
+
+#[path = "validation/de406.rs"]
+#[allow(dead_code, reason = "the table uses the rest")]
+mod de406;
+#[path = "validation/long_runs.rs"]
+mod long_runs;
+mod radau_support;
+#[path = "validation/report.rs"]
+#[allow(dead_code, reason = "the table uses the rest")]
+mod report;
+
+use std::collections::BTreeMap;
+
+use abide::integrate::Scheme;
+use abide::integrate::forces::rate_matched;
+use long_runs::{Lane, Symplectic, Truth, light_terms};
+use radau_support::{LIGHT, SUN_GM, solar_system};
+
+/// Four models over two centuries either way by (10,6,4), 4-day steps. Rounding: three standard deviations of a random walk
+/// (Brouwer 1937) for Mercury, which turns fastest. Relativity as a potential from rate-matched velocities leaves what is periodic,
+/// some GM/c²: ten times that is allowed.
+#[test]
+fn the_symplectic_scheme_ends_where_the_reference_does() {
+    let (names, start) = solar_system("DE406");
+    let mut truth = Truth::read("reference-integrations.csv", &names);
+    truth.years.retain(|year| year.abs() <= 200);
+    assert_eq!(truth.years.len(), 4);
+    let models = ["newton", "newton+potential", "newton+1pn", "newton+1pn+quad"];
+    let lanes = models.map(|name| {
+        let state = if name.contains("1pn") { rate_matched(&start, LIGHT) } else { start.clone() };
+        Lane { state, terms: light_terms(name != "newton", name.contains("quad")) }
+    });
+    let scheme = Scheme::named("(10,6,4)").unwrap();
+    let places = Symplectic { lanes: lanes.into(), scheme, step_day: 4.0 }.places(&truth.years);
+    for (index, name) in models.iter().enumerate() {
+        for year in &truth.years {
+            let span = f64::from(year.abs());
+            let substeps = 9.0 * span * 365.25 / 4.0;
+            let rounding =
+                3.0 * f64::EPSILON * substeps.sqrt() * 3.0 * std::f64::consts::PI * span / 0.2408 * 0.387;
+            let law = if name.contains("1pn") { 10.0 * SUN_GM / (LIGHT * LIGHT) } else { 0.0 };
+            let off = truth.off(name, *year, &places[&(index, *year)]);
+            println!("{name} {year}: {off:.1e?}, limit {:.1e}", rounding + law);
+            assert!(off.iter().all(|x| *x < rounding + law), "{name} {year}: {off:?}");
+        }
+    }
+}
+
+/// The best model departs from DE406 as an independent integration of the same model does; another model does not.
+#[test]
+fn a_thousand_years_depart_from_the_ephemeris_as_they_must() {
+    let ephemeris: BTreeMap<_, _> =
+        de406::ephemeris().into_iter().filter(|(year, _)| (-1000..=0).contains(year)).collect();
+    let agreed = |model: &str| {
+        let rows = de406::compare(de406::BEST, "adaptive", &de406::adaptive(model, &ephemeris));
+        assert_eq!(rows.len(), 8);
+        rows.iter().filter(|row| row.last().unwrap() == "yes").count()
+    };
+    assert_eq!(agreed(de406::BEST), 8);
+    assert_eq!(agreed("newton+1pn"), 0);
+}
