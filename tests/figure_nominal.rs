@@ -10,7 +10,7 @@ use figure_world::{SPAN_DAY, axis, records, study, system};
 
 fn drawn(study: &Study, records: &[Record]) -> Figure {
     let input =
-        MapInput { study, system: &system(), records, column: "megno", span_day: SPAN_DAY, caption: &[] };
+        MapInput { study, system: &system(), records, column: "megno", span_day: SPAN_DAY, reach: 1, caption: &[] };
     map(&input).unwrap()
 }
 
