@@ -9,8 +9,15 @@ use abide::system::{Key, Study};
 use figure_world::{SPAN_DAY, axis, records, study, system};
 
 fn drawn(study: &Study, records: &[Record]) -> Figure {
-    let input =
-        MapInput { study, system: &system(), records, column: "megno", span_day: SPAN_DAY, reach: 1, caption: &[] };
+    let input = MapInput {
+        study,
+        system: &system(),
+        records,
+        column: "megno",
+        span_day: SPAN_DAY,
+        reach: 0,
+        caption: &[],
+    };
     map(&input).unwrap()
 }
 

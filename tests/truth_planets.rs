@@ -41,7 +41,7 @@ fn the_symplectic_scheme_ends_where_the_reference_does() {
                 3.0 * f64::EPSILON * substeps.sqrt() * 3.0 * std::f64::consts::PI * span / 0.2408 * 0.387;
             let law = if name.contains("1pn") { 10.0 * SUN_GM / (LIGHT * LIGHT) } else { 0.0 };
             let off = truth.off(name, *year, &places[&(index, *year)]);
-            println!("{name} {year}: {off:.1e?}, limit {:.1e}", rounding + law);
+            println!("{name} {year}: {off:?}, limit {:.1e}", rounding + law);
             assert!(off.iter().all(|x| *x < rounding + law), "{name} {year}: {off:?}");
         }
     }
