@@ -263,7 +263,7 @@ mod tests {
         }
         for (total, hours) in [(50_000, 1), (1_000_000, 30), (1_000_000, 300), (1_000_000, 99_000)] {
             let mut progress = Progress::new(total, Tally::default(), true);
-            progress.tally = tally;
+            progress.tally = tally.clone();
             let pace_s = hours as f64 * 3600.0 / (total - 10_015) as f64;
             let short = progress.short_state(Duration::from_secs_f64(10_015.0 * pace_s));
             let columns = bar_columns(total) + short.chars().count();
