@@ -243,7 +243,7 @@ fn top_limits_and_engine() {
     check(&changed("30 per orbit", "30 per year"), Fault::Malformed, 22, 12, &["per orbit"]);
     check(&changed("30 per orbit", "0 per orbit"), Fault::OutOfRange, 22, 9, &["above 0"]);
     check(&changed("1e-7", "0"), Fault::OutOfRange, 23, 16, &["0 < energy_error < 1"]);
-    check(SYSTEM, Fault::UnknownKey, 1, 1, &["--vary"]);
+    check(SYSTEM, Fault::SystemFile, 1, 1, &["a system file", "--vary"]);
 }
 
 /// Floor 2 may not ask the integrator, so the words are data there; here both lists meet.

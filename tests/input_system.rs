@@ -223,7 +223,7 @@ fn words_and_types() {
     check("planet = [3]\n[star]\nmass = \"1 Msun\"\n", Fault::WrongType, 1, 11, &["[[planet]]"]);
     check("[star]\nmass = \"1 Msun\n", Fault::Syntax, 2, 15, &["TOML"]);
     check(&changed("eccentricity = 0.05", "period = \"1 d\""), Fault::Syntax, 17, 1, &["duplicate"]);
-    check("system = \"a.toml\"\n[[axis]]\n", Fault::UnknownKey, 1, 1, &["a study file"]);
+    check("system = \"a.toml\"\n[[axis]]\n", Fault::StudyFile, 1, 1, &["a study file", "`abide survey`"]);
 }
 
 #[test]

@@ -105,8 +105,8 @@ pub fn parse_system(name: &str, text: &str) -> Result<SystemFile, InputError> {
     if kind_of(&top) == Some(FileKind::Study) {
         let complaint = Complaint::new(Fault::StudyFile, "a study where a system is needed");
         let complaint = complaint.allowed("a system file: one with [star] and [[planet]]");
-        let advice = "give it to `abide survey`, or name the file that stands behind its system = ";
-        return Err(complaint.advice(advice).of_file(name));
+        let advice = "give it to `abide survey`, or name the system file that it is about";
+        return Err(source.at(0..0, complaint.advice(advice)));
     }
     let system = system_file::check(&source, &top)?;
     Ok(SystemFile { path: PathBuf::from(name), text: text.to_string(), system })
@@ -126,7 +126,7 @@ pub fn parse_study(name: &str, text: &str, system: SystemFile) -> Result<StudyFi
 fn not_a_study(source: &Source) -> InputError {
     let complaint = Complaint::new(Fault::SystemFile, "a system where a study is needed");
     let complaint = complaint.allowed("a study file: one with system, span and [[axis]]");
-    complaint.advice("name a study, or keys of this system with --vary").of_file(source.name)
+    source.at(0..0, complaint.advice("name a study, or keys of this system with --vary"))
 }
 
 /// Whether a file is a study or a system, from its top-level keys.
