@@ -9,21 +9,31 @@ mod shelf;
 mod truth_support;
 
 mod catalogue;
+mod cost_figure;
+mod fifty;
+mod giants;
 mod hd_45364;
+mod random;
 mod report;
+mod round_off;
 mod schemes;
+mod schemes_cost;
 mod solar_system;
 mod variational;
 
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 5] = [
+const TABLES: [(&str, fn()); 9] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
     ("variational", variational::write),
     ("solar-system", solar_system::write),
     ("schemes", schemes::write),
+    ("giants", giants::write),
+    ("round-off", round_off::write),
+    ("schemes-cost", schemes_cost::write),
+    ("fifty", fifty::write),
 ];
 
 fn main() -> ExitCode {
