@@ -39,8 +39,10 @@ pub fn draw(curves: &[Curve], file: &Path) {
         ("compact", "Compact three", Coordinates::Jacobi),
     ];
     for (panel, (system, title, coordinates)) in panels.iter().zip(kinds) {
+        let set = if coordinates == Coordinates::Jacobi { "Jacobi" } else { "heliocentric" };
+        let title = format!("{title}, {set} coordinates");
         let of = |c: &&Curve| c.system == system && c.coordinates == coordinates;
-        draw_panel(panel, &curves.iter().filter(of).collect::<Vec<_>>(), &format!("{title}, {}", coordinates.word()));
+        draw_panel(panel, &curves.iter().filter(of).collect::<Vec<_>>(), &title);
     }
     page.present().unwrap();
 }
@@ -51,7 +53,7 @@ fn draw_panel(panel: &DrawingArea<BitMapBackend<'_>, Shift>, curves: &[&Curve], 
         .caption(title, ("words", 26))
         .x_label_area_size(58)
         .y_label_area_size(92)
-        .build_cartesian_2d((12f64..2000.0).log_scale(), (1e-16f64..1e-2).log_scale())
+        .build_cartesian_2d((10f64..2000.0).log_scale(), (1e-16f64..1e-2).log_scale())
         .unwrap();
     chart
         .configure_mesh()
