@@ -17,7 +17,8 @@ fn orbit(gm: f64, pericentre: f64, e: f64, anomaly: f64, tilt: f64, node: f64) -
     let p = pericentre * (1.0 + e);
     let r = p / (1.0 + e * anomaly.cos());
     let speed = (gm / p).sqrt();
-    let flat = [[r * anomaly.cos(), r * anomaly.sin()], [-speed * anomaly.sin(), speed * (e + anomaly.cos())]];
+    let flat =
+        [[r * anomaly.cos(), r * anomaly.sin()], [-speed * anomaly.sin(), speed * (e + anomaly.cos())]];
     let turned = flat.map(|[x, y]| {
         let (y, z) = (y * tilt.cos(), y * tilt.sin());
         [x * node.cos() - y * node.sin(), x * node.sin() + y * node.cos(), z]
@@ -70,7 +71,8 @@ fn finite(state: &State) -> bool {
 fn kept(start: &State, end: &State) -> (f64, f64) {
     let scale: f64 = start.gm.iter().zip(&start.pos).map(|(gm, q)| gm / size(q)).sum();
     let (l0, l1) = (angular_momentum(start), angular_momentum(end));
-    let turning: f64 = start.gm.iter().zip(start.pos.iter().zip(&start.vel)).map(|(m, (q, v))| m * size(q) * size(v)).sum();
+    let turning: f64 =
+        start.gm.iter().zip(start.pos.iter().zip(&start.vel)).map(|(m, (q, v))| m * size(q) * size(v)).sum();
     ((energy(end) - energy(start)).abs() / scale, size(&[0, 1, 2].map(|k| l1[k] - l0[k])) / turning)
 }
 
@@ -207,7 +209,8 @@ fn time_between(gm: f64, pericentre: f64, e: f64, angle: f64) -> f64 {
     for piece in 0..pieces {
         let middle = half * f64::from(2 * piece + 1);
         for (at, weight) in nodes {
-            let both = if at == 0.0 { rate(middle) } else { rate(middle - half * at) + rate(middle + half * at) };
+            let both =
+                if at == 0.0 { rate(middle) } else { rate(middle - half * at) + rate(middle + half * at) };
             sum += weight * half * both;
         }
     }

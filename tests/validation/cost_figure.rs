@@ -83,7 +83,8 @@ fn draw_panel(panel: &DrawingArea<BitMapBackend<'_>, Shift>, curves: &[&Curve], 
         .unwrap();
 }
 
-type Plane = Cartesian2d<plotters::coord::combinators::LogCoord<f64>, plotters::coord::combinators::LogCoord<f64>>;
+type Plane =
+    Cartesian2d<plotters::coord::combinators::LogCoord<f64>, plotters::coord::combinators::LogCoord<f64>>;
 
 /// Markers of three shapes, so that lines are not told apart by colour alone.
 fn mark<'a, 'b: 'a>(
@@ -97,20 +98,20 @@ fn mark<'a, 'b: 'a>(
     let points = points.iter().copied();
     let style = if index < 3 { hue.filled() } else { hue.stroke_width(2) };
     match index % 3 {
-        0 => chart
-            .draw_series(points.map(|p| Circle::new(p, 5, style)))
-            .unwrap()
-            .label(name)
-            .legend(move |(x, y)| EmptyElement::at((0, 0)) + line(x, y) + Circle::new((x + 8, y), 5, style)),
-        1 => chart
-            .draw_series(points.map(|p| TriangleMarker::new(p, 7, style)))
-            .unwrap()
-            .label(name)
-            .legend(move |(x, y)| EmptyElement::at((0, 0)) + line(x, y) + TriangleMarker::new((x + 8, y), 7, style)),
+        0 => {
+            chart.draw_series(points.map(|p| Circle::new(p, 5, style))).unwrap().label(name).legend(
+                move |(x, y)| EmptyElement::at((0, 0)) + line(x, y) + Circle::new((x + 8, y), 5, style),
+            )
+        }
+        1 => chart.draw_series(points.map(|p| TriangleMarker::new(p, 7, style))).unwrap().label(name).legend(
+            move |(x, y)| EmptyElement::at((0, 0)) + line(x, y) + TriangleMarker::new((x + 8, y), 7, style),
+        ),
         _ => chart
             .draw_series(points.map(|p| Cross::new(p, 5, hue.stroke_width(2))))
             .unwrap()
             .label(name)
-            .legend(move |(x, y)| EmptyElement::at((0, 0)) + line(x, y) + Cross::new((x + 8, y), 5, hue.stroke_width(2))),
+            .legend(move |(x, y)| {
+                EmptyElement::at((0, 0)) + line(x, y) + Cross::new((x + 8, y), 5, hue.stroke_width(2))
+            }),
     };
 }

@@ -83,10 +83,24 @@ pub fn write() {
             }
         }
     }
-    Report { name: "giants", title: "Frequencies of the giant planets", words: words(steps, &errors, times), columns: vec![
-        "forces", "frequency", "rank_of_line", "amplitude", "found_arcsec_per_year", "source", "published", "departure",
-        "limit", "met",
-    ], rows }
+    Report {
+        name: "giants",
+        title: "Frequencies of the giant planets",
+        words: words(steps, &errors, times),
+        columns: vec![
+            "forces",
+            "frequency",
+            "rank_of_line",
+            "amplitude",
+            "found_arcsec_per_year",
+            "source",
+            "published",
+            "departure",
+            "limit",
+            "met",
+        ],
+        rows,
+    }
     .write();
 }
 
@@ -141,7 +155,8 @@ pub fn start() -> (State, StarTerms) {
         pos: (5..9).map(|k| (pos(k) - at).into()).collect(),
         vel: (5..9).map(|k| (vel(k) - going - shift).into()).collect(),
     };
-    let axis = |k: usize| Elements::from_state(gm(0) + gm(k), pos(k).into(), vel(k).into()).semi_major_axis_au;
+    let axis =
+        |k: usize| Elements::from_state(gm(0) + gm(k), pos(k).into(), vel(k).into()).semi_major_axis_au;
     let pole: Vector3<f64> = (1..5).map(|k| pos(k).cross(&vel(k)) * gm(k)).sum();
     let terms = StarTerms {
         relativity: 6.0 * (star_gm / LIGHT_AU_PER_DAY).powi(2),
@@ -196,8 +211,7 @@ fn run(start: &State, terms: &StarTerms) -> (Signals, usize, Vec<f64>, (f64, f64
 
 /// Adds e exp(iϖ) and i exp(iΩ) of the four.
 fn look(state: &State, turn: &Rotation3<f64>, sums: &mut [[Complex; 2]; 4]) {
-    let momentum: Vector3<f64> =
-        state.gm.iter().zip(&state.vel).map(|(gm, v)| *gm * Vector3::from(*v)).sum();
+    let momentum: Vector3<f64> = state.gm.iter().zip(&state.vel).map(|(gm, v)| *gm * Vector3::from(*v)).sum();
     for planet in 0..4 {
         let pos = turn * Vector3::from(state.pos[planet]);
         let vel = turn * (Vector3::from(state.vel[planet]) + momentum / state.star_gm);

@@ -152,8 +152,20 @@ fn pair_rows(at: &[usize], errors: &[Vec<f64>]) -> Vec<Vec<String>> {
             format!("{:.3}", 0.5 + 2.0 * error),
             yes(whole <= 0.5 + 2.0 * error),
         ],
-        vec!["exponent, error by leaving one start out".to_string(), format!("{whole:.3}"), format!("{left_out:.3}"), none(), none()],
-        vec!["exponent of true walks".to_string(), format!("{walk:.3}"), format!("{error:.3}"), none(), none()],
+        vec![
+            "exponent, error by leaving one start out".to_string(),
+            format!("{whole:.3}"),
+            format!("{left_out:.3}"),
+            none(),
+            none(),
+        ],
+        vec![
+            "exponent of true walks".to_string(),
+            format!("{walk:.3}"),
+            format!("{error:.3}"),
+            none(),
+            none(),
+        ],
         vec![
             "drift per step".to_string(),
             short(drift),
@@ -241,6 +253,7 @@ fn kepler(random: &mut Random, per_turn: f64) -> Vec<Vec<f64>> {
         first.push((0..SHAPES.len()).map(|k| orbit_energy(&start, k)).collect::<Vec<f64>>());
     }
     advance(Advance { block: &mut block, scheme: Scheme::leapfrog(), steps: DRIFTS, tangent: false });
-    let change = |k: usize, lane: usize| (orbit_energy(&block.state(lane), k) - first[lane][k]) / first[lane][k];
+    let change =
+        |k: usize, lane: usize| (orbit_energy(&block.state(lane), k) - first[lane][k]) / first[lane][k];
     (0..SHAPES.len()).map(|k| (0..LANES).map(|lane| change(k, lane)).collect()).collect()
 }

@@ -49,7 +49,15 @@ pub fn write() {
     points(&curves);
     cost_figure::draw(&curves, &folder().join("schemes-cost.png"));
     let columns = vec![
-        "system", "coordinates", "scheme", "slope_last", "slope_steepest", "smallest", "kicks_to_1e-10", "limit", "met",
+        "system",
+        "coordinates",
+        "scheme",
+        "slope_last",
+        "slope_steepest",
+        "smallest",
+        "kicks_to_1e-10",
+        "limit",
+        "met",
     ];
     let rows = curves.iter().map(row).collect();
     Report {
@@ -64,7 +72,8 @@ pub fn write() {
 
 /// Three planets near no strong resonance.
 pub fn compact() -> State {
-    let mut bodies = [placed(1.0, 0.03, 0.4, 0.0), placed(1.39, 0.05, 2.3, 1.1), placed(1.97, 0.02, 4.0, 2.5)];
+    let mut bodies =
+        [placed(1.0, 0.03, 0.4, 0.0), placed(1.39, 0.05, 2.3, 1.1), placed(1.97, 0.02, 4.0, 2.5)];
     for ((pos, vel), tilt) in bodies.iter_mut().zip([0.0f64, 0.04, 0.02]) {
         for v in [pos, vel] {
             *v = [v[0], v[1] * tilt.cos(), v[1] * tilt.sin()];
