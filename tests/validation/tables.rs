@@ -12,20 +12,26 @@ mod truth_support;
 
 mod catalogue;
 mod classics;
+mod cost_figure;
 mod de406;
+mod fifty;
+mod giants;
 mod hd_45364;
 mod long_runs;
 mod mercury;
+mod random;
 mod reference_integrations;
 mod report;
+mod round_off;
 mod schemes;
+mod schemes_cost;
 mod solar_system;
 mod variational;
 
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 9] = [
+const TABLES: [(&str, fn()); 13] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
     ("variational", variational::write),
@@ -35,6 +41,10 @@ const TABLES: [(&str, fn()); 9] = [
     ("reference-integrations", reference_integrations::write),
     ("de406", de406::write),
     ("mercury", mercury::write),
+    ("giants", giants::write),
+    ("round-off", round_off::write),
+    ("schemes-cost", schemes_cost::write),
+    ("fifty", fifty::write),
 ];
 
 fn main() -> ExitCode {
