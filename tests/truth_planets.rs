@@ -4,6 +4,7 @@
 #[allow(dead_code, reason = "the table uses the rest")]
 mod de406;
 #[path = "validation/long_runs.rs"]
+#[allow(dead_code, reason = "the table uses the rest")]
 mod long_runs;
 mod radau_support;
 #[path = "validation/report.rs"]
@@ -14,12 +15,12 @@ use std::collections::BTreeMap;
 
 use abide::integrate::Scheme;
 use abide::integrate::forces::rate_matched;
-use long_runs::{Lane, Symplectic, Truth, light_terms};
-use radau_support::{LIGHT, SUN_GM, solar_system};
+use long_runs::{Lane, Symplectic, Truth, light_terms, unmatched_au};
+use radau_support::{LIGHT, solar_system};
 
 /// Four models over two centuries either way by (10,6,4), 4-day steps. Rounding: three standard deviations of a random walk
 /// (Brouwer 1937) for Mercury, which turns fastest. Relativity as a potential from rate-matched velocities leaves what is periodic,
-/// some GM/c²: ten times that is allowed.
+/// some GM/c², and what the closed form misses of the mean motion.
 #[test]
 fn the_symplectic_scheme_ends_where_the_reference_does() {
     let (names, start) = solar_system("DE406");
@@ -39,10 +40,12 @@ fn the_symplectic_scheme_ends_where_the_reference_does() {
             let substeps = 9.0 * span * 365.25 / 4.0;
             let rounding =
                 3.0 * f64::EPSILON * substeps.sqrt() * 3.0 * std::f64::consts::PI * span / 0.2408 * 0.387;
-            let law = if name.contains("1pn") { 10.0 * SUN_GM / (LIGHT * LIGHT) } else { 0.0 };
+            let law = if name.contains("1pn") { unmatched_au(*year) } else { vec![0.0; 9] };
             let off = truth.off(name, *year, &places[&(index, *year)]);
-            println!("{name} {year}: {off:?}, limit {:.1e}", rounding + law);
-            assert!(off.iter().all(|x| *x < rounding + law), "{name} {year}: {off:?}");
+            for (body, (off, law)) in off.iter().zip(&law).enumerate() {
+                let limit = rounding + law;
+                assert!(*off < limit, "{name} {year}, {}: {off:e} against {limit:e}", names[body]);
+            }
         }
     }
 }
@@ -58,5 +61,5 @@ fn a_thousand_years_depart_from_the_ephemeris_as_they_must() {
         rows.iter().filter(|row| row.last().unwrap() == "yes").count()
     };
     assert_eq!(agreed(de406::BEST), 8);
-    assert_eq!(agreed("newton+1pn"), 0);
+    assert_eq!(agreed("newton"), 0);
 }

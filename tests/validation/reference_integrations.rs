@@ -4,9 +4,9 @@ use abide::integrate::forces::rate_matched;
 use abide::integrate::radau::{Engine, TOLERANCE};
 use abide::integrate::{Scheme, State};
 
-use super::long_runs::{Lane, Symplectic, Truth, light_terms};
+use super::long_runs::{AXES_AU, Lane, Places, Symplectic, Truth, light_terms, turns, unmatched_au};
 use super::radau_support::planets::model;
-use super::radau_support::{LIGHT, Row, SUN_GM, distance, number, run, solar_system, table};
+use super::radau_support::{LIGHT, distance, run, solar_system};
 use super::report::{Report, met};
 
 const WORDS: &str = "
@@ -31,8 +31,6 @@ const MODELS: [(&str, &str, &str); 4] = [
     ("newton+1pn+quad", "reference-integrations-newton+1pn+quad", MATCHED),
 ];
 const STEPS_DAY: [f64; 4] = [8.0, 4.0, 2.0, 1.0];
-/// Semi-major axes, au, Mercury to Pluto.
-const AXES_AU: [f64; 9] = [0.387, 0.723, 1.0, 1.524, 5.203, 9.58, 19.2, 30.1, 39.5];
 
 pub fn write() {
     let (names, start) = solar_system("DE406");
@@ -63,7 +61,7 @@ pub fn write() {
 }
 
 /// The four models both ways are the eight lanes of one block.
-fn every_model(start: &State, truth: &Truth, step: f64) -> super::long_runs::Places {
+fn every_model(start: &State, truth: &Truth, step: f64) -> Places {
     let matched = rate_matched(start, LIGHT);
     let lane = |state: &State, relativity, satellite| Lane {
         state: state.clone(),
@@ -101,29 +99,10 @@ fn adaptive_limits(year: i32) -> Vec<f64> {
     (0..9).map(|body| if body == 0 { 2.0 * walk + drift } else { walk }).collect()
 }
 
-fn turns(body: usize, year: i32) -> f64 {
-    f64::from(year.abs()) / AXES_AU[body].powf(1.5)
-}
-
 fn rounding_au(year: i32, step: f64) -> Vec<f64> {
     let substeps = 9.0 * f64::from(year.abs()) * 365.25 / step;
     let one = |body| 3.0 * std::f64::consts::PI * turns(body, year).max(1.0) * AXES_AU[body];
     (0..9).map(|body| 3.0 * f64::EPSILON * substeps.sqrt() * one(body)).collect()
-}
-
-/// What rate-matched velocities may leave, au.
-fn unmatched_au(year: i32) -> Vec<f64> {
-    let rows: Vec<Row> = table("start-corrections.csv");
-    let light = LIGHT * LIGHT;
-    let one = |body: usize| {
-        let (closed, fitted) =
-            (number(&rows[body], "potential_dv_over_v"), &rows[body]["potential_dv_over_v_fitted"]);
-        let power: i32 = fitted.rsplit('e').next().unwrap().parse().unwrap();
-        let missed = (closed - fitted.parse::<f64>().unwrap()).abs() + 0.5e-4 * 10f64.powi(power);
-        let phase = 3.0 * std::f64::consts::TAU * turns(body, year) * missed;
-        phase * AXES_AU[body] + 10.0 * SUN_GM / light
-    };
-    (0..9).map(one).collect()
 }
 
 fn row(engine: &str, step: f64, year: i32, off: &[f64], limits: &[f64], names: &[String]) -> Vec<String> {
