@@ -122,7 +122,7 @@ fn schemes() -> Result<(), Failure> {
         .margin(30)
         .x_label_area_size(60)
         .y_label_area_size(100)
-        .build_cartesian_2d((120f64..7_000.0).log_scale(), (1e-15f64..1e-1).log_scale())?;
+        .build_cartesian_2d((1e2f64..1e4).log_scale(), (1e-15f64..1e-1).log_scale())?;
     draw!(
         chart,
         lines,

@@ -27,7 +27,8 @@ pub(super) fn level_ticks(axis: &Axis, width: f64, size: f64) -> Ticks {
     ticks_apart(axis, 9, 1.2 * size, |at, label| (at * width, text::length(label, size)))
 }
 
-/// The densest ticks, up to `wanted`, whose labels keep `gap`; when two are too many, labels are dropped.
+/// The densest ticks, up to `wanted`, whose labels keep `gap`; when two are too many, or finer steps are needed for three,
+/// labels are dropped.
 ///
 /// `extent` gives centre and length of a label along the axis from its place in 0..1.
 fn ticks_apart(axis: &Axis, wanted: usize, gap: f64, extent: impl Fn(f64, &Label) -> (f64, f64)) -> Ticks {
@@ -37,18 +38,17 @@ fn ticks_apart(axis: &Axis, wanted: usize, gap: f64, extent: impl Fn(f64, &Label
             placed_ticks(&scale, &found.major).map(|(at, label)| extent(at, &label)).collect();
         fit::keep_apart(&along, gap, (f64::NEG_INFINITY, f64::INFINITY))
     };
-    let mut found = Ticks::default();
-    for wanted in (2..=wanted).rev() {
-        found = ticks(axis.from, axis.to, axis.kind, wanted);
-        if kept(&found).len() == found.major.len() {
-            return found;
-        }
-    }
+    let every = |count: usize| ticks(axis.from, axis.to, axis.kind, count);
+    let fitting = (2..=wanted).rev().map(every).find(|found| kept(found).len() == found.major.len());
+    let found = fitting.unwrap_or_else(|| every(2));
+    // Round steps can be too far apart for three labels and the next finer ones too close: then some go without.
+    let finer = || (3..=wanted + 4).map(every).find(|finer| kept(finer).len() >= 3);
+    let found = if found.major.len() < 3.min(wanted) { finer().unwrap_or(found) } else { found };
     let kept = kept(&found);
     let (major, dropped): (Vec<_>, Vec<_>) =
         found.major.into_iter().enumerate().partition(|(index, _)| kept.contains(index));
-    found.minor.extend(dropped.into_iter().map(|(_, tick)| tick.at));
-    Ticks { major: major.into_iter().map(|(_, tick)| tick).collect(), minor: found.minor }
+    let minor = found.minor.into_iter().chain(dropped.into_iter().map(|(_, tick)| tick.at)).collect();
+    Ticks { major: major.into_iter().map(|(_, tick)| tick).collect(), minor }
 }
 
 /// Ticks of the colour bar; an end that stands for more than itself says so.
