@@ -375,3 +375,20 @@ fn one_axis_gives_points_over_it() {
     let region = Legend::Region;
     assert_eq!(named, [&region(chaotic), &region(escape), &region(Region::Undecided)]);
 }
+
+#[test]
+fn the_caption_says_whose_resonances_are_labelled() {
+    let mut three = system();
+    let mut outer = three.planets[1].clone();
+    outer.name = "d".to_owned();
+    outer.stated.insert(Key::Period, Measured::exact(31.4, "d"));
+    let mut plane = study(3, 2);
+    plane.axes[0] = axis(0, Key::Period, (8.0, 12.5, 3));
+    let found = one(&plane, assessment(Verdict::Regular, None, 2.0, 1.0));
+    let words = |system: &System| try_map(&plane, system, &found, "megno").unwrap().caption.join(" ");
+    assert_eq!(words(&three), "Top edge: mean-motion resonances of b with c (longer : shorter period).");
+    // d is no neighbour of b, so resonances with it have no label.
+    three.planets.push(outer);
+    let expected = "Top edge: mean-motion resonances of b, only those with c (longer : shorter period).";
+    assert_eq!(words(&three), expected);
+}
