@@ -165,7 +165,7 @@ mod tests {
     fn lengths_are_plain_where_they_are_short() {
         for (length_au, words) in [
             (0.0, "0 au"),
-            (0.0046505, "0.004650 au"),
+            (0.00465047, "0.004650 au"),
             (1.25, "1.250 au"),
             (2.5e-5, "2.500e-5 au"),
             (f64::NAN, "NaN au"),
