@@ -195,15 +195,18 @@ proptest! {
         let (least_back, _) = least_error(turned, -time);
         let carried = carried_error(turned, -time, least_pos, least_vel);
         let gap: Vec<f64> = (0..3).map(|k| back[k] - start.pos[k]).collect();
-        // 20 as for the table: the error on the way out, carried back, and the error on the way back.
-        prop_assert!(norm(&gap) <= 20.0 * (carried + least_back), "{} {}", norm(&gap), carried + least_back);
+        // The error on the way out, carried back, and the error on the way back. In half-units of what enters: β = 2μ/r − v²
+        // from a root, a division and two sums of three products (13), r and η (7), f and g and the sums of the update
+        // (12); the series (6) is doubled up to three times over these spans, and each doubling doubles its error
+        // (48): 80 where all point the same way.
+        prop_assert!(norm(&gap) <= 80.0 * (carried + least_back), "{} {}", norm(&gap), carried + least_back);
         // Energy within what those errors of position and velocity make of it, |dE| = |μ r·dr/r³ + v·dv|.
         let before: Vec<f64> = start.pos.iter().chain(&start.vel).copied().collect();
         let kinetic = 0.5 * norm(&there[3..6]).powi(2) + 0.5 * norm(&start.vel).powi(2);
         let scale = kinetic + start.mu / norm(&there[0..3]) + start.mu / norm(&start.pos);
         let carried = start.mu / norm(&there[0..3]).powi(2) * least_pos + norm(&there[3..6]) * least_vel;
         let (e0, e1) = (energy(start.mu, &before), energy(start.mu, &there));
-        prop_assert!((e1 - e0).abs() <= 20.0 * carried + 8.0 * f64::EPSILON * scale, "{e0} {e1}");
+        prop_assert!((e1 - e0).abs() <= 80.0 * carried + 8.0 * f64::EPSILON * scale, "{e0} {e1}");
     }
 
     /// The tangent map is the derivative of the map: central differences agree to their own accuracy.

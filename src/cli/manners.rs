@@ -27,7 +27,7 @@ pub fn print(text: &str) -> Result<(), CliError> {
     print_bytes(text.as_bytes())
 }
 
-/// [`print`] for what is text already in bytes.
+/// [`print()`] for what is text already in bytes.
 pub fn print_bytes(bytes: &[u8]) -> Result<(), CliError> {
     match std::io::stdout().write_all(bytes) {
         Err(error) if error.kind() != ErrorKind::BrokenPipe => Err(CliError::working(error)),
