@@ -58,7 +58,7 @@ impl<R: Real> Midway<R> {
         Midway {
             orbit: Orbit { mu: zero, r0: zero, eta: zero, beta: zero, zeta: zero },
             inv_r0: zero,
-            solved: Solved { s: zero, g, h: zero, h_by_beta: zero },
+            solved: Solved { s: zero, g, h_by_beta: zero },
             good: zero.lt(zero),
         }
     }
@@ -71,7 +71,7 @@ fn dot<R: Real>(a: &[R; 3], b: &[R; 3]) -> R {
 
 /// Moves every body along its two-body orbit for the time `h`; with `TANGENT` the tangent vector too.
 ///
-/// r₁ = f r₀ + g v₀, v₁ = ḟ r₀ + ġ v₀ with f = 1 − μG₂/r₀, g = h − μG₃, ḟ = −μG₁/(r r₀), ġ = 1 − μG₂/r.
+/// r₁ = f r₀ + g v₀, v₁ = ḟ r₀ + ġ v₀ with f = 1 − μG₂/r₀, g = r₀G₁ + ηG₂, ḟ = −μG₁/(r r₀), ġ = 1 − μG₂/r.
 /// Any step and any orbit except exactly radial passage through the centre; a step of 0 changes no bit.
 /// Lanes outside `active` never cause extra work; what they hold afterwards is of no use unless `h` is 0 there.
 /// Source: Stumpff (1962), Battin (1987); tangent map by differentiating these formulas (cf. Mikkola & Innanen 1999).
@@ -141,14 +141,16 @@ fn solve_two<R: Real>(a: &mut Midway<R>, b: &mut Midway<R>, h: R) {
 #[inline(always)]
 fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
     let Orbit { mu, r0, eta, beta, zeta } = m.orbit;
-    let Solved { s, g, h, h_by_beta } = m.solved;
+    let Solved { s, g, h_by_beta } = m.solved;
     let inv_r0 = m.inv_r0;
     let r = r0 + eta.mul_add(g.g1, zeta * g.g2);
     let inv_r = R::splat(1.0) / r;
     let (mu_by_r0, mu_by_r) = (mu * inv_r0, mu * inv_r);
     let mu_by_both = mu_by_r0 * inv_r;
     let f_less_1 = -(mu_by_r0 * g.g2);
-    let g_time = mu.neg_mul_add(g.g3, h);
+    // Not h − μG₃, the same if s solved Kepler's equation exactly: the little it is off is one-sided round an orbit. This
+    // way it is a slip in time along the orbit; that way it would be a step off the orbit, and the energy drifts.
+    let g_time = r0.mul_add(g.g1, eta * g.g2);
     let f_dot = -(mu_by_both * g.g1);
     let g_dot_less_1 = -(mu_by_r * g.g2);
     let (pos, vel) = (b.pos, b.vel);

@@ -21,9 +21,7 @@ pub(super) struct Orbit<R> {
 pub(super) struct Solved<R> {
     pub s: R,
     pub g: Gs<R>,
-    /// The time actually solved for: whole periods are taken off in the robust branch.
-    pub h: R,
-    /// ∂h/∂β through the periods taken off; 0 where none were.
+    /// ∂h/∂β through the whole periods that the robust branch takes off the time h; 0 where none were.
     pub h_by_beta: R,
 }
 
@@ -42,21 +40,11 @@ pub(super) fn twin<R: Real>(a: &Orbit<R>, b: &Orbit<R>) -> Orbit<Twin<R>> {
 /// Two solved equations from one.
 #[inline(always)]
 pub(super) fn part<R: Real>(both: &Solved<Twin<R>>) -> (Solved<R>, Solved<R>) {
-    let Solved { s, g, h, h_by_beta } = both;
+    let Solved { s, g, h_by_beta } = both;
     let Gs { g1, g2, g3, g4, g5 } = g;
     (
-        Solved {
-            s: s.0,
-            g: Gs { g1: g1.0, g2: g2.0, g3: g3.0, g4: g4.0, g5: g5.0 },
-            h: h.0,
-            h_by_beta: h_by_beta.0,
-        },
-        Solved {
-            s: s.1,
-            g: Gs { g1: g1.1, g2: g2.1, g3: g3.1, g4: g4.1, g5: g5.1 },
-            h: h.1,
-            h_by_beta: h_by_beta.1,
-        },
+        Solved { s: s.0, g: Gs { g1: g1.0, g2: g2.0, g3: g3.0, g4: g4.0, g5: g5.0 }, h_by_beta: h_by_beta.0 },
+        Solved { s: s.1, g: Gs { g1: g1.1, g2: g2.1, g3: g3.1, g4: g4.1, g5: g5.1 }, h_by_beta: h_by_beta.1 },
     )
 }
 
@@ -132,7 +120,7 @@ pub(super) fn solve_fast<R: Real>(o: &Orbit<R>, s: R, h: R) -> (Solved<R>, R::Ma
     let z = (o.beta * s * s).abs();
     let good = c.miss.lt(R::splat(CLOSE)).and(z.lt(R::splat(SERIES_REACH)));
     let solved =
-        Solved { s: s + c.w, g: stumpff::at_small_sum(o.beta, &g, c.w), h, h_by_beta: R::splat(0.0) };
+        Solved { s: s + c.w, g: stumpff::at_small_sum(o.beta, s, &g, c.w), h_by_beta: R::splat(0.0) };
     (solved, good)
 }
 
@@ -173,9 +161,9 @@ fn solve_robust<R: Real>(o: &Orbit<R>, h: R, wanted: R::Mask) -> Solved<R> {
             break;
         }
     }
-    let g = stumpff::at_small_sum(o.beta, &done_g, done_w);
+    let g = stumpff::at_small_sum(o.beta, done_s, &done_g, done_w);
     let s = done_s + done_w;
-    mirrored(backward, Solved { s, g, h: less.left, h_by_beta: less.h_by_beta })
+    mirrored(backward, Solved { s, g, h_by_beta: less.h_by_beta })
 }
 
 /// A step without its whole periods.
@@ -241,7 +229,7 @@ impl<R: Real> Bracket<R> {
 /// The solution of the forward step turned back in the lanes of `backward`: s, G₁, G₃ and G₅ are odd.
 #[inline(always)]
 fn mirrored<R: Real>(backward: R::Mask, forward: Solved<R>) -> Solved<R> {
-    let Solved { s, g, h, h_by_beta } = forward;
+    let Solved { s, g, h_by_beta } = forward;
     Solved {
         s: R::select(backward, -s, s),
         g: Gs {
@@ -251,7 +239,6 @@ fn mirrored<R: Real>(backward: R::Mask, forward: Solved<R>) -> Solved<R> {
             g4: g.g4,
             g5: R::select(backward, -g.g5, g.g5),
         },
-        h,
         h_by_beta,
     }
 }
@@ -283,7 +270,6 @@ fn merge<R: Real>(good: R::Mask, fast: &Solved<R>, robust: &Solved<R>) -> Solved
     Solved {
         s: R::select(good, fast.s, robust.s),
         g: stumpff::blend::<R>(good, &fast.g, &robust.g),
-        h: R::select(good, fast.h, robust.h),
         h_by_beta: R::select(good, fast.h_by_beta, robust.h_by_beta),
     }
 }
