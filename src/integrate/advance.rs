@@ -1,13 +1,15 @@
 //! Many steps of a block in one go.
 
-use super::block::{Block, D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, SATELLITE, VEL};
+use super::Block;
 use super::coordinates::Coordinates;
 use super::jacobi::{self, Relative};
-use super::kick::{Beside, kick};
+use super::kick::{Beside, kick, kick_keeping};
+use super::megno::Sums;
+use super::slots::{D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, SATELLITE, VEL};
 use super::splitting::Scheme;
 use super::star_terms::Terms;
-use crate::kepler::{Body, Midway, drift};
-use crate::lanes::{Job, Real, WIDTH, ln, run_one, run_wide};
+use crate::kepler::{Body, Low, Midway, drift, drift_keeping};
+use crate::lanes::{Job, Real, WIDTH, run_one, run_wide};
 
 /// The tangent vector's length is sampled every so many steps; blocks are whole multiples of it.
 pub const SAMPLE_EVERY: usize = 4;
@@ -41,34 +43,44 @@ impl Job for Advance<'_> {
     fn run<R: Real>(self) {
         // The commonest counts are compiled as fixed numbers, which lets the compiler keep more in registers.
         let plain = self.block.pulling() == self.block.planets() && !self.block.has_star_terms();
+        if self.block.is_compensated() {
+            return match self.block.coordinates() {
+                Coordinates::Heliocentric => any_count::<R, true, false, true, true>(self),
+                Coordinates::Jacobi => any_count::<R, true, true, true, true>(self),
+            };
+        }
         match (self.block.coordinates(), plain, self.block.planets(), self.tangent) {
             (Coordinates::Heliocentric, true, 2, true) => fixed::<R, 2, 1>(self),
             (Coordinates::Heliocentric, true, 3, true) => fixed::<R, 3, 3>(self),
-            (Coordinates::Heliocentric, true, _, true) => any_count::<R, true, false, false>(self),
-            (Coordinates::Heliocentric, true, _, false) => any_count::<R, false, false, false>(self),
+            (Coordinates::Heliocentric, true, _, true) => any_count::<R, true, false, false, false>(self),
+            (Coordinates::Heliocentric, true, _, false) => any_count::<R, false, false, false, false>(self),
             // The rarer kinds always carry the tangent vector: fewer kernels to compile.
-            (Coordinates::Heliocentric, false, _, _) => any_count::<R, true, false, true>(self),
-            (Coordinates::Jacobi, _, _, _) => any_count::<R, true, true, true>(self),
+            (Coordinates::Heliocentric, false, _, _) => any_count::<R, true, false, true, false>(self),
+            (Coordinates::Jacobi, _, _, _) => any_count::<R, true, true, true, false>(self),
         }
     }
 }
 
 #[inline(always)]
-fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(call: Advance<'_>) {
+fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool, const LOW: bool>(
+    call: Advance<'_>,
+) {
     let n = call.block.planets();
     let mut bodies = vec![Body::<R>::still(); n];
     let mut midway = vec![Midway::<R>::blank(); n];
     let mut pairs = vec![R::splat(0.0); call.block.pairs()];
     let mut satellites = vec![R::splat(0.0); n];
     let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
+    let mut low = vec![Low::<R>::none(); if LOW { n } else { 0 }];
     let rooms = Rooms {
         bodies: &mut bodies,
+        low: &mut low,
         midway: &mut midway,
         pairs: &mut pairs,
         relative: &mut relative,
         satellites: &mut satellites,
     };
-    steps::<R, TANGENT, JACOBI, BESIDE>(call, rooms);
+    steps::<R, TANGENT, JACOBI, BESIDE, LOW>(call, rooms);
 }
 
 #[inline(always)]
@@ -78,17 +90,20 @@ fn fixed<R: Real, const N: usize, const PAIRS: usize>(call: Advance<'_>) {
     let mut pairs = [R::splat(0.0); PAIRS];
     let rooms = Rooms {
         bodies: &mut bodies,
+        low: &mut [],
         midway: &mut midway,
         pairs: &mut pairs,
         relative: &mut [],
         satellites: &mut [],
     };
-    steps::<R, true, false, false>(call, rooms);
+    steps::<R, true, false, false, false>(call, rooms);
 }
 
 /// Where the kernel keeps its numbers.
 struct Rooms<'a, R: Real> {
     bodies: &'a mut [Body<R>],
+    /// Empty without compensated sums.
+    low: &'a mut [Low<R>],
     midway: &'a mut [Midway<R>],
     pairs: &'a mut [R],
     relative: &'a mut [Relative<R>],
@@ -96,13 +111,14 @@ struct Rooms<'a, R: Real> {
 }
 
 #[inline(always)]
-fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(
+fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool, const LOW: bool>(
     call: Advance<'_>,
     rooms: Rooms<'_, R>,
 ) {
     let Advance { block, scheme, steps, .. } = call;
-    let Rooms { bodies, midway, pairs, relative, satellites } = rooms;
+    let Rooms { bodies, low, midway, pairs, relative, satellites } = rooms;
     read(block, bodies, pairs);
+    read_low(block, low);
     let beside = read_beside(block, satellites);
     let pulling = if BESIDE { block.pulling() } else { bodies.len() };
     let star_gm = R::load(block.slot(Global::StarGm as usize));
@@ -118,9 +134,9 @@ fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(
         let merged = stage == 0 && 0 < done && done < kicks;
         let length = if merged { 2.0 * a[0] } else { a[if done == kicks { b.len() } else { stage }] };
         if JACOBI {
-            drift::<R, TANGENT, false>(bodies, midway, h * R::splat(length), active);
+            drift_keeping::<R, TANGENT, false, LOW>(bodies, low, midway, h * R::splat(length), active);
         } else {
-            drift::<R, TANGENT, true>(bodies, midway, h * R::splat(length), active);
+            drift_keeping::<R, TANGENT, true, LOW>(bodies, low, midway, h * R::splat(length), active);
         }
         if done == kicks {
             break;
@@ -130,9 +146,13 @@ fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(
         }
         let length = h * R::splat(b[stage]);
         if JACOBI {
-            jacobi::kick::<R, TANGENT, BESIDE>(bodies, relative, pairs, star_gm, &beside, length, window);
+            jacobi::kick::<R, TANGENT, BESIDE, LOW>(
+                bodies, low, relative, pairs, star_gm, &beside, length, window,
+            );
         } else {
-            kick::<R, TANGENT, true, BESIDE>(bodies, pulling, pairs, star_gm, &beside, length, window);
+            kick_keeping::<R, TANGENT, true, BESIDE, LOW>(
+                bodies, low, pulling, pairs, star_gm, &beside, length, window,
+            );
         }
         stage += 1;
         if stage == b.len() {
@@ -143,76 +163,8 @@ fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool>(
         growth.write(block);
     }
     write(block, bodies);
+    write_low(block, low);
     write_watch(block, bodies, pairs);
-}
-
-/// The sums behind MEGNO, in samples: Y = 2 (L − ∫L/t), L = ln(|δ|/|δ₀|), by parts from Y = (2/t)∫(δ̇·δ/δ²) s ds.
-///
-/// The clock starts at the first sample; between samples L and Y are joined by straight lines.
-/// Source: Cincotta & Simó (2000); along a symplectic map, Goździewski, Breiter & Borczyk (2008).
-#[derive(Clone, Copy)]
-struct Sums<R> {
-    metric: R,
-    taken: R,
-    first: R,
-    last: R,
-    sum: R,
-    y: R,
-    y_sum: R,
-    samples: R,
-}
-
-impl<R: Real> Sums<R> {
-    const SLOTS: [Global; 7] = [
-        Global::LogTaken,
-        Global::LogFirst,
-        Global::LogLast,
-        Global::LogSum,
-        Global::Y,
-        Global::YSum,
-        Global::Samples,
-    ];
-
-    #[inline(always)]
-    fn read(block: &Block) -> Sums<R> {
-        let [taken, first, last, sum, y, y_sum, samples] =
-            Self::SLOTS.map(|g| R::load(block.slot(g as usize)));
-        let metric = R::load(block.slot(Global::Metric as usize));
-        Sums { metric, taken, first, last, sum, y, y_sum, samples }
-    }
-
-    #[inline(always)]
-    fn write(self, block: &mut Block) {
-        let numbers = [self.taken, self.first, self.last, self.sum, self.y, self.y_sum, self.samples];
-        for (global, number) in Self::SLOTS.into_iter().zip(numbers) {
-            number.store(block.slot_mut(global as usize));
-        }
-    }
-
-    #[inline(always)]
-    fn sample(&mut self, bodies: &[Body<R>]) {
-        let zero = R::splat(0.0);
-        let half = R::splat(0.5);
-        let mut pos2 = zero;
-        let mut vel2 = zero;
-        for b in bodies {
-            for k in 0..3 {
-                pos2 = b.d_pos[k].mul_add(b.d_pos[k], pos2);
-                vel2 = b.d_vel[k].mul_add(b.d_vel[k], vel2);
-            }
-        }
-        let log = half * ln(self.metric.mul_add(vel2, pos2)) + self.taken;
-        let at_start = self.samples.lt(half);
-        self.first = R::select(at_start, log, self.first);
-        let log = log - self.first;
-        let time = R::select(at_start, R::splat(1.0), self.samples);
-        self.sum = half.mul_add(log + self.last, self.sum);
-        let y = R::splat(2.0) * (log - self.sum / time);
-        self.y_sum = half.mul_add(y + self.y, self.y_sum);
-        self.y = y;
-        self.last = log;
-        self.samples = self.samples + R::splat(1.0);
-    }
 }
 
 /// One sample of a block of one lane outside the kernel.
@@ -251,6 +203,29 @@ fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
     }
     for (p, pair) in pairs.iter_mut().enumerate() {
         *pair = R::load(block.slot(block.pair_slot(p)));
+    }
+}
+
+/// Low parts; none where `low` is empty.
+#[inline(always)]
+fn read_low<R: Real>(block: &Block, low: &mut [Low<R>]) {
+    for (p, low) in low.iter_mut().enumerate() {
+        for k in 0..3 {
+            low.pos[k] = R::load(block.slot(block.low_slot(p, k)));
+            low.vel[k] = R::load(block.slot(block.low_slot(p, 3 + k)));
+        }
+    }
+}
+
+#[inline(always)]
+fn write_low<R: Real>(block: &mut Block, low: &[Low<R>]) {
+    for (p, low) in low.iter().enumerate() {
+        for k in 0..3 {
+            for (part, number) in [(k, low.pos[k]), (3 + k, low.vel[k])] {
+                let slot = block.low_slot(p, part);
+                number.store(block.slot_mut(slot));
+            }
+        }
     }
 }
 
@@ -338,8 +313,9 @@ fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
         drift::<R, false, false>(&mut bodies, &mut midway, h * R::splat(*a), active);
         let length = h * R::splat(*b);
         if JACOBI {
-            jacobi::kick::<R, false, true>(
+            jacobi::kick::<R, false, true, false>(
                 &mut bodies,
+                &mut [],
                 &mut relative,
                 &mut pairs,
                 star_gm,

@@ -4,51 +4,12 @@
 //! positions and barycentric velocities; inside, a block holds them or Jacobi coordinates.
 
 use super::coordinates::Coordinates;
+use super::slots::{
+    D_POS, D_VEL, FAR2, GLOBALS, GM, Global, MU, NEAR2, PER_LOW, PER_PLANET, POS, SATELLITE, VEL,
+};
 use super::{Growth, StarTerms, State, Tangent, jacobi};
 use crate::lanes::WIDTH;
 use crate::num::{Kept, KeptReader};
-
-/// Per-lane numbers that are not of a planet.
-#[derive(Clone, Copy, Debug)]
-pub(super) enum Global {
-    StarGm,
-    Step,
-    /// 1 where the lane is in use.
-    Active,
-    /// Square of the time that makes velocities comparable with positions in the length of the tangent vector.
-    Metric,
-    /// What rescaling has taken out of the logarithm of that length.
-    LogTaken,
-    /// Logarithm at the first sample.
-    LogFirst,
-    LogLast,
-    /// ∫ (ln|δ| − ln|δ₀|) dt, Y and ∫ Y dt, in samples.
-    LogSum,
-    Y,
-    YSum,
-    Samples,
-    /// The star's terms.
-    Relativity,
-    Oblateness,
-    PoleX,
-    PoleY,
-    PoleZ,
-}
-
-pub(super) const GLOBALS: usize = 16;
-pub(super) const PER_PLANET: usize = 17;
-
-/// Where in a planet's numbers each begins.
-pub(super) const GM: usize = 0;
-pub(super) const POS: usize = 1;
-pub(super) const VEL: usize = 4;
-pub(super) const D_POS: usize = 7;
-pub(super) const D_VEL: usize = 10;
-pub(super) const NEAR2: usize = 13;
-pub(super) const FAR2: usize = 14;
-/// Mass parameter of its Kepler motion.
-pub(super) const MU: usize = 15;
-pub(super) const SATELLITE: usize = 16;
 
 /// Up to eight configurations with the same number of planets.
 #[derive(Clone, Debug)]
@@ -61,6 +22,7 @@ pub struct Block {
     /// How many places can hold a body with mass; the others are massless (heliocentric only).
     pulling: usize,
     star_terms: bool,
+    compensated: bool,
     data: Vec<f64>,
 }
 
@@ -83,7 +45,8 @@ impl Block {
         let slots = GLOBALS + planets * PER_PLANET + pairs(pulling, planets);
         let orders = vec![(0..planets).collect(); width];
         let data = vec![0.0; slots * width];
-        let mut block = Block { width, planets, coordinates, orders, pulling, star_terms: false, data };
+        let (star_terms, compensated) = (false, false);
+        let mut block = Block { width, planets, coordinates, orders, pulling, star_terms, compensated, data };
         let idle = State {
             star_gm: 1.0,
             gm: vec![0.0; planets],
@@ -96,6 +59,21 @@ impl Block {
             block.retire(lane);
         }
         block
+    }
+
+    /// The block with compensated sums: each position and velocity has a low part that keeps what rounding cuts off, so
+    /// that rounding errors of very long runs grow more slowly. Costs some time; its bits are others.
+    #[must_use]
+    pub fn compensated(mut self) -> Block {
+        if !self.compensated {
+            self.data.resize(self.data.len() + self.planets * PER_LOW * self.width, 0.0);
+        }
+        self.compensated = true;
+        self
+    }
+
+    pub fn is_compensated(&self) -> bool {
+        self.compensated
     }
 
     pub fn width(&self) -> usize {
@@ -210,6 +188,10 @@ impl Block {
                 for axis in 0..3 {
                     self.set_planet(k, field + axis, lane, from[k][axis]);
                 }
+            }
+            for part in 0..if self.compensated { PER_LOW } else { 0 } {
+                let at = self.low_slot(k, part) * self.width + lane;
+                self.data[at] = 0.0;
             }
         }
     }
@@ -347,6 +329,10 @@ impl Block {
 
     pub(super) fn pair_slot(&self, pair: usize) -> usize {
         GLOBALS + self.planets * PER_PLANET + pair
+    }
+
+    pub(super) fn low_slot(&self, planet: usize, part: usize) -> usize {
+        GLOBALS + self.planets * PER_PLANET + self.pairs() + planet * PER_LOW + part
     }
 
     fn get(&self, global: Global, lane: usize) -> f64 {

@@ -7,8 +7,8 @@
 
 use super::State;
 use super::kick::Beside;
-use crate::kepler::Body;
-use crate::lanes::Real;
+use crate::kepler::{Body, Low};
+use crate::lanes::{Real, add_keeping};
 
 /// What the kick needs of a body beside its Jacobi coordinates.
 #[derive(Clone, Copy)]
@@ -57,10 +57,12 @@ fn tidal<R: Real>(x: &[R; 3], dx: &[R; 3], inv2: R) -> [R; 3] {
 /// Runs B for the time `h`; with `TANGENT` for the tangent vector too; `pairs` and `window` as for the heliocentric kick.
 ///
 /// Pair forces are computed once per pair in star-centred positions, carried to Jacobi accelerations
-/// aₖ − A₍ₖ₋₁₎ (A the acceleration of the centre of mass inside), and the Kepler pull is added back.
+/// aₖ − A₍ₖ₋₁₎ (A the acceleration of the centre of mass inside), and the Kepler pull is added back. With `LOW` velocities
+/// are sums of two parts, of which `low` holds the lower.
 #[inline(always)]
-pub fn kick<R: Real, const TANGENT: bool, const BESIDE: bool>(
+pub fn kick<R: Real, const TANGENT: bool, const BESIDE: bool, const LOW: bool>(
     bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
     relative: &mut [Relative<R>],
     pairs: &mut [R],
     star_gm: R,
@@ -76,7 +78,7 @@ pub fn kick<R: Real, const TANGENT: bool, const BESIDE: bool>(
     } else {
         ([R::splat(0.0); 3], [R::splat(0.0); 3])
     };
-    apply::<R, TANGENT>(bodies, relative, star_gm, reaction, h);
+    apply::<R, TANGENT, LOW>(bodies, low, relative, star_gm, reaction, h);
 }
 
 /// Star-centred positions and velocities: the Jacobi ones plus the offsets of the centres of mass inside.
@@ -172,8 +174,9 @@ fn star_pull<R: Real, const TANGENT: bool>(
 /// The star's pairs (but for the innermost, which its Kepler motion holds whole), then from accelerations of bodies to
 /// those of Jacobi coordinates.
 #[inline(always)]
-fn apply<R: Real, const TANGENT: bool>(
+fn apply<R: Real, const TANGENT: bool, const LOW: bool>(
     bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
     relative: &mut [Relative<R>],
     star_gm: R,
     reaction: ([R; 3], [R; 3]),
@@ -223,7 +226,11 @@ fn apply<R: Real, const TANGENT: bool>(
             }
         }
         for k in 0..3 {
-            b.vel[k] = h.mul_add(a[k], b.vel[k]);
+            if LOW {
+                add_keeping(&mut b.vel[k], &mut low[i].vel[k], h * a[k]);
+            } else {
+                b.vel[k] = h.mul_add(a[k], b.vel[k]);
+            }
             if TANGENT {
                 b.d_vel[k] = h.mul_add(da[k], b.d_vel[k]);
             }

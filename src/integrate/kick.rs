@@ -1,8 +1,8 @@
 //! B: the planets' pull on one another and the jump from the star's motion about the centre of mass.
 
 use super::star_terms::Terms;
-use crate::kepler::Body;
-use crate::lanes::Real;
+use crate::kepler::{Body, Low};
+use crate::lanes::{Real, add_keeping};
 
 /// Runs B for the time `h`; with `TANGENT` for the tangent vector too.
 ///
@@ -23,20 +23,68 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool, const BESIDE: bool>
     h: R,
     window: R,
 ) {
+    kick_keeping::<R, TANGENT, WATCH, BESIDE, false>(
+        bodies,
+        &mut [],
+        pulling,
+        pairs,
+        star_gm,
+        beside,
+        h,
+        window,
+    );
+}
+
+/// [`kick`]; with `LOW` positions and velocities are sums of two parts, of which `low` holds the lower. What a body
+/// gathers from all others is added once.
+#[inline(always)]
+pub(super) fn kick_keeping<
+    R: Real,
+    const TANGENT: bool,
+    const WATCH: bool,
+    const BESIDE: bool,
+    const LOW: bool,
+>(
+    bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
+    pulling: usize,
+    pairs: &mut [R],
+    star_gm: R,
+    beside: &Beside<'_, R>,
+    h: R,
+    window: R,
+) {
     if BESIDE {
         let half = h * R::splat(0.5);
         for part in 0..2 {
-            jump::<R, TANGENT>(&mut *bodies, pulling, star_gm, half);
+            jump::<R, TANGENT, LOW>(&mut *bodies, low, pulling, star_gm, half);
             if part == 0 {
-                pull_pairs::<R, TANGENT, WATCH>(bodies, pulling, pairs, h, window);
+                pull_pairs::<R, TANGENT, WATCH, LOW>(bodies, low, pulling, pairs, h, window);
                 if beside.acting {
-                    star_pull::<R, TANGENT>(bodies, beside, h);
+                    star_pull::<R, TANGENT, LOW>(bodies, low, beside, h);
+                }
+                if LOW {
+                    add_gathered(bodies, low);
                 }
             }
         }
     } else {
-        jump::<R, TANGENT>(bodies, pulling, star_gm, h);
-        pull_pairs::<R, TANGENT, WATCH>(bodies, pulling, pairs, h, window);
+        jump::<R, TANGENT, LOW>(bodies, low, pulling, star_gm, h);
+        pull_pairs::<R, TANGENT, WATCH, LOW>(bodies, low, pulling, pairs, h, window);
+        if LOW {
+            add_gathered(bodies, low);
+        }
+    }
+}
+
+/// Adds what the kick has gathered to the velocities.
+#[inline(always)]
+fn add_gathered<R: Real>(bodies: &mut [Body<R>], low: &mut [Low<R>]) {
+    for (b, low) in bodies.iter_mut().zip(low) {
+        for k in 0..3 {
+            add_keeping(&mut b.vel[k], &mut low.vel[k], low.gathered[k]);
+            low.gathered[k] = R::splat(0.0);
+        }
     }
 }
 
@@ -59,7 +107,13 @@ impl<R: Real> Beside<'_, R> {
 }
 
 #[inline(always)]
-fn jump<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], pulling: usize, star_gm: R, h: R) {
+fn jump<R: Real, const TANGENT: bool, const LOW: bool>(
+    bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
+    pulling: usize,
+    star_gm: R,
+    h: R,
+) {
     let zero = R::splat(0.0);
     let share = h / star_gm;
     let mut shift = [zero; 3];
@@ -73,9 +127,13 @@ fn jump<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], pulling: usize, st
             }
         }
     }
-    for b in bodies.iter_mut() {
+    for (i, b) in bodies.iter_mut().enumerate() {
         for k in 0..3 {
-            b.pos[k] = b.pos[k] + shift[k];
+            if LOW {
+                add_keeping(&mut b.pos[k], &mut low[i].pos[k], shift[k]);
+            } else {
+                b.pos[k] = b.pos[k] + shift[k];
+            }
             if TANGENT {
                 b.d_pos[k] = b.d_pos[k] + d_shift[k];
             }
@@ -84,11 +142,20 @@ fn jump<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], pulling: usize, st
 }
 
 #[inline(always)]
-fn star_pull<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], beside: &Beside<'_, R>, h: R) {
-    for (b, satellite) in bodies.iter_mut().zip(beside.satellites) {
+fn star_pull<R: Real, const TANGENT: bool, const LOW: bool>(
+    bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
+    beside: &Beside<'_, R>,
+    h: R,
+) {
+    for (i, (b, satellite)) in bodies.iter_mut().zip(beside.satellites).enumerate() {
         let (a, da) = beside.terms.pull::<TANGENT>(*satellite, &b.pos, &b.d_pos);
         for k in 0..3 {
-            b.vel[k] = h.mul_add(a[k], b.vel[k]);
+            if LOW {
+                low[i].gathered[k] = h.mul_add(a[k], low[i].gathered[k]);
+            } else {
+                b.vel[k] = h.mul_add(a[k], b.vel[k]);
+            }
             if TANGENT {
                 b.d_vel[k] = h.mul_add(da[k], b.d_vel[k]);
             }
@@ -97,8 +164,9 @@ fn star_pull<R: Real, const TANGENT: bool>(bodies: &mut [Body<R>], beside: &Besi
 }
 
 #[inline(always)]
-fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
+fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool, const LOW: bool>(
     bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
     pulling: usize,
     pairs: &mut [R],
     h: R,
@@ -111,7 +179,8 @@ fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
         let (front, others) = bodies.split_at_mut(i + 1);
         let me = &mut front[i];
         let (mut vel, mut d_vel) = (me.vel, me.d_vel);
-        for b in others {
+        let mut gathered = if LOW { low[i].gathered } else { vel };
+        for (j, b) in others.iter_mut().enumerate() {
             let mut d = [zero; 3];
             for k in 0..3 {
                 d[k] = b.pos[k] - me.pos[k];
@@ -132,8 +201,14 @@ fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
             let on_me = strength * b.gm;
             let on_b = strength * me.gm;
             for k in 0..3 {
-                vel[k] = d[k].mul_add(on_me, vel[k]);
-                b.vel[k] = d[k].neg_mul_add(on_b, b.vel[k]);
+                if LOW {
+                    let theirs = &mut low[i + 1 + j].gathered[k];
+                    gathered[k] = d[k].mul_add(on_me, gathered[k]);
+                    *theirs = d[k].neg_mul_add(on_b, *theirs);
+                } else {
+                    vel[k] = d[k].mul_add(on_me, vel[k]);
+                    b.vel[k] = d[k].neg_mul_add(on_b, b.vel[k]);
+                }
             }
             if TANGENT {
                 let mut dd = [zero; 3];
@@ -150,6 +225,9 @@ fn pull_pairs<R: Real, const TANGENT: bool, const WATCH: bool>(
             }
         }
         (me.vel, me.d_vel) = (vel, d_vel);
+        if LOW {
+            low[i].gathered = gathered;
+        }
     }
 }
 

@@ -5,7 +5,7 @@
 
 use super::stumpff::Gs;
 use super::universal::{self, Orbit, Solved};
-use crate::lanes::{Mask, Real, Twin};
+use crate::lanes::{Mask, Real, Twin, add_keeping};
 
 /// A body on its way round a centre. Lengths au, times day, `mu` = G × mass of the centre in au³ day⁻².
 #[derive(Clone, Copy)]
@@ -37,6 +37,22 @@ impl<R: Real> Body<R> {
             near2: R::splat(f64::MAX),
             far2: zero,
         }
+    }
+}
+
+/// What rounding has cut off a body's position and velocity, and room for the change of velocity that a kick gathers.
+#[derive(Clone, Copy)]
+pub struct Low<R> {
+    pub pos: [R; 3],
+    pub vel: [R; 3],
+    pub gathered: [R; 3],
+}
+
+impl<R: Real> Low<R> {
+    #[inline(always)]
+    pub fn none() -> Low<R> {
+        let none = [R::splat(0.0); 3];
+        Low { pos: none, vel: none, gathered: none }
     }
 }
 
@@ -78,6 +94,18 @@ fn dot<R: Real>(a: &[R; 3], b: &[R; 3]) -> R {
 #[inline(always)]
 pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
     bodies: &mut [Body<R>],
+    midway: &mut [Midway<R>],
+    h: R,
+    active: R::Mask,
+) {
+    drift_keeping::<R, TANGENT, WATCH, false>(bodies, &mut [], midway, h, active);
+}
+
+/// [`drift`]; with `LOW` positions and velocities are sums of two parts, of which `low` holds the lower.
+#[inline(always)]
+pub fn drift_keeping<R: Real, const TANGENT: bool, const WATCH: bool, const LOW: bool>(
+    bodies: &mut [Body<R>],
+    low: &mut [Low<R>],
     midway: &mut [Midway<R>],
     h: R,
     active: R::Mask,
@@ -125,7 +153,17 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
         }
     }
     for k in 0..count {
-        update::<R, TANGENT>(&mut bodies[k], &midway[k]);
+        let (to_pos, to_vel) = update::<R, TANGENT>(&mut bodies[k], &midway[k]);
+        let b = &mut bodies[k];
+        for axis in 0..3 {
+            if LOW {
+                add_keeping(&mut b.pos[axis], &mut low[k].pos[axis], to_pos[axis]);
+                add_keeping(&mut b.vel[axis], &mut low[k].vel[axis], to_vel[axis]);
+            } else {
+                b.pos[axis] = b.pos[axis] + to_pos[axis];
+                b.vel[axis] = b.vel[axis] + to_vel[axis];
+            }
+        }
     }
 }
 
@@ -138,8 +176,9 @@ fn solve_two<R: Real>(a: &mut Midway<R>, b: &mut Midway<R>, h: R) {
     (a.good, b.good) = (good.0, good.1);
 }
 
+/// Moves the tangent vector and gives what is to be added to position and velocity.
 #[inline(always)]
-fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
+fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) -> ([R; 3], [R; 3]) {
     let Orbit { mu, r0, eta, beta, zeta } = m.orbit;
     let Solved { s, g, h_by_beta } = m.solved;
     let inv_r0 = m.inv_r0;
@@ -154,12 +193,13 @@ fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
     let f_dot = -(mu_by_both * g.g1);
     let g_dot_less_1 = -(mu_by_r * g.g2);
     let (pos, vel) = (b.pos, b.vel);
+    let (mut to_pos, mut to_vel) = (pos, vel);
     for k in 0..3 {
-        b.pos[k] = pos[k] + f_less_1.mul_add(pos[k], g_time * vel[k]);
-        b.vel[k] = vel[k] + f_dot.mul_add(pos[k], g_dot_less_1 * vel[k]);
+        to_pos[k] = f_less_1.mul_add(pos[k], g_time * vel[k]);
+        to_vel[k] = f_dot.mul_add(pos[k], g_dot_less_1 * vel[k]);
     }
     if !TANGENT {
-        return;
+        return (to_pos, to_vel);
     }
     let half = R::splat(0.5);
     let (d_pos, d_vel) = (b.d_pos, b.d_vel);
@@ -192,4 +232,5 @@ fn update<R: Real, const TANGENT: bool>(b: &mut Body<R>, m: &Midway<R>) {
         let of_coefficients = d_f_dot.mul_add(pos[k], d_g_dot * vel[k]);
         b.d_vel[k] = d_vel[k] + f_dot.mul_add(d_pos[k], g_dot_less_1.mul_add(d_vel[k], of_coefficients));
     }
+    (to_pos, to_vel)
 }

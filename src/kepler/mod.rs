@@ -11,4 +11,4 @@ pub use anomaly::{
     pericentre_passage_day, sinh_x_minus_x, true_from_barker, true_from_eccentric, true_from_hyperbolic,
     true_from_mean, x_minus_sin_x,
 };
-pub use drift::{Body, Midway, drift};
+pub use drift::{Body, Low, Midway, drift, drift_keeping};

@@ -81,6 +81,18 @@ pub trait Piece {
     fn run(self) -> Self::Output;
 }
 
+/// Adds `term` to the sum `high + low`; `low` keeps what rounding cuts off `high`.
+///
+/// The two-sum without a condition on sizes, Møller (1965), Knuth (1969); with `term` 0 no bit changes.
+#[inline(always)]
+pub fn add_keeping<R: Real>(high: &mut R, low: &mut R, term: R) {
+    let term = term + *low;
+    let sum = *high + term;
+    let added = sum - *high;
+    *low = (*high - (sum - added)) + (term - added);
+    *high = sum;
+}
+
 /// Natural logarithm of a positive normal number from exact operations only, within 2 units in the last place.
 ///
 /// ln x = e ln 2 + 2 artanh((m − 1)/(m + 1)), x = m 2^e with 1/√2 ≤ m < √2; ten terms of the series.
