@@ -11,7 +11,7 @@ pub fn assess(configuration: &Configuration, plan: &Plan) -> Assessment {
     let mut feed = Some((0u64, configuration.clone()));
     let mut answer = None;
     run_lanes(
-        1,
+        Some(1),
         plan,
         || feed.take(),
         |_, assessment| {
@@ -44,20 +44,22 @@ pub fn run_batch(
     next: impl FnMut() -> Option<(u64, Configuration)>,
     done: impl FnMut(u64, Assessment) -> bool,
 ) -> BatchWork {
-    run_lanes(Level::chosen().width(), plan, next, done)
+    run_lanes(None, plan, next, done)
 }
 
 /// A cell and its number, in its lane.
 type Seat = Option<(u64, Cell)>;
 
 fn run_lanes(
-    width: usize,
+    width: Option<usize>,
     plan: &Plan,
     mut next: impl FnMut() -> Option<(u64, Configuration)>,
     mut done: impl FnMut(u64, Assessment) -> bool,
 ) -> BatchWork {
     let mut work = BatchWork::default();
     let Some(first) = next() else { return work };
+    let level = Level::chosen();
+    let width = width.unwrap_or(level.width() * level.groups(first.1.planets.len()));
     let mut block = Block::with_massless(plan.coordinates, width, first.1.planets.len(), plan.massless);
     let mut waiting = Some(first);
     let mut seats: Vec<Seat> = (0..width).map(|_| None).collect();

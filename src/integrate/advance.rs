@@ -2,14 +2,14 @@
 
 use super::Block;
 use super::coordinates::Coordinates;
+use super::exchange::{global, read, read_beside, read_low, write, write_low, write_watch};
 use super::jacobi::{self, Relative};
-use super::kick::{Beside, kick, kick_keeping};
+use super::kick::{kick, kick_keeping};
 use super::megno::Sums;
-use super::slots::{D_POS, D_VEL, FAR2, GM, Global, MU, NEAR2, POS, SATELLITE, VEL};
+use super::slots::Global;
 use super::splitting::Scheme;
-use super::star_terms::Terms;
 use crate::kepler::{Body, Low, Midway, drift, drift_keeping};
-use crate::lanes::{Job, Real, WIDTH, run_one, run_wide};
+use crate::lanes::{Job, Real, groups_at_once, run_one, run_wide};
 
 /// The tangent vector's length is sampled every so many steps; blocks are whole multiples of it.
 pub const SAMPLE_EVERY: usize = 4;
@@ -26,7 +26,7 @@ pub struct Advance<'a> {
 /// Advances every lane by `steps` of its own step.
 ///
 /// Successive drifts are merged; the block is synchronised at the end. Lanes do not influence each other and have
-/// the same bits whether the block is 1 or 8 wide.
+/// the same bits whatever the width of the block.
 pub fn advance(call: Advance<'_>) {
     if call.steps == 0 {
         return;
@@ -40,30 +40,51 @@ pub fn advance(call: Advance<'_>) {
 impl Job for Advance<'_> {
     type Output = ();
     #[inline(always)]
-    fn run<R: Real>(self) {
+    fn run<R: Real>(mut self) {
+        let block = &self.block;
+        let plain = block.coordinates() == Coordinates::Heliocentric
+            && block.pulling() == block.planets()
+            && !block.has_star_terms()
+            && !block.is_compensated();
+        let planets = block.planets();
+        let several = if R::IN_GROUPS { groups_at_once(planets) } else { 1 };
         // The commonest counts are compiled as fixed numbers, which lets the compiler keep more in registers.
-        let plain = self.block.pulling() == self.block.planets() && !self.block.has_star_terms();
-        if self.block.is_compensated() {
-            return match self.block.coordinates() {
-                Coordinates::Heliocentric => any_count::<R, true, false, true, true>(self),
-                Coordinates::Jacobi => any_count::<R, true, true, true, true>(self),
-            };
+        let common = plain && self.tangent && block.width().is_multiple_of(several * R::LANES);
+        for from in (0..block.width()).step_by(if common { several * R::LANES } else { R::LANES }) {
+            match (common, planets) {
+                (true, 2) if R::IN_GROUPS => fixed::<R, 2, 3, 6, 3>(&mut self, from),
+                (true, 3) if R::IN_GROUPS => fixed::<R, 3, 2, 6, 6>(&mut self, from),
+                (true, 2) => fixed::<R, 2, 1, 2, 1>(&mut self, from),
+                (true, 3) => fixed::<R, 3, 1, 3, 3>(&mut self, from),
+                _ => one_group::<R>(&mut self, plain, from),
+            }
         }
-        match (self.block.coordinates(), plain, self.block.planets(), self.tangent) {
-            (Coordinates::Heliocentric, true, 2, true) => fixed::<R, 2, 1>(self),
-            (Coordinates::Heliocentric, true, 3, true) => fixed::<R, 3, 3>(self),
-            (Coordinates::Heliocentric, true, _, true) => any_count::<R, true, false, false, false>(self),
-            (Coordinates::Heliocentric, true, _, false) => any_count::<R, false, false, false, false>(self),
-            // The rarer kinds always carry the tangent vector: fewer kernels to compile.
-            (Coordinates::Heliocentric, false, _, _) => any_count::<R, true, false, true, false>(self),
-            (Coordinates::Jacobi, _, _, _) => any_count::<R, true, true, true, false>(self),
+    }
+}
+
+/// Any count of planets and any kind of block, one group of lanes.
+#[inline(always)]
+fn one_group<R: Real>(call: &mut Advance<'_>, plain: bool, from: usize) {
+    let compensated = call.block.is_compensated();
+    match (call.block.coordinates(), compensated, plain, call.tangent) {
+        (Coordinates::Heliocentric, false, true, true) => {
+            any_count::<R, true, false, false, false>(call, from);
         }
+        (Coordinates::Heliocentric, false, true, false) => {
+            any_count::<R, false, false, false, false>(call, from);
+        }
+        // The rarer kinds always carry the tangent vector: fewer kernels to compile.
+        (Coordinates::Heliocentric, false, false, _) => any_count::<R, true, false, true, false>(call, from),
+        (Coordinates::Heliocentric, true, _, _) => any_count::<R, true, false, true, true>(call, from),
+        (Coordinates::Jacobi, false, _, _) => any_count::<R, true, true, true, false>(call, from),
+        (Coordinates::Jacobi, true, _, _) => any_count::<R, true, true, true, true>(call, from),
     }
 }
 
 #[inline(always)]
 fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool, const LOW: bool>(
-    call: Advance<'_>,
+    call: &mut Advance<'_>,
+    from: usize,
 ) {
     let n = call.block.planets();
     let mut bodies = vec![Body::<R>::still(); n];
@@ -80,13 +101,18 @@ fn any_count<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: boo
         relative: &mut relative,
         satellites: &mut satellites,
     };
-    steps::<R, TANGENT, JACOBI, BESIDE, LOW>(call, rooms);
+    steps::<R, TANGENT, JACOBI, BESIDE, LOW, 1>(call, from, rooms);
 }
 
+/// `N` planets with `PAIRS` / `GROUPS` pairs in each of `GROUPS` groups of lanes: `BODIES` bodies.
 #[inline(always)]
-fn fixed<R: Real, const N: usize, const PAIRS: usize>(call: Advance<'_>) {
-    let mut bodies = [Body::<R>::still(); N];
-    let mut midway = [Midway::<R>::blank(); N];
+fn fixed<R: Real, const N: usize, const GROUPS: usize, const BODIES: usize, const PAIRS: usize>(
+    call: &mut Advance<'_>,
+    from: usize,
+) {
+    const { assert!(N * GROUPS == BODIES && GROUPS * N * (N - 1) / 2 == PAIRS) };
+    let mut bodies = [Body::<R>::still(); BODIES];
+    let mut midway = [Midway::<R>::blank(); BODIES];
     let mut pairs = [R::splat(0.0); PAIRS];
     let rooms = Rooms {
         bodies: &mut bodies,
@@ -96,10 +122,10 @@ fn fixed<R: Real, const N: usize, const PAIRS: usize>(call: Advance<'_>) {
         relative: &mut [],
         satellites: &mut [],
     };
-    steps::<R, true, false, false, false>(call, rooms);
+    steps::<R, true, false, false, false, GROUPS>(call, from, rooms);
 }
 
-/// Where the kernel keeps its numbers.
+/// Where the kernel keeps its numbers, one group of lanes after the other.
 struct Rooms<'a, R: Real> {
     bodies: &'a mut [Body<R>],
     /// Empty without compensated sums.
@@ -110,61 +136,127 @@ struct Rooms<'a, R: Real> {
     satellites: &'a mut [R],
 }
 
+/// What one group of lanes needs beside its bodies.
+#[derive(Clone, Copy)]
+struct Own<R: Real> {
+    h: R,
+    inv_star_gm: R,
+    star_gm: R,
+    window: R,
+    active: R::Mask,
+    growth: Sums<R>,
+}
+
+impl<R: Real> Own<R> {
+    #[inline(always)]
+    fn read(block: &Block, from: usize, longest_drift: f64) -> Own<R> {
+        let star_gm: R = global(block, from, Global::StarGm);
+        let h: R = global(block, from, Global::Step);
+        Own {
+            h,
+            inv_star_gm: R::splat(1.0) / star_gm,
+            star_gm,
+            window: h.abs() * R::splat(0.5 * longest_drift),
+            active: R::splat(0.5).lt(global(block, from, Global::Active)),
+            growth: Sums::read(block, from),
+        }
+    }
+}
+
+/// `GROUPS` groups of lanes from lane `from` on; more than one only of plain heliocentric blocks.
 #[inline(always)]
-fn steps<R: Real, const TANGENT: bool, const JACOBI: bool, const BESIDE: bool, const LOW: bool>(
-    call: Advance<'_>,
+fn steps<
+    R: Real,
+    const TANGENT: bool,
+    const JACOBI: bool,
+    const BESIDE: bool,
+    const LOW: bool,
+    const GROUPS: usize,
+>(
+    call: &mut Advance<'_>,
+    from: usize,
     rooms: Rooms<'_, R>,
 ) {
     let Advance { block, scheme, steps, .. } = call;
     let Rooms { bodies, low, midway, pairs, relative, satellites } = rooms;
-    read(block, bodies, pairs);
-    read_low(block, low);
-    let beside = read_beside(block, satellites);
-    let pulling = if BESIDE { block.pulling() } else { bodies.len() };
-    let star_gm = R::load(block.slot(Global::StarGm as usize));
-    let h = R::load(block.slot(Global::Step as usize));
-    let active = R::splat(0.5).lt(R::load(block.slot(Global::Active as usize)));
-    let mut growth = Sums::<R>::read(block);
-    let window = h.abs() * R::splat(0.5 * scheme.longest_drift());
+    let (planets, pairs_each) = (bodies.len() / GROUPS, pairs.len() / GROUPS);
+    let mut own = [Own::<R>::read(block, from, scheme.longest_drift()); GROUPS];
+    for (g, own) in own.iter_mut().enumerate() {
+        let from = from + g * R::LANES;
+        *own = Own::read(block, from, scheme.longest_drift());
+        let (bodies, pairs) = (of_group(bodies, g, planets), of_group(pairs, g, pairs_each));
+        read(block, from, bodies, pairs);
+    }
+    read_low(block, from, low);
+    let beside = read_beside(block, from, satellites);
+    let pulling = if BESIDE { block.pulling() } else { planets };
     let (a, b) = (&scheme.a[..], &scheme.b[..]);
-    let kicks = steps * b.len();
+    let kicks = *steps * b.len();
     let (mut step, mut stage) = (0, 0);
+    let active = own.map(|own| own.active);
     // One place for drift and one for kick: each is a large piece of code.
     for done in 0..=kicks {
         let merged = stage == 0 && 0 < done && done < kicks;
         let length = if merged { 2.0 * a[0] } else { a[if done == kicks { b.len() } else { stage }] };
+        let mut h = [R::splat(length); GROUPS];
+        for g in 0..GROUPS {
+            h[g] = own[g].h * h[g];
+        }
         if JACOBI {
-            drift_keeping::<R, TANGENT, false, LOW>(bodies, low, midway, h * R::splat(length), active);
+            drift_keeping::<R, TANGENT, false, LOW>(bodies, low, midway, &h, &active);
         } else {
-            drift_keeping::<R, TANGENT, true, LOW>(bodies, low, midway, h * R::splat(length), active);
+            drift_keeping::<R, TANGENT, true, LOW>(bodies, low, midway, &h, &active);
         }
         if done == kicks {
             break;
         }
-        if TANGENT && stage == 0 && step % SAMPLE_EVERY == 0 {
-            growth.sample(bodies);
-        }
-        let length = h * R::splat(b[stage]);
-        if JACOBI {
-            jacobi::kick::<R, TANGENT, BESIDE, LOW>(
-                bodies, low, relative, pairs, star_gm, &beside, length, window,
-            );
-        } else {
-            kick_keeping::<R, TANGENT, true, BESIDE, LOW>(
-                bodies, low, pulling, pairs, star_gm, &beside, length, window,
-            );
+        let sampled = TANGENT && stage == 0 && step % SAMPLE_EVERY == 0;
+        for (g, own) in own.iter_mut().enumerate() {
+            let (bodies, pairs) = (of_group(bodies, g, planets), of_group(pairs, g, pairs_each));
+            if sampled {
+                own.growth.sample(bodies);
+            }
+            let h = own.h * R::splat(b[stage]);
+            if JACOBI {
+                let star_gm = own.star_gm;
+                jacobi::kick::<R, TANGENT, BESIDE, LOW>(
+                    bodies, low, relative, pairs, star_gm, &beside, h, own.window,
+                );
+            } else {
+                let inv_star_gm = own.inv_star_gm;
+                kick_keeping::<R, TANGENT, true, BESIDE, LOW>(
+                    bodies,
+                    low,
+                    pulling,
+                    pairs,
+                    inv_star_gm,
+                    &beside,
+                    h,
+                    own.window,
+                );
+            }
         }
         stage += 1;
         if stage == b.len() {
             (step, stage) = (step + 1, 0);
         }
     }
-    if TANGENT {
-        growth.write(block);
+    for (g, own) in own.into_iter().enumerate() {
+        let from = from + g * R::LANES;
+        if TANGENT {
+            own.growth.write(block, from);
+        }
+        let (bodies, pairs) = (of_group(bodies, g, planets), of_group(pairs, g, pairs_each));
+        write(block, from, bodies);
+        write_watch(block, from, bodies, pairs);
     }
-    write(block, bodies);
-    write_low(block, low);
-    write_watch(block, bodies, pairs);
+    write_low(block, from, low);
+}
+
+/// The numbers of one group.
+#[inline(always)]
+fn of_group<T>(all: &mut [T], group: usize, each: usize) -> &mut [T] {
+    &mut all[group * each..(group + 1) * each]
 }
 
 /// One sample of a block of one lane outside the kernel.
@@ -176,104 +268,14 @@ pub(super) fn sample(block: &mut Block) {
         fn run<R: Real>(self) {
             let mut bodies = vec![Body::<R>::still(); self.0.planets()];
             let mut pairs = vec![R::splat(0.0); self.0.pairs()];
-            read(self.0, &mut bodies, &mut pairs);
-            let mut growth = Sums::<R>::read(self.0);
+            read(self.0, 0, &mut bodies, &mut pairs);
+            let mut growth = Sums::<R>::read(self.0, 0);
             growth.sample(&bodies);
-            growth.write(self.0);
+            growth.write(self.0, 0);
         }
     }
     assert_eq!(block.width(), 1, "only a block of one lane is sampled from outside");
     run_one(Sample(block));
-}
-
-#[inline(always)]
-fn read<R: Real>(block: &Block, bodies: &mut [Body<R>], pairs: &mut [R]) {
-    for (p, body) in bodies.iter_mut().enumerate() {
-        let get = |field: usize| R::load(block.slot(block.planet_slot(p, field)));
-        body.mu = get(MU);
-        body.gm = get(GM);
-        for k in 0..3 {
-            body.pos[k] = get(POS + k);
-            body.vel[k] = get(VEL + k);
-            body.d_pos[k] = get(D_POS + k);
-            body.d_vel[k] = get(D_VEL + k);
-        }
-        body.near2 = get(NEAR2);
-        body.far2 = get(FAR2);
-    }
-    for (p, pair) in pairs.iter_mut().enumerate() {
-        *pair = R::load(block.slot(block.pair_slot(p)));
-    }
-}
-
-/// Low parts; none where `low` is empty.
-#[inline(always)]
-fn read_low<R: Real>(block: &Block, low: &mut [Low<R>]) {
-    for (p, low) in low.iter_mut().enumerate() {
-        for k in 0..3 {
-            low.pos[k] = R::load(block.slot(block.low_slot(p, k)));
-            low.vel[k] = R::load(block.slot(block.low_slot(p, 3 + k)));
-        }
-    }
-}
-
-#[inline(always)]
-fn write_low<R: Real>(block: &mut Block, low: &[Low<R>]) {
-    for (p, low) in low.iter().enumerate() {
-        for k in 0..3 {
-            for (part, number) in [(k, low.pos[k]), (3 + k, low.vel[k])] {
-                let slot = block.low_slot(p, part);
-                number.store(block.slot_mut(slot));
-            }
-        }
-    }
-}
-
-/// The star's terms; none where `satellites` is empty.
-#[inline(always)]
-fn read_beside<'a, R: Real>(block: &Block, satellites: &'a mut [R]) -> Beside<'a, R> {
-    let get = |global: Global| R::load(block.slot(global as usize));
-    for (p, satellite) in satellites.iter_mut().enumerate() {
-        *satellite = R::load(block.slot(block.planet_slot(p, SATELLITE)));
-    }
-    let terms = Terms {
-        relativity: get(Global::Relativity),
-        oblateness: get(Global::Oblateness),
-        pole: [get(Global::PoleX), get(Global::PoleY), get(Global::PoleZ)],
-    };
-    Beside { acting: block.has_star_terms(), terms, satellites }
-}
-
-/// Writes positions, velocities and the tangent vector back.
-#[inline(always)]
-fn write<R: Real>(block: &mut Block, bodies: &[Body<R>]) {
-    let width = R::LANES;
-    debug_assert!(width == 1 || width == WIDTH);
-    for (p, body) in bodies.iter().enumerate() {
-        for k in 0..3 {
-            for (field, number) in
-                [(POS, body.pos[k]), (VEL, body.vel[k]), (D_POS, body.d_pos[k]), (D_VEL, body.d_vel[k])]
-            {
-                let slot = block.planet_slot(p, field + k);
-                number.store(block.slot_mut(slot));
-            }
-        }
-    }
-}
-
-/// Writes the distances seen back.
-#[inline(always)]
-fn write_watch<R: Real>(block: &mut Block, bodies: &[Body<R>], pairs: &[R]) {
-    for (p, body) in bodies.iter().enumerate() {
-        for (field, number) in [(NEAR2, body.near2), (FAR2, body.far2)] {
-            let slot = block.planet_slot(p, field);
-            number.store(block.slot_mut(slot));
-        }
-    }
-    for (p, pair) in pairs.iter().enumerate() {
-        let slot = block.pair_slot(p);
-        pair.store(block.slot_mut(slot));
-    }
 }
 
 /// Runs a list of (drift, kick) pairs, in steps, without tangent vector or watch.
@@ -286,16 +288,18 @@ pub(super) struct Sequence<'a> {
 impl Job for Sequence<'_> {
     type Output = ();
     #[inline(always)]
-    fn run<R: Real>(self) {
-        match self.block.coordinates() {
-            Coordinates::Heliocentric => sequence::<R, false>(self),
-            Coordinates::Jacobi => sequence::<R, true>(self),
+    fn run<R: Real>(mut self) {
+        for from in (0..self.block.width()).step_by(R::LANES) {
+            match self.block.coordinates() {
+                Coordinates::Heliocentric => sequence::<R, false>(&mut self, from),
+                Coordinates::Jacobi => sequence::<R, true>(&mut self, from),
+            }
         }
     }
 }
 
 #[inline(always)]
-fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
+fn sequence<R: Real, const JACOBI: bool>(call: &mut Sequence<'_>, from: usize) {
     let Sequence { block, stages } = call;
     let n = block.planets();
     let mut bodies = vec![Body::<R>::still(); n];
@@ -303,13 +307,13 @@ fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
     let mut pairs = vec![R::splat(0.0); block.pairs()];
     let mut satellites = vec![R::splat(0.0); n];
     let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
-    read(block, &mut bodies, &mut pairs);
-    let beside = read_beside(block, &mut satellites);
+    read(block, from, &mut bodies, &mut pairs);
+    let beside = read_beside(block, from, &mut satellites);
     let pulling = block.pulling();
-    let star_gm = R::load(block.slot(Global::StarGm as usize));
-    let h = R::load(block.slot(Global::Step as usize));
-    let active = R::splat(0.5).lt(R::load(block.slot(Global::Active as usize)));
-    for (a, b) in stages {
+    let star_gm: R = global(block, from, Global::StarGm);
+    let h: R = global(block, from, Global::Step);
+    let active = R::splat(0.5).lt(global(block, from, Global::Active));
+    for (a, b) in *stages {
         drift::<R, false, false>(&mut bodies, &mut midway, h * R::splat(*a), active);
         let length = h * R::splat(*b);
         if JACOBI {
@@ -328,7 +332,7 @@ fn sequence<R: Real, const JACOBI: bool>(call: Sequence<'_>) {
         }
     }
     // What was met on the way to other times is not part of the motion: the watch is not written.
-    write(block, &bodies);
+    write(block, from, &bodies);
 }
 
 /// Runs a [`Sequence`] at the width of its block.

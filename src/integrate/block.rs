@@ -1,4 +1,4 @@
-//! The numbers of up to eight configurations side by side, as the kernels read and write them.
+//! The numbers of several configurations side by side, as the kernels read and write them.
 //!
 //! States come and go in democratic heliocentric canonical coordinates (Duncan, Levison & Lee 1998): heliocentric
 //! positions and barycentric velocities; inside, a block holds them or Jacobi coordinates.
@@ -11,7 +11,7 @@ use super::{Growth, StarTerms, State, Tangent, jacobi};
 use crate::lanes::WIDTH;
 use crate::num::{Kept, KeptReader};
 
-/// Up to eight configurations with the same number of planets.
+/// Several configurations with the same number of planets, one in each lane.
 #[derive(Clone, Debug)]
 pub struct Block {
     width: usize,
@@ -27,7 +27,7 @@ pub struct Block {
 }
 
 impl Block {
-    /// A block in heliocentric coordinates; `width` is 1 or 8; every lane starts unused.
+    /// A block in heliocentric coordinates; `width` is 1 or a multiple of 8; every lane starts unused.
     pub fn new(width: usize, planets: usize) -> Block {
         Block::in_coordinates(Coordinates::Heliocentric, width, planets)
     }
@@ -40,7 +40,10 @@ impl Block {
     /// A block whose configurations have at least `massless` planets without mass. These feel the others but do not
     /// pull; in heliocentric coordinates they are not paired with one another.
     pub fn with_massless(coordinates: Coordinates, width: usize, planets: usize, massless: usize) -> Block {
-        assert!(width == 1 || width == WIDTH, "a block has 1 or {WIDTH} lanes, not {width}");
+        assert!(
+            width == 1 || width.is_multiple_of(WIDTH),
+            "a block has 1 lane or a multiple of {WIDTH}, not {width}"
+        );
         let pulling = if coordinates == Coordinates::Heliocentric { planets - massless } else { planets };
         let slots = GLOBALS + planets * PER_PLANET + pairs(pulling, planets);
         let orders = vec![(0..planets).collect(); width];
@@ -315,12 +318,13 @@ impl Block {
         super::advance::sample(self);
     }
 
-    pub(super) fn slot(&self, slot: usize) -> &[f64] {
-        &self.data[slot * self.width..(slot + 1) * self.width]
+    /// One number of the lanes from `from` on.
+    pub(super) fn lanes_of(&self, slot: usize, from: usize) -> &[f64] {
+        &self.data[slot * self.width + from..(slot + 1) * self.width]
     }
 
-    pub(super) fn slot_mut(&mut self, slot: usize) -> &mut [f64] {
-        &mut self.data[slot * self.width..(slot + 1) * self.width]
+    pub(super) fn lanes_of_mut(&mut self, slot: usize, from: usize) -> &mut [f64] {
+        &mut self.data[slot * self.width + from..(slot + 1) * self.width]
     }
 
     pub(super) fn planet_slot(&self, planet: usize, field: usize) -> usize {

@@ -28,7 +28,7 @@ pub fn kick<R: Real, const TANGENT: bool, const WATCH: bool, const BESIDE: bool>
         &mut [],
         pulling,
         pairs,
-        star_gm,
+        R::splat(1.0) / star_gm,
         beside,
         h,
         window,
@@ -49,7 +49,7 @@ pub(super) fn kick_keeping<
     low: &mut [Low<R>],
     pulling: usize,
     pairs: &mut [R],
-    star_gm: R,
+    inv_star_gm: R,
     beside: &Beside<'_, R>,
     h: R,
     window: R,
@@ -57,7 +57,7 @@ pub(super) fn kick_keeping<
     if BESIDE {
         let half = h * R::splat(0.5);
         for part in 0..2 {
-            jump::<R, TANGENT, LOW>(&mut *bodies, low, pulling, star_gm, half);
+            jump::<R, TANGENT, LOW>(&mut *bodies, low, pulling, inv_star_gm * half);
             if part == 0 {
                 pull_pairs::<R, TANGENT, WATCH, LOW>(bodies, low, pulling, pairs, h, window);
                 if beside.acting {
@@ -69,7 +69,7 @@ pub(super) fn kick_keeping<
             }
         }
     } else {
-        jump::<R, TANGENT, LOW>(bodies, low, pulling, star_gm, h);
+        jump::<R, TANGENT, LOW>(bodies, low, pulling, inv_star_gm * h);
         pull_pairs::<R, TANGENT, WATCH, LOW>(bodies, low, pulling, pairs, h, window);
         if LOW {
             add_gathered(bodies, low);
@@ -111,11 +111,9 @@ fn jump<R: Real, const TANGENT: bool, const LOW: bool>(
     bodies: &mut [Body<R>],
     low: &mut [Low<R>],
     pulling: usize,
-    star_gm: R,
-    h: R,
+    share: R,
 ) {
     let zero = R::splat(0.0);
-    let share = h / star_gm;
     let mut shift = [zero; 3];
     let mut d_shift = [zero; 3];
     for b in bodies[..pulling].iter() {

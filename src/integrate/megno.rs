@@ -33,18 +33,18 @@ impl<R: Real> Sums<R> {
     ];
 
     #[inline(always)]
-    pub fn read(block: &Block) -> Sums<R> {
+    pub fn read(block: &Block, from: usize) -> Sums<R> {
         let [taken, first, last, sum, y, y_sum, samples] =
-            Self::SLOTS.map(|g| R::load(block.slot(g as usize)));
-        let metric = R::load(block.slot(Global::Metric as usize));
+            Self::SLOTS.map(|g| R::load(block.lanes_of(g as usize, from)));
+        let metric = R::load(block.lanes_of(Global::Metric as usize, from));
         Sums { metric, taken, first, last, sum, y, y_sum, samples }
     }
 
     #[inline(always)]
-    pub fn write(self, block: &mut Block) {
+    pub fn write(self, block: &mut Block, from: usize) {
         let numbers = [self.taken, self.first, self.last, self.sum, self.y, self.y_sum, self.samples];
         for (global, number) in Self::SLOTS.into_iter().zip(numbers) {
-            number.store(block.slot_mut(global as usize));
+            number.store(block.lanes_of_mut(global as usize, from));
         }
     }
 

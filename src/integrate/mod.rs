@@ -8,6 +8,7 @@ mod block;
 mod conserved;
 mod coordinates;
 mod corrector;
+mod exchange;
 pub mod forces;
 mod jacobi;
 mod kick;

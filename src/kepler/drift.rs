@@ -1,11 +1,11 @@
 //! The Kepler drift of several bodies at once, with its tangent map.
 //!
-//! Staged: set-up and guess for all bodies, one series and correction for all, then the update for all, so that
-//! short independent pieces of work overlap instead of one long chain of dependent ones.
+//! Staged: set-up and guess for all bodies, then the series for all, the correction for all and so on, so that short
+//! independent pieces of work overlap instead of one long chain of dependent ones.
 
-use super::stumpff::Gs;
+use super::stumpff::{self, Gs};
 use super::universal::{self, Orbit, Solved};
-use crate::lanes::{Mask, Real, Twin, add_keeping};
+use crate::lanes::{Mask, Real, add_keeping};
 
 /// A body on its way round a centre. Lengths au, times day, `mu` = G × mass of the centre in au³ day⁻².
 #[derive(Clone, Copy)]
@@ -62,6 +62,8 @@ pub struct Midway<R: Real> {
     orbit: Orbit<R>,
     inv_r0: R,
     solved: Solved<R>,
+    /// Correction of `solved.s` that is still to be made.
+    w: R,
     good: R::Mask,
 }
 
@@ -75,6 +77,7 @@ impl<R: Real> Midway<R> {
             orbit: Orbit { mu: zero, r0: zero, eta: zero, beta: zero, zeta: zero },
             inv_r0: zero,
             solved: Solved { s: zero, g, h_by_beta: zero },
+            w: zero,
             good: zero.lt(zero),
         }
     }
@@ -98,60 +101,23 @@ pub fn drift<R: Real, const TANGENT: bool, const WATCH: bool>(
     h: R,
     active: R::Mask,
 ) {
-    drift_keeping::<R, TANGENT, WATCH, false>(bodies, &mut [], midway, h, active);
+    drift_keeping::<R, TANGENT, WATCH, false>(bodies, &mut [], midway, &[h], &[active]);
 }
 
-/// [`drift`]; with `LOW` positions and velocities are sums of two parts, of which `low` holds the lower.
+/// [`drift`] of several groups of bodies, as many in each, with a time `h` and a mask `active` for each group.
+///
+/// With `LOW` positions and velocities are sums of two parts, of which `low` holds the lower.
 #[inline(always)]
 pub fn drift_keeping<R: Real, const TANGENT: bool, const WATCH: bool, const LOW: bool>(
     bodies: &mut [Body<R>],
     low: &mut [Low<R>],
     midway: &mut [Midway<R>],
-    h: R,
-    active: R::Mask,
+    h: &[R],
+    active: &[R::Mask],
 ) {
     let count = bodies.len();
     let midway = &mut midway[..count];
-    for k in 0..count {
-        let b = &mut bodies[k];
-        let r2 = dot(&b.pos, &b.pos);
-        if WATCH {
-            b.near2 = r2.min(b.near2);
-            b.far2 = r2.max(b.far2);
-        }
-        let r0 = r2.sqrt();
-        let inv_r0 = R::splat(1.0) / r0;
-        let v2 = dot(&b.vel, &b.vel);
-        let eta = dot(&b.pos, &b.vel);
-        let beta = (b.mu * inv_r0).mul_add(R::splat(2.0), -v2);
-        let zeta = beta.neg_mul_add(r0, b.mu);
-        let m = &mut midway[k];
-        m.orbit = Orbit { mu: b.mu, r0, eta, beta, zeta };
-        m.inv_r0 = inv_r0;
-        m.solved.s = universal::guess(&m.orbit, inv_r0, h);
-    }
-    let mut all_good = R::splat(0.0).lt(R::splat(1.0));
-    for twins in midway.chunks_mut(if R::SIDE_BY_SIDE { 2 } else { 1 }) {
-        match &mut *twins {
-            [a, b] => solve_two(a, b, h),
-            others => {
-                for m in others.iter_mut() {
-                    (m.solved, m.good) = universal::solve_fast(&m.orbit, m.solved.s, h);
-                }
-            }
-        }
-        for m in twins {
-            all_good = all_good.and(m.good);
-        }
-    }
-    if active.and(all_good.not()).any() {
-        for m in midway.iter_mut() {
-            let wanted = active.and(m.good.not());
-            if wanted.any() {
-                m.solved = universal::mend(&m.orbit, h, wanted, &m.solved);
-            }
-        }
-    }
+    solve::<R, WATCH>(bodies, midway, h, active);
     for k in 0..count {
         let (to_pos, to_vel) = update::<R, TANGENT>(&mut bodies[k], &midway[k]);
         let b = &mut bodies[k];
@@ -167,13 +133,61 @@ pub fn drift_keeping<R: Real, const TANGENT: bool, const WATCH: bool, const LOW:
     }
 }
 
-/// The long chain of dependent operations of two bodies, side by side.
+/// Solves Kepler's equation of every body.
 #[inline(always)]
-fn solve_two<R: Real>(a: &mut Midway<R>, b: &mut Midway<R>, h: R) {
-    let orbit = universal::twin(&a.orbit, &b.orbit);
-    let (solved, good) = universal::solve_fast(&orbit, Twin(a.solved.s, b.solved.s), Twin(h, h));
-    (a.solved, b.solved) = universal::part(&solved);
-    (a.good, b.good) = (good.0, good.1);
+fn solve<R: Real, const WATCH: bool>(
+    bodies: &mut [Body<R>],
+    midway: &mut [Midway<R>],
+    h: &[R],
+    active: &[R::Mask],
+) {
+    let in_group = (bodies.len() / h.len()).max(1);
+    for (g, (bodies, midway)) in bodies.chunks_mut(in_group).zip(midway.chunks_mut(in_group)).enumerate() {
+        for (b, m) in bodies.iter_mut().zip(midway) {
+            set_up::<R, WATCH>(b, m);
+            m.solved.s = universal::guess(&m.orbit, m.inv_r0, h[g]);
+        }
+    }
+    for m in midway.iter_mut() {
+        m.solved.g = stumpff::series(m.orbit.beta, m.solved.s);
+    }
+    let mut missed = R::splat(0.0).lt(R::splat(0.0));
+    for (g, midway) in midway.chunks_mut(in_group).enumerate() {
+        for m in midway {
+            (m.w, m.good) = universal::correct_once(&m.orbit, m.solved.s, &m.solved.g, h[g]);
+            missed = missed.or(active[g].and(m.good.not()));
+        }
+    }
+    for m in midway.iter_mut() {
+        m.solved = universal::corrected(&m.orbit, m.solved.s, &m.solved.g, m.w);
+    }
+    if missed.any() {
+        for (g, midway) in midway.chunks_mut(in_group).enumerate() {
+            for m in midway {
+                let wanted = active[g].and(m.good.not());
+                if wanted.any() {
+                    m.solved = universal::mend(&m.orbit, h[g], wanted, &m.solved);
+                }
+            }
+        }
+    }
+}
+
+#[inline(always)]
+fn set_up<R: Real, const WATCH: bool>(b: &mut Body<R>, m: &mut Midway<R>) {
+    let r2 = dot(&b.pos, &b.pos);
+    if WATCH {
+        b.near2 = r2.min(b.near2);
+        b.far2 = r2.max(b.far2);
+    }
+    let r0 = r2.sqrt();
+    let inv_r0 = R::splat(1.0) / r0;
+    let v2 = dot(&b.vel, &b.vel);
+    let eta = dot(&b.pos, &b.vel);
+    let beta = (b.mu * inv_r0).mul_add(R::splat(2.0), -v2);
+    let zeta = beta.neg_mul_add(r0, b.mu);
+    m.orbit = Orbit { mu: b.mu, r0, eta, beta, zeta };
+    m.inv_r0 = inv_r0;
 }
 
 /// Moves the tangent vector and gives what is to be added to position and velocity.

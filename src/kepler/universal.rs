@@ -4,7 +4,7 @@
 //! (Stumpff 1962; Battin 1987). Good for ellipse, parabola and hyperbola alike.
 
 use super::stumpff::{self, Gs, SERIES_REACH};
-use crate::lanes::{Mask, Piece, Real, Twin};
+use crate::lanes::{Mask, Piece, Real};
 
 /// What Kepler's equation needs to know of an orbit.
 #[derive(Clone, Copy)]
@@ -23,29 +23,6 @@ pub(super) struct Solved<R> {
     pub g: Gs<R>,
     /// ∂h/∂β through the whole periods that the robust branch takes off the time h; 0 where none were.
     pub h_by_beta: R,
-}
-
-/// Two orbits as one.
-#[inline(always)]
-pub(super) fn twin<R: Real>(a: &Orbit<R>, b: &Orbit<R>) -> Orbit<Twin<R>> {
-    Orbit {
-        mu: Twin(a.mu, b.mu),
-        r0: Twin(a.r0, b.r0),
-        eta: Twin(a.eta, b.eta),
-        beta: Twin(a.beta, b.beta),
-        zeta: Twin(a.zeta, b.zeta),
-    }
-}
-
-/// Two solved equations from one.
-#[inline(always)]
-pub(super) fn part<R: Real>(both: &Solved<Twin<R>>) -> (Solved<R>, Solved<R>) {
-    let Solved { s, g, h_by_beta } = both;
-    let Gs { g1, g2, g3, g4, g5 } = g;
-    (
-        Solved { s: s.0, g: Gs { g1: g1.0, g2: g2.0, g3: g3.0, g4: g4.0, g5: g5.0 }, h_by_beta: h_by_beta.0 },
-        Solved { s: s.1, g: Gs { g1: g1.1, g2: g2.1, g3: g3.1, g4: g4.1, g5: g5.1 }, h_by_beta: h_by_beta.1 },
-    )
 }
 
 /// The limit of [`Correction::miss`] below which one correction of order five ends at round-off.
@@ -112,16 +89,18 @@ fn correct<R: Real>(o: &Orbit<R>, s: R, g: &Gs<R>, h: R) -> Correction<R> {
     Correction { w, miss, f, f1, f2 }
 }
 
-/// Solves with one evaluation of the series from the guess `s`; the mask tells the lanes where that was enough.
+/// The correction w of s after one evaluation of the series there; the mask tells the lanes where that is enough.
 #[inline(always)]
-pub(super) fn solve_fast<R: Real>(o: &Orbit<R>, s: R, h: R) -> (Solved<R>, R::Mask) {
-    let g = stumpff::series(o.beta, s);
-    let c = correct(o, s, &g, h);
+pub(super) fn correct_once<R: Real>(o: &Orbit<R>, s: R, g: &Gs<R>, h: R) -> (R, R::Mask) {
+    let c = correct(o, s, g, h);
     let z = (o.beta * s * s).abs();
-    let good = c.miss.lt(R::splat(CLOSE)).and(z.lt(R::splat(SERIES_REACH)));
-    let solved =
-        Solved { s: s + c.w, g: stumpff::at_small_sum(o.beta, s, &g, c.w), h_by_beta: R::splat(0.0) };
-    (solved, good)
+    (c.w, c.miss.lt(R::splat(CLOSE)).and(z.lt(R::splat(SERIES_REACH))))
+}
+
+/// The solution s + w.
+#[inline(always)]
+pub(super) fn corrected<R: Real>(o: &Orbit<R>, s: R, g: &Gs<R>, w: R) -> Solved<R> {
+    Solved { s: s + w, g: stumpff::at_small_sum(o.beta, s, g, w), h_by_beta: R::splat(0.0) }
 }
 
 /// Solves in the lanes of `wanted`, whatever the orbit and the step; the other lanes hold nothing of use.

@@ -4,6 +4,16 @@ use std::sync::OnceLock;
 
 use super::WIDTH;
 
+/// How many groups of lanes keep the units of a processor with AVX-512 busy: it takes the chains of operations of about six
+/// bodies, and those of four alone are near enough.
+pub fn groups_at_once(bodies: usize) -> usize {
+    match bodies {
+        2 => 3,
+        3 => 2,
+        _ => 1,
+    }
+}
+
 /// What a wide number is made of.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
 pub enum Level {
@@ -38,6 +48,11 @@ impl Level {
             Level::Scalar => 1,
             Level::Avx2 | Level::Avx512 => WIDTH,
         }
+    }
+
+    /// How many wide numbers a kernel of so many bodies takes at once.
+    pub fn groups(self, bodies: usize) -> usize {
+        if self == Level::Avx512 { groups_at_once(bodies) } else { 1 }
     }
 
     /// The word that `ABIDE_LANES` and reports use.

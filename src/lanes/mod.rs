@@ -8,11 +8,9 @@
 mod level;
 mod processor;
 mod scalar;
-mod twin;
 
-pub use level::Level;
+pub use level::{Level, groups_at_once};
 pub use processor::{run_one, run_wide, run_wide_at};
-pub use twin::Twin;
 
 use std::ops::{Add, Div, Mul, Neg, Sub};
 
@@ -25,10 +23,10 @@ pub trait Real:
 {
     /// One truth value per lane.
     type Mask: Mask;
-    /// 1 or [`WIDTH`]; twice that for a [`Twin`].
+    /// 1 or [`WIDTH`].
     const LANES: usize;
-    /// Whether there are registers enough for two chains of operations side by side, as a [`Twin`].
-    const SIDE_BY_SIDE: bool = true;
+    /// Whether [`groups_at_once`] groups of lanes are faster than one after the other.
+    const IN_GROUPS: bool = false;
 
     fn splat(value: f64) -> Self;
     /// Reads `LANES` numbers from the front of `from`.

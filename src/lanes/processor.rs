@@ -181,6 +181,7 @@ mod x86 {
     impl Real for Whole {
         type Mask = WholeMask;
         const LANES: usize = WIDTH;
+        const IN_GROUPS: bool = true;
         #[inline(always)]
         fn splat(value: f64) -> Self {
             // SAFETY: see above.
@@ -262,7 +263,6 @@ mod x86 {
     impl Real for Pair {
         type Mask = PairMask;
         const LANES: usize = WIDTH;
-        const SIDE_BY_SIDE: bool = false;
         #[inline(always)]
         fn splat(value: f64) -> Self {
             // SAFETY: see above.

@@ -32,7 +32,7 @@ fn against_textbook() {
     const STEPS: usize = 400;
     let mut rows = Vec::new();
     for n in [2, 3, 5, 8] {
-        let lanes = Level::chosen().width();
+        let lanes = Level::chosen().width() * Level::chosen().groups(n);
         let mut wide = systems::block(n, lanes, 20.0);
         let (state, tangent) = systems::start(n, 0);
         let mut plain = Textbook::new(state, tangent, TAU / 20.0);
@@ -98,7 +98,7 @@ struct Ours {
 
 impl Ours {
     fn new(n: usize, scheme: &'static Scheme, per_orbit: f64) -> Ours {
-        let lanes = Level::chosen().width();
+        let lanes = Level::chosen().width() * Level::chosen().groups(n);
         let mut block = systems::block(n, lanes, per_orbit);
         to_map(&mut block, scheme);
         let first = (0..lanes).map(|lane| energy(&systems::start(n, lane).0)).collect();

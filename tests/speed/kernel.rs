@@ -74,8 +74,11 @@ fn kernel() {
     let mut rows = Vec::new();
     for n in [2, 3, 5, 8] {
         let levels = Level::available();
-        let mut blocks: Vec<[Block; 2]> =
-            levels.iter().map(|l| systems::block(n, l.width(), 20.0)).map(|b| [b.clone(), b]).collect();
+        let mut blocks: Vec<[Block; 2]> = levels
+            .iter()
+            .map(|l| systems::block(n, l.width() * l.groups(n), 20.0))
+            .map(|b| [b.clone(), b])
+            .collect();
         let mut pieces: Vec<Box<dyn FnMut()>> = Vec::new();
         for (level, [with, without]) in levels.iter().zip(&mut blocks) {
             pieces.push(Box::new(|| {
@@ -88,7 +91,8 @@ fn kernel() {
             pieces.iter_mut().map(|p| &mut **p as &mut dyn FnMut()).collect();
         let times = interleave(REPEAT, &mut pieces);
         for (k, level) in levels.iter().enumerate() {
-            let planet_steps = (STEPS * n * level.width()) as f64;
+            let lanes = level.width() * level.groups(n);
+            let planet_steps = (STEPS * n * lanes) as f64;
             for (column, tangent) in [(1, true), (2, false)] {
                 let (own, of_scalar) = (&times[3 * k + column], &times[column]);
                 let flops = counted::flops_per_planet_step(n, tangent);
@@ -97,7 +101,7 @@ fn kernel() {
                     .map(|r| 100.0 * r * flops * planet_steps / peak(*level))
                     .collect();
                 let ns = 1e9 * median(own) / planet_steps;
-                let faster = median(&ratios(of_scalar, own)) * level.width() as f64;
+                let faster = median(&ratios(of_scalar, own)) * lanes as f64;
                 rows.push(format!(
                     "{n},{},{},{ns:.2},{:.1},{:.1},{flops:.0},{:.1},{faster:.2}",
                     level.word(),

@@ -82,7 +82,7 @@ fn run_program(folder: &Path, arguments: &[&str]) -> (f64, f64, f64) {
 /// Nanoseconds per planet-step of the kernel, short chunks.
 fn kernel_ns() -> f64 {
     const STEPS: usize = 508;
-    let lanes = Level::chosen().width();
+    let lanes = Level::chosen().width() * Level::chosen().groups(2);
     let mut block = systems::block(2, lanes, 20.0);
     let times: Vec<f64> = (0..400)
         .map(|_| {
