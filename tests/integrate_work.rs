@@ -133,13 +133,13 @@ fn work_of<const TANGENT: bool, const WATCH: bool>(n: usize) -> Work {
     WORK.get()
 }
 
-/// What one body and one pair cost, and the one division that is done once.
+/// What one body and one pair cost, and what is done once: 1/M and its product with the time.
 fn of_bodies_and_pairs(n: usize, body: Work, pair: Work) -> Work {
     let pairs = n * n.saturating_sub(1) / 2;
     let sum = |part: fn(&Work) -> usize| n * part(&body) + pairs * part(&pair);
     Work {
         add: sum(|w| w.add),
-        mul: sum(|w| w.mul),
+        mul: 1 + sum(|w| w.mul),
         fused: sum(|w| w.fused),
         div: 1 + sum(|w| w.div),
         sqrt: sum(|w| w.sqrt),
