@@ -58,7 +58,7 @@ fn run_lanes(
 ) -> BatchWork {
     let mut work = BatchWork::default();
     let Some(first) = next() else { return work };
-    let mut block = Block::with_massless(plan.coordinates, width, first.1.planets.len(), plan.massless);
+    let mut block = plan.block(width, first.1.planets.len());
     let mut waiting = Some(first);
     let mut seats: Vec<Seat> = (0..width).map(|_| None).collect();
     loop {
