@@ -5,7 +5,7 @@ use std::path::Path;
 use abide::assess::{ADAPTIVE, Plan, assess};
 use abide::coords::{Configuration, configure};
 use abide::input::{parse_system, read_system};
-use abide::system::{CoordinateChoice, Encounter, Engine, Limits, Span, Step};
+use abide::system::{Encounter, Engine, Limits, Span};
 use abide::verdict::{LostHow, Verdict};
 
 fn demo(name: &str) -> Configuration {
@@ -14,7 +14,7 @@ fn demo(name: &str) -> Configuration {
 }
 
 fn engine(energy_error: f64) -> Engine {
-    Engine { scheme: "auto".to_string(), coordinates: CoordinateChoice::Auto, step: Step::Auto, energy_error }
+    Engine { scheme: "auto".to_string(), energy_error, ..Engine::default() }
 }
 
 fn plan(configuration: &Configuration, orbits: f64, encounter: Encounter, energy_error: f64) -> Plan {

@@ -38,6 +38,7 @@ fn plan(configuration: &Configuration, orbits: f64, scheme: &str, energy_error: 
     let engine = Engine {
         scheme: scheme.to_string(),
         coordinates: abide::system::CoordinateChoice::Auto,
+        compensated: abide::system::Compensation::Auto,
         step: Step::Auto,
         energy_error,
     };
@@ -85,8 +86,8 @@ fn put_down_anywhere_and_taken_up_it_ends_with_the_same_bits() {
         (&wild, "(2,2)", 1e-16, Verdict::Untrusted, 2),
     ];
     for (configuration, scheme, energy_error, verdict, redone) in cases {
-        for rows in [7, 300] {
-            let plan = plan(configuration, 1000.0, scheme, energy_error);
+        for (rows, compensated) in [(7, false), (300, false), (20, true)] {
+            let plan = Plan { compensated, ..plan(configuration, 1000.0, scheme, energy_error) };
             // Short blocks, so that there are many moments to be put down at.
             let plan = plan_for_rows(&plan, configuration, 2000);
             let plain = undisturbed(configuration, &plan, rows);

@@ -244,3 +244,19 @@ fn a_damaged_checkpoint_and_the_folder_of_a_survey_are_refused() {
     desk.write("run/journal.csv", "cell\n");
     desk.abide("follow").args(["pair.toml", "--into", "run"]).run().refused().said("holds a survey");
 }
+
+/// The word is told, and is one of the settings that a checkpoint is of.
+#[test]
+fn compensated_sums_are_told() {
+    let desk = desk();
+    let plain = follow(&desk, &["--span", "300 orbits", "--rows", "20"]).done();
+    assert!(!plain.stdout.contains("compensated sums"), "{plain:#?}");
+    let table = desk.text("out/series.ecsv");
+    let asked = ["--span", "300 orbits", "--rows", "20", "--compensated", "on"];
+    let other = desk.abide("follow").args(["pair.toml", "--into", "other"]).args(asked).run().done();
+    assert!(other.stdout.replace('\n', " ").contains("compensated sums"), "{other:#?}");
+    assert_ne!(desk.text("other/series.ecsv"), table, "other roundings, other last digits");
+    let refused = follow(&desk, &asked);
+    assert_eq!(refused.code, Some(2), "{refused:#?}");
+    assert!(refused.stderr.contains("--compensated"), "{refused:#?}");
+}

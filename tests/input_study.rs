@@ -5,8 +5,8 @@ use abide::input::{
     parse_study, parse_system, parse_time, read_study, read_system, sniff,
 };
 use abide::system::{
-    BodyRef, CoordinateChoice, Encounter, Key, Measure, Quantity, SCHEMES, Spacing, Span, Step, Study,
-    System, Target,
+    BodyRef, Compensation, CoordinateChoice, Encounter, Key, Measure, Quantity, SCHEMES, Spacing, Span, Step,
+    Study, System, Target,
 };
 use abide::units::{DEGREE, YEAR_DAY};
 
@@ -275,6 +275,18 @@ fn coordinates_and_encounters() {
     assert_eq!(study(&changed("2.5 hill", "resolve")).limits.encounter, Encounter::Resolve);
     assert_eq!(study(&changed("2.5 hill", "off")).limits.encounter, Encounter::Off);
     check(&changed("2.5 hill", "resolved"), Fault::Malformed, 18, 14, &["\"resolve\""]);
+}
+
+#[test]
+fn compensated_sums() {
+    assert_eq!(study(STUDY).engine.compensated, Compensation::Auto);
+    let with = |word: &str| format!("{STUDY}compensated = {word}\n");
+    let words = [("auto", Compensation::Auto), ("on", Compensation::On), ("off", Compensation::Off)];
+    for (word, choice) in words {
+        assert_eq!(study(&with(&format!("\"{word}\""))).engine.compensated, choice);
+    }
+    check(&with("\"onn\""), Fault::UnknownWord, 24, 15, &["\"off\"", "did you mean \"on\"?"]);
+    check(&with("true"), Fault::WrongType, 24, 15, &["\"on\""]);
 }
 
 #[test]

@@ -257,3 +257,63 @@ fn a_step_of_zero_changes_no_bit() {
     let before: Vec<f64> = [start.pos, start.vel, start.d_pos, start.d_vel].into_iter().flatten().collect();
     assert_eq!(end.to_vec(), before);
 }
+
+/// Orbits of one eccentricity, each lane at another phase, drifting by P/`per_turn`.
+struct Rounds {
+    eccentricity: f64,
+    per_turn: f64,
+    steps: usize,
+}
+
+impl Job for Rounds {
+    /// Energies (μ = 1) before and after.
+    type Output = [[f64; 2]; WIDTH];
+    #[inline(always)]
+    fn run<R: Real>(self) -> [[f64; 2]; WIDTH] {
+        let e = self.eccentricity;
+        let mut body = Body::<R>::still();
+        body.mu = R::splat(1.0);
+        let mut numbers = [[0.0; WIDTH]; 4];
+        for lane in 0..WIDTH {
+            let (sin, cos) = (0.4 + 0.77 * lane as f64).sin_cos();
+            let r = 1.0 - e * cos;
+            let ratio = (1.0 - e * e).sqrt();
+            let lane_numbers = [cos - e, ratio * sin, -sin / r, ratio * cos / r];
+            numbers.iter_mut().zip(lane_numbers).for_each(|(all, number)| all[lane] = number);
+        }
+        let [x, y, vx, vy] = numbers.map(|all| R::load(&all));
+        (body.pos, body.vel) = ([x, y, R::splat(0.0)], [vx, vy, R::splat(0.0)]);
+        let mut bodies = [body];
+        let before = energies(&bodies[0]);
+        let h = R::splat(std::f64::consts::TAU / self.per_turn);
+        let all = R::splat(0.0).lt(R::splat(1.0));
+        for _ in 0..self.steps {
+            drift::<R, false, true>(&mut bodies, &mut [Midway::blank()], h, all);
+        }
+        let after = energies(&bodies[0]);
+        std::array::from_fn(|lane| [before[lane], after[lane]])
+    }
+}
+
+fn energies<R: Real>(body: &Body<R>) -> [f64; WIDTH] {
+    let square = |v: &[R; 3]| v[0] * v[0] + v[1] * v[1] + v[2] * v[2];
+    let energy = square(&body.vel) * R::splat(0.5) - body.mu / square(&body.pos).sqrt();
+    let mut out = [0.0; WIDTH];
+    energy.store(&mut out);
+    out
+}
+
+/// Rounding errors may walk, but they must have no preferred sense. Allowed: four standard errors of the mean of walks of
+/// one unit in the last place per drift.
+#[test]
+fn the_energy_has_no_preferred_sense() {
+    const STEPS: usize = 4_000_000;
+    for (eccentricity, per_turn) in [(0.6, 40.0123), (0.01, 20.0123)] {
+        let ends = run_wide_at(Level::chosen(), Rounds { eccentricity, per_turn, steps: STEPS });
+        let lanes = Level::chosen().width();
+        let total: f64 = ends[..lanes].iter().map(|[before, after]| (after - before) / before).sum();
+        let mean = total / (lanes * STEPS) as f64;
+        let allowed = 4.0 * f64::EPSILON / ((lanes * STEPS) as f64).sqrt();
+        assert!(mean.abs() < allowed, "e = {eccentricity}: {mean:e} per drift, allowed {allowed:e}");
+    }
+}

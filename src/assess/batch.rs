@@ -60,7 +60,7 @@ fn run_lanes(
     let Some(first) = next() else { return work };
     let level = Level::chosen();
     let width = width.unwrap_or(level.width() * level.groups(first.1.planets.len()));
-    let mut block = Block::with_massless(plan.coordinates, width, first.1.planets.len(), plan.massless);
+    let mut block = plan.block(width, first.1.planets.len());
     let mut waiting = Some(first);
     let mut seats: Vec<Seat> = (0..width).map(|_| None).collect();
     loop {

@@ -126,7 +126,7 @@ impl Cell {
 
     /// A block of one lane of the plan's kind.
     fn alone(&self, plan: &Plan) -> Block {
-        Block::with_massless(plan.coordinates, 1, self.start.gm.len(), plan.massless)
+        plan.block(1, self.start.gm.len())
     }
 
     pub fn time_day(&self, plan: &Plan) -> f64 {

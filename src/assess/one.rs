@@ -79,8 +79,7 @@ impl Follower {
         let plan = plan.clone();
         match Cell::new(configuration, &plan) {
             Ok(cell) => {
-                let mut block =
-                    Block::with_massless(plan.coordinates, 1, configuration.planets.len(), plan.massless);
+                let mut block = plan.block(1, configuration.planets.len());
                 cell.enter(&mut block, 0, &plan);
                 let rows = Rows::new(cell.start(), plan.frame, rows);
                 Follower { plan, rows, on_its_way: Some(OnItsWay { cell, block }), assessment: None }

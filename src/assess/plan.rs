@@ -5,9 +5,11 @@ use std::fmt;
 use super::calibrate::calibrate;
 use super::physics::{has_companion, massless};
 use crate::coords::{BodyKind, Configuration};
-use crate::integrate::{Coordinates, SAMPLE_EVERY, Scheme};
+use crate::integrate::{Block, Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
-use crate::system::{CoordinateChoice, Encounter, Engine, Frame, Group, Limits, Measure, Span, Step, Study};
+use crate::system::{
+    Compensation, CoordinateChoice, Encounter, Engine, Frame, Group, Limits, Measure, Span, Step, Study,
+};
 
 /// Steps in the shortest pericentre passage time scale when the step is chosen for the user.
 ///
@@ -126,6 +128,8 @@ pub struct Plan {
     pub resolve: bool,
     /// Do everything with the adaptive engine.
     pub adaptive: bool,
+    /// Positions and velocities are compensated sums.
+    pub compensated: bool,
     /// So many planets are massless in every cell.
     pub massless: usize,
     /// Steps between two looks at a cell, a multiple of [`SAMPLE_EVERY`]. A cell's steps are a whole number of blocks.
@@ -188,6 +192,7 @@ impl Plan {
             frame: nominal.own_frame(),
             resolve: limits.encounter == Encounter::Resolve,
             adaptive: false,
+            compensated: engine.compensated == Compensation::On,
             massless: corners.iter().map(massless).fold(massless(nominal), usize::min),
             energy_error: engine.energy_error,
             escape_au: limits.escape_au,
@@ -217,6 +222,12 @@ impl Plan {
     pub(super) fn block_for(steps: f64) -> usize {
         let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, BLOCK_STEPS as f64);
         (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
+    }
+
+    /// An empty block of the plan's kind.
+    pub(super) fn block(&self, width: usize, planets: usize) -> Block {
+        let block = Block::with_massless(self.coordinates, width, planets, self.massless);
+        if self.compensated { block.compensated() } else { block }
     }
 
     /// The scheme itself.

@@ -12,20 +12,24 @@ use super::quantity::{self, Fail};
 use super::raw::{Entry, RawTable, RawValue};
 use super::source::{Complaint, Source};
 use crate::system::{
-    Axis, CoordinateChoice, Encounter, Engine, Limits, Measure, SCHEMES, Spacing, Span, Step, Study, System,
+    Axis, Compensation, CoordinateChoice, Encounter, Engine, Limits, Measure, SCHEMES, Spacing, Span, Step,
+    Study, System,
 };
 use crate::units::{Dimension, Unit};
 
 const TOP_KEYS: [&str; 7] = ["title", "system", "span", "measure", "axis", "limits", "engine"];
 const AXIS_KEYS: [&str; 6] = ["vary", "from", "to", "cells", "spacing", "as"];
 const LIMITS_KEYS: [&str; 3] = ["escape", "encounter", "stop_when_chaotic"];
-const ENGINE_KEYS: [&str; 4] = ["scheme", "coordinates", "step", "energy_error"];
+const ENGINE_KEYS: [&str; 5] = ["scheme", "coordinates", "step", "energy_error", "compensated"];
 
 const COORDINATES: [(&str, CoordinateChoice); 3] = [
     ("auto", CoordinateChoice::Auto),
     ("heliocentric", CoordinateChoice::Heliocentric),
     ("jacobi", CoordinateChoice::Jacobi),
 ];
+
+const COMPENSATION: [(&str, Compensation); 3] =
+    [("auto", Compensation::Auto), ("on", Compensation::On), ("off", Compensation::Off)];
 
 /// Cells along an axis that does not say.
 pub(crate) const DEFAULT_CELLS: usize = 100;
@@ -48,6 +52,7 @@ impl Default for Engine {
             coordinates: CoordinateChoice::Auto,
             step: Step::Auto,
             energy_error: DEFAULT_ENERGY_ERROR,
+            compensated: Compensation::Auto,
         }
     }
 }
@@ -301,6 +306,9 @@ fn engine(source: &Source, top: &RawTable) -> Result<Engine, InputError> {
     if let Some(entry) = table.get("energy_error") {
         let written = entry.exact(source, about)?;
         engine.energy_error = energy_error(&written).map_err(|fail| entry.fail(source, about, fail))?;
+    }
+    if let Some(entry) = table.get("compensated") {
+        engine.compensated = entry.choice(source, about, &COMPENSATION)?;
     }
     Ok(engine)
 }

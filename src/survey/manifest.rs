@@ -38,6 +38,8 @@ pub struct PlanWords {
     pub scheme: String,
     pub coordinates: String,
     pub coordinates_why: String,
+    #[serde(default)]
+    pub compensated: bool,
     pub span_day: f64,
     /// Absent: each cell has its own.
     pub step_day: Option<f64>,
@@ -56,6 +58,7 @@ impl PlanWords {
             scheme: plan.scheme.to_string(),
             coordinates: plan.coordinates.word().to_string(),
             coordinates_why: plan.coordinates_why.to_string(),
+            compensated: plan.compensated,
             span_day: plan.span_day,
             step_day: plan.step_day,
             step_why: plan.step_why.to_string(),

@@ -117,11 +117,22 @@ pub enum CoordinateChoice {
     Jacobi,
 }
 
+/// Whether positions and velocities are compensated sums, which keep what rounding cuts off.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
+pub enum Compensation {
+    /// Where one configuration is followed for very many steps.
+    #[default]
+    Auto,
+    On,
+    Off,
+}
+
 #[derive(Clone, Debug, PartialEq)]
 pub struct Engine {
     /// "auto" or one of [`SCHEMES`].
     pub scheme: String,
     pub coordinates: CoordinateChoice,
+    pub compensated: Compensation,
     pub step: Step,
     pub energy_error: f64,
 }

@@ -38,6 +38,7 @@ pub fn plan() -> Plan {
         frame: Frame::Astrocentric,
         resolve: false,
         adaptive: false,
+        compensated: false,
         massless: 0,
     }
 }

@@ -99,6 +99,7 @@ pub fn plan(nominal: &Configuration, span: Span, energy_error: f64) -> Plan {
     let engine = Engine {
         scheme: "auto".to_string(),
         coordinates: abide::system::CoordinateChoice::Auto,
+        compensated: abide::system::Compensation::Auto,
         step: Step::Auto,
         energy_error,
     };

@@ -1,8 +1,8 @@
-//! How rounding makes the energy error grow over 1e8 steps.
+//! How rounding makes the energy error grow over 1e8 steps, without and with compensated sums.
 
 use std::f64::consts::TAU;
 
-use abide::integrate::{Advance, Block, Coordinates, Scheme, State, Tangent, advance, energy};
+use abide::integrate::{Advance, Block, Scheme, State, Tangent, advance, energy};
 use rayon::prelude::*;
 
 use super::giants::processor_s;
@@ -23,14 +23,13 @@ pub fn write() {
     let mut random = Random::new(20_260_712);
     let groups: Vec<Vec<State>> =
         (0..STARTS / LANES).map(|_| (0..LANES).map(|_| pair(&mut random)).collect()).collect();
-    let runs: Vec<_> = groups.par_iter().map(|starts| pair_run(starts)).collect();
-    let at = runs[0].0.clone();
-    let seconds: f64 = runs.iter().map(|run| run.2).sum();
-    let errors: Vec<Vec<f64>> = runs.into_iter().flat_map(|run| run.1).collect();
-    curve(&at, &errors);
-    let mut rows = pair_rows(&at, &errors);
-    rows.extend(kepler_rows(&mut random));
-    let words = WORDS.replace("SECONDS", &format!("{seconds:.0}"));
+    let (at, plain, seconds) = all_runs(&groups, false);
+    let (_, compensated, compensated_seconds) = all_runs(&groups, true);
+    curve(&at, &plain, &compensated);
+    let mut rows = pair_rows(&at, &plain, "");
+    rows.extend(pair_rows(&at, &compensated, ", compensated sums"));
+    let words = WORDS.replace("LONGER", &format!("{compensated_seconds:.0}"));
+    let words = words.replace("SECONDS", &format!("{seconds:.0}"));
     let columns = vec!["what", "found", "standard_error", "allowed", "met"];
     Report { name: "round-off", title: "Growth of rounding", words, columns, rows }.write();
 }
@@ -46,19 +45,24 @@ on. Its standard error is that of true walks: 200 sets of sixteen walks of indep
 mean exponent is listed too); allowed is 1/2 and two standard errors. `drift` is the mean over the starts of the error at the end, per step; allowed: two standard errors, from the spread of the starts.
 The curve is in [round-off-curve.csv](round-off-curve.csv).
 
-`Kepler`: massless planets (eight phases and axes each) in 1e7 drifts of one step, no kicks: mean change of the energy per drift, relative, its
-standard error from the eight, and the root mean square at the end. For comparison: a walk of one unit in the last place (2.2e-16) per drift would
-end at 7e-13, and one unit each time in the same sense at 2.2e-9. Allowed drift per step: what ends no higher than such a walk, 7e-20,
-or two standard errors. At a whole number of drifts per turn (P/10, P/20, P/40) an orbit meets the same places again turn after turn and with them the same
-roundings, so that each start drifts by itself, one up, another down; the rows beside them (P/10.0123 and so on) are as an integration would be.
+`compensated sums`: the same starts in blocks whose positions and velocities keep what rounding cuts off (LONGER s of one processor).
 ";
+
+/// Numbers of steps, per start the relative energy errors at them, and the processor time, s.
+fn all_runs(groups: &[Vec<State>], compensated: bool) -> (Vec<usize>, Vec<Vec<f64>>, f64) {
+    let runs: Vec<_> = groups.par_iter().map(|starts| pair_run(starts, compensated)).collect();
+    let at = runs[0].0.clone();
+    let seconds = runs.iter().map(|run| run.2).sum();
+    (at, runs.into_iter().flat_map(|run| run.1).collect(), seconds)
+}
 
 /// Numbers of steps, per lane the relative energy errors at them,
 /// and the processor time, s.
-fn pair_run(starts: &[State]) -> (Vec<usize>, Vec<Vec<f64>>, f64) {
+fn pair_run(starts: &[State], compensated: bool) -> (Vec<usize>, Vec<Vec<f64>>, f64) {
     let worked = processor_s();
     let scheme = Scheme::named("(10,6,4)").unwrap();
-    let mut block = Block::new(LANES, 2);
+    let block = Block::new(LANES, 2);
+    let mut block = if compensated { block.compensated() } else { block };
     let mut first = Vec::new();
     for (lane, start) in starts.iter().enumerate() {
         first.push(energy(start));
@@ -70,6 +74,7 @@ fn pair_run(starts: &[State]) -> (Vec<usize>, Vec<Vec<f64>>, f64) {
     while done < STEPS {
         let steps = (done / 200).max(20).min(STEPS - done);
         advance(Advance { block: &mut block, scheme, steps, tangent: false });
+        (0..LANES).for_each(|lane| block.rescale(lane));
         done += steps;
         at.push(done);
         for lane in 0..LANES {
@@ -123,14 +128,14 @@ fn exponent(at: &[usize], errors: &[Vec<f64>], left_out: Option<usize>) -> f64 {
 }
 
 /// Mean and standard error of the mean.
-fn mean(values: &[f64]) -> (f64, f64) {
+pub fn mean(values: &[f64]) -> (f64, f64) {
     let n = values.len() as f64;
     let mean = values.iter().sum::<f64>() / n;
     let square = values.iter().map(|v| (v - mean).powi(2)).sum::<f64>() / (n - 1.0);
     (mean, (square / n).sqrt())
 }
 
-fn pair_rows(at: &[usize], errors: &[Vec<f64>]) -> Vec<Vec<String>> {
+fn pair_rows(at: &[usize], errors: &[Vec<f64>], how: &str) -> Vec<Vec<String>> {
     let whole = exponent(at, errors, None);
     let parts: Vec<f64> = (0..STARTS).map(|lane| exponent(at, errors, Some(lane))).collect();
     // The spread of estimates that share all but one start, blown up to that of independent ones.
@@ -144,7 +149,7 @@ fn pair_rows(at: &[usize], errors: &[Vec<f64>]) -> Vec<Vec<String>> {
     };
     let yes = |good: bool| if good { "yes" } else { "NO" }.to_string();
     let none = String::new;
-    vec![
+    let mut rows = vec![
         vec![
             "exponent".to_string(),
             format!("{whole:.3}"),
@@ -175,7 +180,9 @@ fn pair_rows(at: &[usize], errors: &[Vec<f64>]) -> Vec<Vec<String>> {
         ],
         vec!["rms after 1e8 steps".to_string(), short(rms(at.len() - 1)), none(), none(), none()],
         vec!["rms of the first look (20 steps)".to_string(), short(rms(0)), none(), none(), none()],
-    ]
+    ];
+    rows.iter_mut().for_each(|row| row[0] += how);
+    rows
 }
 
 /// Mean and spread of the exponent found from as many true walks of the same length, looked at at the same steps.
@@ -201,59 +208,14 @@ fn walks(at: &[usize]) -> (f64, f64) {
     (walk, error * (WALKS as f64).sqrt())
 }
 
-fn curve(at: &[usize], errors: &[Vec<f64>]) {
+fn curve(at: &[usize], plain: &[Vec<f64>], compensated: &[Vec<f64>]) {
     let mut csv = csv::Writer::from_path(folder().join("round-off-curve.csv")).unwrap();
-    csv.write_record(["steps", "rms_relative_energy_error"]).unwrap();
-    for (log, rms) in bins(at, errors, None) {
-        csv.write_record([short(10f64.powf(log)), short(10f64.powf(rms))]).unwrap();
+    csv.write_record(["steps", "rms_relative_energy_error", "rms_with_compensated_sums"]).unwrap();
+    for ((log, rms), (_, lower)) in bins(at, plain, None).into_iter().zip(bins(at, compensated, None)) {
+        csv.write_record([log, rms, lower].map(|log| short(10f64.powf(log)))).unwrap();
     }
     csv.flush().unwrap();
 }
 
 /// Sets of true walks for comparison.
 const WALKS: usize = 200;
-const SHAPES: [f64; 6] = [0.0, 1e-6, 0.01, 0.1, 0.3, 0.6];
-const DRIFTS: usize = 10_000_000;
-
-fn kepler_rows(random: &mut Random) -> Vec<Vec<String>> {
-    let mut rows = Vec::new();
-    for per_turn in [10.0, 10.0123, 20.0, 20.0123, 40.0, 40.0123] {
-        let found = kepler(random, per_turn);
-        for (e, ends) in SHAPES.iter().zip(found) {
-            let per_step: Vec<f64> = ends.iter().map(|end| end / DRIFTS as f64).collect();
-            let (drift, error) = mean(&per_step);
-            let rms = (ends.iter().map(|x| x * x).sum::<f64>() / LANES as f64).sqrt();
-            let allowed = (f64::EPSILON / (DRIFTS as f64).sqrt()).max(2.0 * error);
-            rows.push(vec![
-                format!("Kepler drift, e = {e}, P/{per_turn}, rms at end {}", short(rms)),
-                short(drift),
-                short(error),
-                short(allowed),
-                if drift.abs() <= allowed { "yes" } else { "NO" }.to_string(),
-            ]);
-        }
-    }
-    rows
-}
-
-/// Per shape and lane: relative change of the orbit's energy after all drifts.
-fn kepler(random: &mut Random, per_turn: f64) -> Vec<Vec<f64>> {
-    let mut block = Block::with_massless(Coordinates::Heliocentric, LANES, SHAPES.len(), SHAPES.len());
-    let orbit_energy = |state: &State, k: usize| {
-        let square = |v: &[f64; 3]| v.iter().map(|x| x * x).sum::<f64>();
-        0.5 * square(&state.vel[k]) - 1.0 / square(&state.pos[k]).sqrt()
-    };
-    let mut first = Vec::new();
-    for lane in 0..LANES {
-        let axis = random.between(0.9, 1.1);
-        let bodies = SHAPES.map(|e| placed(axis, e, random.between(0.0, TAU), random.between(0.0, TAU)));
-        let start = state(1.0, &[0.0; SHAPES.len()], &bodies);
-        let tangent = Tangent { pos: start.pos.clone(), vel: start.vel.clone() };
-        block.start(lane, &start, &tangent, TAU * axis.powf(1.5) / per_turn, 1.0);
-        first.push((0..SHAPES.len()).map(|k| orbit_energy(&start, k)).collect::<Vec<f64>>());
-    }
-    advance(Advance { block: &mut block, scheme: Scheme::leapfrog(), steps: DRIFTS, tangent: false });
-    let change =
-        |k: usize, lane: usize| (orbit_energy(&block.state(lane), k) - first[lane][k]) / first[lane][k];
-    (0..SHAPES.len()).map(|k| (0..LANES).map(|lane| change(k, lane)).collect()).collect()
-}

@@ -23,6 +23,7 @@ mod random;
 mod reference_integrations;
 mod report;
 mod round_off;
+mod round_off_kepler;
 mod schemes;
 mod schemes_cost;
 mod solar_system;
@@ -31,7 +32,7 @@ mod variational;
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 13] = [
+const TABLES: [(&str, fn()); 14] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
     ("variational", variational::write),
@@ -43,6 +44,7 @@ const TABLES: [(&str, fn()); 13] = [
     ("mercury", mercury::write),
     ("giants", giants::write),
     ("round-off", round_off::write),
+    ("round-off-kepler", round_off_kepler::write),
     ("schemes-cost", schemes_cost::write),
     ("fifty", fifty::write),
 ];

@@ -107,12 +107,13 @@ impl<'a> View<'a> {
         }
         let auto = self.wish.options.iter().any(|o| o.flag == "--scheme" && o.meaning == "auto");
         format!(
-            "{}{}{}, {} coordinates ({})",
+            "{}{}{}, {} coordinates ({}){}",
             self.assessment.scheme,
             if plan.splitting().corrected { " with symplectic corrector" } else { "" },
             if auto { " (auto)" } else { "" },
             plan.coordinates.words(),
             plan.coordinates_why,
+            if plan.compensated { ", compensated sums" } else { "" },
         )
     }
 
@@ -288,6 +289,7 @@ impl<'a> View<'a> {
             "energy_error_asked": self.wish.plan.energy_error,
             "angular_momentum_error": a.angular_momentum_error,
             "scheme": a.scheme,
+            "compensated": self.wish.plan.compensated,
             "step_d": a.step_day,
             "step_why": self.wish.plan.step_why.to_string(),
             "steps_per_passage": self.passage.day / a.step_day,

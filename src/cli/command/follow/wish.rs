@@ -5,17 +5,19 @@ use std::time::Duration;
 
 use crate::assess::{Plan, auto_step_day, innermost_period_day, plan_for_rows};
 use crate::cli::CliError;
-use crate::cli::args::{CoordinateWord, EngineWord, FollowArgs};
+use crate::cli::args::{CompensationWord, CoordinateWord, EngineWord, FollowArgs};
 use crate::cli::unfit;
 use crate::coords::Configuration;
 use crate::input::{self, SystemFile};
 use crate::integrate::Scheme;
 use crate::report::time_words;
-use crate::system::{CoordinateChoice, Engine, Limits, Span};
+use crate::system::{Compensation, CoordinateChoice, Engine, Limits, Span};
 use crate::units::DAY_S;
 
 /// More rows than this are more than a run can keep at hand.
 const MOST_ROWS: usize = 1_000_000;
+/// Beyond so many steps sums are compensated unless asked otherwise.
+const COMPENSATED_FROM_STEPS: f64 = 1e8;
 
 pub struct Wish {
     pub file: SystemFile,
@@ -54,6 +56,19 @@ fn coordinates(word: CoordinateWord) -> CoordinateChoice {
     }
 }
 
+fn compensation(word: CompensationWord) -> Compensation {
+    match word {
+        CompensationWord::Auto => Compensation::Auto,
+        CompensationWord::On => Compensation::On,
+        CompensationWord::Off => Compensation::Off,
+    }
+}
+
+/// Steps of the configuration under the plan.
+fn steps(plan: &Plan, configuration: &Configuration) -> f64 {
+    plan.span_day / plan.step_day.unwrap_or_else(|| auto_step_day(configuration))
+}
+
 impl Wish {
     /// Errors: what was typed, each pointing at the word; what the file says.
     pub fn check(args: &FollowArgs) -> Result<Wish, CliError> {
@@ -62,6 +77,7 @@ impl Wish {
         let engine = Engine {
             scheme: scheme(&args.scheme)?,
             coordinates: coordinates(args.coordinates),
+            compensated: compensation(args.compensated),
             step: input::parse_step(&args.step).map_err(CliError::input)?,
             energy_error: input::parse_energy_error(&args.energy_error).map_err(CliError::input)?,
         };
@@ -79,6 +95,8 @@ impl Wish {
         let configuration = unfit::startable(&file)?;
         let mut plan = Plan::new(span, &limits, &engine, &configuration);
         plan.adaptive = args.engine == EngineWord::Adaptive;
+        plan.compensated |=
+            engine.compensated == Compensation::Auto && steps(&plan, &configuration) > COMPENSATED_FROM_STEPS;
         let plan = plan_for_rows(&plan, &configuration, rows);
         check_plan(args, &plan, &configuration)?;
         let meanings = [
@@ -86,6 +104,7 @@ impl Wish {
             ("--step", format!("{:?}", engine.step), args.step.clone()),
             ("--scheme", engine.scheme.clone(), args.scheme.clone()),
             ("--coordinates", format!("{:?}", args.coordinates), lower(args.coordinates)),
+            ("--compensated", plan.compensated.to_string(), lower(args.compensated)),
             ("--engine", format!("{:?}", args.engine), lower(args.engine)),
             ("--energy-error", engine.energy_error.to_string(), args.energy_error.clone()),
             ("--escape", format!("{:?}", limits.escape_au), args.escape.clone().unwrap_or_default()),
@@ -184,8 +203,7 @@ fn rows(rows: usize) -> Result<usize, CliError> {
 }
 
 fn check_plan(args: &FollowArgs, plan: &Plan, configuration: &Configuration) -> Result<(), CliError> {
-    let step = plan.step_day.unwrap_or_else(|| auto_step_day(configuration));
-    let steps = plan.span_day / step;
+    let steps = steps(plan, configuration);
     if !steps.is_finite() {
         return Err(CliError::Input(format!(
             "{}: no planet is bound to the star alone, so no step can be chosen; give --step and --span as times",
@@ -195,8 +213,9 @@ fn check_plan(args: &FollowArgs, plan: &Plan, configuration: &Configuration) -> 
     // Beyond this many steps, counting them in whole numbers of f64 would no longer be exact.
     if steps > 1e15 {
         return Err(CliError::Input(format!(
-            "--span {:?} takes {steps:.1e} steps of {step:.1e} d, more than 1e15; shorten it or lengthen --step",
-            args.span
+            "--span {:?} takes {steps:.1e} steps of {:.1e} d, more than 1e15; shorten it or lengthen --step",
+            args.span,
+            plan.span_day / steps
         )));
     }
     Ok(())
