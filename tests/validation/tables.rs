@@ -17,6 +17,7 @@ mod de406;
 mod fifty;
 mod giants;
 mod hd_45364;
+mod inspect;
 mod long_runs;
 mod mercury;
 mod random;
@@ -31,9 +32,10 @@ mod variational;
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 13] = [
+const TABLES: [(&str, fn()); 14] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
+    ("inspect", inspect::write),
     ("variational", variational::write),
     ("solar-system", solar_system::write),
     ("schemes", schemes::write),
