@@ -125,6 +125,16 @@ fn what_changes_nothing_is_merged_and_what_does_is_not() {
     assert_eq!(count(&format!("epoch = \"2460000 JD\"\n{round}")), 3);
 }
 
+/// Beside a second star only frames with a meaning are readings: two outside the planets, one inside them.
+#[test]
+fn a_second_star_leaves_few_frames() {
+    let frames = |file: &str| -> Vec<String> {
+        readings(&view(file, "150 orbits")).iter().map(|one| words(one)[0].to_string()).collect()
+    };
+    assert_eq!(frames(include_str!("../systems/castella.toml")), ["astrocentric", "jacobi"]);
+    assert_eq!(frames(include_str!("../systems/gemello.toml")), ["jacobi"]);
+}
+
 #[test]
 fn a_long_chain_of_long_names_fits_the_page() {
     let mut file = String::from("[star]\nmass = \"0.3 Msun\"\n");

@@ -68,8 +68,10 @@ pub fn limit_lines(views: &[BinaryView]) -> Vec<String> {
     out.push(wrapped(
         "  ",
         "Fit 1: Holman & Wiegert (1999), circular coplanar test particles over 1e4 binary periods, with its formal error; \
-         fit 2: Mardling & Aarseth (2001), three masses, the planet's orbit as inner (S-type) or outer one (P-type). Margin: \
-         axis ratio to the limit, above 1 on the stable side; inside of the limit for S-type, outside of it for P-type",
+         S-type for 0.1 <= mu <= 0.9 and e <= 0.8 of the binary, P-type for 0.1 <= mu <= 0.5 and e <= 0.7, here up to 30 deg \
+         of tilt. Fit 2: Mardling & Aarseth (2001), three masses, the planet's orbit as inner (S-type) or outer one (P-type), \
+         mass ratio outer to inner pair up to 5. Margin: ratio of semi-major axes to the limit, above 1 on the stable side, \
+         which is inside of the limit for S-type and outside of it for P-type",
     ));
     out
 }
