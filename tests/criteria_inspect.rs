@@ -128,3 +128,40 @@ fn each_reason_names_its_pairs() {
     let once: std::collections::BTreeSet<&&str> = silent.iter().collect();
     assert_eq!(once.len(), silent.len(), "{silent:?}");
 }
+
+/// The modes are those of the forces in the file, and what relativity would add is told where it is left out.
+#[test]
+fn the_modes_follow_the_physics_of_the_file() {
+    let planets = [(3.0, 5.0, 0.02), (9.0, 4.0, 0.04)];
+    let flowing = |text: &str| inspect(text, &[]).split_whitespace().collect::<Vec<_>>().join(" ");
+    let view =
+        |text: &str| -> serde_json::Value { serde_json::from_str(&inspect(text, &["--json"])).unwrap() };
+    let fastest = |view: &serde_json::Value| -> f64 {
+        let modes = view["criteria"]["secular"]["pericentres"].as_array().unwrap();
+        modes.iter().map(|mode| mode["deg_yr"].as_f64().unwrap()).fold(0.0, f64::max)
+    };
+    let without = system(&planets);
+    let with = format!("{without}[physics]\nrelativity = true\n");
+    let flat = format!(
+        "{without}[physics]\noblateness = {{ j2 = 1e-4, radius = \"1 Rsun\", inclination = \"90 deg\" }}\n"
+    );
+    let page = flowing(&without);
+    assert!(
+        page.contains("Laplace-Lagrange without the star's relativity, to the invariable plane"),
+        "{page}"
+    );
+    assert!(page.contains("relativity, which the file leaves out"), "{page}");
+    assert!(page.contains("Amplitudes: e in the modes g"), "{page}");
+    assert!(page.contains("of the angular momentum of circular orbits"), "{page}");
+    let page = flowing(&with);
+    assert!(page.contains("Laplace-Lagrange with the star's relativity, to the invariable plane"), "{page}");
+    assert!(!page.contains("relativity, which the file leaves out"), "{page}");
+    assert!(flowing(&flat).contains("with the star's J2, without relativity, to the star's equator"));
+    let share = view(&without)["criteria"]["secular"]["relativity_would_add"].as_f64().unwrap();
+    // 3 n G m/(a c²) of the inner planet in deg/yr: G m/c² of the Sun is 9.87e-9 au, a = 0.0407 au; a mode has a part of it.
+    let rate = 3.0 * 360.0 * 365.25 / 3.0 * 9.870_63e-9 / 0.040_72;
+    let (slow, fast) = (fastest(&view(&without)), fastest(&view(&with)));
+    assert!(fast - slow < rate && fast - slow > 0.3 * rate, "{slow} {fast} {rate}");
+    assert!(share > 0.01, "{share}");
+    assert!(view(&with)["criteria"]["secular"]["relativity_would_add"].is_null());
+}

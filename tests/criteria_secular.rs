@@ -1,6 +1,6 @@
 //! Secular modes and the angular momentum deficit against other ways to the same numbers.
 
-use abide::coords::{Configuration, Elements, StatedState, star_centred};
+use abide::coords::{Configuration, Elements, StarOblateness, StatedState, Terms, star_centred};
 use abide::criteria::{
     Oblateness, SecularPlanet, SecularSystem, StarTerms, amd_budget, exact_hill_balance, invariable_elements,
 };
@@ -180,4 +180,54 @@ fn the_invariable_plane_of_the_planets() {
         .into();
     // Jupiter and Saturn alone are Hill stable (Gladman 1993 and older).
     assert!(exact_hill_balance(&Configuration::from_states(SUN, 0.0, giants)).unwrap().stable());
+}
+
+/// The terms of the star come from the configuration: none, or Mercury's published 42.98 arcsec per century (Nobili & Will
+/// 1986 and tests/truth/precession-check.csv), to lowest order in e.
+#[test]
+fn relativity_is_in_where_the_configuration_has_it() {
+    let mut system = eight();
+    let without = SecularSystem::of_stated(&system).unwrap();
+    assert_eq!(without, SecularSystem::of(&system, false).unwrap());
+    system.terms = Terms { relativity: true, oblateness: None };
+    let with = SecularSystem::of_stated(&system).unwrap();
+    let added = with.pericentres[(0, 0)] - without.pericentres[(0, 0)];
+    let arcsec_century = added * 36_525.0 / DEGREE * 3600.0;
+    let e = EIGHT[0].2[1];
+    assert!((arcsec_century / (42.98 * (1.0 - e * e)) - 1.0).abs() < 1e-3, "{arcsec_century}");
+    assert_eq!(with.nodes, without.nodes);
+}
+
+/// A planet 10° above the equator of a tilted star: its node goes round the star's pole, whatever the axes.
+#[test]
+fn with_oblateness_the_equator_is_the_plane() {
+    let (tilt, node) = (70.0 * DEGREE, 25.0 * DEGREE);
+    let pole = [tilt.sin() * node.sin(), -tilt.sin() * node.cos(), tilt.cos()];
+    let orbit = Elements {
+        semi_major_axis_au: 0.1,
+        eccentricity: 0.05,
+        inclination: tilt + 10.0 * DEGREE,
+        ascending_node: node,
+        argument_of_pericentre: 1.0,
+        mean_anomaly: 2.0,
+    };
+    let gm = 1e-5 * SUN;
+    let (pos, vel) = star_centred(Frame::Astrocentric, SUN, &[gm], &[orbit]);
+    let body =
+        StatedState { name: "b".into(), gm, radius_au: 0.0, position_au: pos[0], velocity_au_day: vel[0] };
+    let mut system = Configuration::from_states(SUN, 0.005, vec![body]);
+    let oblateness = StarOblateness { j2: 1e-4, radius_au: 0.006, pole };
+    system.terms = Terms { relativity: false, oblateness: Some(oblateness) };
+    let modes = SecularSystem::of_stated(&system).unwrap().modes();
+    let motion = (SUN * (1.0 + 1e-5) / 1e-3f64).sqrt();
+    let expected = 1.5 * motion * 1e-4 * 0.06f64.powi(2);
+    assert!((modes.nodes[0].frequency_rad_day / -expected - 1.0).abs() < 1e-9);
+    assert!((modes.nodes[0].amplitude[0] - 2.0 * (5.0 * DEGREE).sin()).abs() < 1e-9);
+    assert!((modes.pericentres[0].frequency_rad_day / expected - 1.0).abs() < 1e-9);
+    // ½ (e² + ζ²) of Λ.
+    let share = 0.5 * (0.05f64.powi(2) + (2.0 * (5.0 * DEGREE).sin()).powi(2));
+    assert!((modes.amd_relative / share - 1.0).abs() < 1e-9, "{}", modes.amd_relative);
+    // Farther from the equator the linear theory says nothing.
+    system.terms.oblateness = Some(StarOblateness { pole: [0.0, 0.0, 1.0], ..oblateness });
+    assert!(SecularSystem::of_stated(&system).is_err());
 }

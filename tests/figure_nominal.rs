@@ -3,21 +3,18 @@
 mod figure_world;
 
 use abide::figure::render::{self, Page, Width, page};
-use abide::figure::{Figure, MapInput, map};
+use abide::figure::{Figure, Legend, MapInput, map};
 use abide::survey::Record;
-use abide::system::{Key, Study};
+use abide::system::{Key, Measured, Study, System};
 use figure_world::{SPAN_DAY, axis, records, study, system};
 
 fn drawn(study: &Study, records: &[Record]) -> Figure {
-    let input = MapInput {
-        study,
-        system: &system(),
-        records,
-        column: "megno",
-        span_day: SPAN_DAY,
-        reach: 0,
-        caption: &[],
-    };
+    drawn_of(study, &system(), records)
+}
+
+fn drawn_of(study: &Study, system: &System, records: &[Record]) -> Figure {
+    let input =
+        MapInput { study, system, records, column: "megno", span_day: SPAN_DAY, reach: 0, caption: &[] };
     map(&input).unwrap()
 }
 
@@ -84,4 +81,29 @@ fn a_stated_value_on_one_axis_is_an_upright_line_that_has_no_height() {
     let beside = x + 4.0;
     assert_eq!(pixels.at(&page, (beside, frame.top)), [0, 0, 0]);
     assert_eq!(pixels.at(&page, (beside, frame.top + 9.0)), [255, 255, 255]);
+}
+
+/// The sample of the legend has a bar where the picture has one, and none where no uncertainty is stated.
+#[test]
+fn the_legend_shows_a_bar_only_where_one_is_drawn() {
+    let plane = study(20, 20);
+    let found = records(&plane);
+    let mut exact = system();
+    for planet in &mut exact.planets {
+        let keys: Vec<(Key, Measured)> = planet.stated.iter().collect();
+        keys.iter()
+            .for_each(|(key, m)| planet.stated.insert(*key, Measured { plus: None, minus: None, ..*m }));
+    }
+    for (of, bar) in [(system(), true), (exact, false)] {
+        let figure = drawn_of(&plane, &of, &found);
+        let page = page(&figure, Width::PAGE).unwrap();
+        let pixels = Pixels::of(&render::png(&figure, Width::PAGE).unwrap());
+        let (_, x, y) =
+            page.samples.iter().find(|(entry, _, _)| matches!(entry, Legend::Nominal(_))).unwrap();
+        // A sample is 15 pt by 8 pt: on its middle line the bar reaches almost to its edge, the ring does not.
+        let dark = |across: f64| pixels.at(&page, (x + across, y + 4.0)) < [60, 60, 60];
+        assert_eq!(dark(1.5), bar);
+        assert_eq!(dark(13.5), bar);
+        assert!((0..150).any(|step| dark(0.1 * f64::from(step))), "the ring is there in any case");
+    }
 }

@@ -13,7 +13,7 @@ fn folder_with(system: &CatalogueSystem) -> tempfile::TempDir {
     folder
 }
 
-/// The program reads each of them and names every planet; nothing it prints is not a number.
+/// The program reads each of them and names every planet; nothing it prints is not a number or wider than 100 columns.
 #[test]
 fn inspect_reads_every_catalogue_system() {
     let systems = systems();
@@ -33,6 +33,9 @@ fn inspect_reads_every_catalogue_system() {
         assert!(said.contains(&system.name), "{}:\n{said}", system.name);
         let lines_for = said.lines().filter(|l| l.split_whitespace().next().is_some_and(|w| w.len() == 1));
         assert!(lines_for.count() >= system.planets, "{}:\n{said}", system.name);
+        for line in said.lines() {
+            assert!(line.chars().count() <= 100, "{}: {} columns: {line}", system.name, line.chars().count());
+        }
         assert!(!said.contains("NaN") && !said.contains("inf "), "{}:\n{said}", system.name);
     }
 }

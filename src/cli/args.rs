@@ -14,7 +14,7 @@ pub struct Args {
 
 #[derive(Debug, Subcommand)]
 pub enum Command {
-    /// Look at a system without integrating it
+    /// Look at a system without integrating it; with --readings, integrate its possible readings
     Inspect(InspectArgs),
     /// Follow one configuration: series, verdict, figure
     Follow(FollowArgs),
@@ -30,6 +30,14 @@ pub enum Command {
 pub struct InspectArgs {
     /// System file (TOML)
     pub system: PathBuf,
+    /// Integrate every reading that the file leaves open or that is commonly confused (frame of the elements, whose
+    /// pericentre, transit rule, whose mean longitude) and show verdict and resonant angles of each
+    #[arg(long)]
+    pub readings: bool,
+    /// With --readings: how long each is followed (default: 1e5 orbits of the innermost planet, fewer where that would
+    /// take more than a minute or so)
+    #[arg(long, requires = "readings", allow_hyphen_values = true)]
+    pub span: Option<String>,
     /// Print JSON to standard output instead of text
     #[arg(long)]
     pub json: bool,

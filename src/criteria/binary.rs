@@ -2,6 +2,12 @@
 
 use super::OutOfDomain;
 use super::domain::Domain;
+use super::neighbours::mutual_inclination;
+use crate::coords::{Configuration, Orbit};
+use crate::units::DEGREE;
+
+/// Tilt of a planet's orbit to the binary's up to which it counts as coplanar for Holman & Wiegert, deg; ours.
+const COPLANAR_DEG: f64 = 30.0;
 
 /// Critical semi-major axis and its formal error, in units of the binary's semi-major axis.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -80,6 +86,111 @@ pub fn hierarchical_limit(q: f64, eccentricity: f64, mutual_inclination: f64) ->
     domain.need(tilt, "mutual inclination (rad)", mutual_inclination, "0 <= i <= pi")?;
     let strength = (1.0 + q) * (1.0 + eccentricity) / (1.0 - eccentricity).sqrt();
     Ok(2.8 * strength.powf(0.4) * (1.0 - 0.3 * mutual_inclination / half_turn))
+}
+
+/// A critical semi-major axis of one planet beside a second star.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct CriticalAxis {
+    pub au: f64,
+    /// Formal error of the fit, where one is published.
+    pub error_au: Option<f64>,
+    /// How far on the stable side the planet is, as a ratio of semi-major axes: above 1 stable.
+    pub margin: f64,
+}
+
+/// What both fits say about one planet; each refuses outside its domain.
+#[derive(Clone, Debug, PartialEq)]
+pub struct PlanetLimits {
+    /// Index into `Configuration::planets`.
+    pub planet: usize,
+    /// Around both stars (P-type) or around the star (S-type).
+    pub circles_pair: bool,
+    pub semi_major_axis_au: f64,
+    pub holman_wiegert: Result<CriticalAxis, OutOfDomain>,
+    pub mardling_aarseth: Result<CriticalAxis, OutOfDomain>,
+}
+
+/// The limits of every planet beside a companion, in the order of the planets; empty without one.
+///
+/// From osculating orbits about what each body circles ([`Configuration::orbits`]). S-type: the planet is stable inside
+/// a_c = f a_binary (Holman & Wiegert) and inside a_c = a_binary (1 − e_binary)/f with star and planet as the inner pair
+/// (Mardling & Aarseth). P-type: outside a_c = f a_binary and outside a_c = f a_binary/(1 − e_planet) with the stars as
+/// the inner pair. Holman & Wiegert's planets were coplanar with the binary: refused beyond 30° (ours).
+pub fn binary_limits(configuration: &Configuration) -> Vec<PlanetLimits> {
+    let Some(companion) = configuration.companion_index() else { return Vec::new() };
+    let orbits = configuration.orbits();
+    let of = |planet: usize| {
+        let beside = Beside {
+            star_gm: configuration.star_gm,
+            companion_gm: configuration.planets[companion].gm,
+            planet_gm: configuration.planets[planet].gm,
+            binary: orbits[companion],
+            own: orbits[planet],
+        };
+        let circles_pair = configuration.circles_pair(planet);
+        let (holman_wiegert, mardling_aarseth) =
+            if circles_pair { beside.outside() } else { beside.inside() };
+        let semi_major_axis_au = orbits[planet].elements.semi_major_axis_au;
+        PlanetLimits { planet, circles_pair, semi_major_axis_au, holman_wiegert, mardling_aarseth }
+    };
+    configuration.planet_indices().map(of).collect()
+}
+
+type Said = Result<CriticalAxis, OutOfDomain>;
+
+/// A planet, a star and its companion.
+struct Beside {
+    star_gm: f64,
+    companion_gm: f64,
+    planet_gm: f64,
+    binary: Orbit,
+    own: Orbit,
+}
+
+impl Beside {
+    fn tilt(&self) -> f64 {
+        mutual_inclination(&self.own.elements, &self.binary.elements)
+    }
+
+    /// Orbits that are not ellipses have no axis to compare, tilted ones are not those of Holman & Wiegert.
+    fn coplanar(&self) -> Result<(), OutOfDomain> {
+        let domain = Domain("the limit of Holman & Wiegert (1999)");
+        let eccentricity = self.own.elements.eccentricity;
+        domain.need((0.0..1.0).contains(&eccentricity), "e of the planet", eccentricity, "bound planets")?;
+        let tilt_deg = self.tilt() / DEGREE;
+        let allowed = "nearly coplanar prograde orbits, here up to 30 deg";
+        domain.need(tilt_deg <= COPLANAR_DEG, "mutual inclination (deg)", tilt_deg, allowed)
+    }
+
+    /// S-type: the critical axis is an upper limit.
+    fn inside(&self) -> (Said, Said) {
+        let (binary, own) = (&self.binary.elements, &self.own.elements);
+        let critical = |au: f64, error_au| CriticalAxis { au, error_au, margin: au / own.semi_major_axis_au };
+        let mu = self.companion_gm / (self.star_gm + self.companion_gm);
+        let fit = self.coplanar().and_then(|()| circumstellar_limit(mu, binary.eccentricity)).map(|limit| {
+            let size = binary.semi_major_axis_au;
+            critical(limit.axis_ratio * size, Some(limit.error * size))
+        });
+        let q = self.companion_gm / (self.star_gm + self.planet_gm);
+        let triple = hierarchical_limit(q, binary.eccentricity, self.tilt())
+            .map(|limit| critical(binary.pericentre_au() / limit, None));
+        (fit, triple)
+    }
+
+    /// P-type: the critical axis is a lower limit.
+    fn outside(&self) -> (Said, Said) {
+        let (binary, own) = (&self.binary.elements, &self.own.elements);
+        let critical = |au: f64, error_au| CriticalAxis { au, error_au, margin: own.semi_major_axis_au / au };
+        let stars = self.star_gm + self.companion_gm;
+        let mu = self.companion_gm.min(self.star_gm) / stars;
+        let fit = self.coplanar().and_then(|()| circumbinary_limit(mu, binary.eccentricity)).map(|limit| {
+            let size = binary.semi_major_axis_au;
+            critical(limit.axis_ratio * size, Some(limit.error * size))
+        });
+        let triple = hierarchical_limit(self.planet_gm / stars, own.eccentricity, self.tilt())
+            .map(|limit| critical(limit * binary.semi_major_axis_au / (1.0 - own.eccentricity), None));
+        (fit, triple)
+    }
 }
 
 #[cfg(test)]

@@ -19,10 +19,15 @@ pub fn invariable_elements(configuration: &Configuration) -> Vec<Elements> {
         .iter()
         .map(|p| p.gm * Vector3::from(p.position_au).cross(&(Vector3::from(p.velocity_au_day) - centre)))
         .sum();
+    elements_to_pole(configuration, momentum)
+}
+
+/// Astrocentric elements with the plane across `pole` as reference plane, turned as in [`invariable_elements`].
+pub(super) fn elements_to_pole(configuration: &Configuration, pole: Vector3<f64>) -> Vec<Elements> {
     // An exactly retrograde plane has no shortest way; any half turn about an axis in the plane does.
-    let turn = Rotation3::rotation_between(&momentum, &Vector3::z())
+    let turn = Rotation3::rotation_between(&pole, &Vector3::z())
         .unwrap_or_else(|| Rotation3::from_axis_angle(&Vector3::x_axis(), std::f64::consts::PI));
-    let turn = if momentum.norm() > 0.0 { turn } else { Rotation3::identity() };
+    let turn = if pole.norm() > 0.0 { turn } else { Rotation3::identity() };
     configuration
         .planets
         .iter()

@@ -19,7 +19,10 @@ mod spacing;
 pub use amd::{
     AmdPair, CriticalAmd, amd_pair, collision_critical_amd, hill_critical_amd, overlap_critical_amd,
 };
-pub use binary::{BinaryLimit, circumbinary_limit, circumstellar_limit, hierarchical_limit};
+pub use binary::{
+    BinaryLimit, CriticalAxis, PlanetLimits, binary_limits, circumbinary_limit, circumstellar_limit,
+    hierarchical_limit,
+};
 pub use chain::{NearChain, near_chains};
 pub use crossing::{coplanar_orbits_cross, outer_eccentricity_at_crossing};
 pub use domain::OutOfDomain;

@@ -26,6 +26,8 @@ pub struct SecularModes {
     pub nodes: Vec<SecularMode>,
     /// AMD to second order per planet, share of the total: eccentricity and inclination.
     pub amd_of_planets: Vec<(f64, f64)>,
+    /// AMD to second order over Σ Λ, the angular momentum of circular orbits.
+    pub amd_relative: f64,
 }
 
 impl SecularModes {
@@ -66,6 +68,7 @@ impl SecularSystem {
         SecularModes {
             pericentres: self.solve(&self.pericentres, &z),
             nodes: self.solve(&self.nodes, &zeta),
+            amd_relative: total / self.weight.iter().sum::<f64>(),
             amd_of_planets: of_z.iter().zip(&of_zeta).map(|(a, b)| (share(*a), share(*b))).collect(),
         }
     }

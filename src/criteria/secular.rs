@@ -1,6 +1,7 @@
 //! Laplace–Lagrange secular theory: the equations, linear in eccentricities and inclinations.
 
 use super::domain::Domain;
+use super::invariable::elements_to_pole;
 use super::{OutOfDomain, invariable_elements, laplace_coefficient};
 use crate::coords::{Configuration, Elements};
 use crate::units::LIGHT;
@@ -99,12 +100,35 @@ impl SecularSystem {
     ///
     /// Errors: as [`SecularSystem::new`]; unbound planets too.
     pub fn of(configuration: &Configuration, relativity: bool) -> Result<SecularSystem, OutOfDomain> {
-        let planets: Vec<SecularPlanet> = invariable_elements(configuration)
+        let star = StarTerms { relativity, oblateness: None };
+        SecularSystem::with(configuration, &invariable_elements(configuration), star)
+    }
+
+    /// The equations of a configuration with the star's terms that it states.
+    ///
+    /// The reference plane is the invariable one, or the equator of a star with J₂: only about its pole do the equations
+    /// stay without a constant term, and only along it is the angular momentum kept. Errors: as [`SecularSystem::new`].
+    pub fn of_stated(configuration: &Configuration) -> Result<SecularSystem, OutOfDomain> {
+        let relativity = configuration.terms.relativity;
+        let Some(star) = configuration.terms.oblateness else {
+            return SecularSystem::of(configuration, relativity);
+        };
+        let oblateness = Some(Oblateness { j2: star.j2, radius_au: star.radius_au });
+        let orbits = elements_to_pole(configuration, star.pole.into());
+        SecularSystem::with(configuration, &orbits, StarTerms { relativity, oblateness })
+    }
+
+    fn with(
+        configuration: &Configuration,
+        orbits: &[Elements],
+        star: StarTerms,
+    ) -> Result<SecularSystem, OutOfDomain> {
+        let planets: Vec<SecularPlanet> = orbits
             .iter()
             .zip(&configuration.planets)
             .map(|(orbit, planet)| SecularPlanet::of(configuration.star_gm, planet.gm, orbit))
             .collect();
-        SecularSystem::new(configuration.star_gm, &planets, StarTerms { relativity, oblateness: None })
+        SecularSystem::new(configuration.star_gm, &planets, star)
     }
 }
 

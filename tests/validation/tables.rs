@@ -17,6 +17,7 @@ mod de406;
 mod fifty;
 mod giants;
 mod hd_45364;
+mod inspect;
 mod long_runs;
 mod mercury;
 mod random;
@@ -35,6 +36,7 @@ use std::process::ExitCode;
 const TABLES: [(&str, fn()); 14] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
+    ("inspect", inspect::write),
     ("variational", variational::write),
     ("solar-system", solar_system::write),
     ("schemes", schemes::write),

@@ -33,13 +33,20 @@ pub(super) fn picture(figure: &Figure, page: &Page) -> Result<Picture, RenderErr
     if let Some((frame, bar)) = &page.bar {
         colour_bar(&mut canvas, frame, bar)?;
     }
+    let bar = has_bar(figure);
     for (entry, x, y) in &page.samples {
-        sample(&mut canvas, entry, (*x, *y), share)?;
+        sample(&mut canvas, entry, (*x, *y), (share, bar))?;
     }
     for text in &page.texts {
         canvas.text(&text.label, text.size, (text.x, text.y), text.upwards);
     }
     Ok(canvas.finish())
+}
+
+/// Whether a stated value is drawn with an error bar.
+fn has_bar(figure: &Figure) -> bool {
+    let with_bar = |mark: &Mark| matches!(mark, Mark::Nominal { x_bar, y_bar, .. } if x_bar.is_some() || y_bar.is_some());
+    figure.panels.iter().any(|panel| panel.marks.iter().any(with_bar))
 }
 
 /// Size of the marker on a page of this width (pt), relative to that on 180 mm: narrow axes have short error bars.
@@ -281,7 +288,13 @@ fn colour_bar(canvas: &mut Canvas, frame: &Frame, bar: &ColourBar) -> Result<(),
     Ok(())
 }
 
-fn sample(canvas: &mut Canvas, entry: &Legend, (x, y): (f64, f64), share: f64) -> Result<(), RenderError> {
+/// An entry of the legend; the marker of the stated values has a bar only where one is in the picture.
+fn sample(
+    canvas: &mut Canvas,
+    entry: &Legend,
+    (x, y): (f64, f64),
+    (share, bar): (f64, bool),
+) -> Result<(), RenderError> {
     let (right, bottom) = (x + SAMPLE.0, y + SAMPLE.1);
     let (middle_x, middle_y) = (0.5 * (x + right), 0.5 * (y + bottom));
     match entry {
@@ -293,8 +306,8 @@ fn sample(canvas: &mut Canvas, entry: &Legend, (x, y): (f64, f64), share: f64) -
             Ok(())
         }
         Legend::Nominal(_) => {
-            let ends = (middle_x - 7.5, middle_x + 7.5);
-            nominal(canvas, (middle_x, middle_y), (Some(ends), None), share)
+            let ends = bar.then_some((middle_x - 7.5, middle_x + 7.5));
+            nominal(canvas, (middle_x, middle_y), (ends, None), share)
         }
         Legend::Curve(_, colour) => canvas.path(&[(x, middle_y), (right, middle_y)], 1.2, *colour),
     }

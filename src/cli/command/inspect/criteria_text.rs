@@ -1,13 +1,20 @@
 //! Criteria and secular modes as lines of the page.
 
+use super::binary::limit_lines;
 use super::criteria_view::{AmdView, ChainView, CriteriaView, ModeView, PairCriteria, SecularView};
 use super::table::{lines, short, significant, wrapped};
+use crate::units::DEGREE;
 
 const NAME: usize = 12;
 /// Planets named beside a mode at most.
 const MOST_NAMED: usize = 3;
 /// A planet is named beside a mode from this participation on.
 const NAMED_FROM: f64 = 0.05;
+/// Planets beside each other in the table of amplitudes, and the longest name there.
+const COLUMNS: usize = 8;
+const COLUMN: usize = 8;
+/// Relativity is missed from this share of a frequency on.
+const WORTH_NAMING: f64 = 0.01;
 
 /// The sections, each after an empty line; none without planets in pairs or modes.
 pub fn section(view: &CriteriaView) -> Vec<String> {
@@ -33,12 +40,12 @@ pub fn section(view: &CriteriaView) -> Vec<String> {
     }
     if let Some(secular) = &view.secular {
         out.push(String::new());
-        out.push(
-            "Secular modes (Laplace-Lagrange with the star's relativity; not valid in a resonance)"
-                .to_string(),
-        );
+        out.push(wrapped("", &secular_head(secular)));
         out.extend(modes(secular));
+        out.extend(amplitudes(secular));
+        out.extend(budget(secular));
     }
+    out.extend(limit_lines(&view.binary));
     if !view.silent.is_empty() {
         out.push(String::new());
         out.push("Not said".to_string());
@@ -150,7 +157,51 @@ fn modes(view: &SecularView) -> Vec<String> {
     let mut rows: Vec<Vec<String>> =
         view.pericentres.iter().enumerate().map(|(index, mode)| row("g", index, mode)).collect();
     rows.extend(view.nodes.iter().enumerate().map(|(index, mode)| row("s", index, mode)));
-    let mut out = lines(&["mode", "deg/yr", "period (yr)", "AMD %", "carried by"], &rows, &[4]);
+    lines(&["mode", "deg/yr", "period (yr)", "AMD %", "carried by"], &rows, &[4])
+}
+
+fn secular_head(view: &SecularView) -> String {
+    let star = match (view.relativity, view.oblateness) {
+        (true, true) => "with the star's relativity and J2",
+        (true, false) => "with the star's relativity",
+        (false, true) => "with the star's J2, without relativity",
+        (false, false) => "without the star's relativity",
+    };
+    let plane = if view.oblateness { "the star's equator" } else { "the invariable plane" };
+    format!("Secular modes (Laplace-Lagrange {star}, to {plane}; not valid in a resonance)")
+}
+
+/// What each planet has of each mode.
+fn amplitudes(view: &SecularView) -> Vec<String> {
+    let mut out = vec!["  Amplitudes: e in the modes g, inclination (deg) in the modes s".to_string()];
+    let names: Vec<String> = view.planets.iter().map(|planet| short(&planet.name, COLUMN)).collect();
+    for (part, names) in names.chunks(COLUMNS).enumerate() {
+        let columns = part * COLUMNS..part * COLUMNS + names.len();
+        let row = |letter: &str, index: usize, mode: &ModeView, unit: f64, decimals: usize| {
+            let cells = mode.amplitude[columns.clone()].iter();
+            let cells = cells.map(|amplitude| unsigned_zero(amplitude / unit, decimals));
+            std::iter::once(format!("{letter}{}", index + 1)).chain(cells).collect::<Vec<_>>()
+        };
+        let g = view.pericentres.iter().enumerate().map(|(index, mode)| row("g", index, mode, 1.0, 5));
+        let s = view.nodes.iter().enumerate().map(|(index, mode)| row("s", index, mode, DEGREE, 3));
+        let head: Vec<&str> = std::iter::once("mode").chain(names.iter().map(String::as_str)).collect();
+        out.extend(lines(&head, &g.chain(s).collect::<Vec<_>>(), &[]));
+    }
+    out
+}
+
+/// A number that rounds to zero has no sign.
+fn unsigned_zero(value: f64, decimals: usize) -> String {
+    let text = format!("{value:.decimals$}");
+    if text.trim_matches(['-', '0', '.']).is_empty() { format!("{:.decimals$}", 0.0) } else { text }
+}
+
+/// Who holds the angular momentum deficit, and what relativity would change where it is left out.
+fn budget(view: &SecularView) -> Vec<String> {
+    let mut out = vec![format!(
+        "  Angular momentum deficit, {} of the angular momentum of circular orbits",
+        significant(view.amd_relative, 3)
+    )];
     let rows: Vec<Vec<String>> = view
         .planets
         .iter()
@@ -164,6 +215,13 @@ fn modes(view: &SecularView) -> Vec<String> {
         })
         .collect();
     out.extend(lines(&["planet", "largest e", "AMD % of e", "AMD % of tilt"], &rows, &[]));
+    if let Some(share) = view.relativity_would_add.filter(|share| *share > WORTH_NAMING) {
+        let words = format!(
+            "relativity, which the file leaves out ([physics] relativity = true), would raise a frequency g by {} %",
+            significant(100.0 * share, 2)
+        );
+        out.push(wrapped("  ", &words));
+    }
     out
 }
 

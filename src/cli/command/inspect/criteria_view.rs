@@ -2,6 +2,7 @@
 
 use serde::Serialize;
 
+use super::binary::{self, BinaryView};
 use crate::coords::Configuration;
 use crate::criteria::{self, AmdBudget, Neighbours, OutOfDomain, SecularMode, SecularSystem};
 use crate::system::Frame;
@@ -19,6 +20,8 @@ pub struct CriteriaView {
     pub innermost_amd: Option<f64>,
     pub chains: Vec<ChainView>,
     pub secular: Option<SecularView>,
+    /// Beside a second star only.
+    pub binary: Vec<BinaryView>,
     /// Criteria that say nothing here, with their reason.
     pub silent: Vec<String>,
 }
@@ -65,6 +68,14 @@ pub struct ChainView {
 
 #[derive(Debug, Serialize)]
 pub struct SecularView {
+    /// Whether the star's first post-Newtonian term and its J2 are in, as the file states them.
+    pub relativity: bool,
+    pub oblateness: bool,
+    /// Where relativity is left out: by how much it would raise the frequency that it raises most, as a share.
+    pub relativity_would_add: Option<f64>,
+    /// AMD to second order over the angular momentum of circular orbits, about the invariable plane or, with J2, about
+    /// the star's equator.
+    pub amd_relative: f64,
     pub pericentres: Vec<ModeView>,
     pub nodes: Vec<ModeView>,
     pub planets: Vec<SecularPlanetView>,
@@ -92,16 +103,7 @@ pub struct SecularPlanetView {
 impl CriteriaView {
     pub fn new(configuration: &Configuration, pairs: &[Neighbours]) -> CriteriaView {
         if configuration.companion_index().is_some() {
-            let why = "these criteria are for planets of one star; a second star is not in them".to_string();
-            let (exact_hill, innermost_amd, secular) = (None, None, None);
-            return CriteriaView {
-                pairs: vec![],
-                exact_hill,
-                innermost_amd,
-                chains: vec![],
-                secular,
-                silent: vec![why],
-            };
+            return CriteriaView::beside_star(configuration);
         }
         let mut silent = Silent::default();
         let budget = silent.heard("", criteria::amd_budget(configuration));
@@ -111,7 +113,7 @@ impl CriteriaView {
             .map(|b| ExactHill { found: b.found, needed: b.needed, stable: b.stable() });
         // The modes are what planets do to one another.
         let secular = (configuration.planets.len() > 1)
-            .then(|| silent.heard("", SecularSystem::of(configuration, true)))
+            .then(|| silent.heard("", SecularSystem::of_stated(configuration)))
             .flatten()
             .map(|system| secular(configuration, &system));
         let chains = chains(configuration, pairs);
@@ -123,7 +125,27 @@ impl CriteriaView {
             innermost_amd: budget.map(|budget| budget.innermost_relative),
             chains,
             secular,
+            binary: Vec::new(),
             silent: silent.sentences(),
+        }
+    }
+
+    /// With a second star only the limits beside it are known.
+    fn beside_star(configuration: &Configuration) -> CriteriaView {
+        let mut silent = Silent::default();
+        let binary = binary::limits(configuration, |planet, said| silent.heard(planet, said));
+        let why = "the other criteria are for planets of one star; a second star is not in them".to_string();
+        let mut sentences = silent.sentences();
+        sentences.push(why);
+        let (exact_hill, innermost_amd, secular) = (None, None, None);
+        CriteriaView {
+            pairs: vec![],
+            exact_hill,
+            innermost_amd,
+            chains: vec![],
+            secular,
+            binary,
+            silent: sentences,
         }
     }
 }
@@ -228,6 +250,10 @@ fn secular(configuration: &Configuration, system: &SecularSystem) -> SecularView
         participation: mode.participation.clone(),
     };
     SecularView {
+        relativity: configuration.terms.relativity,
+        oblateness: configuration.terms.oblateness.is_some(),
+        relativity_would_add: relativity_would_add(configuration),
+        amd_relative: modes.amd_relative,
         pericentres: modes.pericentres.iter().map(view).collect(),
         nodes: modes.nodes.iter().map(view).collect(),
         planets: configuration
@@ -242,4 +268,18 @@ fn secular(configuration: &Configuration, system: &SecularSystem) -> SecularView
             })
             .collect(),
     }
+}
+
+/// None where relativity is in.
+fn relativity_would_add(configuration: &Configuration) -> Option<f64> {
+    if configuration.terms.relativity {
+        return None;
+    }
+    let modes = |relativity| SecularSystem::of(configuration, relativity).ok().map(|system| system.modes());
+    let (without, with) = (modes(false)?, modes(true)?);
+    let share = |(one, other): (&SecularMode, &SecularMode)| {
+        (other.frequency_rad_day - one.frequency_rad_day) / one.frequency_rad_day.abs()
+    };
+    let shares = without.pericentres.iter().zip(&with.pericentres).map(share);
+    Some(shares.fold(0.0, f64::max)).filter(|share| share.is_finite())
 }

@@ -176,7 +176,7 @@ pub fn physics_lines(view: &PhysicsView) -> Vec<String> {
     }
     if let Some(star) = &view.oblateness {
         let words = format!(
-            "J2 of the star {:e} at {} Rsun; equator inclined {:.2} deg to the sky, node at {:.2} deg",
+            "J2 of the star {:e} at {} Rsun; equator inclined {:.2} deg to the reference plane, node at {:.2} deg",
             star.j2,
             significant(star.radius_rsun, 4),
             star.inclination_deg,

@@ -1,5 +1,6 @@
 //! The view as a page of at most 100 columns.
 
+use super::angles::angle_lines;
 use super::criteria_text;
 use super::second::{companion_lines, physics_lines};
 use super::table::{PAGE_WIDTH, lines, short, significant, wrapped};
@@ -18,6 +19,9 @@ pub fn page(view: &View) -> String {
         out.push(wrapped(&format!("  {:<17}", line.about), line.words));
     }
     out.extend(assumed(view));
+    out.push(String::new());
+    out.push("Angles as they were read (deg)".to_string());
+    out.extend(angle_lines(&view.angles));
     out.push(String::new());
     out.push("Bodies".to_string());
     out.extend(bodies(view));

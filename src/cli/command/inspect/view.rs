@@ -2,7 +2,9 @@
 
 use serde::Serialize;
 
+use super::angles::{AnglesView, angles};
 use super::caveat::{Caveat, caveats};
+use super::convention::ConventionView;
 use super::criteria_view::CriteriaView;
 use super::second::{CompanionView, PhysicsView, companion, has_meaning, physics};
 use crate::assess;
@@ -10,7 +12,7 @@ use crate::coords::{Configuration, Elements};
 use crate::criteria::{self, Neighbours};
 use crate::kepler;
 use crate::num::wrap_turn;
-use crate::system::{Body, Convention, Frame, Group, Key, Pericentre, System, Transit};
+use crate::system::{Body, Frame, Group, Key, System};
 use crate::units::{self, DEGREE, Unit};
 
 #[derive(Debug, Serialize)]
@@ -19,6 +21,8 @@ pub struct View {
     pub epoch_jd: Option<f64>,
     pub star: StarView,
     pub convention: ConventionView,
+    /// How each angle was read, body by body.
+    pub angles: Vec<AnglesView>,
     pub planets: Vec<PlanetView>,
     pub companion: Option<CompanionView>,
     pub physics: PhysicsView,
@@ -39,21 +43,6 @@ pub struct StarView {
     /// Whether the radius was stated; if not it is that of a star of the Sun's mean density.
     pub radius_stated: bool,
     pub age_gyr: Option<f64>,
-}
-
-/// How the numbers of the file are read: the words of the file, then sentences.
-#[derive(Debug, Serialize)]
-pub struct ConventionView {
-    pub elements: &'static str,
-    pub pericentre: &'static str,
-    pub transit: &'static str,
-    pub in_words: Vec<InWords>,
-}
-
-#[derive(Debug, Serialize)]
-pub struct InWords {
-    pub about: &'static str,
-    pub words: &'static str,
 }
 
 #[derive(Debug, Serialize)]
@@ -140,7 +129,8 @@ impl View {
             title: system.title.clone(),
             epoch_jd: system.epoch_jd,
             star: star(system, configuration),
-            convention: convention(&system.convention, system.epoch_jd.is_some()),
+            convention: super::convention::convention(system),
+            angles: angles(system, configuration),
             planets: planets(system, configuration),
             companion: companion(system, configuration),
             physics: physics(configuration),
@@ -176,56 +166,6 @@ fn star(system: &System, configuration: &Configuration) -> StarView {
         radius_rsun: configuration.star_radius_au * units::AU_M / units::SUN_RADIUS_M,
         radius_stated: system.star.stated.get(Key::Radius).is_some(),
         age_gyr: system.star.stated.value(Key::Age).map(|day| day / (1e9 * units::YEAR_DAY)),
-    }
-}
-
-fn convention(convention: &Convention, has_epoch: bool) -> ConventionView {
-    let elements = match convention.elements {
-        Frame::Astrocentric => "astrocentric: each orbit about the star, mass parameter G (star + planet)",
-        Frame::Jacobi => {
-            "Jacobi: about the centre of mass of star and bodies of shorter period, G (these + body)"
-        }
-        Frame::Barycentric => "barycentric: about the centre of mass of the whole system, G (total mass)",
-    };
-    let (pericentre, pericentre_words) = match convention.pericentre {
-        Pericentre::Planet => {
-            ("planet", "arguments and longitudes are those of the planets' own pericentres")
-        }
-        Pericentre::Star => {
-            ("star", "arguments and longitudes are the star's; the planets' lie 180 deg away")
-        }
-    };
-    let (transit, transit_words, sight) = match convention.transit {
-        Transit::Plus90 => (
-            "+90 deg",
-            "where true anomaly + argument of pericentre (the planet's) = +90 deg",
-            "z points to the observer, so a planet comes nearer at its ascending node",
-        ),
-        Transit::Minus90 => (
-            "-90 deg",
-            "where true anomaly + argument of pericentre (the planet's) = -90 deg",
-            "z points away from the observer, so a planet recedes at its ascending node",
-        ),
-    };
-    let epoch = if has_epoch {
-        "phases and orbits hold at the epoch (TDB)"
-    } else {
-        "no epoch stated: phases hold at time 0, dates cannot be used"
-    };
-    ConventionView {
-        elements: frame_word(convention.elements),
-        pericentre,
-        transit,
-        in_words: [
-            ("elements", elements),
-            ("pericentre", pericentre_words),
-            ("transit", transit_words),
-            ("line of sight", sight),
-            ("reference plane", "the sky: inclination 90 deg is edge-on, node from north through east"),
-            ("epoch", epoch),
-        ]
-        .map(|(about, words)| InWords { about, words })
-        .into(),
     }
 }
 
