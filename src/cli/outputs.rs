@@ -9,8 +9,10 @@ use crate::figure::render::{self, Width};
 use crate::figure::{self, MapInput};
 use crate::report;
 use crate::survey::Record;
-use crate::system::{Measure, Study, System};
+use crate::system::{Criterion, Measure, Study, System};
 
+/// Table of the margins of criteria.
+pub const MARGINS: &str = "criteria.ecsv";
 const CELLS_IN_A_PART: usize = 10_000;
 
 /// A finished study: all that tables and figures are made from.
@@ -18,6 +20,8 @@ pub struct Finished<'a> {
     pub study: &'a Study,
     pub system: &'a System,
     pub plan: &'a Plan,
+    /// Whose borders the map shows.
+    pub criteria: &'a [Criterion],
     /// Every cell, in order.
     pub records: &'a [Record],
 }
@@ -27,7 +31,10 @@ impl Finished<'_> {
     pub fn write(&self, folder: &Path, name: &str) -> Result<(), CliError> {
         let path = folder.join(name);
         let bytes = match name {
-            "map.png" => self.map()?,
+            "map.png" => {
+                write_margins(folder, self.study, self.system, self.criteria)?;
+                self.map()?
+            }
             "summary.txt" => self.summary().into_bytes(),
             _ => return self.write_cells(&path),
         };
@@ -71,7 +78,9 @@ impl Finished<'_> {
             span_day: self.plan.span_day,
             caption: &caption,
         };
-        let figure = figure::map(&input).map_err(CliError::working)?;
+        let mut figure = figure::map(&input).map_err(CliError::working)?;
+        figure::add_criteria(&mut figure, self.study, self.system, self.criteria)
+            .map_err(CliError::working)?;
         render::png(&figure, Width::PAGE).map_err(CliError::working)
     }
 
@@ -85,6 +94,20 @@ impl Finished<'_> {
         report::summary_json(self.study, self.system, self.plan, self.records, nominal)
             .map_err(CliError::working)
     }
+}
+
+/// The margins of criteria in every cell, beside the cells themselves; no file without criteria.
+pub fn write_margins(
+    folder: &Path,
+    study: &Study,
+    system: &System,
+    criteria: &[Criterion],
+) -> Result<(), CliError> {
+    if criteria.is_empty() {
+        return Ok(());
+    }
+    let text = report::criteria_table(study, system, criteria).to_ecsv().map_err(CliError::working)?;
+    disk::write_beside_then_rename(&folder.join(MARGINS), text.as_bytes()).map_err(CliError::working)
 }
 
 impl From<DiskError> for CliError {

@@ -5,7 +5,7 @@ use crate::coords::{BodyKind, Configuration, Elements, Orbit};
 use crate::system::Frame;
 
 /// Mutual inclination up to which two orbits count as coplanar for [`two_planet_balance`], rad (5°).
-const COPLANAR: f64 = 0.087_266_462_599_716_48;
+pub(super) const COPLANAR: f64 = 0.087_266_462_599_716_48;
 
 /// Two planets next to each other by period.
 #[derive(Clone, Debug, PartialEq)]
@@ -80,7 +80,7 @@ pub fn encounter_radius_au(configuration: &Configuration, orbits: &[Orbit], pair
 /// Angle between two orbits, rad: half-angle form, exact for small ones.
 ///
 /// sin²(I/2) = sin²((i₁−i₂)/2) + sin i₁ sin i₂ sin²((Ω₁−Ω₂)/2).
-fn mutual_inclination(one: &Elements, other: &Elements) -> f64 {
+pub(super) fn mutual_inclination(one: &Elements, other: &Elements) -> f64 {
     let tilt = (0.5 * (one.inclination - other.inclination)).sin();
     let twist = (0.5 * (one.ascending_node - other.ascending_node)).sin();
     let square = tilt * tilt + one.inclination.sin() * other.inclination.sin() * twist * twist;
