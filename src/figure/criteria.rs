@@ -24,8 +24,8 @@ pub struct Border {
     pub asked: usize,
     pub said: usize,
     pub quiet: usize,
-    /// Why it said nothing where it did not.
-    pub silent: Option<String>,
+    /// What it needs and did not find where it said nothing: quantity and allowed values, each once.
+    pub silent: Vec<(&'static str, &'static str)>,
 }
 
 /// The border of a criterion over the axes of a study.
@@ -35,11 +35,15 @@ pub struct Border {
 pub fn border(study: &Study, system: &System, criterion: Criterion) -> Border {
     let across = places(&study.axes[0], system);
     let up = study.axes.get(1).map(|axis| places(axis, system));
-    let silent = RefCell::new(None);
+    let silent = RefCell::new(Vec::new());
     let ask = |values: &[f64]| {
         let configuration = configuration_at(system, study, values)?;
         Some(margin(criterion, &configuration).map_err(|error| {
-            silent.borrow_mut().get_or_insert_with(|| error.to_string());
+            let need = (error.quantity, error.allowed);
+            let mut known = silent.borrow_mut();
+            if !known.contains(&need) {
+                known.push(need);
+            }
         }))
     };
     let (mut asked, mut said, mut quiet) = (0, 0, 0);
@@ -137,10 +141,18 @@ fn upright(parts: &mut [Vec<(f64, f64)>], (from, to): (f64, f64)) {
 
 /// Where a criterion says nothing, and why.
 fn silence_words(border: &Border) -> Option<String> {
-    let reason = border.silent.as_deref().filter(|_| border.said < border.asked)?;
+    if border.said == border.asked {
+        return None;
+    }
+    let needs: Vec<String> =
+        border.silent.iter().map(|(what, allowed)| format!("{what}: {allowed}")).collect();
     let share = 100.0 * (border.asked - border.said) as f64 / border.asked as f64;
     let share = if share < 1.0 { "under 1".to_owned() } else { format!("{share:.0}") };
-    Some(format!("No curve ({}) in {share} % of the map: {reason}.", name(border.criterion)))
+    let needs = needs.join("; ");
+    Some(format!(
+        "No curve ({}) in {share} % of the map, outside its domain ({needs}).",
+        name(border.criterion)
+    ))
 }
 
 fn nowhere_words(border: &Border) -> String {

@@ -36,7 +36,7 @@ pub fn criteria_table(study: &Study, system: &System, criteria: &[Criterion]) ->
     let meaning = "margins of analytic criteria: positive on the quiet side, 0 on the border".to_owned();
     let meta = vec![
         ("what".to_owned(), Meta::Text(meaning)),
-        ("made_by".to_owned(), Meta::Text(VERSION.to_owned())),
+        ("version".to_owned(), Meta::Text(VERSION.to_owned())),
     ];
     Table { meta, columns, rows: (0..cell_count(study)).map(row).collect() }
 }

@@ -25,6 +25,10 @@ pub fn run(args: DrawArgs) -> Result<ExitCode, CliError> {
     let stored = survey::read_run(&args.run).map_err(CliError::input)?;
     let file = read_back(&args.run, &stored)?;
     let criteria = criteria(&args.criterion, &file.criteria)?;
+    if args.margins && criteria.is_empty() {
+        let words = "--margins needs a criterion; add --criterion hill, or another";
+        return Err(CliError::Input(words.to_string()));
+    }
     let (mut figure, column) = draw(&file, &stored.records, args.column.as_deref())?;
     let (study, system) = (&file.study, &file.system.system);
     figure::add_criteria(&mut figure, study, system, &criteria).map_err(CliError::input)?;
@@ -32,11 +36,6 @@ pub fn run(args: DrawArgs) -> Result<ExitCode, CliError> {
     let bytes = render::png(&figure, width).map_err(told)?;
     disk::write_beside_then_rename(&path, &bytes).map_err(CliError::input)?;
     if args.margins {
-        if criteria.is_empty() {
-            return Err(CliError::Input(
-                "--margins without a criterion; add --criterion hill, or another".to_string(),
-            ));
-        }
         write_margins(&args.run, study, system, &criteria)?;
         eprintln!("wrote {}", args.run.join(MARGINS).display());
     }
