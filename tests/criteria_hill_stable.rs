@@ -12,14 +12,14 @@ use criteria_support::{Kind, Sampling, draw, follow, met_or_exchanged, wilson};
 fn hill_stable_pairs_never_meet() {
     let sampling = Sampling {
         kind: Kind::Planets(2),
-        mass: (1e-6, 1e-2),
+        mass: (1e-5, 1e-2),
         eccentricity: 0.4,
-        inclination: 20.0,
+        inclination: 6.0,
         companion: ((0.0, 0.0), 0.0),
     };
-    let bins = [(0.75, 1.0), (1.0, 1.1)];
+    let bins = [(0.3, 0.7), (1.0, 1.1)];
     let drawn = draw(Criterion::Hill, &sampling, (1.02, 12.0), &bins, 24, 5);
-    let found = follow(&drawn, 2000.0, 0.5, false);
+    let found = follow(&drawn, 3000.0, 0.5, false);
     let counts: Vec<usize> = bins
         .iter()
         .map(|bin| {
