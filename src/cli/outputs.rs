@@ -1,5 +1,6 @@
 //! What a complete run leaves beside its journal.
 
+use std::ops::Range;
 use std::path::Path;
 
 use crate::assess::Plan;
@@ -8,7 +9,7 @@ use crate::disk::{self, DiskError};
 use crate::figure::render::{self, Width};
 use crate::figure::{self, MapInput};
 use crate::report;
-use crate::survey::Record;
+use crate::survey::{Record, cell_count};
 use crate::system::{Criterion, Measure, Study, System};
 
 /// Table of the margins of criteria.
@@ -54,16 +55,7 @@ impl Finished<'_> {
             let table = report::cells_table(&study, &planets, self.plan, records).to_ecsv();
             table.map_err(CliError::working)
         };
-        let head = text(&[])?;
-        let rows = |records: &[Record]| {
-            let text = text(records)?;
-            let rows = text.strip_prefix(&head).map(str::to_string);
-            rows.ok_or_else(|| {
-                CliError::Working("parts of the table of cells differ in their head".to_string())
-            })
-        };
-        let parts = std::iter::once(Ok(head.clone())).chain(self.records.chunks(CELLS_IN_A_PART).map(rows));
-        disk::write_parts_then_rename(path, parts)
+        write_parts(path, text(&[])?, self.records.chunks(CELLS_IN_A_PART).map(text))
     }
 
     fn map(&self) -> Result<Vec<u8>, CliError> {
@@ -106,8 +98,27 @@ pub fn write_margins(
     if criteria.is_empty() {
         return Ok(());
     }
-    let text = report::criteria_table(study, system, criteria).to_ecsv().map_err(CliError::working)?;
-    disk::write_beside_then_rename(&folder.join(MARGINS), text.as_bytes()).map_err(CliError::working)
+    let text = |cells: Range<u64>| {
+        report::criteria_table(study, system, criteria, cells).to_ecsv().map_err(CliError::working)
+    };
+    let (cells, part) = (cell_count(study), CELLS_IN_A_PART as u64);
+    let parts = (0..cells.div_ceil(part)).map(|k| text(k * part..cells.min((k + 1) * part)));
+    write_parts(&folder.join(MARGINS), text(0..0)?, parts)
+}
+
+/// A table from its head and parts that have the same head each.
+fn write_parts(
+    path: &Path,
+    head: String,
+    parts: impl Iterator<Item = Result<String, CliError>>,
+) -> Result<(), CliError> {
+    let rows = |part: Result<String, CliError>| {
+        let part = part?;
+        let rows = part.strip_prefix(&head).map(str::to_string);
+        rows.ok_or_else(|| CliError::Working("parts of a table differ in their head".to_string()))
+    };
+    let parts = std::iter::once(Ok(head.clone())).chain(parts.map(rows));
+    disk::write_parts_then_rename(path, parts)
 }
 
 impl From<DiskError> for CliError {

@@ -40,11 +40,11 @@ pub(crate) fn zero_lines(nodes: &Nodes, at: impl Fn(f64, f64) -> f64) -> Vec<Vec
     let starts: Vec<Side> = next.keys().filter(|side| !ends.contains(side)).copied().collect();
     let mut lines = Vec::new();
     for start in starts {
-        lines.push(chain(&mut next, start, &place));
+        lines.push(chain(&mut next, start, place));
     }
     // What is left are closed lines.
     while let Some(start) = next.keys().next().copied() {
-        lines.push(chain(&mut next, start, &place));
+        lines.push(chain(&mut next, start, place));
     }
     lines
 }

@@ -1,14 +1,16 @@
 //! The margins of analytic criteria in every cell of a study.
 
+use std::ops::Range;
+
 use super::VERSION;
 use super::table::{Column, Datatype, Entry, Meta, Table};
 use crate::criteria::margin;
-use crate::survey::{cell_count, cell_values, configuration_at};
+use crate::survey::{cell_values, configuration_at};
 use crate::system::{Criterion, Study, System};
 
-/// One row per cell in order, one column per criterion: its margin, positive on the quiet side; absent where the cell has
+/// One row per cell of a range, in order, one column per criterion: its margin, positive on the quiet side; absent where the cell has
 /// no configuration or the criterion says nothing about it.
-pub fn criteria_table(study: &Study, system: &System, criteria: &[Criterion]) -> Table {
+pub fn criteria_table(study: &Study, system: &System, criteria: &[Criterion], cells: Range<u64>) -> Table {
     let mut columns =
         vec![Column::new("cell", "", Datatype::Count, "index of the cell; the first axis runs fastest")];
     for axis in &study.axes {
@@ -38,5 +40,5 @@ pub fn criteria_table(study: &Study, system: &System, criteria: &[Criterion]) ->
         ("what".to_owned(), Meta::Text(meaning)),
         ("version".to_owned(), Meta::Text(VERSION.to_owned())),
     ];
-    Table { meta, columns, rows: (0..cell_count(study)).map(row).collect() }
+    Table { meta, columns, rows: cells.map(row).collect() }
 }

@@ -1,6 +1,7 @@
 //! Random configurations on either side of a criterion's border, and what became of them.
 #![allow(dead_code)]
 
+#[allow(clippy::duplicate_mod, reason = "the tables of reports/validation have it too")]
 #[path = "../validation/random.rs"]
 pub mod random;
 

@@ -81,7 +81,7 @@ fn pieces(line: &[Point], pattern: &[f64]) -> Vec<Vec<Point>> {
         left -= gap(from, to);
         piece.push(to);
     }
-    if index % 2 == 0 && piece.len() > 1 {
+    if index % 2 == 0 && left < pattern[index] {
         found.push(piece);
     }
     found
