@@ -8,8 +8,8 @@ use crate::criteria::margin;
 use crate::survey::{cell_values, configuration_at};
 use crate::system::{Criterion, Study, System};
 
-/// One row per cell of a range, in order, one column per criterion: its margin, positive on the quiet side; absent where the cell has
-/// no configuration or the criterion says nothing about it.
+/// One row per cell of a range, in order, one column per criterion: its margin, positive on the quiet side; absent where
+/// the cell has no configuration or the criterion says nothing about it.
 pub fn criteria_table(study: &Study, system: &System, criteria: &[Criterion], cells: Range<u64>) -> Table {
     let mut columns =
         vec![Column::new("cell", "", Datatype::Count, "index of the cell; the first axis runs fastest")];
