@@ -4,8 +4,9 @@
 //! the limits here are the digits printed.
 
 use abide::criteria::{
-    SecularPlanet, SecularSystem, StarTerms, chaotic_zone, circumbinary_limit, circumstellar_limit,
-    collision_critical_amd, critical_relative_eccentricity, first_order_overlap, hierarchical_limit,
+    LOW_MASS_LIMIT, SecularPlanet, SecularSystem, StarTerms, chaotic_zone, circular_limit,
+    circumbinary_limit, circumstellar_limit, collision_critical_amd, critical_relative_eccentricity,
+    eccentric_chaotic_zone, first_order_overlap, hierarchical_limit, mutual_hill_radius_au,
 };
 use abide::units::{DEGREE, YEAR_DAY};
 
@@ -15,6 +16,7 @@ const ARCSEC: f64 = DEGREE / 3600.0;
 struct Row {
     quantity: String,
     value: String,
+    uncertainty: String,
     notes: String,
 }
 
@@ -45,7 +47,12 @@ fn rows(prefix: &str, expected: usize) -> Vec<Row> {
         .records()
         .map(|record| record.unwrap())
         .filter(|record| record[0].starts_with(prefix))
-        .map(|record| Row { quantity: record[0].into(), value: record[1].into(), notes: record[6].into() })
+        .map(|record| Row {
+            quantity: record[0].into(),
+            value: record[1].into(),
+            uncertainty: record[2].into(),
+            notes: record[6].into(),
+        })
         .collect();
     assert_eq!(rows.len(), expected, "{prefix}");
     rows
@@ -127,14 +134,78 @@ fn hadden_and_lithwick() {
 #[test]
 fn overlap_widths() {
     let mut count = 0;
+    let only = |name: &str| rows(name, 1)[0].number();
+    let power = |mu: f64| mu.powf(2.0 / 7.0);
+    assert!((chaotic_zone(1e-5).unwrap() / power(1e-5) - only("Wisdom overlap")).abs() < 1e-14);
+    assert!((first_order_overlap(1e-5).unwrap() / power(1e-5) - only("Deck overlap")).abs() < 1e-14);
     for row in rows("widths at mu", 4) {
         let mu = row.given("mu=");
         let widths: Vec<f64> = row.value.split('/').map(|width| width.parse().unwrap()).collect();
         assert!((chaotic_zone(mu).unwrap() - widths[0]).abs() < 1e-10, "{}", row.quantity);
         assert!((first_order_overlap(mu).unwrap() - widths[2]).abs() < 1e-10, "{}", row.quantity);
+        // 2√3 mutual Hill radii in the limit of small masses.
+        assert!((LOW_MASS_LIMIT * (mu / 3.0).cbrt() - widths[3]).abs() < 1e-10, "{}", row.quantity);
         count += 1;
     }
     assert_eq!(count, 4);
+}
+
+/// Mustill & Wyatt (2012), both coefficients from memory: the width and the eccentricity from which on it is used.
+#[test]
+fn eccentric_overlap_coefficients() {
+    let width = rows("Mustill-Wyatt eccentric", 1)[0].number();
+    let critical = rows("Mustill-Wyatt critical", 1)[0].number();
+    for mu in [1e-6f64, 1e-5, 1e-4] {
+        let edge = critical * mu.powf(3.0 / 7.0);
+        assert_eq!(eccentric_chaotic_zone(mu, 0.999 * edge).unwrap(), chaotic_zone(mu).unwrap());
+        for e in [1.001 * edge, 0.1, 0.3] {
+            let found = eccentric_chaotic_zone(mu, e).unwrap() / (e * mu).powf(0.2);
+            assert!((found - width).abs() < 1e-13, "{mu} {e}: {found}");
+        }
+    }
+}
+
+/// Gladman (1993), 2√3 seen quoted; the two values of its notes are roots computed independently.
+#[test]
+fn hill_limit_of_small_masses() {
+    let row = &rows("Hill limit low-mass", 1)[0];
+    let printed: f64 = row.value.split_once('=').unwrap().1.parse().unwrap();
+    assert!((LOW_MASS_LIMIT - printed).abs() < 5e-5);
+    let tail = row.notes.split_once("exact root gives ").unwrap().1;
+    let words: Vec<&str> = tail.split_whitespace().collect();
+    // "3.46387 at 1e-6 and 3.4414 at 1e-3 total mass"
+    for (expected, total) in [(words[0], words[2]), (words[4], words[6])] {
+        let (limit, total): (f64, f64) = (expected.parse().unwrap(), total.parse().unwrap());
+        let gap = circular_limit([0.5 * total; 2]).unwrap();
+        let found = gap / mutual_hill_radius_au(1.0, [0.5 * total; 2], [1.0, 1.0 + gap]);
+        let digits = expected.split_once('.').unwrap().1.len() as i32;
+        assert!((found - limit).abs() <= 0.5 * 10f64.powi(-digits), "{total}: {found} for {limit}");
+    }
+}
+
+/// Holman & Wiegert (1999): standard errors of the coefficients, from memory, as if independent.
+#[test]
+fn holman_and_wiegert_errors() {
+    let power = |name: &str, letter: &str| match () {
+        () if name.contains(&format!("{letter}^2")) => 2,
+        () if name.split('*').any(|part| part == letter) => 1,
+        () => 0,
+    };
+    for (prefix, limit, count) in [
+        ("Holman-Wiegert S-type", circumstellar_limit as fn(f64, f64) -> Result<_, _>, 6),
+        ("Holman-Wiegert P-type", circumbinary_limit, 7),
+    ] {
+        let rows = rows(prefix, count);
+        for (mu, e) in [(0.1, 0.0), (0.5, 0.0), (0.2, 0.3), (0.4, 0.7)] {
+            let term = |row: &Row| {
+                let name = row.quantity[prefix.len()..].trim();
+                let error: f64 = row.uncertainty.parse().unwrap();
+                (error * f64::powi(e, power(name, "e")) * f64::powi(mu, power(name, "mu"))).powi(2)
+            };
+            let expected = rows.iter().map(term).sum::<f64>().sqrt();
+            assert!((limit(mu, e).unwrap().error - expected).abs() < 1e-14, "{prefix} {mu} {e}");
+        }
+    }
 }
 
 fn secular(gm: f64, axis: f64, motion: f64) -> SecularPlanet {
@@ -226,7 +297,14 @@ fn eight_planets_with_and_without_relativity() {
 fn relativity_alone() {
     let sun = 0.017_202_098_95f64.powi(2);
     // a and e of J2000 mean elements (common tables, from memory).
-    let orbits = [("Mercury", 0.38709927f64, 0.20563593f64), ("Venus", 0.72333566, 0.00677672)];
+    let orbits = [
+        ("Mercury", 0.38709927f64, 0.20563593f64),
+        ("Venus", 0.72333566, 0.00677672),
+        ("Earth", 1.00000261, 0.01671123),
+        ("Mars", 1.52371034, 0.09339410),
+        ("Jupiter", 5.20288700, 0.04838624),
+        ("Saturn", 9.53667594, 0.05386179),
+    ];
     for (name, axis, e) in orbits {
         let row = &rows(&format!("1PN perihelion advance {name}"), 1)[0];
         let motion = (sun / axis.powi(3)).sqrt();
@@ -236,4 +314,42 @@ fn relativity_alone() {
         let century = mode / ARCSEC * 100.0 * YEAR_DAY;
         assert!((century - row.number()).abs() <= 2e-4, "{name}: {century}");
     }
+}
+
+/// No row of the table is left without a check: which test holds it, here or in another file.
+#[test]
+fn every_row_has_its_check() {
+    const HELD: [(&str, &str); 17] = [
+        ("first-order Laplace-Lagrange", "eight_planets_with_and_without_relativity"),
+        ("same with 1PN", "eight_planets_with_and_without_relativity"),
+        ("Jupiter-Saturn example", "jupiter_and_saturn"),
+        ("Holman-Wiegert", "holman_and_wiegert_coefficients, …_errors"),
+        ("Wisdom overlap", "overlap_widths"),
+        ("Deck overlap", "overlap_widths"),
+        ("Mustill-Wyatt", "eccentric_overlap_coefficients"),
+        ("widths at mu", "overlap_widths"),
+        ("critical relative AMD", "critical_amd_of_collision"),
+        ("AMD ", "criteria_secular: angular_momentum_deficit_of_the_planets"),
+        ("invariable plane", "criteria_secular: the_invariable_plane_of_the_planets"),
+        ("Mardling-Aarseth", "mardling_and_aarseth"),
+        ("Hadden-Lithwick", "hadden_and_lithwick"),
+        ("1PN perihelion advance", "relativity_alone"),
+        ("Hill limit low-mass", "hill_limit_of_small_masses"),
+        ("HD 45364", "frequency_planets"),
+        // The program uses neither; they stand beside the coefficients that it does use.
+        (
+            "",
+            "Duncan-Quinn-Tremaine coefficient; Gladman chaotic boundary coefficient (x mu^(2/7), two equal planets)",
+        ),
+    ];
+    let mut used = [false; HELD.len()];
+    for row in rows("", 104) {
+        let place = HELD.iter().position(|(prefix, test)| {
+            let named = prefix.is_empty() && test.split("; ").any(|name| name == row.quantity);
+            named || !prefix.is_empty() && row.quantity.starts_with(prefix)
+        });
+        let place = place.unwrap_or_else(|| panic!("{:?} has no check", row.quantity));
+        used[place] = true;
+    }
+    assert!(used.iter().all(|used| *used), "{used:?}");
 }

@@ -165,6 +165,20 @@ fn the_invariable_plane_of_the_planets() {
     assert!((6.2..6.5).contains(&mean), "{mean}");
     // i of Jupiter to it: 0.32-0.33°.
     assert!((turned[4].inclination / DEGREE - 0.325).abs() < 0.01, "{}", turned[4].inclination / DEGREE);
+    // Inclination and node of the plane in the ecliptic, computed independently from the same elements: the Earth's orbit
+    // lies in the ecliptic, and the node is read off the total angular momentum.
+    let text = include_str!("truth/published-criteria.csv");
+    let row = text.lines().find(|line| line.starts_with("invariable plane")).unwrap();
+    let (inclination, node) = row.split(',').nth(1).unwrap().split_once(" / ").unwrap();
+    let tilt = turned[2].inclination / DEGREE;
+    assert!((tilt - inclination.parse::<f64>().unwrap()).abs() < 2e-4, "{tilt} for {inclination}");
+    let momentum: nalgebra::Vector3<f64> = (system.planets.iter())
+        .map(|p| {
+            p.gm * nalgebra::Vector3::from(p.position_au).cross(&nalgebra::Vector3::from(p.velocity_au_day))
+        })
+        .sum();
+    let found = momentum.x.atan2(-momentum.y) / DEGREE;
+    assert!((found - node.parse::<f64>().unwrap()).abs() < 1e-2, "{found} for {node}");
     for (orbit, planet) in turned.iter().zip(&system.planets) {
         assert!((orbit.semi_major_axis_au / planet.elements.semi_major_axis_au - 1.0).abs() < 1e-13);
         assert!((orbit.eccentricity - planet.elements.eccentricity).abs() < 1e-13);

@@ -78,3 +78,29 @@ fn what_cannot_be_drawn_is_refused_with_what_can() {
     refused(&["run", "--into", "no/such/folder/map.png"], &["no/such/folder"]);
     assert!(!desk.path("run/map.png").exists());
 }
+
+#[test]
+fn borders_of_criteria_are_drawn_on_request() {
+    let desk = Desk::new();
+    run_with(&desk.path("run"), CELLS);
+    desk.abide("draw").args(["run", "--into", "bare.png"]).run().done();
+    let mut seen = vec![desk.read("bare.png")];
+    // In another order the dashes change hands.
+    for pair in [["hill", "crossing"], ["crossing", "hill"]] {
+        let words = ["run", "--criterion", pair[0], "--criterion", pair[1], "--into", "curves.png"];
+        desk.abide("draw").args(words).run().done();
+        let picture = desk.read("curves.png");
+        assert!(!seen.contains(&picture), "{pair:?}");
+        seen.push(picture);
+    }
+    let refused = |words: &[&str], part: &str| {
+        let outcome = desk.abide("draw").arg("run").args(words).run().refused();
+        assert!(outcome.stderr.contains(part), "{outcome:#?}");
+    };
+    refused(&["--criterion", "mass"], "there are hill, crossing");
+    refused(&["--criterion", "hill", "--criterion", "hill"], "given twice");
+    refused(&["--margins"], "--margins needs a criterion");
+    let all: Vec<&str> =
+        abide::system::Criterion::ALL.iter().flat_map(|c| ["--criterion", c.word()]).collect();
+    refused(&all, "6 curves can be told apart");
+}

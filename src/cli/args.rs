@@ -139,6 +139,14 @@ pub struct DrawArgs {
     /// Column to show as colour
     #[arg(long, value_name = "COLUMN")]
     pub column: Option<String>,
+    /// Draw the border of an analytic criterion over the map, up to six times, in place of those the study names: hill,
+    /// crossing, intersection, amd-collision, amd-hill, amd-overlap, circular-overlap, overlap, binary, hierarchy;
+    /// "none" draws no border
+    #[arg(long, value_name = "CRITERION")]
+    pub criterion: Vec<String>,
+    /// Write the margins of those criteria in every cell to criteria.ecsv in the run, too
+    #[arg(long)]
+    pub margins: bool,
     /// Picture file (default: map.png in the run, or map-COLUMN.png)
     #[arg(long, value_name = "FILE")]
     pub into: Option<PathBuf>,

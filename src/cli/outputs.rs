@@ -1,5 +1,6 @@
 //! What a complete run leaves beside its journal.
 
+use std::ops::Range;
 use std::path::Path;
 
 use crate::assess::Plan;
@@ -8,9 +9,11 @@ use crate::disk::{self, DiskError};
 use crate::figure::render::{self, Width};
 use crate::figure::{self, MapInput};
 use crate::report;
-use crate::survey::Record;
-use crate::system::{Measure, Study, System};
+use crate::survey::{Record, cell_count};
+use crate::system::{Criterion, Measure, Study, System};
 
+/// Table of the margins of criteria.
+pub const MARGINS: &str = "criteria.ecsv";
 const CELLS_IN_A_PART: usize = 10_000;
 
 /// A finished study: all that tables and figures are made from.
@@ -18,6 +21,8 @@ pub struct Finished<'a> {
     pub study: &'a Study,
     pub system: &'a System,
     pub plan: &'a Plan,
+    /// Whose borders the map shows.
+    pub criteria: &'a [Criterion],
     /// Every cell, in order.
     pub records: &'a [Record],
 }
@@ -27,7 +32,10 @@ impl Finished<'_> {
     pub fn write(&self, folder: &Path, name: &str) -> Result<(), CliError> {
         let path = folder.join(name);
         let bytes = match name {
-            "map.png" => self.map()?,
+            "map.png" => {
+                write_margins(folder, self.study, self.system, self.criteria)?;
+                self.map()?
+            }
             "summary.txt" => self.summary().into_bytes(),
             _ => return self.write_cells(&path),
         };
@@ -47,16 +55,7 @@ impl Finished<'_> {
             let table = report::cells_table(&study, &planets, self.plan, records).to_ecsv();
             table.map_err(CliError::working)
         };
-        let head = text(&[])?;
-        let rows = |records: &[Record]| {
-            let text = text(records)?;
-            let rows = text.strip_prefix(&head).map(str::to_string);
-            rows.ok_or_else(|| {
-                CliError::Working("parts of the table of cells differ in their head".to_string())
-            })
-        };
-        let parts = std::iter::once(Ok(head.clone())).chain(self.records.chunks(CELLS_IN_A_PART).map(rows));
-        disk::write_parts_then_rename(path, parts)
+        write_parts(path, text(&[])?, self.records.chunks(CELLS_IN_A_PART).map(text))
     }
 
     fn map(&self) -> Result<Vec<u8>, CliError> {
@@ -71,7 +70,9 @@ impl Finished<'_> {
             span_day: self.plan.span_day,
             caption: &caption,
         };
-        let figure = figure::map(&input).map_err(CliError::working)?;
+        let mut figure = figure::map(&input).map_err(CliError::working)?;
+        figure::add_criteria(&mut figure, self.study, self.system, self.criteria)
+            .map_err(CliError::working)?;
         render::png(&figure, Width::PAGE).map_err(CliError::working)
     }
 
@@ -85,6 +86,39 @@ impl Finished<'_> {
         report::summary_json(self.study, self.system, self.plan, self.records, nominal)
             .map_err(CliError::working)
     }
+}
+
+/// The margins of criteria in every cell, beside the cells themselves; no file without criteria.
+pub fn write_margins(
+    folder: &Path,
+    study: &Study,
+    system: &System,
+    criteria: &[Criterion],
+) -> Result<(), CliError> {
+    if criteria.is_empty() {
+        return Ok(());
+    }
+    let text = |cells: Range<u64>| {
+        report::criteria_table(study, system, criteria, cells).to_ecsv().map_err(CliError::working)
+    };
+    let (cells, part) = (cell_count(study), CELLS_IN_A_PART as u64);
+    let parts = (0..cells.div_ceil(part)).map(|k| text(k * part..cells.min((k + 1) * part)));
+    write_parts(&folder.join(MARGINS), text(0..0)?, parts)
+}
+
+/// A table from its head and parts that have the same head each.
+fn write_parts(
+    path: &Path,
+    head: String,
+    parts: impl Iterator<Item = Result<String, CliError>>,
+) -> Result<(), CliError> {
+    let rows = |part: Result<String, CliError>| {
+        let part = part?;
+        let rows = part.strip_prefix(&head).map(str::to_string);
+        rows.ok_or_else(|| CliError::Working("parts of a table differ in their head".to_string()))
+    };
+    let parts = std::iter::once(Ok(head.clone())).chain(parts.map(rows));
+    disk::write_parts_then_rename(path, parts)
 }
 
 impl From<DiskError> for CliError {

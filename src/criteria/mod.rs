@@ -9,6 +9,7 @@ mod hill;
 mod hill_exact;
 mod invariable;
 mod laplace;
+mod margin;
 mod modes;
 mod neighbours;
 mod overlap;
@@ -30,6 +31,7 @@ pub use hill::{HillBalance, LOW_MASS_LIMIT, circular_limit, hill_balance, mutual
 pub use hill_exact::exact_hill_balance;
 pub use invariable::{AmdBudget, amd_budget, invariable_elements};
 pub use laplace::laplace_coefficient;
+pub use margin::margin;
 pub use modes::{SecularMode, SecularModes};
 pub use neighbours::{Neighbours, encounter_radius_au, neighbours, two_planet_balance};
 pub use overlap::{

@@ -5,7 +5,7 @@ use crate::coords::{BodyKind, Configuration, Elements, Orbit};
 use crate::system::Frame;
 
 /// Mutual inclination up to which two orbits count as coplanar for [`two_planet_balance`], rad (5°).
-const COPLANAR: f64 = 0.087_266_462_599_716_48;
+pub(super) const COPLANAR: f64 = 0.087_266_462_599_716_48;
 
 /// Two planets next to each other by period.
 #[derive(Clone, Debug, PartialEq)]

@@ -9,6 +9,10 @@ pub enum FigureError {
     Axes { found: usize },
     #[error("cell {cell} is not in the study, which has {cells} cells")]
     CellOutside { cell: u64, cells: u64 },
+    #[error(
+        "{found} criteria are too many for one map; {most} curves can be told apart, so draw the others on a map of their own"
+    )]
+    Criteria { found: usize, most: usize },
     #[error("the series has no row to draw")]
     EmptySeries,
 }

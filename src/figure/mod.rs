@@ -6,6 +6,8 @@
 mod borrow;
 mod colour;
 mod column;
+mod contour;
+mod criteria;
 mod error;
 mod grid;
 mod label;
@@ -20,10 +22,11 @@ mod ticks;
 
 pub use colour::{Region, Rgb, Scale, ScaleKind};
 pub use column::{Column, columns};
+pub use criteria::{Border, add_criteria, border};
 pub use error::FigureError;
 pub use label::{Label, Piece, Raise};
 pub use map::{MapInput, map};
-pub use model::{Axis, ColourBar, Curve, Figure, Legend, Mark, Paint, Panel, Pin};
+pub use model::{Axis, ColourBar, Curve, Figure, Legend, Mark, Paint, Panel, Pin, Stroke};
 pub use nominal::{Nominal, nominal, nominal_cell};
 pub use resonance::{Resonance, resonances};
 pub use series::{PlanetCurves, SeriesInput, series};

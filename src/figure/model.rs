@@ -3,6 +3,7 @@
 use super::colour::{Region, Rgb, Scale, ScaleKind};
 use super::label::Label;
 use super::resonance::Resonance;
+use crate::system::Criterion;
 
 /// A whole figure.
 #[derive(Clone, Debug, PartialEq)]
@@ -88,6 +89,12 @@ pub enum Mark {
         height: f64,
     },
     Curve(Curve),
+    /// Where a criterion changes its answer: chains of points, ticks to their left when `sided`.
+    Border {
+        parts: Vec<Vec<(f64, f64)>>,
+        stroke: Stroke,
+        sided: bool,
+    },
     /// A level line over the whole panel.
     Level {
         at: f64,
@@ -109,6 +116,23 @@ pub struct Curve {
     pub colour: Rgb,
 }
 
+/// How borders are told apart without colour.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Stroke {
+    Full,
+    Long,
+    Dots,
+    LongDot,
+    Short,
+    LongTwoDots,
+}
+
+impl Stroke {
+    /// In the order in which they are given to the borders of a figure.
+    pub const ALL: [Stroke; Criterion::MOST_ON_A_MAP] =
+        [Stroke::Full, Stroke::Long, Stroke::Dots, Stroke::LongDot, Stroke::Short, Stroke::LongTwoDots];
+}
+
 /// The key to the colours of a raster.
 #[derive(Clone, Debug, PartialEq)]
 pub struct ColourBar {
@@ -127,4 +151,5 @@ pub enum Legend {
     Region(Region),
     Nominal(Label),
     Curve(Label, Rgb),
+    Border(Label, Stroke),
 }

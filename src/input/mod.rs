@@ -7,6 +7,7 @@
 mod axis;
 mod companion;
 mod error;
+mod figure;
 mod later;
 mod nearest;
 mod physics;
@@ -22,7 +23,7 @@ pub use quantity::Written;
 
 use std::path::{Path, PathBuf};
 
-use crate::system::{Axis, Encounter, Measured, Spacing, Span, Step, Study, System};
+use crate::system::{Axis, Criterion, Encounter, Measured, Spacing, Span, Step, Study, System};
 use crate::units::Dimension;
 use axis::{AxisWish, Part};
 use source::{Complaint, Source};
@@ -56,6 +57,8 @@ pub struct StudyFile {
     pub path: PathBuf,
     pub text: String,
     pub study: Study,
+    /// Whose borders its map shows; they have no influence on the cells.
+    pub criteria: Vec<Criterion>,
     pub system: SystemFile,
 }
 
@@ -120,7 +123,8 @@ pub fn parse_study(name: &str, text: &str, system: SystemFile) -> Result<StudyFi
         return Err(not_a_study(&source));
     }
     let study = study_file::check(&source, &top, &system.system)?;
-    Ok(StudyFile { path: PathBuf::from(name), text: text.to_string(), study, system })
+    let criteria = figure::criteria(&source, &top)?;
+    Ok(StudyFile { path: PathBuf::from(name), text: text.to_string(), study, criteria, system })
 }
 
 fn not_a_study(source: &Source) -> InputError {

@@ -17,7 +17,7 @@ use crate::system::{
 };
 use crate::units::{Dimension, Unit};
 
-const TOP_KEYS: [&str; 7] = ["title", "system", "span", "measure", "axis", "limits", "engine"];
+const TOP_KEYS: [&str; 8] = ["title", "system", "span", "measure", "axis", "limits", "engine", "figure"];
 const AXIS_KEYS: [&str; 6] = ["vary", "from", "to", "cells", "spacing", "as"];
 const LIMITS_KEYS: [&str; 3] = ["escape", "encounter", "stop_when_chaotic"];
 const ENGINE_KEYS: [&str; 5] = ["scheme", "coordinates", "step", "energy_error", "compensated"];

@@ -5,6 +5,7 @@
 
 mod caption;
 mod cells;
+mod criteria;
 mod ecsv;
 mod error;
 mod series;
@@ -14,6 +15,7 @@ mod words;
 
 pub use caption::caption;
 pub use cells::cells_table;
+pub use criteria::criteria_table;
 pub use error::ReportError;
 pub use series::{PlanetSeries, Series, series_table};
 pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};

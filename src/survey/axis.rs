@@ -1,5 +1,6 @@
 //! Cell index → values on the axes → the system of that cell. The first axis runs fastest.
 
+use crate::coords::{Configuration, configure};
 use crate::system::{Axis, Study, System, VaryError};
 
 /// How many cells a study has.
@@ -30,9 +31,21 @@ pub fn cell_values(study: &Study, cell: u64) -> Vec<f64> {
 /// Errors: a value that the key may not have. The room `input` has tried the ends and corners already, so
 /// between them this happens to a cell only where a key's range is not convex.
 pub fn cell_system(system: &System, study: &Study, cell: u64) -> Result<System, VaryError> {
+    system_at(system, study, &cell_values(study, cell))
+}
+
+/// As [`cell_system`], at any place of the axes: one value per axis, in the axis's unit.
+fn system_at(system: &System, study: &Study, values: &[f64]) -> Result<System, VaryError> {
     let mut moved = system.clone();
-    for (axis, value) in study.axes.iter().zip(cell_values(study, cell)) {
-        axis.apply(value, &mut moved, system)?;
+    for (axis, value) in study.axes.iter().zip(values) {
+        axis.apply(*value, &mut moved, system)?;
     }
     Ok(moved)
+}
+
+/// The configuration at any place of the axes, made as that of a cell is; absent where there is none.
+///
+/// At the values of a cell it is the cell's own configuration. Whether bodies touch at the start is not asked.
+pub fn configuration_at(system: &System, study: &Study, values: &[f64]) -> Option<Configuration> {
+    configure(&system_at(system, study, values).ok()?).ok()
 }

@@ -17,7 +17,7 @@ mod schedule;
 mod tally;
 mod view;
 
-pub use axis::{cell_count, cell_indices, cell_system, cell_values};
+pub use axis::{cell_count, cell_indices, cell_system, cell_values, configuration_at};
 pub use bitmap::Bitmap;
 pub use changes::{changes, first_few};
 pub use error::{Failure, SurveyError};

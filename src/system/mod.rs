@@ -5,6 +5,7 @@
 //! statements into masses and orbits.
 
 mod companion;
+mod criterion;
 mod key;
 mod path;
 mod physics;
@@ -14,6 +15,7 @@ mod study;
 mod vary;
 
 pub use companion::CompanionPlace;
+pub use criterion::Criterion;
 pub use key::{Group, Key};
 pub use path::{COMPANION, PathError, is_planet_name};
 pub use physics::{Oblateness, Physics, satellite_strength_au2};

@@ -3,6 +3,8 @@
 //! `cargo bench --bench validation` writes all of them; `cargo bench --bench validation -- catalogue` one. The same facts
 //! are held by `cargo test`; here they are spread out with longer spans.
 
+#[path = "../criteria_support/mod.rs"]
+mod criteria_support;
 #[path = "../radau_support/mod.rs"]
 mod radau_support;
 #[path = "../shelf/mod.rs"]
@@ -13,6 +15,7 @@ mod truth_support;
 mod catalogue;
 mod classics;
 mod cost_figure;
+mod criteria;
 mod de406;
 mod fifty;
 mod giants;
@@ -20,6 +23,7 @@ mod hd_45364;
 mod inspect;
 mod long_runs;
 mod mercury;
+mod overlap;
 mod random;
 mod reference_integrations;
 mod report;
@@ -33,7 +37,7 @@ mod variational;
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 14] = [
+const TABLES: &[(&str, fn())] = &[
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
     ("inspect", inspect::write),
@@ -49,6 +53,8 @@ const TABLES: [(&str, fn()); 14] = [
     ("round-off-kepler", round_off_kepler::write),
     ("schemes-cost", schemes_cost::write),
     ("fifty", fifty::write),
+    ("overlap", overlap::write),
+    ("criteria", criteria::write),
 ];
 
 fn main() -> ExitCode {

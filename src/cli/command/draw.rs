@@ -5,6 +5,7 @@ use std::process::ExitCode;
 
 use crate::cli::CliError;
 use crate::cli::args::DrawArgs;
+use crate::cli::outputs::{MARGINS, write_margins};
 use crate::coords;
 use crate::disk;
 use crate::figure::render::{self, RenderError, Width};
@@ -12,6 +13,7 @@ use crate::figure::{self, Figure, MapInput};
 use crate::input::{self, StudyFile};
 use crate::report;
 use crate::survey::{self, COARSEST, Record, STUDY, SYSTEM, Stored, cell_count};
+use crate::system::Criterion;
 
 /// Shown when no column is asked for and the run measured it.
 const FIRST_CHOICE: &str = "megno";
@@ -22,10 +24,21 @@ pub fn run(args: DrawArgs) -> Result<ExitCode, CliError> {
     let width = parse_width(&args.width)?;
     let stored = survey::read_run(&args.run).map_err(CliError::input)?;
     let file = read_back(&args.run, &stored)?;
-    let (figure, column) = draw(&file, &stored.records, args.column.as_deref())?;
+    let criteria = criteria(&args.criterion, &file.criteria)?;
+    if args.margins && criteria.is_empty() {
+        let words = "--margins needs a criterion; add --criterion hill, or another";
+        return Err(CliError::Input(words.to_string()));
+    }
+    let (mut figure, column) = draw(&file, &stored.records, args.column.as_deref())?;
+    let (study, system) = (&file.study, &file.system.system);
+    figure::add_criteria(&mut figure, study, system, &criteria).map_err(CliError::input)?;
     let path = args.into.unwrap_or_else(|| args.run.join(file_name(&column)));
     let bytes = render::png(&figure, width).map_err(told)?;
     disk::write_beside_then_rename(&path, &bytes).map_err(CliError::input)?;
+    if args.margins {
+        write_margins(&args.run, study, system, &criteria)?;
+        eprintln!("wrote {}", args.run.join(MARGINS).display());
+    }
     say(&file, stored.records.len(), &path);
     Ok(ExitCode::SUCCESS)
 }
@@ -49,6 +62,31 @@ fn draw(file: &StudyFile, records: &[Record], asked: Option<&str>) -> Result<(Fi
     let reach = COARSEST / 2;
     let map = MapInput { study, system, records, reach, column, span_day: plan.span_day, caption: &caption };
     Ok((figure::map(&map).map_err(CliError::input)?, column.to_owned()))
+}
+
+/// The criteria that were asked for, else those of the study.
+fn criteria(asked: &[String], of_study: &[Criterion]) -> Result<Vec<Criterion>, CliError> {
+    if asked.is_empty() {
+        return Ok(of_study.to_vec());
+    }
+    if asked.len() == 1 && asked[0] == "none" {
+        return Ok(Vec::new());
+    }
+    let mut found = Vec::new();
+    for word in asked {
+        let criterion = Criterion::from_word(word).ok_or_else(|| {
+            let known: Vec<&str> = Criterion::ALL.iter().map(|criterion| criterion.word()).collect();
+            let known = known.join(", ");
+            CliError::Input(format!(
+                "--criterion {word:?} is not known; there are {known}, or \"none\" alone"
+            ))
+        })?;
+        if found.contains(&criterion) {
+            return Err(CliError::Input(format!("--criterion {word} is given twice; leave one out")));
+        }
+        found.push(criterion);
+    }
+    Ok(found)
 }
 
 fn file_name(column: &str) -> PathBuf {

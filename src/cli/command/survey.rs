@@ -129,7 +129,8 @@ impl Wish {
         }
         let records = run.records().map_err(told)?;
         let (study, system) = (&self.file.study, &self.file.system.system);
-        let finished = Finished { study, system, plan: &self.plan, records: &records };
+        let criteria = self.file.criteria.as_slice();
+        let finished = Finished { study, system, plan: &self.plan, criteria, records: &records };
         for name in names {
             finished.write(&self.folder, name)?;
             self.say(format_args!("wrote {}", self.folder.join(name).display()));

@@ -1,8 +1,9 @@
 //! Draws a page.
 
 use super::RenderError;
+use super::border::border;
 use super::canvas::{Canvas, FINER, Picture};
-use super::page::{Frame, POINT, Page, SAMPLE};
+use super::page::{Frame, POINT, Page, SAMPLE, sample_width};
 use crate::figure::colour::{Rgb, Scale, even};
 use crate::figure::model::{Axis, ColourBar, Figure, Legend, Mark, Paint, Panel};
 
@@ -111,6 +112,14 @@ fn draw_mark(canvas: &mut Canvas, mark: &Mark, panel: &Panel, frame: &Frame) -> 
                 curve.points.iter().map(|(x, y)| Some(places.inside((places.across(*x)?, places.up(*y)?))));
             for part in parts(placed) {
                 canvas.path(&part, 0.6, curve.colour)?;
+            }
+            Ok(())
+        }
+        Mark::Border { parts: chains, stroke, sided } => {
+            for chain in chains {
+                let place = |(x, y): &(f64, f64)| Some(places.inside((places.across(*x)?, places.up(*y)?)));
+                let line: Vec<(f64, f64)> = chain.iter().filter_map(place).collect();
+                border(canvas, &line, *stroke, *sided)?;
             }
             Ok(())
         }
@@ -295,7 +304,7 @@ fn sample(
     (x, y): (f64, f64),
     (share, bar): (f64, bool),
 ) -> Result<(), RenderError> {
-    let (right, bottom) = (x + SAMPLE.0, y + SAMPLE.1);
+    let (right, bottom) = (x + sample_width(entry), y + SAMPLE.1);
     let (middle_x, middle_y) = (0.5 * (x + right), 0.5 * (y + bottom));
     match entry {
         Legend::Region(region) => {
@@ -310,5 +319,6 @@ fn sample(
             nominal(canvas, (middle_x, middle_y), (ends, None), share)
         }
         Legend::Curve(_, colour) => canvas.path(&[(x, middle_y), (right, middle_y)], 1.2, *colour),
+        Legend::Border(_, stroke) => border(canvas, &[(x, middle_y), (right, middle_y)], *stroke, false),
     }
 }

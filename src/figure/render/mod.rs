@@ -3,6 +3,7 @@
 //! [`page()`] decides where everything goes, in points, as data; [`png()`] draws the page twice as fine as asked, averages
 //! and encodes it with its physical size.
 
+mod border;
 mod canvas;
 mod draw;
 mod encode;

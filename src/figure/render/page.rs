@@ -74,6 +74,11 @@ const TICK: f64 = 3.5;
 /// Width and height of the samples of the legend.
 pub(super) const SAMPLE: (f64, f64) = (15.0, 8.0);
 
+/// Width of a sample of the legend: dashes need more than their period.
+pub(super) fn sample_width(entry: &Legend) -> f64 {
+    if matches!(entry, Legend::Border(..)) { 25.0 } else { SAMPLE.0 }
+}
+
 /// Lays a figure out at a physical width.
 ///
 /// Errors: a width that is not allowed.
@@ -308,15 +313,16 @@ impl Layout {
         for entry in legend {
             let label = match entry {
                 Legend::Region(region) => Label::plain(region.words()),
-                Legend::Nominal(label) | Legend::Curve(label, _) => label.clone(),
+                Legend::Nominal(label) | Legend::Curve(label, _) | Legend::Border(label, _) => label.clone(),
             };
-            let length = SAMPLE.0 + gap + text::length(&label, size);
+            let sample = sample_width(entry);
+            let length = sample + gap + text::length(&label, size);
             if any && x + length > right {
                 x = MARGIN + 2.0;
                 self.at += SAMPLE.1 + 4.0;
             }
             let line = self.at + 0.5 * (SAMPLE.1 + CAPITAL * size);
-            self.put(label, size, x + SAMPLE.0 + gap, line);
+            self.put(label, size, x + sample + gap, line);
             self.page.samples.push((entry.clone(), x, self.at));
             x += length + 9.0;
             any = true;
