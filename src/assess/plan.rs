@@ -7,6 +7,7 @@ use super::physics::{has_companion, massless};
 use crate::coords::{BodyKind, Configuration};
 use crate::integrate::{Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
+use crate::observe::ResonantAngle;
 use crate::system::{CoordinateChoice, Encounter, Engine, Frame, Group, Limits, Measure, Span, Step, Study};
 
 /// Steps in the shortest pericentre passage time scale when the step is chosen for the user.
@@ -19,6 +20,13 @@ pub const FEWEST_STEPS_PER_PASSAGE: f64 = 15.0;
 /// Steps between two looks at a cell. Times a step of 1/20 of a period this is no whole number of orbits, so that
 /// samples do not always meet a planet at the same phase.
 const BLOCK_STEPS: usize = 127 * SAMPLE_EVERY;
+/// Samples of a shorter block that is still no whole number of orbits of 20 steps: no multiples of 5.
+pub(super) const BLOCK_SAMPLES: [usize; 18] =
+    [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127];
+/// Looks at a cell whose frequency drift is measured, at least: half of them are one Fourier transform.
+const DRIFT_SAMPLES: f64 = 1000.0;
+/// Largest number of steps between two looks at an angle.
+const ANGLE_STEPS: f64 = 100.0;
 /// A cell is looked at least so often.
 const FEWEST_BLOCKS: f64 = 32.0;
 /// Default escape distance in units of the largest apocentre.
@@ -120,6 +128,10 @@ pub struct Plan {
     pub encounter_hill: Option<f64>,
     pub extent: bool,
     pub megno: bool,
+    /// Drift of the mean motions between the halves of the span.
+    pub frequency_drift: bool,
+    /// Watched for libration.
+    pub angle: Option<ResonantAngle>,
     /// A cell ends as chaotic once nothing that follows could make it regular; what would be lost later is not seen.
     pub stop_when_chaotic: bool,
     /// Go through encounters with the adaptive engine.
@@ -139,6 +151,9 @@ impl Plan {
         let mut plan = Plan::with_corners(study.span, &study.limits, &study.engine, nominal, corners);
         plan.extent = wants(Measure::Extent);
         plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
+        plan.frequency_drift = wants(Measure::FrequencyDrift);
+        plan.angle = study.angle.clone().and_then(|a| ResonantAngle::new(a.longitudes, a.pericentres).ok());
+        plan.block_steps = plan.sampled_often(plan.span_day / plan.step_for(nominal));
         if study.axes.iter().any(|axis| axis.target.key.group() == Group::Mass) {
             plan.massless = 0;
         }
@@ -194,6 +209,8 @@ impl Plan {
             encounter_hill,
             extent: true,
             megno: true,
+            frequency_drift: false,
+            angle: None,
             stop_when_chaotic: limits.stop_when_chaotic,
             block_steps: Plan::block_for(span_day / step_day.unwrap_or(auto)),
         };
@@ -217,6 +234,18 @@ impl Plan {
     pub(super) fn block_for(steps: f64) -> usize {
         let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, BLOCK_STEPS as f64);
         (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
+    }
+
+    /// Steps between two looks that what is measured allows, of so many in all: the block as it is, or a shorter one.
+    ///
+    /// The drift of mean motions needs [`DRIFT_SAMPLES`] of the span. An angle must be seen a few times in the shortest
+    /// libration; block ends of [`ANGLE_STEPS`] steps are five orbits apart where the step is 1/20 of one.
+    fn sampled_often(&self, steps: f64) -> usize {
+        let drift = if self.frequency_drift { steps / DRIFT_SAMPLES } else { f64::INFINITY };
+        let angle = if self.angle.is_some() { ANGLE_STEPS } else { f64::INFINITY };
+        let most = drift.min(angle) / SAMPLE_EVERY as f64;
+        let fitting = BLOCK_SAMPLES.into_iter().rev().find(|samples| *samples as f64 <= most);
+        self.block_steps.min(fitting.unwrap_or(1) * SAMPLE_EVERY)
     }
 
     /// The scheme itself.
