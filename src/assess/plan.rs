@@ -25,8 +25,9 @@ pub(super) const BLOCK_SAMPLES: [usize; 18] =
     [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127];
 /// Looks at a cell whose frequency drift is measured, at least: half of them are one Fourier transform.
 const DRIFT_SAMPLES: f64 = 1000.0;
-/// Largest number of steps between two looks at an angle.
-const ANGLE_STEPS: f64 = 100.0;
+/// Inner orbits between two looks at an angle, times √(mass of the planets / star): six looks in a libration of 0.8 of
+/// this unit. Two giants of 1e-3 in a 3:2 resonance librate in 29 inner orbits (HD 45364), which is 0.93.
+const ANGLE_ORBITS: f64 = 0.133;
 /// A cell is looked at least so often.
 const FEWEST_BLOCKS: f64 = 32.0;
 /// Default escape distance in units of the largest apocentre.
@@ -153,7 +154,7 @@ impl Plan {
         plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
         plan.frequency_drift = wants(Measure::FrequencyDrift);
         plan.angle = study.angle.clone().and_then(|a| ResonantAngle::new(a.longitudes, a.pericentres).ok());
-        plan.block_steps = plan.sampled_often(plan.span_day / plan.step_for(nominal));
+        plan.block_steps = plan.sampled_often(nominal, corners);
         if study.axes.iter().any(|axis| axis.target.key.group() == Group::Mass) {
             plan.massless = 0;
         }
@@ -236,14 +237,23 @@ impl Plan {
         (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
     }
 
-    /// Steps between two looks that what is measured allows, of so many in all: the block as it is, or a shorter one.
+    /// Steps between two looks that what is measured allows: the block as it is, or a shorter one.
     ///
     /// The drift of mean motions needs [`DRIFT_SAMPLES`] of the span. An angle must be seen a few times in the shortest
-    /// libration; block ends of [`ANGLE_STEPS`] steps are five orbits apart where the step is 1/20 of one.
-    fn sampled_often(&self, steps: f64) -> usize {
-        let drift = if self.frequency_drift { steps / DRIFT_SAMPLES } else { f64::INFINITY };
-        let angle = if self.angle.is_some() { ANGLE_STEPS } else { f64::INFINITY };
-        let most = drift.min(angle) / SAMPLE_EVERY as f64;
+    /// libration, whose period goes with 1/√(mass of the planets / star), as of any pendulum of mean-motion resonance.
+    fn sampled_often(&self, nominal: &Configuration, corners: &[Configuration]) -> usize {
+        let step = self.step_for(nominal);
+        let drift = if self.frequency_drift { self.span_day / DRIFT_SAMPLES } else { f64::INFINITY };
+        let planets = |one: &Configuration| {
+            let planets = one.planets.iter().filter(|p| p.kind == BodyKind::Planet);
+            planets.map(|p| p.gm).sum::<f64>() / one.star_gm
+        };
+        let mass = corners.iter().map(planets).fold(planets(nominal), f64::max);
+        let angle = match self.angle {
+            Some(_) => ANGLE_ORBITS / mass.sqrt() * innermost_period_day(nominal),
+            None => f64::INFINITY,
+        };
+        let most = drift.min(angle) / step / SAMPLE_EVERY as f64;
         let fitting = BLOCK_SAMPLES.into_iter().rev().find(|samples| *samples as f64 <= most);
         self.block_steps.min(fitting.unwrap_or(1) * SAMPLE_EVERY)
     }
