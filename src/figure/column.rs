@@ -151,16 +151,10 @@ impl Column {
                 names::with_unit(Label::plain("largest ").italic("i").down(name(planet)), "deg")
             }
             Column::ERange(planet) => Label::plain("range of ").italic("e").down(name(planet)),
-            Column::FrequencyDrift => {
-                Label::plain("frequency drift, log |Δ").italic("n").then(" / ").italic("n").then("|")
+            Column::FrequencyDrift => relative_change(Label::plain("frequency drift, ")),
+            Column::FrequencyDriftOf(planet) => {
+                relative_change(Label::plain("frequency drift of ").then(name(planet)).then(", "))
             }
-            Column::FrequencyDriftOf(planet) => Label::plain("frequency drift of ")
-                .then(name(planet))
-                .then(", log |Δ")
-                .italic("n")
-                .then(" / ")
-                .italic("n")
-                .then("|"),
             Column::AngleAmplitude => names::with_unit(Label::plain("libration amplitude"), "deg"),
             Column::AngleCentre => names::with_unit(Label::plain("libration centre"), "deg"),
         }
@@ -171,9 +165,7 @@ impl Column {
         match self {
             Column::SmallestApproachHill => Label::plain("approach [").italic("R").down("H").then("]"),
             Column::EnergyError => Label::plain("energy error"),
-            Column::FrequencyDrift | Column::FrequencyDriftOf(_) => {
-                Label::plain("log |Δ").italic("n").then(" / ").italic("n").then("|")
-            }
+            Column::FrequencyDrift | Column::FrequencyDriftOf(_) => relative_change(Label::default()),
             other => other.label(system),
         }
     }
@@ -195,6 +187,11 @@ impl Column {
             _ => covering(values),
         }
     }
+}
+
+/// The words, then log₁₀ |Δn / n|.
+fn relative_change(words: Label) -> Label {
+    words.then("log").down("10").then(" |Δ").italic("n").then(" / ").italic("n").then("|")
 }
 
 fn turned(scale: Scale) -> Scale {

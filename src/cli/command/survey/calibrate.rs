@@ -124,7 +124,8 @@ impl Work {
         let (mut journal, found) =
             Journal::open(&self.path, &self.layout, cells).map_err(CliError::working)?;
         wish.say(format_args!(
-            "calibration: {cells} surviving cells are followed for {:.0} times the span; {} are done",
+            "calibration: {cells} surviving cells are followed for {:.0} times the span, {} are done; only losses are asked, \
+             so all others are undecided",
             self.plan.span_day / wish.plan.span_day,
             found.done.count()
         ));
