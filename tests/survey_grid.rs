@@ -65,6 +65,7 @@ fn study(axes: Vec<Axis>) -> Study {
         system_path: PathBuf::from("invented.toml"),
         span: Span::Days(1e4),
         measure: vec![Measure::Megno],
+        angle: None,
         axes,
         limits: Limits { escape_au: None, encounter: Encounter::Off, stop_when_chaotic: false },
         engine: Engine { energy_error: 1e-7, ..Engine::default() },

@@ -37,6 +37,22 @@ fn a_line_reads_back_to_the_same_bits() {
     }
 }
 
+/// What `run.json` of earlier runs says of their journals: they can still be read.
+#[test]
+fn a_layout_without_the_later_columns_is_understood() {
+    let words = r#"{"axes": ["c.period"], "planets": ["b", "c"], "extent": true, "seal": "x"}"#;
+    let old: Layout = serde_json::from_str(words).unwrap();
+    assert!(!old.frequency_drift && !old.angle);
+    let all = Layout { frequency_drift: true, angle: true, ..old.clone() };
+    assert_eq!(all.columns().len(), old.columns().len() + 2 + 3);
+    let mut record = record(3);
+    record.values.truncate(1);
+    (record.assessment.frequency_drift, record.assessment.angle) = (Vec::new(), None);
+    let line = old.encode(&record);
+    assert_eq!(old.decode(line.as_bytes()), Some(record));
+    assert_eq!(all.decode(line.as_bytes()), None, "no line of a journal that has the columns");
+}
+
 #[test]
 fn the_header_names_as_many_columns_as_a_line_has() {
     let layout = layout();

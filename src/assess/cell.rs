@@ -1,19 +1,23 @@
 //! One cell on its way: starts, is looked at after every block of steps, ends with an assessment.
 
 mod adaptive;
+mod displacement;
 mod early;
 mod keep;
 mod limits;
+mod long_watch;
 
 use super::assessment::{Approach, Assessment, Loss};
 use super::physics::{barycentric, forces, star_terms, symplectic_start};
 use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Elements};
 use crate::integrate::forces::Forces;
-use crate::integrate::{Advance, Block, StarTerms, State, Tangent, advance, from_map, to_map};
+use crate::integrate::{Advance, Block, StarTerms, State, advance, from_map, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
 use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, judge};
+use displacement::generic_tangent;
 use limits::{Limits, Pair};
+use long_watch::LongWatch;
 
 /// The name of the adaptive engine where a scheme is named.
 pub const ADAPTIVE: &str = "adaptive";
@@ -42,6 +46,7 @@ pub(super) struct Cell {
     conserved: ConservedWatch,
     extent: ExtentWatch,
     growth: GrowthRecord,
+    long: LongWatch,
     mean_megno: Option<f64>,
     approach: Option<Approach>,
     /// The adaptive engine does everything.
@@ -71,6 +76,7 @@ impl Cell {
             conserved: ConservedWatch::new(&start, &terms),
             extent: ExtentWatch::new(configuration.planets.len()),
             growth: GrowthRecord::new(0.0),
+            long: LongWatch::new(configuration),
             outer_period_day: outermost_period_day(configuration),
             metric_day: innermost_period_day(configuration) / std::f64::consts::TAU,
             start,
@@ -110,6 +116,7 @@ impl Cell {
         self.passage_error = 0.0;
         self.extent = ExtentWatch::new(self.start.gm.len());
         self.growth = GrowthRecord::new(self.step_day * per_block);
+        self.long.begin(plan, self.step_day * per_block);
         self.mean_megno = None;
         self.approach = None;
     }
@@ -182,6 +189,7 @@ impl Cell {
         if plan.extent {
             self.extent.see(&orbits);
         }
+        self.long.see(&orbits);
         if let Some(planet) = self.falls_into_star(&orbits) {
             let loss = Loss { time_day: moment.time_day, planet, other: None, how: LostHow::Star };
             return Next::End(Box::new(self.assessment(plan, Some(loss))));
@@ -358,14 +366,17 @@ impl Cell {
         };
         let verdict = judge(&evidence);
         let chaos = self.mean_megno.is_some_and(|y| y >= CHAOTIC_FROM);
-        let ended_early = verdict == Verdict::Untrusted;
+        let untrusted = verdict == Verdict::Untrusted;
+        let whole = loss.is_none() && !untrusted && self.blocks > 0 && self.blocks_done == self.blocks;
         Assessment {
             verdict,
             end_time_day,
-            loss: loss.filter(|_| !ended_early),
+            loss: loss.filter(|_| !untrusted),
             megno: self.mean_megno,
             lyapunov: if chaos { self.growth.lyapunov() } else { None },
             extent: if plan.extent { self.extent.finish() } else { Vec::new() },
+            frequency_drift: if whole { self.long.drift() } else { Vec::new() },
+            angle: if whole { self.long.angle() } else { None },
             smallest_approach: self.approach,
             energy_error,
             angular_momentum_error: energy_error.map(|_| self.conserved.worst_momentum),
@@ -379,19 +390,6 @@ impl Cell {
     fn time_day_or_zero(&self, plan: &Plan) -> f64 {
         if self.blocks == 0 { 0.0 } else { self.time_day(plan) }
     }
-}
-
-/// A displacement in no special direction: MEGNO of a regular orbit tends to 2 from it (along constant energy it
-/// would tend to 0). The same fixed numbers for every cell, in units of each planet's distance and speed.
-fn generic_tangent(state: &State) -> Tangent {
-    // Fractional parts of multiples of the golden section: evenly spread, in no simple ratio.
-    const GOLDEN: f64 = 0.618_033_988_749_894_9;
-    let number = |index: usize| 2.0 * ((index as f64 + 1.0) * GOLDEN).fract() - 1.0;
-    let scaled = |vectors: &[[f64; 3]], offset: usize| -> Vec<[f64; 3]> {
-        let each = vectors.iter().enumerate();
-        each.map(|(p, v)| [0, 1, 2].map(|k| length(v) * number(6 * p + offset + k))).collect()
-    };
-    Tangent { pos: scaled(&state.pos, 0), vel: scaled(&state.vel, 3) }
 }
 
 fn length(v: &[f64; 3]) -> f64 {

@@ -9,7 +9,7 @@ mod physics;
 mod plan;
 mod series;
 
-pub use assessment::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
+pub use assessment::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{BatchWork, assess, run_batch};
 pub use cell::ADAPTIVE;
 pub use one::{FollowProgress, Follower, follow, plan_for_rows};

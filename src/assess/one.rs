@@ -2,15 +2,12 @@
 
 use super::batch::one_block;
 use super::cell::{Cell, Next};
+use super::plan::BLOCK_SAMPLES;
 use super::series::Rows;
 use super::{Assessment, Plan, Row};
 use crate::coords::Configuration;
 use crate::integrate::{Block, SAMPLE_EVERY};
 use crate::num::Kept;
-
-/// Steps of a block in units of [`SAMPLE_EVERY`]; no multiples of 5, so that blocks of a step of 1/20 of a period are no
-/// whole number of orbits. The last is what a plan has by itself.
-const BLOCK_SAMPLES: [usize; 18] = [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127];
 
 /// Follows one configuration and keeps at most `rows` rows (2 at least), evenly spaced, the first at the start.
 ///

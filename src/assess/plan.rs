@@ -7,6 +7,7 @@ use super::physics::{has_companion, massless};
 use crate::coords::{BodyKind, Configuration};
 use crate::integrate::{Block, Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
+use crate::observe::ResonantAngle;
 use crate::system::{
     Compensation, CoordinateChoice, Encounter, Engine, Frame, Group, Limits, Measure, Span, Step, Study,
 };
@@ -21,6 +22,14 @@ pub const FEWEST_STEPS_PER_PASSAGE: f64 = 15.0;
 /// Steps between two looks at a cell. Times a step of 1/20 of a period this is no whole number of orbits, so that
 /// samples do not always meet a planet at the same phase.
 const BLOCK_STEPS: usize = 127 * SAMPLE_EVERY;
+/// Samples of a shorter block that is still no whole number of orbits of 20 steps: no multiples of 5.
+pub(super) const BLOCK_SAMPLES: [usize; 18] =
+    [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127];
+/// Looks at a cell whose frequency drift is measured, at least: half of them are one Fourier transform.
+const DRIFT_SAMPLES: f64 = 1000.0;
+/// Inner orbits between two looks at an angle, times √(mass of the planets / star): six looks in a libration of 0.8 of
+/// this unit. Two giants of 1e-3 in a 3:2 resonance librate in 29 inner orbits (HD 45364), which is 0.93.
+const ANGLE_ORBITS: f64 = 0.133;
 /// A cell is looked at least so often.
 const FEWEST_BLOCKS: f64 = 32.0;
 /// Default escape distance in units of the largest apocentre.
@@ -122,6 +131,10 @@ pub struct Plan {
     pub encounter_hill: Option<f64>,
     pub extent: bool,
     pub megno: bool,
+    /// Drift of the mean motions between the halves of the span.
+    pub frequency_drift: bool,
+    /// Watched for libration.
+    pub angle: Option<ResonantAngle>,
     /// A cell ends as chaotic once nothing that follows could make it regular; what would be lost later is not seen.
     pub stop_when_chaotic: bool,
     /// Go through encounters with the adaptive engine.
@@ -143,6 +156,9 @@ impl Plan {
         let mut plan = Plan::with_corners(study.span, &study.limits, &study.engine, nominal, corners);
         plan.extent = wants(Measure::Extent);
         plan.megno = wants(Measure::Megno) || wants(Measure::Lyapunov);
+        plan.frequency_drift = wants(Measure::FrequencyDrift);
+        plan.angle = study.angle.clone().and_then(|a| ResonantAngle::new(a.longitudes, a.pericentres).ok());
+        plan.block_steps = plan.sampled_often(nominal, corners);
         if study.axes.iter().any(|axis| axis.target.key.group() == Group::Mass) {
             plan.massless = 0;
         }
@@ -199,6 +215,8 @@ impl Plan {
             encounter_hill,
             extent: true,
             megno: true,
+            frequency_drift: false,
+            angle: None,
             stop_when_chaotic: limits.stop_when_chaotic,
             block_steps: Plan::block_for(span_day / step_day.unwrap_or(auto)),
         };
@@ -228,6 +246,27 @@ impl Plan {
     pub(super) fn block(&self, width: usize, planets: usize) -> Block {
         let block = Block::with_massless(self.coordinates, width, planets, self.massless);
         if self.compensated { block.compensated() } else { block }
+    }
+
+    /// Steps between two looks that what is measured allows: the block as it is, or a shorter one.
+    ///
+    /// The drift of mean motions needs [`DRIFT_SAMPLES`] of the span. An angle must be seen a few times in the shortest
+    /// libration, whose period goes with 1/√(mass of the planets / star), as of any pendulum of mean-motion resonance.
+    fn sampled_often(&self, nominal: &Configuration, corners: &[Configuration]) -> usize {
+        let step = self.step_for(nominal);
+        let drift = if self.frequency_drift { self.span_day / DRIFT_SAMPLES } else { f64::INFINITY };
+        let planets = |one: &Configuration| {
+            let planets = one.planets.iter().filter(|p| p.kind == BodyKind::Planet);
+            planets.map(|p| p.gm).sum::<f64>() / one.star_gm
+        };
+        let mass = corners.iter().map(planets).fold(planets(nominal), f64::max);
+        let angle = match self.angle {
+            Some(_) => ANGLE_ORBITS / mass.sqrt() * innermost_period_day(nominal),
+            None => f64::INFINITY,
+        };
+        let most = drift.min(angle) / step / SAMPLE_EVERY as f64;
+        let fitting = BLOCK_SAMPLES.into_iter().rev().find(|samples| *samples as f64 <= most);
+        self.block_steps.min(fitting.unwrap_or(1) * SAMPLE_EVERY)
     }
 
     /// The scheme itself.

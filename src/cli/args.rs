@@ -124,6 +124,16 @@ pub struct SurveyArgs {
     /// Confirm a survey of more than 10 million cells
     #[arg(long)]
     pub really: bool,
+    /// Then follow a sample of the surviving cells longer, and tell which frequency drift predicts loss (needs the
+    /// measure "frequency_drift"; for reporting only)
+    #[arg(long)]
+    pub calibrate: bool,
+    /// With --calibrate: how many cells are followed longer
+    #[arg(long, value_name = "COUNT", default_value_t = 100, requires = "calibrate")]
+    pub calibrate_cells: usize,
+    /// With --calibrate: how many times the span of the study they are followed
+    #[arg(long, value_name = "FACTOR", default_value_t = 10.0, requires = "calibrate")]
+    pub calibrate_longer: f64,
     /// Print nothing but errors
     #[arg(long)]
     pub quiet: bool,

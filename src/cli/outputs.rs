@@ -14,6 +14,9 @@ use crate::system::{Criterion, Measure, Study, System};
 
 /// Table of the margins of criteria.
 pub const MARGINS: &str = "criteria.ecsv";
+/// What a calibration of the run found, in words; part of the summary once it is there.
+pub const CALIBRATION: &str = "calibration.txt";
+
 const CELLS_IN_A_PART: usize = 10_000;
 
 /// A finished study: all that tables and figures are made from.
@@ -36,7 +39,11 @@ impl Finished<'_> {
                 write_margins(folder, self.study, self.system, self.criteria)?;
                 self.map()?
             }
-            "summary.txt" => self.summary().into_bytes(),
+            "summary.txt" => {
+                // Absent when the run was not calibrated.
+                let calibration = std::fs::read_to_string(folder.join(CALIBRATION)).unwrap_or_default();
+                (self.summary() + &calibration).into_bytes()
+            }
             _ => return self.write_cells(&path),
         };
         disk::write_beside_then_rename(&path, &bytes).map_err(CliError::working)

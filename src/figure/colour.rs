@@ -66,6 +66,8 @@ pub enum Region {
     Lost,
     Undecided,
     Untrusted,
+    /// The angle does not librate.
+    NoLibration,
     /// Finished, but this column has no value.
     NoValue,
     /// Not finished.
@@ -95,7 +97,7 @@ pub struct Tone {
 }
 
 impl Region {
-    pub const ALL: [Region; 11] = [
+    pub const ALL: [Region; 12] = [
         Region::Regular,
         Region::Chaotic,
         Region::Escape,
@@ -105,6 +107,7 @@ impl Region {
         Region::Lost,
         Region::Undecided,
         Region::Untrusted,
+        Region::NoLibration,
         Region::NoValue,
         Region::Missing,
     ];
@@ -135,6 +138,7 @@ impl Region {
             Region::Lost => "lost",
             Region::Undecided => "undecided",
             Region::Untrusted => "untrusted",
+            Region::NoLibration => "no libration",
             Region::NoValue => "no value",
             Region::Missing => "not computed",
         }
@@ -155,6 +159,7 @@ impl Region {
             Region::Lost => tone(grey(205), Pattern::Plain, grey(0)),
             Region::Undecided => tone(Rgb(196, 234, 242), Pattern::Level, Rgb(40, 110, 130)),
             Region::Untrusted => tone(Rgb(84, 196, 128), Pattern::Crossed, Rgb(0, 70, 40)),
+            Region::NoLibration => tone(Rgb(226, 220, 200), Pattern::Plain, grey(0)),
             Region::NoValue => tone(grey(255), Pattern::Dots, grey(170)),
             Region::Missing => tone(grey(255), Pattern::Plain, grey(0)),
         }

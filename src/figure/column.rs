@@ -5,7 +5,7 @@ use super::colour::{Region, Scale, ScaleKind};
 use super::label::Label;
 use super::model::Paint;
 use super::names;
-use crate::assess::Assessment;
+use crate::assess::{AngleFound, Assessment};
 use crate::survey::Record;
 use crate::system::System;
 use crate::units::{DEGREE, YEAR_DAY};
@@ -26,6 +26,12 @@ pub enum Column {
     EMin(usize),
     ARange(usize),
     IMax(usize),
+    ERange(usize),
+    /// Of the planet with the largest.
+    FrequencyDrift,
+    FrequencyDriftOf(usize),
+    AngleAmplitude,
+    AngleCentre,
 }
 
 impl Column {
@@ -47,6 +53,11 @@ impl Column {
             Column::EMin(planet) => of(planet, "e_min"),
             Column::ARange(planet) => of(planet, "a_range"),
             Column::IMax(planet) => of(planet, "i_max"),
+            Column::ERange(planet) => of(planet, "e_range"),
+            Column::FrequencyDrift => "frequency_drift".to_owned(),
+            Column::FrequencyDriftOf(planet) => of(planet, "frequency_drift"),
+            Column::AngleAmplitude => "angle.amplitude".to_owned(),
+            Column::AngleCentre => "angle.centre".to_owned(),
         }
     }
 
@@ -62,6 +73,7 @@ impl Column {
     /// The number of a finished cell, in the unit of the label; `verdict` has none.
     pub fn value(self, cell: &Assessment) -> Option<f64> {
         let extent = |planet: usize| cell.extent.get(planet);
+        let libration = |which: usize| Some(cell.angle?.libration()?[which] / DEGREE);
         match self {
             Column::Megno => cell.megno,
             Column::LyapunovTime => {
@@ -78,6 +90,11 @@ impl Column {
                 .map(|x| x.semi_major_axis_au)
                 .map(|range| (range.max - range.min) / (0.5 * (range.max + range.min))),
             Column::IMax(planet) => extent(planet).map(|x| x.inclination.max / DEGREE),
+            Column::ERange(planet) => extent(planet).map(|x| x.eccentricity.max - x.eccentricity.min),
+            Column::FrequencyDrift => cell.worst_drift(),
+            Column::FrequencyDriftOf(planet) => cell.frequency_drift.get(planet).copied(),
+            Column::AngleAmplitude => libration(1),
+            Column::AngleCentre => libration(0),
         }
         .filter(|v| v.is_finite())
     }
@@ -87,7 +104,8 @@ impl Column {
     /// `end_time` and `energy_error` mean something for those cells too, so they show their number.
     pub(crate) fn paint(self, cell: &Assessment) -> Paint {
         let region = Region::of(cell.verdict, cell.loss.map(|l| l.how));
-        let bounded = matches!(cell.verdict, Verdict::Regular | Verdict::Chaotic);
+        let bounded = matches!(cell.verdict, Verdict::Regular | Verdict::Chaotic)
+            || self.needs_no_verdict() && cell.verdict == Verdict::Undecided && cell.steps > 0;
         let always = matches!(self, Column::EndTime | Column::EnergyError);
         if self == Column::Verdict || !(bounded || always) {
             return Paint::Flat(region);
@@ -96,9 +114,22 @@ impl Column {
             Some(value) => Paint::Value(value),
             // A regular cell has no Lyapunov time, which is an answer and not a gap.
             None if self == Column::LyapunovTime && cell.verdict == Verdict::Regular => Paint::Flat(region),
+            // Nor has an angle that circulates an amplitude.
+            None if self.is_of_angle() && cell.angle.is_some_and(|a| a != AngleFound::CannotTell) => {
+                Paint::Flat(Region::NoLibration)
+            }
             None if !bounded => Paint::Flat(region),
             None => Paint::Flat(Region::NoValue),
         }
+    }
+
+    fn is_of_angle(self) -> bool {
+        matches!(self, Column::AngleAmplitude | Column::AngleCentre)
+    }
+
+    /// Told of every cell that lived through the span, also of one whose MEGNO does not decide.
+    fn needs_no_verdict(self) -> bool {
+        self.is_of_angle() || matches!(self, Column::FrequencyDrift | Column::FrequencyDriftOf(_))
     }
 
     pub(crate) fn label(self, system: &System) -> Label {
@@ -119,6 +150,13 @@ impl Column {
             Column::IMax(planet) => {
                 names::with_unit(Label::plain("largest ").italic("i").down(name(planet)), "deg")
             }
+            Column::ERange(planet) => Label::plain("range of ").italic("e").down(name(planet)),
+            Column::FrequencyDrift => relative_change(Label::plain("frequency drift, ")),
+            Column::FrequencyDriftOf(planet) => {
+                relative_change(Label::plain("frequency drift of ").then(name(planet)).then(", "))
+            }
+            Column::AngleAmplitude => names::with_unit(Label::plain("libration amplitude"), "deg"),
+            Column::AngleCentre => names::with_unit(Label::plain("libration centre"), "deg"),
         }
     }
 
@@ -127,6 +165,7 @@ impl Column {
         match self {
             Column::SmallestApproachHill => Label::plain("approach [").italic("R").down("H").then("]"),
             Column::EnergyError => Label::plain("energy error"),
+            Column::FrequencyDrift | Column::FrequencyDriftOf(_) => relative_change(Label::default()),
             other => other.label(system),
         }
     }
@@ -148,6 +187,11 @@ impl Column {
             _ => covering(values),
         }
     }
+}
+
+/// The words, then log₁₀ |Δn / n|.
+fn relative_change(words: Label) -> Label {
+    words.then("log").down("10").then(" |Δ").italic("n").then(" / ").italic("n").then("|")
 }
 
 fn turned(scale: Scale) -> Scale {
@@ -194,6 +238,9 @@ pub fn columns(system: &System, records: &[Record]) -> Vec<Column> {
         Column::EnergyError,
         Column::SmallestApproach,
         Column::SmallestApproachHill,
+        Column::FrequencyDrift,
+        Column::AngleAmplitude,
+        Column::AngleCentre,
     ];
     for planet in 0..system.orbiting().count() {
         all.extend([
@@ -201,6 +248,8 @@ pub fn columns(system: &System, records: &[Record]) -> Vec<Column> {
             Column::EMin(planet),
             Column::ARange(planet),
             Column::IMax(planet),
+            Column::ERange(planet),
+            Column::FrequencyDriftOf(planet),
         ]);
     }
     all.retain(|c| records.iter().any(|r| c.value(&r.assessment).is_some()));

@@ -10,8 +10,6 @@ enum When {
     Present,
     /// The text is one of these.
     Words(&'static [&'static str]),
-    /// The list holds this word.
-    Holds(&'static str),
 }
 
 struct Later {
@@ -25,7 +23,7 @@ struct Later {
 
 const TAKE_OUT: &str = "take it out";
 
-const LATER: [Later; 5] = [
+const LATER: [Later; 4] = [
     Later {
         section: "",
         key: "samples",
@@ -39,13 +37,6 @@ const LATER: [Later; 5] = [
         when: When::Present,
         what: "draws from the stated uncertainties",
         advice: "use one or two [[axis]] tables",
-    },
-    Later {
-        section: "",
-        key: "measure",
-        when: When::Holds("frequency_drift"),
-        what: "the measure \"frequency_drift\"",
-        advice: "use \"megno\", \"lyapunov\", \"extent\"",
     },
     Later {
         section: "engine",
@@ -66,9 +57,6 @@ pub(crate) fn refuse(source: &Source, section: &str, table: &RawTable) -> Result
             (When::Present, _) => Some(entry.key_at.clone()),
             (When::Words(words), value) if words.iter().any(|word| is_word(value, word)) => {
                 Some(entry.value_at.clone())
-            }
-            (When::Holds(word), RawValue::List(list)) => {
-                list.iter().find(|(value, _)| is_word(value, word)).map(|(_, at)| at.clone())
             }
             _ => None,
         };

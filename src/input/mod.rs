@@ -4,6 +4,7 @@
 //! [`System`] or a [`Study`], of which every number is finite, in range and in inner units. What is wrong is said
 //! once, as an [`InputError`]: where, what was found, what is allowed, what to do.
 
+mod angle;
 mod axis;
 mod companion;
 mod error;

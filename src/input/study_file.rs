@@ -3,6 +3,7 @@
 use std::ops::Range;
 use std::path::{Path, PathBuf};
 
+use super::angle;
 use super::axis::{self, AxisWish, Part};
 use super::error::{Fault, InputError};
 use super::later;
@@ -17,7 +18,16 @@ use crate::system::{
 };
 use crate::units::{Dimension, Unit};
 
-const TOP_KEYS: [&str; 8] = ["title", "system", "span", "measure", "axis", "limits", "engine", "figure"];
+const TOP_KEYS: [&str; 9] =
+    ["title", "system", "span", "measure", "angle", "axis", "limits", "engine", "figure"];
+/// What a study may measure; the first three are measured where it does not say.
+const MEASURES: [(&str, Measure); 4] = [
+    ("megno", Measure::Megno),
+    ("lyapunov", Measure::Lyapunov),
+    ("extent", Measure::Extent),
+    ("frequency_drift", Measure::FrequencyDrift),
+];
+const DEFAULT_MEASURES: usize = 3;
 const AXIS_KEYS: [&str; 6] = ["vary", "from", "to", "cells", "spacing", "as"];
 const LIMITS_KEYS: [&str; 3] = ["escape", "encounter", "stop_when_chaotic"];
 const ENGINE_KEYS: [&str; 5] = ["scheme", "coordinates", "step", "energy_error", "compensated"];
@@ -90,10 +100,11 @@ pub(crate) fn check(source: &Source, top: &RawTable, system: &System) -> Result<
         }
     };
     let measure = measure(source, top)?;
+    let angle = top.get("angle").map(|entry| angle::read(source, entry, system)).transpose()?;
     let axes = axes(source, top, system)?;
     let limits = limits(source, top)?;
     let engine = engine(source, top)?;
-    Ok(Study { title, system_path, span, measure, axes, limits, engine })
+    Ok(Study { title, system_path, span, measure, angle, axes, limits, engine })
 }
 
 pub(crate) const SPAN_FORMS: &str = "\"1e5 orbits\" (of the innermost planet) or a time, as \"2 Myr\"";
@@ -139,14 +150,13 @@ fn above_zero(value: f64, at: Range<usize>) -> Result<(), Fail> {
 }
 
 fn measure(source: &Source, top: &RawTable) -> Result<Vec<Measure>, InputError> {
-    let words = [("megno", Measure::Megno), ("lyapunov", Measure::Lyapunov), ("extent", Measure::Extent)];
     let Some(entry) = top.get("measure") else {
-        return Ok(words.iter().map(|(_, measure)| *measure).collect());
+        return Ok(MEASURES.iter().take(DEFAULT_MEASURES).map(|(_, measure)| *measure).collect());
     };
     let mut measures = Vec::new();
     for (text, at) in entry.words(source)? {
         let one = Entry { value: RawValue::Text(text.to_string()), value_at: at, ..entry.clone() };
-        let measure = one.choice(source, "", &words)?;
+        let measure = one.choice(source, "", &MEASURES)?;
         if measures.contains(&measure) {
             let complaint =
                 Complaint::new(Fault::Conflict, format!("\"{text}\" twice")).allowed("each measure once");
@@ -155,11 +165,12 @@ fn measure(source: &Source, top: &RawTable) -> Result<Vec<Measure>, InputError> 
         measures.push(measure);
     }
     if measures.is_empty() {
-        let complaint = Complaint::new(Fault::MissingKey, "an empty list").allowed("megno, lyapunov, extent");
+        let complaint = Complaint::new(Fault::MissingKey, "an empty list")
+            .allowed("megno, lyapunov, extent, frequency_drift");
         return Err(entry.refuse(
             source,
             "",
-            complaint.advice("name at least one, or leave measure out for all"),
+            complaint.advice("name at least one, or leave measure out for the first three"),
         ));
     }
     Ok(measures)

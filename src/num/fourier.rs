@@ -96,6 +96,15 @@ pub fn decompose(samples: &[Complex], step: f64, search: Search) -> Result<Spect
     lines(samples, step, search, false)
 }
 
+/// Frequency of the strongest line of a signal, alone: cheaper than [`decompose`] and, for one line, the same to rounding.
+///
+/// The maximum of |Σ w f exp(−iνt)|, which is also the least-squares fit of a single line. Errors: [`FourierError`].
+/// Source: Laskar (1990, 1993).
+pub fn strongest_line(samples: &[Complex], step: f64, window_power: u32) -> Result<f64, FourierError> {
+    check(samples, step)?;
+    Ok(peak(&Window::new(samples.len(), window_power), samples).frequency / step)
+}
+
 /// One term of a real signal, A cos(νt + φ) with t from the first sample.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Wave {

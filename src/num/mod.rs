@@ -11,6 +11,7 @@ mod whole;
 pub use angle::{turn_near, wrap_half_turn, wrap_turn};
 pub use fourier::{
     Complex, Ended, FEWEST_SAMPLES, FourierError, Line, Search, Spectrum, Wave, decompose, decompose_real,
+    strongest_line,
 };
 pub use kept::{Kept, KeptReader};
 pub use root::{NoBracket, bisect};

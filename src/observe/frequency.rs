@@ -2,7 +2,8 @@
 
 use super::ElementSeries;
 use super::combination::{Fundamental, Kind};
-use crate::num::{Complex, FourierError, Search, Spectrum, decompose};
+use crate::num::{Complex, FourierError, Search, Spectrum, decompose, strongest_line, turn_near};
+use std::f64::consts::TAU;
 
 /// Power of the window for a mean motion: its neighbours in the spectrum are far.
 const MOTION_WINDOW: u32 = 3;
@@ -43,21 +44,14 @@ impl FrequencyDrift {
 /// Drift of the mean motions between the two halves of a series.
 ///
 /// n is the strongest line of a exp(iλ). Regular motion has the same n in both halves, up to the error of the analysis
-/// (falls as T⁻⁴ and faster); chaotic motion wanders. When samples are further apart than half an orbit, n is known up to
-/// whole turns per sample and taken next to the osculating √(μ/a³): the difference n₂ − n₁ is right all the same.
+/// (falls as T⁻⁴ and faster); chaotic motion wanders. See [`motion_drift`] for samples further apart than half an orbit.
 /// Errors: [`FourierError`]; the halves need [`crate::num::FEWEST_SAMPLES`] rows each. No planets give `TooFew`.
 /// Source: Laskar (1990, 1993); as an indicator for planetary systems Correia et al. (2005).
 pub fn frequency_drift(series: &ElementSeries<'_>) -> Result<FrequencyDrift, FourierError> {
-    let half = series.rows().len() / 2;
     let of_planets = (0..series.planets())
         .map(|planet| {
             let signal = series.motion_signal(planet);
-            let osculating = series.osculating_motion(planet);
-            // Both halves have as many rows; an odd one in the middle is left out.
-            let (early, late) = (&signal[..half], &signal[signal.len() - half..]);
-            let first = series.unfolded(strongest(early, series.step_day())?, osculating);
-            let second = series.unfolded(strongest(late, series.step_day())?, first);
-            Ok(MotionDrift { first_rad_day: first, second_rad_day: second })
+            motion_drift(&signal, series.mass_parameter(planet), series.step_day())
         })
         .collect::<Result<Vec<_>, FourierError>>()?;
     let worst = (0..of_planets.len())
@@ -66,10 +60,30 @@ pub fn frequency_drift(series: &ElementSeries<'_>) -> Result<FrequencyDrift, Fou
     Ok(FrequencyDrift { of_planets, worst })
 }
 
-fn strongest(signal: &[Complex], step_day: f64) -> Result<f64, FourierError> {
-    let spectrum = decompose(signal, step_day, Search { most: 1, window_power: MOTION_WINDOW })?;
-    // A signal a exp(iλ) with a > 0 is never so noisy that it has no line, unless λ is.
-    Ok(spectrum.lines.first().map_or(f64::NAN, |line| line.frequency))
+/// Drift of one planet's mean motion from a exp(iλ) at even times; `mass_parameter` is G (star + planet), au³ day⁻².
+///
+/// When samples are further apart than half an orbit, n is known up to whole turns per sample. In the first half it is
+/// taken next to the mean of the osculating √(μ/a³); in the second next to what is found in the first, moved by the
+/// change of that mean, so that a drift of more than half a turn per sample is not folded back.
+/// Errors: as [`frequency_drift`].
+pub fn motion_drift(
+    signal: &[Complex],
+    mass_parameter: f64,
+    step_day: f64,
+) -> Result<MotionDrift, FourierError> {
+    // Both halves have as many rows; an odd one in the middle is left out.
+    let half = signal.len() / 2;
+    let (early, late) = (&signal[..half], &signal[signal.len() - half..]);
+    let osculating = |part: &[Complex]| {
+        let motions = part.iter().map(|z| (mass_parameter / z.norm().powi(3)).sqrt());
+        motions.sum::<f64>() / part.len() as f64
+    };
+    let fold = TAU / step_day;
+    let near = osculating(early);
+    let first = turn_near(strongest_line(early, step_day, MOTION_WINDOW)?, near, fold);
+    let moved = first + (osculating(late) - near);
+    let second = turn_near(strongest_line(late, step_day, MOTION_WINDOW)?, moved, fold);
+    Ok(MotionDrift { first_rad_day: first, second_rad_day: second })
 }
 
 /// Fundamental frequencies of a series: n of every planet, then a g for every planet, each the strongest line of
@@ -86,7 +100,7 @@ pub fn fundamentals(
 ) -> Result<Vec<Fundamental>, FourierError> {
     let mut all = Vec::new();
     for (planet, name) in names.iter().enumerate().take(series.planets()) {
-        let line = strongest(&series.motion_signal(planet), series.step_day())?;
+        let line = strongest_line(&series.motion_signal(planet), series.step_day(), MOTION_WINDOW)?;
         let frequency = series.unfolded(line, series.osculating_motion(planet));
         all.push(Fundamental { name: format!("n_{name}"), kind: Kind::Motion, rad_day: frequency });
     }

@@ -8,9 +8,9 @@ const FEWEST_PERIODS: f64 = 2.0;
 /// A drift over the span, against the half-range of the angle, beyond which it may be leaving.
 const LEAVING: f64 = 0.5;
 /// A step between samples larger than this may be a turn in the other direction.
-const LARGEST_STEP: f64 = 0.8 * PI;
+pub(super) const LARGEST_STEP: f64 = 0.8 * PI;
 /// Share of such steps beyond which the angle cannot be followed from sample to sample.
-const FEW_STEPS: f64 = 0.002;
+pub(super) const FEW_STEPS: f64 = 0.002;
 
 /// How an angle moves over the span.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -77,9 +77,19 @@ pub fn angle_motion(angles: &[f64], step_day: f64) -> Result<AngleMotion, Fourie
     };
     let least = angle.iter().copied().fold(f64::MAX, f64::min);
     let most = angle.iter().copied().fold(f64::MIN, f64::max);
-    let range = most - least;
+    unwrapped_motion(&angle, [least, most], step_day)
+}
+
+/// [`angle_motion`] of an angle that has been unwrapped already; `ends` are its smallest and largest value, also between
+/// these times.
+pub(super) fn unwrapped_motion(
+    angle: &[f64],
+    ends: [f64; 2],
+    step_day: f64,
+) -> Result<AngleMotion, FourierError> {
+    let range = ends[1] - ends[0];
     if range < TAU {
-        return within_a_turn(&angle, range, step_day);
+        return within_a_turn(angle, ends, step_day);
     }
     let net = angle.last().zip(angle.first()).map_or(0.0, |(last, first)| last - first);
     let span_day = step_day * (angle.len() - 1) as f64;
@@ -91,11 +101,12 @@ pub fn angle_motion(angles: &[f64], step_day: f64) -> Result<AngleMotion, Fourie
     }
 }
 
-fn within_a_turn(angle: &[f64], range: f64, step_day: f64) -> Result<AngleMotion, FourierError> {
+fn within_a_turn(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<AngleMotion, FourierError> {
+    let range = ends[1] - ends[0];
     let mean = centre(angle);
     let swing: Vec<f64> = angle.iter().map(|angle| angle - mean).collect();
     let span_day = step_day * (angle.len() - 1) as f64;
-    let amplitude = swing.iter().fold(0.0f64, |most, x| most.max(x.abs()));
+    let amplitude = (ends[1] - mean).max(mean - ends[0]);
     let waves = decompose_real(&swing, step_day, Search { most: 4, window_power: 1 })?;
     // Noise, or an angle that stands still: nothing shows that it would come back.
     let Some(main) = waves.first() else {

@@ -2,6 +2,7 @@
 
 mod combination;
 mod conserved;
+mod even_rows;
 mod extent;
 mod frequency;
 mod growth;
@@ -9,16 +10,20 @@ mod libration;
 mod quasi_periodic;
 mod resonance;
 mod series;
+mod watch;
 
 pub use combination::{Combination, Fundamental, Kind, Namer, Rule};
 pub use conserved::ConservedWatch;
 pub use extent::{Extent, ExtentWatch, Range};
-pub use frequency::{FrequencyDrift, MotionDrift, frequency_drift, fundamental_nodes, fundamentals};
+pub use frequency::{
+    FrequencyDrift, MotionDrift, frequency_drift, fundamental_nodes, fundamentals, motion_drift,
+};
 pub use growth::{GrowthRecord, Lyapunov};
 pub use libration::{AngleMotion, Libration, WhyNot, angle_motion};
 pub use quasi_periodic::{NamedLine, QuasiPeriodic, quasi_periodic};
 pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
 pub use series::{ElementSeries, SeriesError};
+pub use watch::{AngleWatch, MOST_ROWS, MotionWatch};
 
 use crate::coords::{Elements, elements_in};
 use crate::integrate::State;

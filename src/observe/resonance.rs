@@ -35,6 +35,11 @@ impl ResonantAngle {
         Ok(ResonantAngle { longitudes, pericentres })
     }
 
+    /// Coefficients of the mean longitudes, in the order of the planets.
+    pub fn longitudes(&self) -> &[i32] {
+        &self.longitudes
+    }
+
     /// Its value, rad in [0, 2π).
     pub fn value(&self, row: &[Elements]) -> f64 {
         let parts = self.longitudes.iter().zip(&self.pericentres).zip(row).map(|((j, k), orbit)| {

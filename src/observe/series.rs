@@ -71,6 +71,11 @@ impl<'a> ElementSeries<'a> {
         self.step_day * (self.rows.len() - 1) as f64
     }
 
+    /// G (star + planet), au³ day⁻².
+    pub fn mass_parameter(&self, planet: usize) -> f64 {
+        self.mass_parameter[planet]
+    }
+
     pub fn planets(&self) -> usize {
         self.mass_parameter.len()
     }

@@ -38,8 +38,10 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
         )
     };
     let early = words::early_end_words(plan).map_or_else(String::new, |w| format!(" Chaotic cells: {w}."));
+    let names: Vec<String> = system.orbiting().map(|body| body.name.clone()).collect();
+    let angle = plan.angle.as_ref().map(|angle| format!(" The angle is {}.", angle.words(&names)));
     vec![
-        followed + &early,
+        followed + &early + angle.as_deref().unwrap_or_default(),
         format!(
             "Scheme {} in {} coordinates, step {}; {}; {energy}.",
             words::scheme_words(plan.scheme),

@@ -3,10 +3,11 @@
 use super::VERSION;
 use super::table::{Column, Datatype, Entry, Meta, Table};
 use super::words;
-use crate::assess::{Assessment, Extent, Plan, Range};
+use crate::assess::{AngleFound, Assessment, Extent, Plan, Range};
 use crate::survey::Record;
 use crate::system::{Measure, Study};
 use crate::units::{DEGREE, YEAR_DAY};
+use crate::verdict::chaos;
 
 /// What one column takes from a record.
 type Take<'a> = Box<dyn Fn(&Record) -> Entry + 'a>;
@@ -49,6 +50,7 @@ pub fn cells_table(study: &Study, planets: &[String], plan: &Plan, records: &[Re
     }
     outcome_columns(&mut columns, planets);
     indicator_columns(&mut columns, study, plan, records);
+    long_columns(&mut columns, planets, plan);
     if plan.extent {
         for (index, name) in planets.iter().enumerate() {
             extent_columns(&mut columns, index, name);
@@ -82,7 +84,8 @@ fn outcome_columns<'a>(columns: &mut Columns<'a>, planets: &'a [String]) {
     columns.text("verdict", "regular, chaotic, lost, undecided or untrusted", |r| {
         Some(r.assessment.verdict.word().to_owned())
     });
-    columns.float("end_time", "yr", "time reached", |r| computed(r).map(|a| a.end_time_day / YEAR_DAY));
+    let meaning = "time reached: the span, or how long a lost cell survived";
+    columns.float("end_time", "yr", meaning, |r| computed(r).map(|a| a.end_time_day / YEAR_DAY));
     columns.text("lost_body", "planet that was lost", move |r| {
         r.assessment.loss.map(|loss| name_of(planets, loss.planet))
     });
@@ -98,6 +101,9 @@ fn indicator_columns(columns: &mut Columns<'_>, study: &Study, plan: &Plan, reco
     if plan.megno {
         let meaning = "mean MEGNO <Y> at the end; tends to 2 for regular motion";
         columns.float("megno", "", meaning, |r| r.assessment.megno);
+        let meaning = "what the indicator says, also of a cell that was lost: regular, chaotic or undecided";
+        let said = |a: &Assessment| chaos(a.verdict, a.megno).map(|chaos| chaos.word().to_owned());
+        columns.text("chaos", meaning, move |r| said(&r.assessment));
     }
     let asked = study.measure.contains(&Measure::Lyapunov);
     if asked || records.iter().any(|r| r.assessment.lyapunov.is_some()) {
@@ -114,6 +120,32 @@ fn indicator_columns(columns: &mut Columns<'_>, study: &Study, plan: &Plan, reco
     }
 }
 
+/// What is told of the whole span: absent for cells that did not live through it.
+fn long_columns(columns: &mut Columns<'_>, planets: &[String], plan: &Plan) {
+    if plan.frequency_drift {
+        let meaning = "log10 of the relative change of the mean motion between the halves of the span";
+        let worst = format!("{meaning}, largest of all planets");
+        columns.float("frequency_drift", "", worst, |r| r.assessment.worst_drift());
+        for (index, name) in planets.iter().enumerate() {
+            let meaning = format!("{meaning}, of {name}");
+            columns.float(format!("{name}.frequency_drift"), "", meaning, move |r| {
+                r.assessment.frequency_drift.get(index).copied()
+            });
+        }
+    }
+    if let Some(angle) = &plan.angle {
+        let words = angle.words(planets);
+        let libration = |r: &Record, which: usize| Some(r.assessment.angle?.libration()?[which] / DEGREE);
+        let meaning = format!("{words}: librates, circulates, alternates (both) or cannot tell");
+        columns
+            .text("angle.motion", &meaning, |r| r.assessment.angle.map(|a| AngleFound::word(a).to_owned()));
+        let meaning = format!("largest departure of {words} from its centre; absent unless it librates");
+        columns.float("angle.amplitude", "deg", meaning, move |r| libration(r, 1));
+        let meaning = format!("mean of {words}; absent unless it librates");
+        columns.float("angle.centre", "deg", meaning, move |r| libration(r, 0));
+    }
+}
+
 /// Width of a range relative to its middle.
 fn relative_width(range: Range) -> f64 {
     (range.max - range.min) / (0.5 * (range.max + range.min))
@@ -127,6 +159,7 @@ fn extent_columns(columns: &mut Columns<'_>, planet: usize, name: &str) {
     };
     add("e_max", "", "largest eccentricity", |x| x.eccentricity.max);
     add("e_min", "", "smallest eccentricity", |x| x.eccentricity.min);
+    add("e_range", "", "largest - smallest eccentricity", |x| x.eccentricity.max - x.eccentricity.min);
     let meaning = "(largest - smallest) / middle of the range, semi-major axis";
     add("a_range", "", meaning, |x| relative_width(x.semi_major_axis_au));
     add("i_max", "deg", "largest inclination to the sky plane", |x| x.inclination.max / DEGREE);

@@ -3,6 +3,7 @@
 //! [`Table`] is the one shape of every table; it is written as Enhanced CSV. [`cells_table`] and [`series_table`]
 //! fill it, [`Summary`] counts and says it in words or JSON, [`caption()`] is what stands under a figure.
 
+mod calibration;
 mod caption;
 mod cells;
 mod criteria;
@@ -13,6 +14,7 @@ mod summary;
 mod table;
 mod words;
 
+pub use calibration::CalibrationReport;
 pub use caption::caption;
 pub use cells::cells_table;
 pub use criteria::criteria_table;

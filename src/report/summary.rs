@@ -5,7 +5,7 @@ use std::fmt::Write;
 use serde_json::{Map, Value, json};
 
 use super::{ReportError, VERSION, words};
-use crate::assess::{Assessment, Plan};
+use crate::assess::{AngleFound, Assessment, Plan};
 use crate::survey::Record;
 use crate::system::{Study, System};
 use crate::units::YEAR_DAY;
@@ -68,6 +68,12 @@ pub struct Summary {
     pub energy_error_target: f64,
     pub held: String,
     pub convention: String,
+    /// Of the Lyapunov time of chaotic cells, yr.
+    pub lyapunov_time_yr: Option<Spread>,
+    /// Of the frequency drift of regular and of chaotic cells: median and largest.
+    pub drift: [Option<[f64; 2]>; 2],
+    /// The angle in words, and how many cells have it librate, circulate, alternate, and how many do not tell.
+    pub angle: Option<(String, [u64; 4])>,
     /// Absent when chaotic cells were followed to the end of the span.
     pub chaotic_ended: Option<&'static str>,
 }
@@ -112,6 +118,12 @@ impl Summary {
             step: words::step_words(plan, records),
             energy_error_target: plan.energy_error,
             held: words::held_words(study, system),
+            lyapunov_time_yr: Spread::of(chaotic_times_yr(records)),
+            drift: [Verdict::Regular, Verdict::Chaotic].map(|verdict| drift_of(records, verdict)),
+            angle: plan.angle.as_ref().map(|angle| {
+                let names: Vec<String> = system.orbiting().map(|body| body.name.clone()).collect();
+                (angle.words(&names), angle_counts(records))
+            }),
             convention: words::convention_words(system.convention, system.epoch_jd),
             chaotic_ended: words::early_end_words(plan),
         }
@@ -151,6 +163,7 @@ impl Summary {
             }
         }
         lines.push(format!("nominal      {}", self.nominal_words()));
+        lines.extend(self.indicator_lines());
         lines.push(format!("energy error {}", self.energy_words()));
         lines.push(format!("scheme       {}", words::scheme_words(self.scheme)));
         lines.push(format!("coordinates  {}", self.coordinates));
@@ -188,6 +201,36 @@ impl Summary {
                 text
             }
         }
+    }
+
+    /// What the indicators say of bounded cells, beside the verdicts.
+    fn indicator_lines(&self) -> Vec<String> {
+        let mut lines = Vec::new();
+        if let Some(spread) = self.lyapunov_time_yr {
+            let words = |yr: f64| words::time_words(yr * YEAR_DAY);
+            lines.push(format!(
+                "Lyapunov     of chaotic cells: median {}, largest {}",
+                words(spread.median),
+                words(spread.largest)
+            ));
+        }
+        let drift: Vec<String> = ["regular", "chaotic"]
+            .iter()
+            .zip(self.drift)
+            .filter_map(|(word, found)| {
+                found.map(|[median, most]| format!("{word} cells median {median:.1}, largest {most:.1}"))
+            })
+            .collect();
+        if !drift.is_empty() {
+            lines.push(format!("drift        log10 |dn/n| of {}", drift.join("; ")));
+        }
+        if let Some((words, [librates, circulates, alternates, untold])) = &self.angle {
+            lines.push(format!(
+                "angle        {words}: librates in {librates} cells, circulates in {circulates}, alternates in {alternates}, \
+                 cannot be told in {untold}"
+            ));
+        }
+        lines
     }
 
     fn energy_words(&self) -> String {
@@ -236,11 +279,49 @@ impl Summary {
             "scheme": self.scheme,
             "coordinates": self.coordinates,
             "step": self.step,
+            "lyapunov_time_yr": self.lyapunov_time_yr.map(|s| json!({ "median": s.median, "largest": s.largest })),
+            "frequency_drift": self.drift.iter().any(Option::is_some).then(|| json!({
+                "regular": self.drift[0].map(|[median, largest]| json!({ "median": median, "largest": largest })),
+                "chaotic": self.drift[1].map(|[median, largest]| json!({ "median": median, "largest": largest })),
+            })),
+            "angle": self.angle.as_ref().map(|(words, counts)| json!({
+                "angle": words,
+                "librates": counts[0], "circulates": counts[1], "alternates": counts[2], "cannot_tell": counts[3],
+            })),
             "axes": self.held,
             "convention": self.convention,
             "chaotic_ended": self.chaotic_ended,
         })
     }
+}
+
+fn chaotic_times_yr(records: &[Record]) -> impl Iterator<Item = f64> {
+    let chaotic = records.iter().filter(|r| r.assessment.verdict == Verdict::Chaotic);
+    let rates = chaotic.filter_map(|r| r.assessment.lyapunov.map(|l| l.per_day));
+    rates.filter(|per_day| *per_day > 0.0).map(|per_day| 1.0 / (per_day * YEAR_DAY))
+}
+
+/// Median (by nearest rank) and largest frequency drift of the cells of one verdict.
+fn drift_of(records: &[Record], verdict: Verdict) -> Option<[f64; 2]> {
+    let mine = records.iter().filter(|r| r.assessment.verdict == verdict);
+    let mut drift: Vec<f64> = mine.filter_map(|r| r.assessment.worst_drift()).collect();
+    drift.sort_by(f64::total_cmp);
+    let last = drift.last()?;
+    Some([drift[(drift.len() - 1) / 2], *last])
+}
+
+/// Librates, circulates, alternates, cannot be told.
+fn angle_counts(records: &[Record]) -> [u64; 4] {
+    let mut counts = [0; 4];
+    for found in records.iter().filter_map(|r| r.assessment.angle) {
+        counts[match found {
+            AngleFound::Librates { .. } => 0,
+            AngleFound::Circulates => 1,
+            AngleFound::Alternates => 2,
+            AngleFound::CannotTell => 3,
+        }] += 1;
+    }
+    counts
 }
 
 /// [`Summary::text`] in one call.

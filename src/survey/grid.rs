@@ -114,21 +114,8 @@ struct Settled {
 
 impl Settled {
     fn assessment(&self) -> Assessment {
-        Assessment {
-            verdict: if self.loss.is_some() { Verdict::Lost } else { Verdict::Undecided },
-            end_time_day: 0.0,
-            loss: self.loss,
-            megno: None,
-            lyapunov: None,
-            extent: Vec::new(),
-            smallest_approach: None,
-            energy_error: None,
-            angular_momentum_error: None,
-            scheme: "",
-            step_day: 0.0,
-            steps: 0,
-            redone: 0,
-        }
+        let verdict = if self.loss.is_some() { Verdict::Lost } else { Verdict::Undecided };
+        Assessment::unseen(verdict, self.loss)
     }
 }
 

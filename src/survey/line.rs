@@ -6,7 +6,7 @@ use std::sync::Mutex;
 use serde::{Deserialize, Serialize};
 
 use super::record::{Filled, Record};
-use crate::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Range};
+use crate::assess::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Range};
 use crate::verdict::{LostHow, Verdict};
 
 /// What the lines of one journal hold.
@@ -18,6 +18,12 @@ pub struct Layout {
     pub planets: Vec<String>,
     /// Whether the ranges of the elements of each planet are kept.
     pub extent: bool,
+    /// Whether the drift of the mean motion of each planet is kept; journals from before there was one have none.
+    #[serde(default)]
+    pub frequency_drift: bool,
+    /// Whether the state of an angle is kept; likewise.
+    #[serde(default)]
+    pub angle: bool,
     /// Goes into every checksum, so that a line of another run is not taken for one of this.
     pub seal: String,
 }
@@ -39,7 +45,11 @@ const BEFORE_PLANETS: [&str; 10] = [
 const LOST_HOW_AFTER_VERDICT: usize = 5;
 /// Columns of one planet.
 const OF_PLANET: [&str; 6] = ["a_min_au", "a_max_au", "e_min", "e_max", "i_min_rad", "i_max_rad"];
-/// Columns after the planets.
+/// Column of one planet.
+const DRIFT_OF_PLANET: &str = "frequency_drift";
+/// Columns of the angle.
+const OF_ANGLE: [&str; 3] = ["angle_motion", "angle_centre_rad", "angle_amplitude_rad"];
+/// Columns after the planets and the angle.
 const AFTER_PLANETS: [&str; 11] = [
     "approach_au",
     "approach_hill",
@@ -64,6 +74,12 @@ impl Layout {
             for planet in &self.planets {
                 names.extend(OF_PLANET.map(|column| format!("{planet}.{column}")));
             }
+        }
+        if self.frequency_drift {
+            names.extend(self.planets.iter().map(|planet| format!("{planet}.{DRIFT_OF_PLANET}")));
+        }
+        if self.angle {
+            names.extend(OF_ANGLE.map(String::from));
         }
         names.extend(AFTER_PLANETS.map(String::from));
         names
@@ -97,6 +113,16 @@ impl Layout {
         if self.extent {
             self.encode_extent(&a.extent, &mut line);
         }
+        if self.frequency_drift {
+            (0..self.planets.len())
+                .for_each(|planet| line.put(optional(a.frequency_drift.get(planet).copied())));
+        }
+        if self.angle {
+            let libration = a.angle.and_then(AngleFound::libration);
+            line.put(a.angle.map_or("", AngleFound::word));
+            line.put(optional(libration.map(|[centre, _]| centre)));
+            line.put(optional(libration.map(|[_, amplitude]| amplitude)));
+        }
         line.put(optional(a.smallest_approach.map(|approach| approach.au)));
         line.put(optional(a.smallest_approach.map(|approach| approach.hill)));
         line.put(whole(a.smallest_approach.map(|approach| approach.pair.0)));
@@ -127,8 +153,10 @@ impl Layout {
 
     /// Columns between `lost_how` and the checksum.
     fn columns_after_how(&self) -> usize {
-        let planets = if self.extent { self.planets.len() * OF_PLANET.len() } else { 0 };
-        BEFORE_PLANETS.len() - 2 - LOST_HOW_AFTER_VERDICT + planets + AFTER_PLANETS.len() - 1
+        let of_planet = if self.extent { OF_PLANET.len() } else { 0 } + usize::from(self.frequency_drift);
+        let planets = self.planets.len() * of_planet;
+        let angle = if self.angle { OF_ANGLE.len() } else { 0 };
+        BEFORE_PLANETS.len() - 2 - LOST_HOW_AFTER_VERDICT + planets + angle + AFTER_PLANETS.len() - 1
     }
 
     fn encode_extent(&self, extent: &[Extent], line: &mut Line) {
@@ -192,6 +220,8 @@ impl Layout {
                 _ => None,
             },
             extent: self.decode_extent(fields)?,
+            frequency_drift: self.decode_drift(fields)?,
+            angle: if self.angle { decode_angle(fields)? } else { None },
             smallest_approach: decode_approach(fields)?,
             energy_error: fields.number()?,
             angular_momentum_error: fields.number()?,
@@ -215,6 +245,16 @@ impl Layout {
         Some(extents)
     }
 
+    fn decode_drift(&self, fields: &mut Fields) -> Option<Vec<f64>> {
+        let planets = if self.frequency_drift { self.planets.len() } else { 0 };
+        let mut drift = Vec::with_capacity(planets);
+        for _ in 0..planets {
+            drift.extend(fields.number()?);
+        }
+        drift.shrink_to_fit();
+        Some(drift)
+    }
+
     fn checksum(&self, body: &str) -> String {
         let mut hasher = crc32fast::Hasher::new();
         hasher.update(self.seal.as_bytes());
@@ -235,6 +275,16 @@ fn decode_loss(fields: &mut Fields) -> Option<Option<Loss>> {
         }),
         _ => None,
     })
+}
+
+fn decode_angle(fields: &mut Fields) -> Option<Option<AngleFound>> {
+    let word = fields.next()?;
+    let (centre, amplitude) = (fields.number()?, fields.number()?);
+    if word.is_empty() {
+        return Some(None);
+    }
+    let libration = centre.zip(amplitude).map(|(centre, amplitude)| [centre, amplitude]);
+    AngleFound::from_word(&word, libration).map(Some)
 }
 
 fn decode_approach(fields: &mut Fields) -> Option<Option<Approach>> {

@@ -49,11 +49,20 @@ pub struct PlanWords {
     pub encounter_hill: Option<f64>,
     pub megno: bool,
     pub extent: bool,
+    #[serde(default)]
+    pub frequency_drift: bool,
+    /// In words; absent when none is watched.
+    #[serde(default)]
+    pub angle: Option<String>,
+    /// Steps between two looks at a cell, at which what is watched over the span is sampled.
+    #[serde(default)]
+    pub block_steps: usize,
     pub stop_when_chaotic: bool,
 }
 
 impl PlanWords {
-    pub fn of(plan: &Plan) -> PlanWords {
+    /// `planets` are the names of all that circles.
+    pub fn of(plan: &Plan, planets: &[String]) -> PlanWords {
         PlanWords {
             scheme: plan.scheme.to_string(),
             coordinates: plan.coordinates.word().to_string(),
@@ -67,6 +76,9 @@ impl PlanWords {
             encounter_hill: plan.encounter_hill,
             megno: plan.megno,
             extent: plan.extent,
+            frequency_drift: plan.frequency_drift,
+            angle: plan.angle.as_ref().map(|angle| angle.words(planets)),
+            block_steps: plan.block_steps,
             stop_when_chaotic: plan.stop_when_chaotic,
         }
     }
@@ -94,6 +106,8 @@ impl Identity {
             axes: self.axes.clone(),
             planets: self.planets.clone(),
             extent: self.plan.extent,
+            frequency_drift: self.plan.frequency_drift,
+            angle: self.plan.angle.is_some(),
             seal: settings_sha256.clone(),
         };
         Manifest {
@@ -105,7 +119,7 @@ impl Identity {
             host: host(),
             started: utc(SystemTime::now()),
             cells: self.cells,
-            plan: PlanWords::of(&self.plan),
+            plan: PlanWords::of(&self.plan, &self.planets),
             journal_columns: layout.columns(),
             layout,
         }

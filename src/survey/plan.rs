@@ -57,6 +57,7 @@ mod tests {
             title: None,
             span: Span::Orbits(1e3),
             measure: Vec::new(),
+            angle: None,
             axes: cells.iter().map(axis).collect(),
             limits: Limits { escape_au: None, encounter: Encounter::Off, stop_when_chaotic: false },
             engine: Engine::default(),

@@ -32,7 +32,7 @@ impl Record {
     }
 
     pub fn filled(cell: u64, values: Vec<f64>, verdict: Verdict, filled: Filled) -> Record {
-        Record { cell, values, assessment: without_evidence(verdict), filled: Some(filled) }
+        Record { cell, values, assessment: Assessment::unseen(verdict, None), filled: Some(filled) }
     }
 
     /// The record of a filled cell; absent where the cells around gave no verdict.
@@ -44,24 +44,5 @@ impl Record {
     /// How the cell was lost: as computed, else as all around it.
     pub fn lost_how(&self) -> Option<LostHow> {
         self.assessment.loss.map(|loss| loss.how).or(self.filled.and_then(|filled| filled.how))
-    }
-}
-
-/// A verdict with nothing computed.
-fn without_evidence(verdict: Verdict) -> Assessment {
-    Assessment {
-        verdict,
-        end_time_day: 0.0,
-        loss: None,
-        megno: None,
-        lyapunov: None,
-        extent: Vec::new(),
-        smallest_approach: None,
-        energy_error: None,
-        angular_momentum_error: None,
-        scheme: "",
-        step_day: 0.0,
-        steps: 0,
-        redone: 0,
     }
 }

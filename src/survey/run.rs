@@ -5,7 +5,7 @@ use std::path::{Path, PathBuf};
 use super::changes::{changes, first_few};
 use super::journal::{self, Journal, Recovered};
 use super::manifest::{Identity, Manifest, VERSION, host, sha256};
-use super::{Record, SurveyError};
+use super::{Layout, Record, SurveyError};
 use crate::disk::{self, DiskError, Lock};
 
 /// Names of the files of a run.
@@ -115,9 +115,18 @@ fn unedited(folder: &Path, file: &'static str, stored_sha256: &str) -> Result<St
 
 /// The records of a journal by cell, each cell once; damaged lines are left out.
 fn read_records(folder: &Path, manifest: &Manifest) -> Result<Vec<Record>, SurveyError> {
-    let mut records = Vec::with_capacity(usize::try_from(manifest.cells).unwrap_or(0).min(EXPECTED_CELLS));
-    journal::read(&folder.join(JOURNAL), &manifest.layout, |record| {
-        let known = record.cell < manifest.cells;
+    records_of(&folder.join(JOURNAL), &manifest.layout, manifest.cells)
+}
+
+/// Every record of a journal of `cells` cells, by cell. Errors: some are missing.
+pub fn read_journal(path: &Path, layout: &Layout, cells: u64) -> Result<Vec<Record>, SurveyError> {
+    complete(records_of(path, layout, cells)?, cells)
+}
+
+fn records_of(path: &Path, layout: &Layout, cells: u64) -> Result<Vec<Record>, SurveyError> {
+    let mut records = Vec::with_capacity(usize::try_from(cells).unwrap_or(0).min(EXPECTED_CELLS));
+    journal::read(path, layout, |record| {
+        let known = record.cell < cells;
         if known {
             records.push(record);
         }

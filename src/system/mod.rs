@@ -22,8 +22,8 @@ pub use physics::{Oblateness, Physics, satellite_strength_au2};
 pub use range::{Allowed, Holder, Unsound};
 pub use stated::{Body, Measured, Pair, SetError, Stated};
 pub use study::{
-    Axis, BodyRef, Compensation, CoordinateChoice, Encounter, Engine, Limits, Measure, Quantity, SCHEMES,
-    Spacing, Span, Step, Study, Target,
+    AngleTerms, Axis, BodyRef, Compensation, CoordinateChoice, Encounter, Engine, Limits, Measure, Quantity,
+    SCHEMES, Spacing, Span, Step, Study, Target,
 };
 pub use vary::VaryError;
 

@@ -72,6 +72,19 @@ pub enum Measure {
     Megno,
     Lyapunov,
     Extent,
+    /// Of the mean motions between the two halves of the span.
+    FrequencyDrift,
+}
+
+/// An angle to be watched: Σ j λ + Σ k ϖ, the coefficients summing to 0.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct AngleTerms {
+    /// As written.
+    pub text: String,
+    /// Coefficients of the mean longitudes and of the longitudes of pericentre, per body in the order of
+    /// [`super::System::orbiting`].
+    pub longitudes: Vec<i32>,
+    pub pericentres: Vec<i32>,
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -146,6 +159,8 @@ pub struct Study {
     pub system_path: PathBuf,
     pub span: Span,
     pub measure: Vec<Measure>,
+    /// Whose libration is told of every cell.
+    pub angle: Option<AngleTerms>,
     /// One or two.
     pub axes: Vec<Axis>,
     pub limits: Limits,

@@ -2,7 +2,9 @@
 
 mod thresholds;
 
-pub use thresholds::{CHAOTIC_FROM, Evidence, LEAST_OUTER_ORBITS, REGULAR_UP_TO, is_surely_chaotic, judge};
+pub use thresholds::{
+    CHAOTIC_FROM, Evidence, LEAST_OUTER_ORBITS, REGULAR_UP_TO, chaos, is_surely_chaotic, judge,
+};
 
 /// What became of a configuration.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -15,6 +17,25 @@ pub enum Verdict {
     Undecided,
     /// The energy error target was missed even after refinement.
     Untrusted,
+}
+
+/// What the indicator alone says: chaos is not instability, and a cell may be regular until it is lost.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Chaos {
+    Regular,
+    Chaotic,
+    Undecided,
+}
+
+impl Chaos {
+    /// The word used in tables and output.
+    pub fn word(self) -> &'static str {
+        match self {
+            Chaos::Regular => "regular",
+            Chaos::Chaotic => "chaotic",
+            Chaos::Undecided => "undecided",
+        }
+    }
 }
 
 /// How a body was lost.

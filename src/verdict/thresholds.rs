@@ -1,6 +1,6 @@
 //! The thresholds.
 
-use super::Verdict;
+use super::{Chaos, Verdict};
 
 /// Largest ⟨Y⟩ that counts as regular.
 ///
@@ -48,6 +48,20 @@ pub fn judge(evidence: &Evidence) -> Verdict {
     }
 }
 
+/// What ⟨Y⟩ says beside the verdict; none where it was not measured or nothing can be trusted.
+///
+/// Of a lost cell too: chaotic if ⟨Y⟩ had passed the threshold before the end, else undecided, since a short life shows no
+/// regularity.
+pub fn chaos(verdict: Verdict, mean_megno: Option<f64>) -> Option<Chaos> {
+    let y = mean_megno?;
+    match verdict {
+        Verdict::Untrusted => None,
+        Verdict::Regular => Some(Chaos::Regular),
+        _ if y >= CHAOTIC_FROM => Some(Chaos::Chaotic),
+        _ => Some(Chaos::Undecided),
+    }
+}
+
 /// Whether ⟨Y⟩ is and would end at twice the threshold of chaos even if the motion were regular from now to the end of
 /// the span. `share` of the span is done, with `mean` = ⟨Y⟩ and `y` = Y there.
 ///
@@ -91,6 +105,21 @@ mod tests {
         }
         assert!(!is_surely_chaotic(0.5, 2.0, 2.0) && !is_surely_chaotic(0.001, 6.5, 13.0));
         assert!(!is_surely_chaotic(0.5, f64::NAN, 20.0));
+    }
+
+    #[test]
+    fn chaos_is_said_beside_the_verdict() {
+        for (verdict, y, said) in [
+            (Verdict::Regular, 2.0, Some(Chaos::Regular)),
+            (Verdict::Chaotic, 9.0, Some(Chaos::Chaotic)),
+            (Verdict::Lost, 9.0, Some(Chaos::Chaotic)),
+            (Verdict::Lost, 2.0, Some(Chaos::Undecided)),
+            (Verdict::Undecided, 2.5, Some(Chaos::Undecided)),
+            (Verdict::Untrusted, 9.0, None),
+        ] {
+            assert_eq!(chaos(verdict, Some(y)), said, "{verdict:?} {y}");
+            assert_eq!(chaos(verdict, None), None);
+        }
     }
 
     #[test]

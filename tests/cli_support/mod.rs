@@ -115,6 +115,12 @@ impl Line {
         self
     }
 
+    /// With an environment variable.
+    pub fn env(mut self, name: &str, value: &str) -> Line {
+        self.line.env(name, value);
+        self
+    }
+
     pub fn run(mut self) -> Outcome {
         Outcome::of(self.line.output().unwrap())
     }

@@ -77,6 +77,7 @@ pub fn study(columns: usize, rows: usize) -> Study {
         system_path: "lanthorn.toml".into(),
         span: Span::Orbits(1e4),
         measure: vec![Measure::Megno, Measure::Lyapunov, Measure::Extent],
+        angle: None,
         axes: vec![axis(1, Key::Period, (15.5, 21.0, columns)), axis(1, Key::Eccentricity, (0.0, 0.3, rows))],
         limits: Limits {
             escape_au: None,
@@ -121,6 +122,8 @@ pub fn assessment(verdict: Verdict, how: Option<LostHow>, megno: f64, share_live
         lyapunov: chaotic
             .then(|| Lyapunov { per_day: megno / SPAN_DAY, error_per_day: 0.1 * megno / SPAN_DAY }),
         extent: vec![extent(0.0972, 0.06), extent(0.1274, 0.03 * megno)],
+        frequency_drift: Vec::new(),
+        angle: None,
         smallest_approach: Some(Approach { au: 0.03 / megno, hill: 12.0 / megno, pair: (0, 1) }),
         energy_error: Some(1e-10 * megno * megno),
         angular_momentum_error: Some(3e-15),

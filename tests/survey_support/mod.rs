@@ -8,7 +8,7 @@ use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
 use std::time::Duration;
 
-use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range, StepWhy};
+use abide::assess::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range, StepWhy};
 use abide::coords::{Configuration, Elements, Planet};
 use abide::survey::{
     Desk, Done, Ended, Identity, Made, Next, Policy, Record, Run, Source, SurveyError, fill,
@@ -31,6 +31,8 @@ pub fn plan() -> Plan {
         encounter_hill: Some(1.0),
         extent: true,
         megno: true,
+        frequency_drift: true,
+        angle: abide::observe::ResonantAngle::new(vec![-2, 3], vec![-1, 0]).ok(),
         stop_when_chaotic: false,
         block_steps: 508,
         coordinates: abide::integrate::Coordinates::Heliocentric,
@@ -86,6 +88,14 @@ pub fn answer(cell: u64) -> Assessment {
         megno: some(3),
         lyapunov: some(4).map(|per_day| Lyapunov { per_day, error_per_day: per_day / 3.0 }),
         extent: if cell.is_multiple_of(5) { Vec::new() } else { vec![extent; 2] },
+        frequency_drift: if cell.is_multiple_of(3) { Vec::new() } else { vec![-9.0 * share(cell, 13), -4.5] },
+        angle: match cell % 5 {
+            0 => None,
+            1 => Some(AngleFound::Circulates),
+            2 => Some(AngleFound::Alternates),
+            3 => Some(AngleFound::CannotTell),
+            _ => Some(AngleFound::Librates { centre: share(cell, 14), amplitude: share(cell, 15) }),
+        },
         smallest_approach: some(8).map(|au| Approach { au, hill: au / 7.0, pair: (0, 1) }),
         energy_error: some(9),
         angular_momentum_error: some(10),

@@ -18,6 +18,7 @@ impl Cell {
         self.conserved.keep(kept);
         self.extent.keep(kept);
         self.growth.keep(kept);
+        self.long.keep(kept);
         let approach = self.approach.map_or([f64::NAN; 2], |a| [a.au, a.hill]);
         let (i, j) = self.approach.map_or((0, 0), |a| a.pair);
         kept.count(u64::from(self.mean_megno.is_some()));
@@ -43,6 +44,7 @@ impl Cell {
         self.conserved.restore(kept)?;
         self.extent.restore(kept)?;
         self.growth.restore(kept)?;
+        self.long.restore(kept)?;
         let measured = kept.count()? != 0;
         self.mean_megno = Some(kept.float()?).filter(|_| measured);
         let met = kept.count()? != 0;

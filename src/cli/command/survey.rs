@@ -1,5 +1,7 @@
 //! `abide survey`: a study → a run with its tables and its map.
 
+mod calibrate;
+
 use std::path::PathBuf;
 use std::process::ExitCode;
 use std::sync::Arc;
@@ -21,6 +23,7 @@ use crate::survey::{
     cell_count, fill, plan_of,
 };
 use crate::system::Study;
+use calibrate::Longer;
 
 /// More cells than this need `--really`.
 const MANY_CELLS: u64 = 10_000_000;
@@ -36,12 +39,16 @@ pub fn run(args: SurveyArgs) -> Result<ExitCode, CliError> {
     let complete = wish.is_complete(&recovered);
     if !complete {
         wish.say_settled();
-        let ended = wish.fill(&mut run, recovered, stop)?;
+        let ended = wish.fill(&mut run, recovered, Arc::clone(&stop))?;
         if ended == Ended::Interrupted {
             return Ok(wish.say_interrupted());
         }
     }
-    wish.finish(&run, if complete { run.missing_outputs() } else { OUTPUTS.to_vec() })
+    let code = wish.finish(&run, if complete { run.missing_outputs() } else { OUTPUTS.to_vec() })?;
+    match wish.longer {
+        Some(longer) => calibrate::run(&wish, &run, longer, stop),
+        None => Ok(code),
+    }
 }
 
 /// What was asked for, checked.
@@ -53,6 +60,8 @@ struct Wish {
     threads: usize,
     /// Cells may take the verdict of those around them.
     filling: bool,
+    /// A sample of cells is followed longer afterwards.
+    longer: Option<Longer>,
     quiet: bool,
     json: bool,
 }
@@ -62,6 +71,7 @@ impl Wish {
         let threads = threads(args.threads)?;
         let (file, name) = read(args)?;
         refuse_many(cell_count(&file.study), args.really)?;
+        let longer = Longer::check(args, &file.study)?;
         let system = &file.system.system;
         let grid = Grid::new(system.clone(), file.study.clone()).map_err(|error| match error {
             SurveyError::Nominal(cause) => unfit(&file.system, &cause),
@@ -72,7 +82,7 @@ impl Wish {
         let folder = args.into.clone().unwrap_or_else(|| PathBuf::from("reports/runs").join(name));
         let filling = args.fill || !args.every_cell && is_large(&file.study);
         let grid = Arc::new(grid);
-        Ok(Wish { grid, plan, folder, threads, filling, quiet: args.quiet, json: args.json, file })
+        Ok(Wish { grid, plan, folder, threads, filling, longer, quiet: args.quiet, json: args.json, file })
     }
 
     /// Filled cells of an earlier command count unless every cell is wanted now.

@@ -15,7 +15,7 @@ use crate::cli::args::InspectArgs;
 use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
 use crate::coords::Configuration;
 use crate::input;
-use crate::system::{CoordinateChoice, Encounter, Engine, Limits, Span, Step, System};
+use crate::system::{Compensation, CoordinateChoice, Encounter, Engine, Limits, Span, Step, System};
 use view::View;
 
 /// How long each reading is followed when nothing else is asked, orbits of the innermost planet.
@@ -57,6 +57,7 @@ fn plan(args: &InspectArgs, stated: &Configuration, readings: usize) -> Result<W
         coordinates: CoordinateChoice::Auto,
         step: Step::Auto,
         energy_error: ENERGY_ERROR,
+        compensated: Compensation::Auto,
     };
     let period_day = innermost_period_day(stated);
     let steps_per_orbit = period_day / crate::assess::auto_step_day(stated);
