@@ -97,6 +97,8 @@ pub struct Namer {
 /// Most combinations looked at: the largest Σ|k| is what this allows, and at most [`LARGEST_SIZE`].
 const MOST: usize = 100_000;
 const LARGEST_SIZE: u32 = 14;
+/// A name that a line anywhere would get with more than this chance is not given.
+const CHANCE: f64 = 0.1;
 
 impl Namer {
     /// Combinations of these fundamentals with Σ|k| as large as a bound on their number allows (14 for up to four, 6 or so for
@@ -132,6 +134,8 @@ impl Namer {
     }
 
     /// The simplest combination within `tolerance_rad_day` of a frequency; the nearest of those equally simple.
+    ///
+    /// None where combinations so simple are so many that one in ten lines anywhere would meet one.
     pub fn name(&self, rad_day: f64, tolerance_rad_day: f64) -> Option<Combination> {
         let misfit = |value: f64| {
             let gap = rad_day - value;
@@ -147,12 +151,27 @@ impl Namer {
         let simplest = size(&first.1);
         let alike: Vec<&(f64, Vec<i32>)> =
             std::iter::once(first).chain(fitting.take_while(|(_, k)| size(k) == simplest)).collect();
+        if self.chance(simplest, tolerance_rad_day) > CHANCE {
+            return None;
+        }
         let best = alike.iter().min_by(|one, other| misfit(one.0).abs().total_cmp(&misfit(other.0).abs()))?;
         Some(Combination {
             coefficients: best.1.clone(),
             misfit_rad_day: misfit(best.0),
             rivals: alike.len() - 1,
         })
+    }
+
+    /// Share of the band that lies within the tolerance of a combination no larger than `size`.
+    fn chance(&self, size: u32, tolerance_rad_day: f64) -> f64 {
+        let small = |k: &[i32]| k.iter().map(|k| k.unsigned_abs()).sum::<u32>() <= size;
+        let (mut count, mut low, mut high) = (0.0, f64::INFINITY, f64::NEG_INFINITY);
+        for (value, _) in self.table.iter().take_while(|(_, k)| small(k)) {
+            (count, low, high) = (count + 1.0, value.min(low), value.max(high));
+        }
+        let band = if self.fold_rad_day > 0.0 { self.fold_rad_day } else { high - low };
+        // The few simplest are themselves however narrow their band is.
+        if count <= 2.0 { 0.0 } else { 2.0 * tolerance_rad_day * count / band }
     }
 }
 

@@ -10,6 +10,7 @@ const MOTION_WINDOW: u32 = 3;
 const FINEST_DRIFT: f64 = f64::EPSILON;
 /// Lines looked at to tell the modes of slow variables apart.
 const MODE_LINES: usize = 12;
+pub(super) const MODE_SEARCH: Search = Search { most: MODE_LINES, window_power: 1 };
 
 /// The mean motion of one planet over the two halves of a span.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -34,6 +35,14 @@ pub struct FrequencyDrift {
 }
 
 impl FrequencyDrift {
+    /// Errors: no planets give `TooFew`.
+    pub fn of(of_planets: Vec<MotionDrift>) -> Result<FrequencyDrift, FourierError> {
+        let worst = (0..of_planets.len())
+            .max_by(|one, other| of_planets[*one].log10().total_cmp(&of_planets[*other].log10()))
+            .ok_or(FourierError::TooFew { found: 0 })?;
+        Ok(FrequencyDrift { of_planets, worst })
+    }
+
     /// log₁₀ |1 − n₂/n₁| of the worst planet.
     pub fn worst_log10(&self) -> f64 {
         self.of_planets[self.worst].log10()
@@ -48,22 +57,39 @@ impl FrequencyDrift {
 /// Errors: [`FourierError`]; the halves need [`crate::num::FEWEST_SAMPLES`] rows each. No planets give `TooFew`.
 /// Source: Laskar (1990, 1993); as an indicator for planetary systems Correia et al. (2005).
 pub fn frequency_drift(series: &ElementSeries<'_>) -> Result<FrequencyDrift, FourierError> {
+    let osculating: Vec<f64> = (0..series.planets()).map(|planet| series.osculating_motion(planet)).collect();
+    frequency_drift_near(series, &osculating)
+}
+
+/// [`frequency_drift`] with mean motions that are known better than from osculating elements, rad/day per planet.
+pub fn frequency_drift_near(
+    series: &ElementSeries<'_>,
+    near: &[f64],
+) -> Result<FrequencyDrift, FourierError> {
     let half = series.rows().len() / 2;
     let of_planets = (0..series.planets())
-        .map(|planet| {
+        .zip(near)
+        .map(|(planet, near)| {
             let signal = series.motion_signal(planet);
-            let osculating = series.osculating_motion(planet);
             // Both halves have as many rows; an odd one in the middle is left out.
             let (early, late) = (&signal[..half], &signal[signal.len() - half..]);
-            let first = series.unfolded(strongest(early, series.step_day())?, osculating);
+            let first = series.unfolded(strongest(early, series.step_day())?, *near);
             let second = series.unfolded(strongest(late, series.step_day())?, first);
             Ok(MotionDrift { first_rad_day: first, second_rad_day: second })
         })
         .collect::<Result<Vec<_>, FourierError>>()?;
-    let worst = (0..of_planets.len())
-        .max_by(|one, other| of_planets[*one].log10().total_cmp(&of_planets[*other].log10()))
-        .ok_or(FourierError::TooFew { found: 0 })?;
-    Ok(FrequencyDrift { of_planets, worst })
+    FrequencyDrift::of(of_planets)
+}
+
+/// Mean motion of every planet over the whole series, taken next to `near` (rad/day) where samples fold it.
+///
+/// Errors: [`FourierError`].
+pub fn mean_motions(series: &ElementSeries<'_>, near: &[f64]) -> Result<Vec<f64>, FourierError> {
+    let each = (0..series.planets()).zip(near).map(|(planet, near)| {
+        let line = strongest(&series.motion_signal(planet), series.step_day())?;
+        Ok(series.unfolded(line, *near))
+    });
+    each.collect()
 }
 
 fn strongest(signal: &[Complex], step_day: f64) -> Result<f64, FourierError> {
@@ -117,7 +143,7 @@ pub fn fundamental_nodes(
     Ok(numbered(modes(&spectra, series.span_day(), most), "s", Kind::Node))
 }
 
-fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
+pub(super) fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
     modes
         .into_iter()
         .enumerate()
@@ -130,7 +156,7 @@ fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamenta
 /// One line per planet, none taken twice and at most `most`: the largest share of its planet's signal chooses first.
 ///
 /// Lines nearer than a resolution element are one mode.
-fn modes(spectra: &[Spectrum], span_day: f64, most: usize) -> Vec<Option<f64>> {
+pub(super) fn modes(spectra: &[Spectrum], span_day: f64, most: usize) -> Vec<Option<f64>> {
     let resolution = std::f64::consts::TAU / span_day;
     let mut offers: Vec<(f64, usize, f64)> = spectra
         .iter()

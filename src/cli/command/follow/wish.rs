@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 use std::time::Duration;
 
-use crate::assess::{Plan, auto_step_day, innermost_period_day, plan_for_rows};
+use crate::assess::{MOST_SAMPLES, Plan, auto_step_day, innermost_period_day, plan_for_rows};
 use crate::cli::CliError;
 use crate::cli::args::{CoordinateWord, EngineWord, FollowArgs};
 use crate::cli::unfit;
@@ -79,7 +79,7 @@ impl Wish {
         let configuration = unfit::startable(&file)?;
         let mut plan = Plan::new(span, &limits, &engine, &configuration);
         plan.adaptive = args.engine == EngineWord::Adaptive;
-        let plan = plan_for_rows(&plan, &configuration, rows);
+        let plan = plan_for_rows(&plan, &configuration, rows.max(MOST_SAMPLES));
         check_plan(args, &plan, &configuration)?;
         let meanings = [
             ("--span", format!("{span:?}"), args.span.clone()),
@@ -116,6 +116,11 @@ impl Wish {
 
     pub fn title(&self) -> &str {
         &self.file.system.title
+    }
+
+    /// Of planets and companion, in the order of the configuration.
+    pub fn names(&self) -> Vec<String> {
+        self.configuration.planets.iter().map(|planet| planet.name.clone()).collect()
     }
 
     pub fn planet(&self, index: usize) -> &str {
