@@ -97,18 +97,29 @@ pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
     })
 }
 
-/// The points of an angle on the whole circle, cut where it never is: at 180 deg or at 0.
+/// An angle as a curve, cut where it never is: at 180 deg or at 0; with room about it as large as its range.
 fn angle_panel(x: &Axis, unit_day: f64, angle: &AngleCurve<'_>) -> Panel {
     let signed = |value: f64| wrap_half_turn(value) / DEGREE;
-    let away = angle.points.iter().map(|(_, value)| signed(*value).abs());
-    let crosses = |degree: f64| away.clone().any(|size| (size - degree).abs() < 5.0);
-    let upper = crosses(180.0) && !crosses(0.0);
+    let sides = angle.points.iter().fold((0u32, 0u32), |(near, far), (_, value)| {
+        if signed(*value).abs() < 90.0 { (near + 1, far) } else { (near, far + 1) }
+    });
+    let upper = sides.1 > sides.0;
     let place = |value: f64| if upper { signed(value).rem_euclid(360.0) } else { signed(value) };
-    let points = angle.points.iter().map(|(day, value)| (day / unit_day, place(*value), INKS[0])).collect();
-    let (from, to) = if upper { (0.0, 360.0) } else { (-180.0, 180.0) };
+    let mut points: Vec<(f64, f64)> = Vec::new();
+    for (day, value) in angle.points {
+        let next = (day / unit_day, place(*value));
+        if points.last().is_some_and(|last| (last.1 - next.1).abs() > 180.0) {
+            points.push((next.0, f64::NAN));
+        }
+        points.push(next);
+    }
+    let middle = if upper { 180.0 } else { 0.0 };
+    let away = points.iter().map(|(_, y)| (y - middle).abs()).filter(|d| d.is_finite()).fold(0.0, f64::max);
+    let reach = [30.0, 60.0, 90.0, 120.0].into_iter().find(|reach| away < 0.95 * reach).unwrap_or(180.0);
     let label = with_indices(angle.name).then(" [deg]");
+    let (from, to) = (middle - reach, middle + reach);
     let y = Axis { short: with_indices(angle.name), label, from, to, kind: ScaleKind::Linear };
-    let marks = vec![Mark::Points { points, hollow: false }];
+    let marks = vec![Mark::Level { at: middle }, Mark::Curve(Curve { points, colour: BLACK })];
     Panel { x: x.clone(), y: Some(y), marks, top: Vec::new(), right: Vec::new(), height: 0.2 }
 }
 

@@ -57,11 +57,16 @@ impl Combination {
         self.coefficients.iter().map(|k| k.unsigned_abs()).sum()
     }
 
-    /// In the names of the fundamentals, as "2n_b − 3n_c + g1"; "0" for none.
+    /// In the names of the fundamentals, a positive term first: "2n_b − 3n_c + g1", "g2 − g1"; "0" for none.
     pub fn words(&self, fundamentals: &[Fundamental]) -> String {
+        let named = self.coefficients.iter().copied().zip(fundamentals).filter(|(k, _)| *k != 0);
+        let mut terms: Vec<(i32, &Fundamental)> = named.collect();
+        if let Some(first) = terms.iter().position(|(k, _)| *k > 0) {
+            terms[..=first].rotate_right(1);
+        }
         let mut words = String::new();
-        for (k, fundamental) in self.coefficients.iter().zip(fundamentals).filter(|(k, _)| **k != 0) {
-            let sign = match (words.is_empty(), *k < 0) {
+        for (k, fundamental) in terms {
+            let sign = match (words.is_empty(), k < 0) {
                 (true, true) => "−",
                 (true, false) => "",
                 (false, true) => " − ",
@@ -263,7 +268,7 @@ mod tests {
         fundamentals.push(Fundamental { name: "s2".into(), kind: Kind::Node, rad_day: -9.1e-4 });
         let plane = Namer::new(&fundamentals, Rule::PLANE, 0.0);
         let line = 2.0 * -9.1e-4 - 1.17e-3;
-        assert_eq!(plane.name(line, 1e-10).unwrap().words(&fundamentals), "−g1 + 2s2");
+        assert_eq!(plane.name(line, 1e-10).unwrap().words(&fundamentals), "2s2 − g1");
         assert!(plane.name(-9.1e-4, 1e-12).is_none());
         let node = Namer::new(&fundamentals, Rule::NODE, 0.0);
         assert_eq!(node.name(-9.1e-4, 1e-10).unwrap().words(&fundamentals), "s2");
@@ -277,6 +282,15 @@ mod tests {
         ];
         let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
         assert_eq!(namer.name(1e-3 + 2.0 * 0.0301, 1e-10).unwrap().words(&fundamentals), "g1 + 2l");
+    }
+
+    /// With so wide a tolerance nearly any line meets some combination: only the simple ones are given.
+    #[test]
+    fn a_name_that_anything_would_get_is_not_given() {
+        let fundamentals = two_planets();
+        let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
+        assert!(namer.name(0.713, 1e-3).is_some());
+        assert_eq!(namer.name(2.0 * 0.713 - 3.0 * 0.3131 + 1e-3, 5e-2), None);
     }
 
     #[test]

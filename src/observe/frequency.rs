@@ -2,7 +2,7 @@
 
 use super::ElementSeries;
 use super::combination::{Fundamental, Kind};
-use crate::num::{Complex, FourierError, Search, Spectrum, decompose};
+use crate::num::{Complex, FourierError, Line, Search, Spectrum, decompose};
 
 /// Power of the window for a mean motion: its neighbours in the spectrum are far.
 const MOTION_WINDOW: u32 = 3;
@@ -110,7 +110,7 @@ pub fn fundamentals(
     names: &[String],
     search: Search,
 ) -> Result<Vec<Fundamental>, FourierError> {
-    let mut all = Vec::new();
+    let mut all: Vec<Fundamental> = Vec::new();
     for (planet, name) in names.iter().enumerate().take(series.planets()) {
         let line = strongest(&series.motion_signal(planet), series.step_day())?;
         let frequency = series.unfolded(line, series.osculating_motion(planet));
@@ -119,7 +119,8 @@ pub fn fundamentals(
     let spectra = (0..series.planets())
         .map(|planet| decompose(&series.pericentre_signal(planet), series.step_day(), search))
         .collect::<Result<Vec<_>, _>>()?;
-    let modes = modes(&spectra, series.span_day(), series.planets());
+    let motions: Vec<f64> = all.iter().map(|f| f.rad_day).collect();
+    let modes = modes(&spectra, &motions, series.span_day(), series.planets());
     all.extend(numbered(modes, "g", Kind::Pericentre));
     Ok(all)
 }
@@ -140,7 +141,8 @@ pub fn fundamental_nodes(
         })
         .collect::<Result<Vec<_>, FourierError>>()?;
     let most = series.planets().saturating_sub(1);
-    Ok(numbered(modes(&spectra, series.span_day(), most), "s", Kind::Node))
+    let motions: Vec<f64> = (0..series.planets()).map(|planet| series.osculating_motion(planet)).collect();
+    Ok(numbered(modes(&spectra, &motions, series.span_day(), most), "s", Kind::Node))
 }
 
 pub(super) fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
@@ -153,17 +155,30 @@ pub(super) fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec
         .collect()
 }
 
+/// Smallest share of a signal that a mode of its own has.
+const LEAST_SHARE: f64 = 0.005;
+/// Largest frequency of a slow variable, against the planet's own mean motion.
+const SLOW: f64 = 0.1;
+
 /// One line per planet, none taken twice and at most `most`: the largest share of its planet's signal chooses first.
 ///
 /// Lines nearer than a resolution element are one mode.
-pub(super) fn modes(spectra: &[Spectrum], span_day: f64, most: usize) -> Vec<Option<f64>> {
+///
+/// Lines faster than a tenth of the planet's mean motion (`motions`, rad/day) are short-period terms and no modes, and so are lines of less than
+/// 0.5 % of the signal.
+pub(super) fn modes(spectra: &[Spectrum], motions: &[f64], span_day: f64, most: usize) -> Vec<Option<f64>> {
     let resolution = std::f64::consts::TAU / span_day;
     let mut offers: Vec<(f64, usize, f64)> = spectra
         .iter()
+        .zip(motions)
         .enumerate()
-        .flat_map(|(planet, spectrum)| {
+        .flat_map(|(planet, (spectrum, motion))| {
             let whole = spectrum.signal_rms;
-            let lines = spectrum.lines.iter().filter(|line| line.resolved).take(MODE_LINES);
+            let slow = move |line: &&Line| {
+                let share = line.amplitude.norm() / whole;
+                line.resolved && share >= LEAST_SHARE && line.frequency.abs() < SLOW * motion
+            };
+            let lines = spectrum.lines.iter().take(MODE_LINES).filter(slow);
             lines.map(move |line| (line.amplitude.norm() / whole, planet, line.frequency))
         })
         .collect();

@@ -69,8 +69,8 @@ impl Spectra {
         let resolution = TAU / self.span_day;
         let mut nodes = self.nodes.clone();
         nodes.iter_mut().for_each(|node| node.lines.retain(|line| line.frequency.abs() > 0.5 * resolution));
-        let pericentres = modes(&self.pericentres, self.span_day, count);
-        let nodes = modes(&nodes, self.span_day, count.saturating_sub(1));
+        let pericentres = modes(&self.pericentres, &self.motions_rad_day, self.span_day, count);
+        let nodes = modes(&nodes, &self.motions_rad_day, self.span_day, count.saturating_sub(1));
         motions
             .chain(numbered(pericentres, "g", Kind::Pericentre))
             .chain(numbered(nodes, "s", Kind::Node))

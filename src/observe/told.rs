@@ -1,7 +1,7 @@
 //! How an angle moves, told from samples over the whole span and from dense windows at its ends together.
 
 use super::libration::{AngleMotion, Libration, WhyNot, angle_motion};
-use crate::num::{FourierError, wrap_half_turn, wrap_turn};
+use crate::num::{Complex, FourierError, wrap_half_turn, wrap_turn};
 use std::f64::consts::{PI, TAU};
 
 /// Largest expected change between samples of the whole span for which these are followed by themselves.
@@ -64,7 +64,8 @@ pub struct AngleSamples<'a> {
 ///
 /// Samples far apart fold fast motion into slow: those of the whole span are followed by themselves only while the
 /// change between two of them, as the windows show it (or `rate_rad_day`, a mean rate of circulation expected from the
-/// mean motions, where there are no windows), stays below 0.6 π. Else the windows tell circulation, and they tell libration if the
+/// mean motions, where there are no windows), stays below 0.6 π, and a libration only while the angle moves by no more than
+/// its swing between two samples. Else the windows tell circulation, and they tell libration if the
 /// angle is confined besides: all samples of the whole span leave 20 deg of the circle free. One that librates in the
 /// windows and is not confined alternates. Errors: [`FourierError`].
 pub fn told_angle(
@@ -76,11 +77,11 @@ pub fn told_angle(
     let fastest = windows.iter().map(|window| change(window, whole.step_day)).fold(None, larger);
     let fastest = fastest.unwrap_or((rate_rad_day * whole.step_day).abs());
     if fastest < FOLLOWED {
-        return Ok(ToldAngle {
-            motion: angle_motion(whole.values, whole.step_day)?,
-            from: ToldFrom::Whole,
-            arc,
-        });
+        let motion = angle_motion(whole.values, whole.step_day)?;
+        let folded = windows.iter().any(|window| swings_between(window, &whole));
+        if !(matches!(motion, AngleMotion::Librates(_)) && folded) {
+            return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc });
+        }
     }
     if windows.is_empty() {
         let motion = AngleMotion::CannotTell(WhyNot::SparseSamples);
@@ -131,6 +132,28 @@ fn joined(seen: &[AngleMotion], arc: Option<Arc>) -> AngleMotion {
         (None, _) => AngleMotion::CannotTell(WhyNot::SparseSamples),
     }
 }
+
+/// Whether a window shows an angle to swing to and fro between two samples of the whole span: over some shorter time it
+/// changes by more (root mean square) than it swings, as six samples to a period just do not.
+fn swings_between(window: &AngleSamples<'_>, whole: &AngleSamples<'_>) -> bool {
+    let swing = whole.values.iter().map(|value| Complex::from_polar(1.0, *value)).sum::<Complex>();
+    let square: f64 = whole.values.iter().map(|v| wrap_half_turn(v - swing.arg()).powi(2)).sum();
+    let swing = (square / whole.values.len() as f64).sqrt();
+    let longest = window.values.len() / 2;
+    let lag = ((whole.step_day / window.step_day) as usize).min(longest);
+    // In proportion where the window is too short to show the whole of it.
+    let beyond = (whole.step_day / (window.step_day * longest.max(1) as f64)).max(1.0);
+    let lags = (1..=LAGS).map(|part| (lag * part / LAGS).max(1));
+    lags.into_iter().any(|lag| {
+        let pairs = window.values.iter().zip(&window.values[lag.min(longest)..]);
+        let (sum, count) =
+            pairs.fold((0.0, 0.0), |(sum, count), (a, b)| (sum + wrap_half_turn(b - a).powi(2), count + 1.0));
+        (sum / f64::max(count, 1.0)).sqrt() * beyond > swing
+    })
+}
+
+/// Parts of the time between two samples that are looked at.
+const LAGS: usize = 16;
 
 /// Largest change of an angle over a lag, as a window shows it; in proportion where the lag is longer than the window.
 fn change(window: &AngleSamples<'_>, lag_day: f64) -> f64 {
@@ -229,6 +252,19 @@ mod tests {
         assert!(found.libration().is_none() && found.stays(), "{found:?}");
         let arc = found.arc.unwrap();
         assert!((arc.middle - 2.0).abs() < 0.01 && (arc.half_width - 1.5).abs() < 0.01, "{found:?}");
+    }
+
+    /// A narrow libration folded by the samples of the whole span looks slow; the windows hold less than two of its periods.
+    #[test]
+    fn a_folded_libration_has_no_period() {
+        let found = told(|t| 1.0 + 0.4 * (TAU * t / 137.0).sin());
+        assert!(found.stays(), "{found:?}");
+        if let Some(libration) = found.libration() {
+            assert!((libration.main_period_day / 137.0 - 1.0).abs() < 0.02, "{found:?}");
+        }
+        let slow = told(|t| 1.0 + 0.4 * (TAU * t / 700.0).sin());
+        assert_eq!(slow.from, ToldFrom::Whole, "{slow:?}");
+        assert!((slow.libration().unwrap().main_period_day / 700.0 - 1.0).abs() < 1e-6, "{slow:?}");
     }
 
     #[test]

@@ -16,7 +16,9 @@ mod words;
 pub use caption::caption;
 pub use cells::cells_table;
 pub use error::ReportError;
-pub use motion::{AngleWords, DEGREE_YEAR, MotionInput, frequencies_table, lines_table, resonances_table};
+pub use motion::{
+    AngleWords, DEGREE_YEAR, MotionInput, frequencies_table, is_unturned, lines_table, resonances_table,
+};
 pub use series::{PlanetSeries, Series, series_table};
 pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};
 pub use table::{Column, Datatype, Entry, Meta, Table};

@@ -51,6 +51,11 @@ fn finite(value: f64) -> Entry {
     Some(value).filter(|value| value.is_finite()).into()
 }
 
+/// Whether a frequency makes no whole turn in the span, and so is little more than a guess.
+pub fn is_unturned(analysis: &Analysis, rad_day: f64) -> bool {
+    rad_day.abs() * analysis.sampling.span_day < TAU
+}
+
 /// How far a fundamental frequency is known: whole turns per sample may be missing from slow ones.
 fn known_up_to(analysis: &Analysis, kind: Kind) -> Option<f64> {
     let slow = matches!(kind, Kind::Pericentre | Kind::Node);
@@ -73,6 +78,7 @@ pub fn frequencies_table(input: &MotionInput<'_>) -> Table {
         float("first", "deg/yr", &format!("in the first of {between}")),
         float("second", "deg/yr", &format!("in the second of {between}")),
         float("drift", "", "log10 of |1 - second/first|"),
+        text("remark", "what else must be known"),
     ];
     let motions = analysis.fundamentals.iter().enumerate().map(|(index, f)| {
         let drift = analysis.drift.of_planets.get(index).filter(|_| f.kind == Kind::Motion);
@@ -85,6 +91,11 @@ pub fn frequencies_table(input: &MotionInput<'_>) -> Table {
             drift.map(|d| d.first_rad_day / DEGREE_YEAR).into(),
             drift.map(|d| d.second_rad_day / DEGREE_YEAR).into(),
             drift.map(|d| d.log10()).into(),
+            if is_unturned(analysis, f.rad_day) {
+                "its period is longer than the span".into()
+            } else {
+                Entry::Absent
+            },
         ]
     });
     Table { meta: meta(input), columns, rows: motions.collect() }

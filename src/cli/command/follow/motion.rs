@@ -4,15 +4,14 @@ use std::f64::consts::TAU;
 
 use serde_json::{Value, json};
 
-use super::wish::count;
 use crate::assess::{Analysis, AngleFound, DriftFrom, NotAnalysed};
-use crate::cli::command::inspect::table::{lines, short, significant, wrapped};
+use crate::cli::command::inspect::table::{PAGE_WIDTH, lines, short, significant, wrapped};
 use crate::observe::{AngleMotion, Kind};
-use crate::report::{AngleWords, DEGREE_YEAR, time_words};
+use crate::report::{AngleWords, DEGREE_YEAR, is_unturned, time_words};
 use crate::units::YEAR_DAY;
 
-/// Longest name in the angles of the terminal.
-const NAME: usize = 4;
+/// Longest names in the angles of the terminal: the first with which the lines fit.
+const NAMES: [usize; 5] = [16, 10, 7, 5, 4];
 /// Most angles that the terminal lists.
 const MOST_ANGLES: usize = 12;
 
@@ -20,9 +19,10 @@ fn true_minus(text: String) -> String {
     text.replace('-', "−")
 }
 
-/// A logarithm with a decimal.
-fn logarithm(value: f64) -> String {
-    true_minus(format!("{value:.1}"))
+/// With one decimal; no minus before zero.
+fn decimal(value: f64) -> String {
+    let text = format!("{value:.1}");
+    if text == "-0.0" { "0.0".to_owned() } else { true_minus(text) }
 }
 
 /// How far the mean motions drift, in one sentence.
@@ -34,7 +34,7 @@ pub fn drift(analysis: &Analysis, names: &[String]) -> String {
     };
     format!(
         "log10 |1 − n₂/n₁| = {} at worst ({}), between {between}; n the mean motion (Laskar 1990, 1993)",
-        logarithm(drift.worst_log10()),
+        decimal(drift.worst_log10()),
         names[drift.worst],
     )
 }
@@ -59,8 +59,8 @@ fn frequencies(analysis: &Analysis) -> Vec<String> {
         vec![
             f.name.clone(),
             true_minus(significant(f.rad_day / DEGREE_YEAR, 8)),
-            time_words(TAU / f.rad_day.abs()),
-            drift.map_or(String::new(), |drift| logarithm(drift.log10())),
+            time_words(TAU / f.rad_day.abs()) + if is_unturned(analysis, f.rad_day) { " *" } else { "" },
+            drift.map_or(String::new(), |drift| decimal(drift.log10())),
         ]
     });
     let mut out = lines(&["frequency", "deg/yr", "period", "drift"], &rows.collect::<Vec<_>>(), &[]);
@@ -86,6 +86,9 @@ fn frequencies(analysis: &Analysis) -> Vec<String> {
             significant(fold / DEGREE_YEAR, 4)
         ));
     }
+    if analysis.fundamentals.iter().any(|f| is_unturned(analysis, f.rad_day)) {
+        words.push_str(". * longer than the span: little more than a guess");
+    }
     if let Some(relation) = &analysis.relation {
         words.push_str(&format!(". Locked: {} = 0", relation.words(&analysis.fundamentals)));
     }
@@ -95,47 +98,55 @@ fn frequencies(analysis: &Analysis) -> Vec<String> {
 
 fn resonances(analysis: &Analysis, names: &[String]) -> Vec<String> {
     let all = analysis.angles.len();
-    let circulates = |found: &&AngleFound| matches!(found.told.motion, AngleMotion::Circulates { .. });
-    let mut listed: Vec<&AngleFound> = analysis.angles.iter().filter(|found| !circulates(found)).collect();
-    // Stable: angles that stay come first, in the order of their candidates.
-    listed.sort_by_key(|found| !found.told.stays());
-    if listed.is_empty() {
-        let words = match all {
-            0 => "no resonance up to order 8 is near, and one planet alone has no apsides to compare"
-                .to_owned(),
-            _ => format!("resonances: none of {all} angles librates, all circulate (resonances.ecsv)"),
-        };
-        return vec![wrapped("  ", &words)];
+    if all == 0 {
+        return vec![wrapped("  ", "resonances: one body alone has none")];
     }
-    let brief: Vec<String> = names.iter().map(|name| short(name, NAME)).collect();
-    let number =
-        |value: Option<f64>, digits| value.map_or(String::new(), |v| true_minus(significant(v, digits)));
-    let whole = |value: Option<f64>| value.map_or(String::new(), |v| true_minus(format!("{v:.1}")));
-    let rows: Vec<Vec<String>> = listed
-        .iter()
-        .take(MOST_ANGLES)
-        .map(|found| {
+    let of = |wanted: fn(&AngleFound) -> bool| -> Vec<&AngleFound> {
+        analysis.angles.iter().filter(|found| wanted(found)).collect()
+    };
+    let mut listed = of(|found| found.told.stays());
+    listed.extend(of(|found| matches!(found.told.motion, AngleMotion::Alternates { .. })));
+    let circulating = of(|found| matches!(found.told.motion, AngleMotion::Circulates { .. })).len();
+    let untold = all - listed.len() - circulating;
+    let count = |number: usize| if number == 0 { "none".to_owned() } else { number.to_string() };
+    let mut words = format!("{} of {all} resonant angles circulate", count(circulating));
+    if listed.is_empty() {
+        words = format!("none of {all} resonant angles librates, {} circulate", count(circulating));
+    }
+    if untold > 0 {
+        words.push_str(&format!(", {untold} are not told: the span is too short or the samples too sparse"));
+    }
+    let left = listed.len().saturating_sub(MOST_ANGLES);
+    if left > 0 {
+        words.push_str(&format!("; {left} more than shown librate or alternate"));
+    }
+    words.push_str(". All are in resonances.ecsv");
+    let mut out = if listed.is_empty() { Vec::new() } else { angle_lines(&listed, names) };
+    out.push(wrapped("  ", &words));
+    out
+}
+
+fn angle_lines(listed: &[&AngleFound], names: &[String]) -> Vec<String> {
+    let number = |value: Option<f64>| value.map_or(String::new(), |v| true_minus(significant(v, 4)));
+    let degree = |value: Option<f64>| value.map_or(String::new(), decimal);
+    let with_names = |most: usize| {
+        let brief: Vec<String> = names.iter().map(|name| short(name, most)).collect();
+        let row = |found: &&AngleFound| {
             let seen = AngleWords::of(found, names);
             vec![
                 found.angle.words(&brief),
                 seen.resonance,
                 seen.motion.to_owned(),
-                whole(seen.centre_deg),
-                whole(seen.amplitude_deg),
-                number(seen.period_yr, 4),
+                degree(seen.centre_deg),
+                degree(seen.amplitude_deg),
+                number(seen.period_yr),
             ]
-        })
-        .collect();
-    let head = ["angle", "of", "motion", "centre/deg", "amplitude/deg", "period/yr"];
-    let mut out = lines(&head, &rows, &[1, 2]);
-    let left = listed.len().saturating_sub(MOST_ANGLES);
-    let more = if left > 0 { format!("{left} more, and ") } else { String::new() };
-    let circulating = all - listed.len();
-    out.push(wrapped(
-        "  ",
-        &format!("{more}{} of {all} angles circulate (resonances.ecsv)", count(circulating as f64)),
-    ));
-    out
+        };
+        let rows: Vec<Vec<String>> = listed.iter().take(MOST_ANGLES).map(row).collect();
+        lines(&["angle", "of", "motion", "centre/deg", "amplitude/deg", "period/yr"], &rows, &[1, 2])
+    };
+    let fits = |lines: &Vec<String>| lines.iter().all(|line| line.chars().count() <= PAGE_WIDTH);
+    NAMES.into_iter().map(with_names).find(fits).unwrap_or_else(|| with_names(1))
 }
 
 /// The same for scripts: frequencies and resonances; null where they were not looked at.
