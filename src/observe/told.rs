@@ -79,7 +79,8 @@ pub fn told_angle(
     if fastest < FOLLOWED {
         let motion = angle_motion(whole.values, whole.step_day)?;
         let folded = windows.iter().any(|window| swings_between(window, &whole));
-        if !(matches!(motion, AngleMotion::Librates(_)) && folded) {
+        let sparse = matches!(motion, AngleMotion::CannotTell(WhyNot::SparseSamples));
+        if !sparse && !(matches!(motion, AngleMotion::Librates(_)) && folded) {
             return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc });
         }
     }
@@ -248,7 +249,7 @@ mod tests {
     /// Too slow for the windows and too fast for the whole span: the arc is all that is known.
     #[test]
     fn what_is_only_confined() {
-        let found = told(|t| 2.0 + 1.5 * (t / 120.0).sin());
+        let found = told(|t| 2.0 + 1.5 * (t / 60.0).sin());
         assert!(found.libration().is_none() && found.stays(), "{found:?}");
         let arc = found.arc.unwrap();
         assert!((arc.middle - 2.0).abs() < 0.01 && (arc.half_width - 1.5).abs() < 0.01, "{found:?}");

@@ -10,7 +10,7 @@ use super::truth_support::{hd_45364, hd_45364::frequencies, truth_path};
 
 const WORDS: &str = "
 Source: Correia et al. (2009), Table 4; seen. Their orbital solution is tests/truth/hd-45364.toml (Jacobi elements; partly from memory, see the
-file). `follow`: `abide follow --span "1e4 yr"`, frequencies from its frequencies.ecsv, lines of 3λc − 2λb − ϖb from its lines.ecsv under the names it
+file). `follow`: `abide follow` over 1e4 yr, frequencies from its frequencies.ecsv, lines of 3λc − 2λb − ϖb from its lines.ecsv under the names it
 gives them. `phase`: an independent evaluation over 1e5 years, libration from the strongest Fourier line alone, n_b - n_c the mean rate of λb − λc. Found numbers change by less than 0.0003 deg/yr and 0.01 deg when the step is a quarter of this one or the scheme is (10,6,4). The
 solution is said to be in Jacobi elements; read as astrocentric ones the same numbers meet the published lines 5 to 200 times closer,
 so what is left in the Jacobi rows is most likely the convention. Earlier independent integrations of these elements gave 19.83 deg/yr,
