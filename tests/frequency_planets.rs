@@ -242,13 +242,15 @@ fn the_decomposition_of_hd_45364() {
     let series = series(hd_45364());
     let about = [226.93, 342.85].map(|period| TAU / period);
     let spectra = Spectra::of(&series, &about).unwrap();
-    let mut all = spectra.fundamentals(&names());
+    let mut all = spectra.fundamentals(&names(), &[]);
     let angle = ResonantAngle::new(vec![-2, 3], vec![-1, 0]).unwrap();
     let values: Vec<f64> = series.rows().iter().map(|row| angle.value(row)).collect();
     let search = Search { most: 10, window_power: 1 };
     let lines = angle_lines(&values, 0.0, series.step_day(), search).unwrap();
     let (span, fold) = (series.span_day(), spectra.fold_rad_day());
     let own = libration_frequency(&lines, &all, span, fold).unwrap();
+    // The side lines of the mean longitudes tell the same.
+    near(spectra.libration(&[0, 1], &lines).unwrap(), own, 1e-9);
     near(own / DEGREE_YEAR, published("libration frequency of 2 lambda_b-3 lambda_c+varpi_b"), 0.01);
     all.push(Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: own });
     assert_eq!(spectra.relation(&all).unwrap().words(&all), "2n_b − 3n_c + g1");

@@ -114,16 +114,21 @@ pub fn analyse(samples: &Samples, configuration: &Configuration) -> Analysed {
         .collect::<Result<Vec<_>, _>>()?;
     let motions = Motions::of(&series, &dense)?;
     let spectra = Spectra::of(&series, &motions.near)?;
-    let mut fundamentals = spectra.fundamentals(&names);
+    let mut angles = angles(&series, &dense, &motions.near)?;
+    let seen = Seen { series: &series, dense: &dense, spectra: &spectra };
+    let calmest = calmest(&angles);
+    let side_lines: Vec<f64> =
+        calmest.iter().filter_map(|(bodies, found)| seen.side_line(bodies, found)).collect();
+    let mut fundamentals = spectra.fundamentals(&names, &side_lines);
     if motions.from == DriftFrom::Windows {
         let n = fundamentals.iter_mut().zip(&motions.near);
         n.for_each(|(fundamental, near)| fundamental.rad_day = *near);
     }
-    let mut angles = angles(&series, &dense, &fundamentals)?;
-    let locked = add_librations(&mut fundamentals, &angles, &series, &dense);
+    seen.add_librations(&mut fundamentals, &calmest);
+    let locked = calmest.iter().any(|(_, found)| matches!(found.candidate, Candidate::Pair { .. }));
     for found in &mut angles {
         let lines = std::mem::take(&mut found.lines).into_iter().map(|named| named.line).collect();
-        let (span_day, fold) = basis(found, &series, &dense);
+        let (span_day, fold) = seen.basis(found);
         found.lines = named_angle(lines, &fundamentals, span_day, fold);
     }
     Ok(Analysis {
@@ -244,12 +249,10 @@ fn candidates(motions: &[f64]) -> Vec<Candidate> {
 fn angles(
     series: &ElementSeries<'_>,
     dense: &[ElementSeries<'_>],
-    fundamentals: &[Fundamental],
+    motions: &[f64],
 ) -> Result<Vec<AngleFound>, FourierError> {
-    let motions: Vec<f64> =
-        (fundamentals.iter().filter(|f| f.kind == Kind::Motion)).map(|f| f.rad_day).collect();
     let mut all = Vec::new();
-    for candidate in candidates(&motions) {
+    for candidate in candidates(motions) {
         for angle in candidate.angles(series.planets()) {
             let values = |rows: &[Vec<Elements>]| rows.iter().map(|row| angle.value(row)).collect::<Vec<_>>();
             let whole = values(series.rows());
@@ -260,7 +263,7 @@ fn angles(
                 .zip(dense)
                 .map(|(values, w)| samples(values.as_slice(), w.step_day()))
                 .collect();
-            let told = told_angle(samples(&whole, series.step_day()), &in_windows, angle.rate(&motions))?;
+            let told = told_angle(samples(&whole, series.step_day()), &in_windows, angle.rate(motions))?;
             let (values, step_day) = match (told.from, in_windows.first()) {
                 (ToldFrom::Windows, Some(first)) => (first.values, first.step_day),
                 _ => (whole.as_slice(), series.step_day()),
@@ -276,56 +279,70 @@ fn angles(
     Ok(all)
 }
 
-/// Span and fold of the samples that an angle's lines come from.
-fn basis(found: &AngleFound, series: &ElementSeries<'_>, dense: &[ElementSeries<'_>]) -> (f64, f64) {
-    let from = match found.told.from {
-        ToldFrom::Windows => dense.first().unwrap_or(series),
-        ToldFrom::Whole => series,
-    };
-    (from.span_day(), TAU / from.step_day())
-}
-
-/// Adds the libration frequency of every pair or chain that librates, from the angle with the smallest swing; whether any
-/// pair does.
-fn add_librations(
-    fundamentals: &mut Vec<Fundamental>,
-    angles: &[AngleFound],
-    series: &ElementSeries<'_>,
-    dense: &[ElementSeries<'_>],
-) -> bool {
+/// Of the bodies of every pair and chain that librates: the angle with the smallest swing.
+fn calmest(angles: &[AngleFound]) -> Vec<(Vec<usize>, AngleFound)> {
     let swing = |found: &AngleFound| found.told.libration().map_or(f64::INFINITY, |l| l.amplitude);
-    let mut frequencies: Vec<f64> = Vec::new();
-    let mut locked = false;
-    let bodies = |candidate: &Candidate| match *candidate {
-        Candidate::Pair { inner, outer, .. } => Some(vec![inner, outer]),
-        Candidate::Chain { planets, .. } => Some(planets.to_vec()),
-        Candidate::Apsides { .. } => None,
-    };
-    let mut done: Vec<Vec<usize>> = Vec::new();
-    for found in angles {
-        let Some(own) = bodies(&found.candidate).filter(|own| !done.contains(own)) else { continue };
-        let alike = angles.iter().filter(|other| bodies(&other.candidate).as_ref() == Some(&own));
-        let Some(calmest) = alike.min_by(|one, other| swing(one).total_cmp(&swing(other))) else { continue };
-        done.push(own);
-        if calmest.told.libration().is_none() {
-            continue;
-        }
-        locked |= matches!(calmest.candidate, Candidate::Pair { .. });
-        let lines: Vec<Line> = calmest.lines.iter().map(|named| named.line).collect();
-        let (span_day, fold) = basis(calmest, series, dense);
-        let known = |new: f64| frequencies.iter().any(|old| (old - new).abs() < TAU / span_day);
-        let new = libration_frequency(&lines, fundamentals, span_day, fold);
-        if let Some(new) = new.filter(|new| !known(*new)) {
-            frequencies.push(new);
+    let mut all: Vec<(Vec<usize>, AngleFound)> = Vec::new();
+    for found in angles.iter().filter(|found| found.told.libration().is_some()) {
+        let bodies = match found.candidate {
+            Candidate::Pair { inner, outer, .. } => vec![inner, outer],
+            Candidate::Chain { planets, .. } => planets.to_vec(),
+            Candidate::Apsides { .. } => continue,
+        };
+        match all.iter_mut().find(|(known, _)| *known == bodies) {
+            Some((_, known)) if swing(found) < swing(known) => *known = found.clone(),
+            Some(_) => {}
+            None => all.push((bodies, found.clone())),
         }
     }
-    let many = frequencies.len() > 1;
-    fundamentals.extend(frequencies.into_iter().enumerate().map(|(index, rad_day)| Fundamental {
-        name: if many { format!("l{}", index + 1) } else { "l".to_owned() },
-        kind: Kind::Libration,
-        rad_day,
-    }));
-    locked
+    all
+}
+
+/// All that was seen of the motion.
+struct Seen<'a> {
+    series: &'a ElementSeries<'a>,
+    dense: &'a [ElementSeries<'a>],
+    spectra: &'a Spectra,
+}
+
+impl Seen<'_> {
+    /// Span and fold of the samples that an angle's lines come from.
+    fn basis(&self, found: &AngleFound) -> (f64, f64) {
+        let from = match found.told.from {
+            ToldFrom::Windows => self.dense.first().unwrap_or(self.series),
+            ToldFrom::Whole => self.series,
+        };
+        (from.span_day(), TAU / from.step_day())
+    }
+
+    /// The libration as side lines of the mean longitudes show it.
+    fn side_line(&self, bodies: &[usize], found: &AngleFound) -> Option<f64> {
+        let lines: Vec<Line> = found.lines.iter().map(|named| named.line).collect();
+        let whole = found.told.from == ToldFrom::Whole;
+        if whole { self.spectra.libration(bodies, &lines) } else { None }
+    }
+
+    /// Adds the libration frequency of every pair or chain that librates: where no side line shows it, the strongest line of
+    /// the angle that is no simple combination of the other fundamentals.
+    fn add_librations(&self, fundamentals: &mut Vec<Fundamental>, calmest: &[(Vec<usize>, AngleFound)]) {
+        let mut frequencies: Vec<f64> = Vec::new();
+        for (bodies, found) in calmest {
+            let (span_day, fold) = self.basis(found);
+            let lines: Vec<Line> = found.lines.iter().map(|named| named.line).collect();
+            let known = |new: f64| frequencies.iter().any(|old| (old - new).abs() < TAU / span_day);
+            let new = self.side_line(bodies, found);
+            let new = new.or_else(|| libration_frequency(&lines, fundamentals, span_day, fold));
+            if let Some(new) = new.filter(|new| !known(*new)) {
+                frequencies.push(new);
+            }
+        }
+        let many = frequencies.len() > 1;
+        fundamentals.extend(frequencies.into_iter().enumerate().map(|(index, rad_day)| Fundamental {
+            name: if many { format!("l{}", index + 1) } else { "l".to_owned() },
+            kind: Kind::Libration,
+            rad_day,
+        }));
+    }
 }
 
 /// Values of an angle over the whole span, rad in [0, 2π), with their times in days.

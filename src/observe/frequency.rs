@@ -120,7 +120,7 @@ pub fn fundamentals(
         .map(|planet| decompose(&series.pericentre_signal(planet), series.step_day(), search))
         .collect::<Result<Vec<_>, _>>()?;
     let motions: Vec<f64> = all.iter().map(|f| f.rad_day).collect();
-    let modes = modes(&spectra, &motions, series.span_day(), series.planets());
+    let modes = modes(&spectra, &motions, series.span_day(), series.planets(), &[]);
     all.extend(numbered(modes, "g", Kind::Pericentre));
     Ok(all)
 }
@@ -142,7 +142,7 @@ pub fn fundamental_nodes(
         .collect::<Result<Vec<_>, FourierError>>()?;
     let most = series.planets().saturating_sub(1);
     let motions: Vec<f64> = (0..series.planets()).map(|planet| series.osculating_motion(planet)).collect();
-    Ok(numbered(modes(&spectra, &motions, series.span_day(), most), "s", Kind::Node))
+    Ok(numbered(modes(&spectra, &motions, series.span_day(), most, &[]), "s", Kind::Node))
 }
 
 pub(super) fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
@@ -165,8 +165,14 @@ const SLOW: f64 = 0.1;
 /// Lines nearer than a resolution element are one mode.
 ///
 /// Lines faster than a tenth of the planet's mean motion (`motions`, rad/day) are short-period terms and no modes, and so are lines of less than
-/// 0.5 % of the signal.
-pub(super) fn modes(spectra: &[Spectrum], motions: &[f64], span_day: f64, most: usize) -> Vec<Option<f64>> {
+/// 0.5 % of the signal, and those that are another mode shifted by a libration (rad/day).
+pub(super) fn modes(
+    spectra: &[Spectrum],
+    motions: &[f64],
+    span_day: f64,
+    most: usize,
+    librations: &[f64],
+) -> Vec<Option<f64>> {
     let resolution = std::f64::consts::TAU / span_day;
     let mut offers: Vec<(f64, usize, f64)> = spectra
         .iter()
@@ -185,7 +191,12 @@ pub(super) fn modes(spectra: &[Spectrum], motions: &[f64], span_day: f64, most: 
     offers.sort_by(|one, other| other.0.total_cmp(&one.0));
     let mut taken: Vec<Option<f64>> = vec![None; spectra.len()];
     for (_, planet, frequency) in offers {
-        let free = taken.iter().flatten().all(|other| (other - frequency).abs() > resolution);
+        // Neither another's line nor that line shifted by a libration.
+        let apart = |other: f64| {
+            let sides = librations.iter().flat_map(|l| [-2.0 * l, -l, *l, 2.0 * l]);
+            sides.chain([0.0]).all(|side| (other + side - frequency).abs() > resolution)
+        };
+        let free = taken.iter().flatten().all(|other| apart(*other));
         let room = taken.iter().flatten().count() < most;
         if taken[planet].is_none() && free && room {
             taken[planet] = Some(frequency);

@@ -59,7 +59,9 @@ impl Spectra {
     /// n of every planet, then the g and s that planets have of their own, numbered as the planets.
     ///
     /// A planet whose strongest line of e exp(iϖ) belongs to another takes its next one; nodes lack the fixed line of the plane.
-    pub fn fundamentals(&self, names: &[String]) -> Vec<Fundamental> {
+    ///
+    /// `librations` (rad/day) are those whose side lines are no modes.
+    pub fn fundamentals(&self, names: &[String], librations: &[f64]) -> Vec<Fundamental> {
         let motions = self.motions_rad_day.iter().zip(names).map(|(rad_day, name)| Fundamental {
             name: format!("n_{name}"),
             kind: Kind::Motion,
@@ -69,12 +71,42 @@ impl Spectra {
         let resolution = TAU / self.span_day;
         let mut nodes = self.nodes.clone();
         nodes.iter_mut().for_each(|node| node.lines.retain(|line| line.frequency.abs() > 0.5 * resolution));
-        let pericentres = modes(&self.pericentres, &self.motions_rad_day, self.span_day, count);
-        let nodes = modes(&nodes, &self.motions_rad_day, self.span_day, count.saturating_sub(1));
+        let pericentres = modes(&self.pericentres, &self.motions_rad_day, self.span_day, count, librations);
+        let nodes = modes(&nodes, &self.motions_rad_day, self.span_day, count.saturating_sub(1), librations);
         motions
             .chain(numbered(pericentres, "g", Kind::Pericentre))
             .chain(numbered(nodes, "s", Kind::Node))
             .collect()
+    }
+
+    /// The libration of a resonance between bodies, from the side lines n ± l that it gives to a exp(iλ): the strongest of
+    /// them, against n, that is a line of the resonant angle too and no combination of mean motions; rad/day.
+    pub fn libration(&self, bodies: &[usize], angle: &[Line]) -> Option<f64> {
+        let motion = |(index, rad_day): (usize, &f64)| Fundamental {
+            name: format!("n{index}"),
+            kind: Kind::Motion,
+            rad_day: *rad_day,
+        };
+        let motions: Vec<Fundamental> = self.motions_rad_day.iter().enumerate().map(motion).collect();
+        let (fold, tolerance) = (self.fold_rad_day(), TOLERANCE * TAU / self.span_day);
+        let synodic = Namer::new(&motions, Rule::ANGLE, fold);
+        let mut sides: Vec<(f64, f64)> = Vec::new();
+        for spectrum in bodies.iter().map(|body| &self.motions[*body]) {
+            let Some(main) = spectrum.lines.first() else { continue };
+            let side = |line: &Line| {
+                let gap = turn_near(line.frequency - main.frequency, 0.0, fold).abs();
+                (line.amplitude.norm() / main.amplitude.norm(), gap)
+            };
+            sides.extend(spectrum.lines[1..].iter().filter(|line| line.resolved).map(side));
+        }
+        sides.sort_by(|one, other| other.0.total_cmp(&one.0));
+        let own = |gap: f64| synodic.name(gap, tolerance).is_none_or(|name| name.size() > INHERITED);
+        let near = |gap: f64| {
+            let lines = angle.iter().map(|line| turn_near(line.frequency, 0.0, fold).abs());
+            lines.min_by(|a, b| (a - gap).abs().total_cmp(&(b - gap).abs()))
+        };
+        let both = sides.into_iter().filter(|(_, gap)| own(*gap));
+        both.filter_map(|(_, gap)| near(gap).filter(|line| (line - gap).abs() < 2.0 * tolerance)).next()
     }
 
     /// Samples per whole turn of the fastest frequency that is not folded: 2π over the time between samples, rad/day.

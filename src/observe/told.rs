@@ -64,8 +64,8 @@ pub struct AngleSamples<'a> {
 ///
 /// Samples far apart fold fast motion into slow: those of the whole span are followed by themselves only while the
 /// change between two of them, as the windows show it (or `rate_rad_day`, a mean rate of circulation expected from the
-/// mean motions, where there are no windows), stays below 0.6 π, and a libration only while the angle moves by no more than
-/// its swing between two samples. Else the windows tell circulation, and they tell libration if the
+/// mean motions, where there are no windows), stays below 0.6 π, and a libration only while the angle does not swing
+/// to and fro between two samples. Else the windows tell circulation, and they tell libration if the
 /// angle is confined besides: all samples of the whole span leave 20 deg of the circle free. One that librates in the
 /// windows and is not confined alternates. Errors: [`FourierError`].
 pub fn told_angle(
@@ -135,7 +135,7 @@ fn joined(seen: &[AngleMotion], arc: Option<Arc>) -> AngleMotion {
 }
 
 /// Whether a window shows an angle to swing to and fro between two samples of the whole span: over some shorter time it
-/// changes by more (root mean square) than it swings, as six samples to a period just do not.
+/// changes (root mean square) by more than 1.3 times its swing, as from less than 4.5 samples to a period.
 fn swings_between(window: &AngleSamples<'_>, whole: &AngleSamples<'_>) -> bool {
     let swing = whole.values.iter().map(|value| Complex::from_polar(1.0, *value)).sum::<Complex>();
     let square: f64 = whole.values.iter().map(|v| wrap_half_turn(v - swing.arg()).powi(2)).sum();
@@ -149,10 +149,11 @@ fn swings_between(window: &AngleSamples<'_>, whole: &AngleSamples<'_>) -> bool {
         let pairs = window.values.iter().zip(&window.values[lag.min(longest)..]);
         let (sum, count) =
             pairs.fold((0.0, 0.0), |(sum, count), (a, b)| (sum + wrap_half_turn(b - a).powi(2), count + 1.0));
-        (sum / f64::max(count, 1.0)).sqrt() * beyond > swing
+        (sum / f64::max(count, 1.0)).sqrt() * beyond > BETWEEN * swing
     })
 }
 
+const BETWEEN: f64 = 1.3;
 /// Parts of the time between two samples that are looked at.
 const LAGS: usize = 16;
 

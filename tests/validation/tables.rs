@@ -31,8 +31,9 @@ mod variational;
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 13] = [
+const TABLES: [(&str, fn()); 14] = [
     ("hd-45364", hd_45364::write),
+    ("hd-45364-map", hd_45364::write_map),
     ("catalogue", catalogue::write),
     ("variational", variational::write),
     ("solar-system", solar_system::write),
