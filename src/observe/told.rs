@@ -80,7 +80,8 @@ pub fn told_angle(
         let motion = angle_motion(whole.values, whole.step_day)?;
         let folded = windows.iter().any(|window| swings_between(window, &whole));
         let sparse = matches!(motion, AngleMotion::CannotTell(WhyNot::SparseSamples));
-        if !sparse && !(matches!(motion, AngleMotion::Librates(_)) && folded) {
+        let doubtful = sparse || (folded && matches!(motion, AngleMotion::Librates(_)));
+        if !doubtful {
             return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc });
         }
     }
