@@ -164,8 +164,8 @@ const SLOW: f64 = 0.1;
 ///
 /// Lines nearer than a resolution element are one mode.
 ///
-/// Lines faster than a tenth of the planet's mean motion (`motions`, rad/day) are short-period terms and no modes, and so are lines of less than
-/// 0.5 % of the signal, and those that are another mode shifted by a libration (rad/day).
+/// Lines faster than a tenth of the planet's mean motion (`motions`, rad/day) are short-period terms and no modes, and so
+/// are lines of less than 0.5 % of the signal, and those that are another mode shifted by a libration (rad/day).
 pub(super) fn modes(
     spectra: &[Spectrum],
     motions: &[f64],

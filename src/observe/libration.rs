@@ -65,7 +65,8 @@ fn unwrapped(angles: &[f64]) -> Option<Vec<f64>> {
 ///
 /// The angle is unwrapped. A range of a turn or more with a net motion of at least one turn is circulation; without net
 /// motion it alternates. A range below a turn is libration only if the angle goes through its mean there and back in at
-/// least two whole periods of its strongest term and through its mean in each third of the span, and its mean does not drift by more than half of its half-range over the
+/// least two whole periods of its strongest term and through its mean in each third of the span, and its mean does not
+/// drift by more than half of its half-range over the
 /// span (straight line through the angle less that term); else the span does not tell.
 /// Errors: [`FourierError`] for too few samples or values that are not finite.
 pub fn angle_motion(angles: &[f64], step_day: f64) -> Result<AngleMotion, FourierError> {

@@ -23,7 +23,7 @@ pub const LINES: &str = "lines.ecsv";
 pub const RESONANCES: &str = "resonances.ecsv";
 /// All that a command leaves.
 const FILES: [&str; 6] = [CHECKPOINT, SERIES, PICTURE, FREQUENCIES, LINES, RESONANCES];
-const FIRST_LINE: &[u8] = b"abide checkpoint 1\n";
+const FIRST_LINE: &[u8] = b"abide checkpoint 2\n";
 const SEAL_BYTES: usize = 32;
 
 /// Of what the numbers are.

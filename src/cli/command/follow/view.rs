@@ -6,7 +6,7 @@ use super::motion;
 use super::why::{Why, megno};
 use super::wish::{Wish, count};
 use crate::assess::{
-    ADAPTIVE, Analysed, Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
+    ADAPTIVE, Analysed, Assessment, Extent, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
     outermost_period_day,
 };
 use crate::cli::CliError;
@@ -289,24 +289,23 @@ impl<'a> View<'a> {
         lines(&["range of", "a (au)", "e", "i (deg)"], &rows.collect::<Vec<_>>(), &[])
     }
 
+    fn extents_json(&self) -> Map<String, Value> {
+        let pair = |range: &Range, scale: f64| json!([range.min / scale, range.max / scale]);
+        let ranges = |extent: &Extent| {
+            json!({
+                "a_au": pair(&extent.semi_major_axis_au, 1.0),
+                "e": pair(&extent.eccentricity, 1.0),
+                "i_deg": pair(&extent.inclination, DEGREE),
+            })
+        };
+        let named = self.names.iter().zip(&self.assessment.extent);
+        named.map(|(name, extent)| ((*name).to_owned(), ranges(extent))).collect()
+    }
+
     /// The same for scripts; what is absent is null. Ends in a newline.
     pub fn json(&self) -> Result<String, CliError> {
         let a = self.assessment;
         let name = |planet: usize| self.names[planet];
-        let extent: Map<String, Value> = self
-            .names
-            .iter()
-            .zip(&a.extent)
-            .map(|(name, extent)| {
-                let pair = |range: &Range, scale: f64| json!([range.min / scale, range.max / scale]);
-                let ranges = json!({
-                    "a_au": pair(&extent.semi_major_axis_au, 1.0),
-                    "e": pair(&extent.eccentricity, 1.0),
-                    "i_deg": pair(&extent.inclination, DEGREE),
-                });
-                ((*name).to_owned(), ranges)
-            })
-            .collect();
         let (frequencies, resonances) = motion::json(self.analysed, &self.wish.names());
         let value = json!({
             "title": self.wish.title(),
@@ -346,7 +345,7 @@ impl<'a> View<'a> {
                 "hill": found.hill,
                 "au": found.au,
             })),
-            "extent": extent,
+            "extent": self.extents_json(),
             "frequencies": frequencies,
             "resonances": resonances,
         });
