@@ -49,13 +49,31 @@ fn undisturbed(configuration: &Configuration, plan: &Plan, rows: usize) -> (Asse
     follow(configuration, plan, rows, |_| true).unwrap()
 }
 
+/// With every digit of what was sampled.
+fn sampled(configuration: &Configuration, plan: &Plan, rows: usize) -> ((Assessment, Vec<Row>), String) {
+    let mut follower = Follower::new(configuration, plan, rows);
+    while follower.assessment().is_none() {
+        follower.one_block();
+    }
+    let samples = seen(&follower);
+    (follower.finish().unwrap(), samples)
+}
+
+fn seen(follower: &Follower) -> String {
+    format!("{:?} {:?}", follower.samples().whole(), follower.samples().windows())
+}
+
 /// Every digit of everything, also of what is not a number.
 fn digits(outcome: &(Assessment, Vec<Row>)) -> String {
     format!("{outcome:?}")
 }
 
 /// Put down as bytes and taken up again every few blocks, also after the end.
-fn disturbed(configuration: &Configuration, plan: &Plan, rows: usize) -> ((Assessment, Vec<Row>), usize) {
+fn disturbed(
+    configuration: &Configuration,
+    plan: &Plan,
+    rows: usize,
+) -> ((Assessment, Vec<Row>), String, usize) {
     let mut follower = Follower::new(configuration, plan, rows);
     let (mut state, mut times) = (7u64, 0);
     while follower.assessment().is_none() {
@@ -72,7 +90,8 @@ fn disturbed(configuration: &Configuration, plan: &Plan, rows: usize) -> ((Asses
             assert!(follower.assessment().is_some(), "what had ended ends again at once");
         }
     }
-    (follower.finish().unwrap(), times)
+    let samples = seen(&follower);
+    (follower.finish().unwrap(), samples, times)
 }
 
 #[test]
@@ -90,10 +109,11 @@ fn put_down_anywhere_and_taken_up_it_ends_with_the_same_bits() {
             let plan = Plan { compensated, ..plan(configuration, 1000.0, scheme, energy_error) };
             // Short blocks, so that there are many moments to be put down at.
             let plan = plan_for_rows(&plan, configuration, 2000);
-            let plain = undisturbed(configuration, &plan, rows);
+            let (plain, plain_samples) = sampled(configuration, &plan, rows);
             assert_eq!(plain.0.verdict, verdict, "{scheme} {energy_error}");
             assert!(plain.0.redone >= redone, "begins again on the way");
-            let (broken, times) = disturbed(configuration, &plan, rows);
+            let (broken, samples, times) = disturbed(configuration, &plan, rows);
+            assert!(samples == plain_samples, "{scheme} {verdict:?} {rows} rows: samples differ");
             assert!(times >= 3 || verdict == Verdict::Untrusted, "put down {times} times only");
             assert_eq!(digits(&broken), digits(&plain), "{scheme} {verdict:?} {rows} rows");
         }
@@ -175,5 +195,53 @@ fn a_planet_alone_keeps_its_elements() {
         assert!((e.semi_major_axis_au - 0.7).abs() < 1e-9, "{}", e.semi_major_axis_au);
         assert!((e.eccentricity - 0.6).abs() < 1e-9 && (e.inclination.to_degrees() - 60.0).abs() < 1e-9);
         assert!((e.argument_of_pericentre.to_degrees() - 50.0).abs() < 1e-6);
+    }
+}
+
+/// Long enough for windows and for thinning: at most as many samples as there may be, evenly spaced, five to an orbit and more in
+/// the windows; taken up anywhere they are the same.
+#[test]
+fn samples_are_bounded_dense_at_both_ends_and_the_same_after_a_break() {
+    let configuration = pair(17.3, 0.05);
+    let base = plan(&configuration, 5000.0, "(2,2)", 1e-6);
+    let plan = plan_for_rows(&base, &configuration, 2 * abide::assess::MOST_SAMPLES);
+    let mut follower = Follower::new(&configuration, &plan, 10);
+    while follower.assessment().is_none() {
+        follower.one_block();
+    }
+    let (whole, windows) = (follower.samples().whole(), follower.samples().windows());
+    let count = whole.rows.len();
+    assert!(count <= abide::assess::MOST_SAMPLES + 1 && 2 * count > abide::assess::MOST_SAMPLES, "{count}");
+    assert_eq!(windows.len(), 2);
+    for window in &windows {
+        assert!(
+            window.step_day <= 2.0 && window.rows.len() > 4000,
+            "{} {}",
+            window.step_day,
+            window.rows.len()
+        );
+    }
+    assert!(windows[0].begin_day == 0.0 && windows[1].begin_day > 0.8 * plan.span_day);
+    // What a window saw at the start is what the whole span saw there.
+    let (one, other) = (&whole.rows[0][0], &windows[0].rows[0][0]);
+    assert!((one.semi_major_axis_au - other.semi_major_axis_au).abs() < 1e-9, "{one:?} {other:?}");
+    let (_, samples, _) = disturbed(&configuration, &plan, 10);
+    assert!(samples == seen(&follower));
+}
+
+/// The adaptive engine's rows are its own, whatever the length of the blocks in which it is looked at.
+#[test]
+fn rows_of_the_adaptive_engine_do_not_depend_on_the_step() {
+    let configuration = pair(17.3, 0.05);
+    let at_end = |step_day: f64| {
+        let mut plan = plan(&configuration, 40.0, "(2,2)", 1e-6);
+        (plan.adaptive, plan.step_day, plan.megno) = (true, Some(step_day), false);
+        let (assessment, rows) = undisturbed(&configuration, &plan, 50);
+        assert!(assessment.loss.is_none());
+        rows.last().unwrap().elements.clone()
+    };
+    for (fine, coarse) in at_end(0.4).iter().zip(&at_end(2.0)) {
+        assert!((fine.eccentricity - coarse.eccentricity).abs() < 1e-10, "{fine:?} {coarse:?}");
+        assert!((fine.semi_major_axis_au / coarse.semi_major_axis_au - 1.0).abs() < 1e-10);
     }
 }

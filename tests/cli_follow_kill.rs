@@ -40,7 +40,7 @@ fn killed_at_ten_moments_gives_the_bytes_of_an_undisturbed_run() {
     assert!(went_on >= 9, "{went_on}");
     let last = line(&desk, "killed").run().done().said("killed: goes on, ");
     assert_eq!(last.stdout, plain.stdout);
-    for name in ["series.ecsv", "series.png"] {
+    for name in ["series.ecsv", "series.png", "frequencies.ecsv", "lines.ecsv", "resonances.ecsv"] {
         assert!(desk.read(format!("killed/{name}")) == desk.read(format!("undisturbed/{name}")), "{name}");
     }
     let left = std::fs::read_dir(desk.path("killed")).unwrap();

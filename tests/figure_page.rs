@@ -58,6 +58,7 @@ fn through_time() -> Figure {
         planets: &planets,
         megno_mean: &megno,
         energy_error: &energy,
+        angles: &[],
         caption: &caption,
     })
     .unwrap()

@@ -15,6 +15,7 @@ fn input<'a>(
         planets,
         megno_mean: megno,
         energy_error: energy,
+        angles: &[],
         caption: &[],
     }
 }
@@ -78,6 +79,7 @@ fn narrow_panels() -> Figure {
         planets: &planets,
         megno_mean: &[1.97; 50],
         energy_error: &energy,
+        angles: &[],
         caption: &[],
     })
     .unwrap()

@@ -7,7 +7,8 @@ use abide::criteria::resonances_to_order;
 use abide::num::{Search, decompose_real};
 use abide::observe::{
     AngleMotion, Candidate, ElementSeries, Fundamental, Kind, Namer, ResonantAngle, Rule, SeriesError,
-    WhyNot, frequency_drift, fundamental_nodes, fundamentals, quasi_periodic, resonant_motion,
+    Spectra, WhyNot, angle_lines, frequency_drift, fundamental_nodes, fundamentals, libration_frequency,
+    named_angle, resonant_motion,
 };
 use abide::system::Frame;
 use abide::units::{DEGREE, GM_JUPITER, GM_SUN, YEAR_DAY};
@@ -235,41 +236,40 @@ fn series_that_cannot_be_analysed() {
     assert!(ElementSeries::new(&[f64::NAN; 20], &rows, &[GM_SUN]).is_err());
 }
 
-/// The decomposition of both planets of HD 45364: g1 gives way to the libration, and the strongest lines have names.
+/// The decomposition of both planets of HD 45364: the libration is found beside n and g, and the strongest lines have names.
 #[test]
 fn the_decomposition_of_hd_45364() {
     let series = series(hd_45364());
-    let libration = 19.8207 * DEGREE_YEAR;
-    let search = Search { most: 6, window_power: 1 };
-    // The published frequency serves as a first value only; the run has its own, 0.1 % away.
-    let own = match resonant_motion(&series, &[Candidate::Pair { inner: 0, outer: 1, p: 3, q: 2 }]).unwrap()
-        [0]
-    .motion
-    {
-        AngleMotion::Librates(found) => TAU / found.main_period_day,
-        other => panic!("{other:?}"),
-    };
-    near(own, libration, 0.01);
-    let table = quasi_periodic(&series, &names(), Some(own), search).unwrap();
-    let mut with_tied = table.fundamentals.clone();
-    let (gone, relation) = table.tied.clone().unwrap();
-    assert_eq!(gone.name, "g1");
-    with_tied.push(gone);
-    assert_eq!(relation.words(&with_tied), "2n_b − 3n_c + g1");
+    let about = [226.93, 342.85].map(|period| TAU / period);
+    let spectra = Spectra::of(&series, &about).unwrap();
+    let mut all = spectra.fundamentals(&names(), &[]);
+    let angle = ResonantAngle::new(vec![-2, 3], vec![-1, 0]).unwrap();
+    let values: Vec<f64> = series.rows().iter().map(|row| angle.value(row)).collect();
+    let search = Search { most: 10, window_power: 1 };
+    let lines = angle_lines(&values, 0.0, series.step_day(), search).unwrap();
+    let (span, fold) = (series.span_day(), spectra.fold_rad_day());
+    let own = libration_frequency(&lines, &all, span, fold).unwrap();
+    // The side lines of the mean longitudes tell the same.
+    near(spectra.libration(&[0, 1], &lines).unwrap(), own, 1e-9);
+    near(own / DEGREE_YEAR, published("libration frequency of 2 lambda_b-3 lambda_c+varpi_b"), 0.01);
+    all.push(Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: own });
+    assert_eq!(spectra.relation(&all).unwrap().words(&all), "2n_b − 3n_c + g1");
     let words = |lines: &[abide::observe::NamedLine]| -> Vec<String> {
-        let word =
-            |line: &abide::observe::NamedLine| line.name.as_ref().map(|name| name.words(&table.fundamentals));
-        lines.iter().map(|line| word(line).unwrap_or("?".into())).collect()
+        lines.iter().map(|line| line.name.as_ref().map_or("?".into(), |name| name.words(&all))).collect()
     };
-    let (motion, shape) = (words(&table.motions[0]), words(&table.pericentres[0]));
-    println!("{motion:?} {shape:?} {:?}", words(&table.pericentres[1]));
-    assert_eq!(motion[0], "n_b");
+    let table = spectra.named(&all);
+    let shape = words(&table.pericentres[0]);
+    println!("{:?} {shape:?} {:?}", words(&table.motions[0]), words(&table.pericentres[1]));
+    assert_eq!(words(&table.motions[0])[0], "n_b");
     assert_eq!(words(&table.motions[1])[0], "n_c");
-    // Forced by the resonance: e exp(iϖ) of b turns with g1 = 3n_c − 2n_b.
-    assert_eq!(shape[0], "−2n_b + 3n_c");
+    assert_eq!(shape[..2], ["g1", "g2"]);
     for named in table.motions.iter().chain(&table.pericentres) {
-        assert!(named.iter().take(4).all(|line| line.name.is_some()), "{named:?}");
+        assert!(named.iter().take(6).all(|line| line.name.is_some()), "{named:?}");
     }
+    let named = named_angle(lines, &all, span, fold);
+    // As in the table of the paper: the libration, the difference of the g, then both together.
+    assert_eq!(words(&named)[..4], ["l", "g2 − g1", "g1 − g2 + l", "g2 − g1 + l"]);
+    near(named[1].line.amplitude.norm() / DEGREE, 13.400, 0.03);
 }
 
 /// The giant planets over 1.5 Myr from JPL's states (tests/truth/giant-planets-j2000.csv): g5, g6 and s6 of Laskar et al.

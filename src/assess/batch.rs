@@ -114,7 +114,12 @@ fn run_lanes(
 pub(super) fn one_block(block: &mut Block, plan: &Plan) -> Block {
     let scheme = plan.splitting();
     advance(Advance { block, scheme, steps: plan.block_steps, tangent: plan.megno });
+    as_true(block, plan)
+}
+
+/// The true states of a block in the map's variables.
+pub(super) fn as_true(block: &Block, plan: &Plan) -> Block {
     let mut corrected = block.clone();
-    from_map(&mut corrected, scheme);
+    from_map(&mut corrected, plan.splitting());
     corrected
 }

@@ -1,5 +1,6 @@
 //! One configuration and one plan → one assessment: a pure function, whether computed alone or in a batch.
 
+mod analysis;
 mod assessment;
 mod batch;
 mod calibrate;
@@ -7,8 +8,12 @@ mod cell;
 mod one;
 mod physics;
 mod plan;
+mod samples;
 mod series;
 
+pub use analysis::{
+    Analysed, Analysis, AngleAnalysed, DriftFrom, NotAnalysed, Sampling, analyse, angle_series,
+};
 pub use assessment::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{BatchWork, assess, run_batch};
 pub use cell::ADAPTIVE;
@@ -17,4 +22,5 @@ pub use plan::{
     CoordinatesWhy, FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day,
     innermost_period_day, outermost_period_day,
 };
+pub use samples::{MOST_SAMPLES, Samples, Track};
 pub use series::Row;

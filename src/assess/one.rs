@@ -1,8 +1,9 @@
 //! One configuration followed with its series; it can be put down at any time and taken up later.
 
-use super::batch::one_block;
+use super::batch::{as_true, one_block};
 use super::cell::{Cell, Next};
-use super::plan::BLOCK_SAMPLES;
+use super::plan::{BLOCK_SAMPLES, innermost_period_day};
+use super::samples::Samples;
 use super::series::Rows;
 use super::{Assessment, Plan, Row};
 use crate::coords::Configuration;
@@ -60,6 +61,7 @@ pub struct FollowProgress {
 pub struct Follower {
     plan: Plan,
     rows: Rows,
+    samples: Samples,
     /// Absent when the configuration could not even start.
     on_its_way: Option<OnItsWay>,
     assessment: Option<Assessment>,
@@ -74,16 +76,20 @@ struct OnItsWay {
 impl Follower {
     pub fn new(configuration: &Configuration, plan: &Plan, rows: usize) -> Follower {
         let plan = plan.clone();
+        let period_day = innermost_period_day(configuration);
         match Cell::new(configuration, &plan) {
             Ok(cell) => {
                 let mut block = plan.block(1, configuration.planets.len());
                 cell.enter(&mut block, 0, &plan);
                 let rows = Rows::new(cell.start(), plan.frame, rows);
-                Follower { plan, rows, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
+                let samples = Samples::new(cell.start(), plan.frame, period_day).again(&cell, &plan);
+                Follower { plan, rows, samples, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
             }
             Err(assessment) => {
-                let rows = Rows::new(&super::physics::barycentric(configuration), plan.frame, rows);
-                Follower { plan, rows, on_its_way: None, assessment: Some(*assessment) }
+                let start = super::physics::barycentric(configuration);
+                let rows = Rows::new(&start, plan.frame, rows);
+                let samples = Samples::new(&start, plan.frame, period_day);
+                Follower { plan, rows, samples, on_its_way: None, assessment: Some(*assessment) }
             }
         }
     }
@@ -99,17 +105,37 @@ impl Follower {
         // What is put down after the end is the moment before it: taken up, it ends again in the same way.
         let before = now.clone();
         let corrected = one_block(&mut now.block, &self.plan);
-        match now.cell.look(&self.plan, &before.block, &mut now.block, &corrected, 0) {
+        let next = now.cell.look(&self.plan, &before.block, &mut now.block, &corrected, 0);
+        if matches!(next, Next::End(_)) {
+            self.rows.close();
+            self.samples.close();
+        }
+        let whole = match &next {
+            Next::Again => false,
+            Next::GoOn => true,
+            Next::End(assessment) => assessment.loss.is_none(),
+        };
+        if whole {
+            let passed = now.cell.is_adaptive() || now.cell.passages() > before.cell.passages();
+            // What the adaptive engine did lies in the block itself.
+            let seen = if passed { as_true(&now.block, &self.plan) } else { corrected };
+            self.rows.see(&now.cell, &self.plan, &now.block, &seen);
+            self.samples.see(&now.cell, &seen);
+            if passed {
+                self.samples.without_windows();
+            } else {
+                let index = before.cell.blocks_done();
+                self.samples.look_within(index, &now.cell, &self.plan, &before.block);
+            }
+        }
+        match next {
+            Next::GoOn => {}
             Next::Again => {
                 now.cell.enter(&mut now.block, 0, &self.plan);
                 self.rows = self.rows.again(now.cell.start());
+                self.samples = self.samples.again(&now.cell, &self.plan);
             }
-            Next::GoOn => self.rows.see(&now.cell, &self.plan, &now.block, &corrected),
             Next::End(assessment) => {
-                self.rows.close();
-                if assessment.loss.is_none() {
-                    self.rows.see(&now.cell, &self.plan, &now.block, &corrected);
-                }
                 *now = before;
                 self.assessment = Some(*assessment);
             }
@@ -138,6 +164,11 @@ impl Follower {
         }
     }
 
+    /// The motion at even times, for frequency and resonance analysis.
+    pub fn samples(&self) -> &Samples {
+        &self.samples
+    }
+
     /// Assessment and rows; none before the end.
     pub fn finish(self) -> Option<(Assessment, Vec<Row>)> {
         Some((self.assessment?, self.rows.finish()))
@@ -150,6 +181,7 @@ impl Follower {
             cell.keep(&mut kept);
             block.keep(&mut kept);
             self.rows.keep(&mut kept);
+            self.samples.keep(&mut kept);
         }
         kept
     }
@@ -170,6 +202,8 @@ impl Follower {
             block.restore(&mut reader)?;
             follower.rows = follower.rows.again(cell.start());
             follower.rows.restore(&mut reader)?;
+            follower.samples = follower.samples.again(cell, &follower.plan);
+            follower.samples.restore(&mut reader)?;
         }
         reader.is_empty().then_some(follower)
     }

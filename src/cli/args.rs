@@ -16,7 +16,7 @@ pub struct Args {
 pub enum Command {
     /// Look at a system without integrating it; with --readings, integrate its possible readings
     Inspect(InspectArgs),
-    /// Follow one configuration: series, verdict, figure
+    /// Follow one configuration: series, frequencies, resonances, verdict, figure
     Follow(FollowArgs),
     /// Survey many configurations: a study → a run with its stability map
     Survey(SurveyArgs),
@@ -50,7 +50,8 @@ pub struct FollowArgs {
     /// How long: "1e5 orbits" of the innermost planet, or a time such as "2 Myr"
     #[arg(long, default_value = "1e4 orbits", allow_hyphen_values = true)]
     pub span: String,
-    /// Folder for series.ecsv and series.png (default: reports/runs/NAME)
+    /// Folder for the tables series, frequencies, lines and resonances (.ecsv) and for series.png (default:
+    /// reports/runs/NAME)
     #[arg(long, value_name = "DIR")]
     pub into: Option<PathBuf>,
     /// How many rows the series has at most

@@ -29,5 +29,5 @@ pub use map::{MapInput, map};
 pub use model::{Axis, ColourBar, Curve, Figure, Legend, Mark, Paint, Panel, Pin, Stroke};
 pub use nominal::{Nominal, nominal, nominal_cell};
 pub use resonance::{Resonance, resonances};
-pub use series::{PlanetCurves, SeriesInput, series};
+pub use series::{AngleCurve, PlanetCurves, SeriesInput, series};
 pub use ticks::{Tick, Ticks, ticks};

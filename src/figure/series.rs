@@ -5,7 +5,8 @@ use super::colour::{Rgb, ScaleKind};
 use super::label::Label;
 use super::map::room_around;
 use super::model::{Axis, Curve, Figure, Legend, Mark, Panel};
-use crate::units::YEAR_DAY;
+use crate::num::wrap_half_turn;
+use crate::units::{DEGREE, YEAR_DAY};
 
 /// One planet through time; every list is as long as the times.
 #[derive(Clone, Copy, Debug)]
@@ -13,6 +14,15 @@ pub struct PlanetCurves<'a> {
     pub name: &'a str,
     pub eccentricity: &'a [f64],
     pub semi_major_axis_au: &'a [f64],
+}
+
+/// An angle that librates.
+#[derive(Clone, Copy, Debug)]
+pub struct AngleCurve<'a> {
+    /// As "3λ_c − 2λ_b − ϖ_b": what follows a low line up to the next blank is an index.
+    pub name: &'a str,
+    /// Time (day) and angle (rad, any turn).
+    pub points: &'a [(f64, f64)],
 }
 
 /// What the panels are made from; a list that was not measured is empty.
@@ -25,6 +35,7 @@ pub struct SeriesInput<'a> {
     pub megno_mean: &'a [f64],
     /// Relative.
     pub energy_error: &'a [f64],
+    pub angles: &'a [AngleCurve<'a>],
     /// Sentences under the figure.
     pub caption: &'a [String],
 }
@@ -43,7 +54,7 @@ const INKS: [Rgb; 7] = [
 
 const BLACK: Rgb = Rgb(0, 0, 0);
 
-/// Panels, top down: eccentricities, relative change of the semi-major axes, MEGNO ⟨Y⟩, energy error (log).
+/// Panels, top down: eccentricities, relative change of the semi-major axes, angles, MEGNO ⟨Y⟩, energy error (log).
 ///
 /// Errors: no row at all.
 pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
@@ -64,6 +75,7 @@ pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
     let label = Label::plain("Δ").italic("a").then("/").italic("a").down("0");
     let (sizes, label) = in_tenths(sizes, label);
     panels.extend(panel(&x, &time, sizes.into_iter().zip(inks()).collect(), label, None));
+    panels.extend(input.angles.iter().map(|angle| angle_panel(&x, unit_day, angle)));
     let megno = vec![(input.megno_mean.to_vec(), BLACK)];
     let label = Label::plain("MEGNO ⟨").italic("Y").then("⟩");
     panels.extend(panel(&x, &time, megno, label, Some(2.0)));
@@ -83,6 +95,49 @@ pub fn series(input: &SeriesInput<'_>) -> Result<Figure, FigureError> {
         legend,
         caption: input.caption.to_vec(),
     })
+}
+
+/// An angle as a curve, cut where it never is: at 180 deg or at 0; with room about it as large as its range.
+fn angle_panel(x: &Axis, unit_day: f64, angle: &AngleCurve<'_>) -> Panel {
+    let signed = |value: f64| wrap_half_turn(value) / DEGREE;
+    let sides = angle.points.iter().fold((0u32, 0u32), |(near, far), (_, value)| {
+        if signed(*value).abs() < 90.0 { (near + 1, far) } else { (near, far + 1) }
+    });
+    let upper = sides.1 > sides.0;
+    let place = |value: f64| if upper { signed(value).rem_euclid(360.0) } else { signed(value) };
+    let mut points: Vec<(f64, f64)> = Vec::new();
+    for (day, value) in angle.points {
+        let next = (day / unit_day, place(*value));
+        if points.last().is_some_and(|last| (last.1 - next.1).abs() > 180.0) {
+            points.push((next.0, f64::NAN));
+        }
+        points.push(next);
+    }
+    let middle = if upper { 180.0 } else { 0.0 };
+    let away = points.iter().map(|(_, y)| (y - middle).abs()).filter(|d| d.is_finite()).fold(0.0, f64::max);
+    let reach = [30.0, 60.0, 90.0, 120.0].into_iter().find(|reach| away < 0.95 * reach).unwrap_or(180.0);
+    let label = with_indices(angle.name).then(" [deg]");
+    let (from, to) = (middle - reach, middle + reach);
+    let y = Axis { short: with_indices(angle.name), label, from, to, kind: ScaleKind::Linear };
+    let marks = vec![Mark::Level { at: middle }, Mark::Curve(Curve { points, colour: BLACK })];
+    Panel { x: x.clone(), y: Some(y), marks, top: Vec::new(), right: Vec::new(), height: 0.2 }
+}
+
+/// "3λ_c − 2λ_b": letters italic, what follows a low line lowered.
+fn with_indices(words: &str) -> Label {
+    let mut label = Label::default();
+    for (index, word) in words.split(' ').enumerate() {
+        let space = if index > 0 { " " } else { "" };
+        label = match word.split_once('_') {
+            None => label.then(format!("{space}{word}")),
+            Some((symbol, body)) => {
+                let count: String = symbol.chars().take_while(|c| !c.is_alphabetic()).collect();
+                let letter = symbol[count.len()..].to_owned();
+                label.then(format!("{space}{count}")).italic(letter).down(body)
+            }
+        };
+    }
+    label
 }
 
 /// A zero has no place on a logarithmic axis.
@@ -208,6 +263,7 @@ mod tests {
             planets: &planets,
             megno_mean: &[],
             energy_error: &[],
+            angles: &[],
             caption: &[],
         };
         let figure = series(&input).unwrap();

@@ -57,11 +57,16 @@ impl Combination {
         self.coefficients.iter().map(|k| k.unsigned_abs()).sum()
     }
 
-    /// In the names of the fundamentals, as "2n_b − 3n_c + g1"; "0" for none.
+    /// In the names of the fundamentals, a positive term first: "2n_b − 3n_c + g1", "g2 − g1"; "0" for none.
     pub fn words(&self, fundamentals: &[Fundamental]) -> String {
+        let named = self.coefficients.iter().copied().zip(fundamentals).filter(|(k, _)| *k != 0);
+        let mut terms: Vec<(i32, &Fundamental)> = named.collect();
+        if let Some(first) = terms.iter().position(|(k, _)| *k > 0) {
+            terms[..=first].rotate_right(1);
+        }
         let mut words = String::new();
-        for (k, fundamental) in self.coefficients.iter().zip(fundamentals).filter(|(k, _)| **k != 0) {
-            let sign = match (words.is_empty(), *k < 0) {
+        for (k, fundamental) in terms {
+            let sign = match (words.is_empty(), k < 0) {
                 (true, true) => "−",
                 (true, false) => "",
                 (false, true) => " − ",
@@ -97,6 +102,8 @@ pub struct Namer {
 /// Most combinations looked at: the largest Σ|k| is what this allows, and at most [`LARGEST_SIZE`].
 const MOST: usize = 100_000;
 const LARGEST_SIZE: u32 = 14;
+/// A name that a line anywhere would get with more than this chance is not given.
+const CHANCE: f64 = 0.1;
 
 impl Namer {
     /// Combinations of these fundamentals with Σ|k| as large as a bound on their number allows (14 for up to four, 6 or so for
@@ -132,6 +139,8 @@ impl Namer {
     }
 
     /// The simplest combination within `tolerance_rad_day` of a frequency; the nearest of those equally simple.
+    ///
+    /// None where combinations so simple are so many that one in ten lines anywhere would meet one.
     pub fn name(&self, rad_day: f64, tolerance_rad_day: f64) -> Option<Combination> {
         let misfit = |value: f64| {
             let gap = rad_day - value;
@@ -147,12 +156,27 @@ impl Namer {
         let simplest = size(&first.1);
         let alike: Vec<&(f64, Vec<i32>)> =
             std::iter::once(first).chain(fitting.take_while(|(_, k)| size(k) == simplest)).collect();
+        if self.chance(simplest, tolerance_rad_day) > CHANCE {
+            return None;
+        }
         let best = alike.iter().min_by(|one, other| misfit(one.0).abs().total_cmp(&misfit(other.0).abs()))?;
         Some(Combination {
             coefficients: best.1.clone(),
             misfit_rad_day: misfit(best.0),
             rivals: alike.len() - 1,
         })
+    }
+
+    /// Share of the band that lies within the tolerance of a combination no larger than `size`.
+    fn chance(&self, size: u32, tolerance_rad_day: f64) -> f64 {
+        let small = |k: &[i32]| k.iter().map(|k| k.unsigned_abs()).sum::<u32>() <= size;
+        let (mut count, mut low, mut high) = (0.0, f64::INFINITY, f64::NEG_INFINITY);
+        for (value, _) in self.table.iter().take_while(|(_, k)| small(k)) {
+            (count, low, high) = (count + 1.0, value.min(low), value.max(high));
+        }
+        let band = if self.fold_rad_day > 0.0 { self.fold_rad_day } else { high - low };
+        // The few simplest are themselves however narrow their band is.
+        if count <= 2.0 { 0.0 } else { 2.0 * tolerance_rad_day * count / band }
     }
 }
 
@@ -244,7 +268,7 @@ mod tests {
         fundamentals.push(Fundamental { name: "s2".into(), kind: Kind::Node, rad_day: -9.1e-4 });
         let plane = Namer::new(&fundamentals, Rule::PLANE, 0.0);
         let line = 2.0 * -9.1e-4 - 1.17e-3;
-        assert_eq!(plane.name(line, 1e-10).unwrap().words(&fundamentals), "−g1 + 2s2");
+        assert_eq!(plane.name(line, 1e-10).unwrap().words(&fundamentals), "2s2 − g1");
         assert!(plane.name(-9.1e-4, 1e-12).is_none());
         let node = Namer::new(&fundamentals, Rule::NODE, 0.0);
         assert_eq!(node.name(-9.1e-4, 1e-10).unwrap().words(&fundamentals), "s2");
@@ -258,6 +282,15 @@ mod tests {
         ];
         let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
         assert_eq!(namer.name(1e-3 + 2.0 * 0.0301, 1e-10).unwrap().words(&fundamentals), "g1 + 2l");
+    }
+
+    /// With so wide a tolerance nearly any line meets some combination: only the simple ones are given.
+    #[test]
+    fn a_name_that_anything_would_get_is_not_given() {
+        let fundamentals = two_planets();
+        let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
+        assert!(namer.name(0.713, 1e-3).is_some());
+        assert_eq!(namer.name(2.0 * 0.713 - 3.0 * 0.3131 + 1e-3, 5e-2), None);
     }
 
     #[test]

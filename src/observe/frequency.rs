@@ -2,7 +2,7 @@
 
 use super::ElementSeries;
 use super::combination::{Fundamental, Kind};
-use crate::num::{Complex, FourierError, Search, Spectrum, decompose, strongest_line, turn_near};
+use crate::num::{Complex, FourierError, Line, Search, Spectrum, decompose, strongest_line, turn_near};
 use std::f64::consts::TAU;
 
 /// Power of the window for a mean motion: its neighbours in the spectrum are far.
@@ -11,6 +11,7 @@ const MOTION_WINDOW: u32 = 3;
 const FINEST_DRIFT: f64 = f64::EPSILON;
 /// Lines looked at to tell the modes of slow variables apart.
 const MODE_LINES: usize = 12;
+pub(super) const MODE_SEARCH: Search = Search { most: MODE_LINES, window_power: 1 };
 
 /// The mean motion of one planet over the two halves of a span.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -35,6 +36,14 @@ pub struct FrequencyDrift {
 }
 
 impl FrequencyDrift {
+    /// Errors: no planets give `TooFew`.
+    pub fn of(of_planets: Vec<MotionDrift>) -> Result<FrequencyDrift, FourierError> {
+        let worst = (0..of_planets.len())
+            .max_by(|one, other| of_planets[*one].log10().total_cmp(&of_planets[*other].log10()))
+            .ok_or(FourierError::TooFew { found: 0 })?;
+        Ok(FrequencyDrift { of_planets, worst })
+    }
+
     /// log₁₀ |1 − n₂/n₁| of the worst planet.
     pub fn worst_log10(&self) -> f64 {
         self.of_planets[self.worst].log10()
@@ -48,16 +57,34 @@ impl FrequencyDrift {
 /// Errors: [`FourierError`]; the halves need [`crate::num::FEWEST_SAMPLES`] rows each. No planets give `TooFew`.
 /// Source: Laskar (1990, 1993); as an indicator for planetary systems Correia et al. (2005).
 pub fn frequency_drift(series: &ElementSeries<'_>) -> Result<FrequencyDrift, FourierError> {
+    let osculating: Vec<f64> = (0..series.planets()).map(|planet| series.osculating_motion(planet)).collect();
+    frequency_drift_near(series, &osculating)
+}
+
+/// [`frequency_drift`] with mean motions that are known better than from osculating elements, rad/day per planet.
+pub fn frequency_drift_near(
+    series: &ElementSeries<'_>,
+    near: &[f64],
+) -> Result<FrequencyDrift, FourierError> {
     let of_planets = (0..series.planets())
-        .map(|planet| {
+        .zip(near)
+        .map(|(planet, near)| {
             let signal = series.motion_signal(planet);
-            motion_drift(&signal, series.mass_parameter(planet), series.step_day())
+            motion_drift_near(&signal, series.mass_parameter(planet), series.step_day(), *near)
         })
         .collect::<Result<Vec<_>, FourierError>>()?;
-    let worst = (0..of_planets.len())
-        .max_by(|one, other| of_planets[*one].log10().total_cmp(&of_planets[*other].log10()))
-        .ok_or(FourierError::TooFew { found: 0 })?;
-    Ok(FrequencyDrift { of_planets, worst })
+    FrequencyDrift::of(of_planets)
+}
+
+/// Mean motion of every planet over the whole series, taken next to `near` (rad/day) where samples fold it.
+///
+/// Errors: [`FourierError`].
+pub fn mean_motions(series: &ElementSeries<'_>, near: &[f64]) -> Result<Vec<f64>, FourierError> {
+    let each = (0..series.planets()).zip(near).map(|(planet, near)| {
+        let line = strongest_line(&series.motion_signal(planet), series.step_day(), MOTION_WINDOW)?;
+        Ok(series.unfolded(line, *near))
+    });
+    each.collect()
 }
 
 /// Drift of one planet's mean motion from a exp(iλ) at even times; `mass_parameter` is G (star + planet), au³ day⁻².
@@ -71,17 +98,29 @@ pub fn motion_drift(
     mass_parameter: f64,
     step_day: f64,
 ) -> Result<MotionDrift, FourierError> {
+    let near = osculating(&signal[..signal.len() / 2], mass_parameter);
+    motion_drift_near(signal, mass_parameter, step_day, near)
+}
+
+/// Mean of the osculating √(μ/a³), rad/day.
+fn osculating(signal: &[Complex], mass_parameter: f64) -> f64 {
+    let motions = signal.iter().map(|z| (mass_parameter / z.norm().powi(3)).sqrt());
+    motions.sum::<f64>() / signal.len() as f64
+}
+
+/// [`motion_drift`] with a mean motion that is known better than from osculating elements, rad/day.
+fn motion_drift_near(
+    signal: &[Complex],
+    mass_parameter: f64,
+    step_day: f64,
+    near: f64,
+) -> Result<MotionDrift, FourierError> {
     // Both halves have as many rows; an odd one in the middle is left out.
     let half = signal.len() / 2;
     let (early, late) = (&signal[..half], &signal[signal.len() - half..]);
-    let osculating = |part: &[Complex]| {
-        let motions = part.iter().map(|z| (mass_parameter / z.norm().powi(3)).sqrt());
-        motions.sum::<f64>() / part.len() as f64
-    };
     let fold = TAU / step_day;
-    let near = osculating(early);
     let first = turn_near(strongest_line(early, step_day, MOTION_WINDOW)?, near, fold);
-    let moved = first + (osculating(late) - near);
+    let moved = first + (osculating(late, mass_parameter) - osculating(early, mass_parameter));
     let second = turn_near(strongest_line(late, step_day, MOTION_WINDOW)?, moved, fold);
     Ok(MotionDrift { first_rad_day: first, second_rad_day: second })
 }
@@ -98,7 +137,7 @@ pub fn fundamentals(
     names: &[String],
     search: Search,
 ) -> Result<Vec<Fundamental>, FourierError> {
-    let mut all = Vec::new();
+    let mut all: Vec<Fundamental> = Vec::new();
     for (planet, name) in names.iter().enumerate().take(series.planets()) {
         let line = strongest_line(&series.motion_signal(planet), series.step_day(), MOTION_WINDOW)?;
         let frequency = series.unfolded(line, series.osculating_motion(planet));
@@ -107,7 +146,8 @@ pub fn fundamentals(
     let spectra = (0..series.planets())
         .map(|planet| decompose(&series.pericentre_signal(planet), series.step_day(), search))
         .collect::<Result<Vec<_>, _>>()?;
-    let modes = modes(&spectra, series.span_day(), series.planets());
+    let motions: Vec<f64> = all.iter().map(|f| f.rad_day).collect();
+    let modes = modes(&spectra, &motions, series.span_day(), series.planets(), &[]);
     all.extend(numbered(modes, "g", Kind::Pericentre));
     Ok(all)
 }
@@ -128,10 +168,11 @@ pub fn fundamental_nodes(
         })
         .collect::<Result<Vec<_>, FourierError>>()?;
     let most = series.planets().saturating_sub(1);
-    Ok(numbered(modes(&spectra, series.span_day(), most), "s", Kind::Node))
+    let motions: Vec<f64> = (0..series.planets()).map(|planet| series.osculating_motion(planet)).collect();
+    Ok(numbered(modes(&spectra, &motions, series.span_day(), most, &[]), "s", Kind::Node))
 }
 
-fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
+pub(super) fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
     modes
         .into_iter()
         .enumerate()
@@ -141,24 +182,48 @@ fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamenta
         .collect()
 }
 
+/// Smallest share of a signal that a mode of its own has.
+const LEAST_SHARE: f64 = 0.005;
+/// Largest frequency of a slow variable, against the planet's own mean motion.
+const SLOW: f64 = 0.1;
+
 /// One line per planet, none taken twice and at most `most`: the largest share of its planet's signal chooses first.
 ///
 /// Lines nearer than a resolution element are one mode.
-fn modes(spectra: &[Spectrum], span_day: f64, most: usize) -> Vec<Option<f64>> {
+///
+/// Lines faster than a tenth of the planet's mean motion (`motions`, rad/day) are short-period terms and no modes, and so
+/// are lines of less than 0.5 % of the signal, and those that are another mode shifted by a libration (rad/day).
+pub(super) fn modes(
+    spectra: &[Spectrum],
+    motions: &[f64],
+    span_day: f64,
+    most: usize,
+    librations: &[f64],
+) -> Vec<Option<f64>> {
     let resolution = std::f64::consts::TAU / span_day;
     let mut offers: Vec<(f64, usize, f64)> = spectra
         .iter()
+        .zip(motions)
         .enumerate()
-        .flat_map(|(planet, spectrum)| {
+        .flat_map(|(planet, (spectrum, motion))| {
             let whole = spectrum.signal_rms;
-            let lines = spectrum.lines.iter().filter(|line| line.resolved).take(MODE_LINES);
+            let slow = move |line: &&Line| {
+                let share = line.amplitude.norm() / whole;
+                line.resolved && share >= LEAST_SHARE && line.frequency.abs() < SLOW * motion
+            };
+            let lines = spectrum.lines.iter().take(MODE_LINES).filter(slow);
             lines.map(move |line| (line.amplitude.norm() / whole, planet, line.frequency))
         })
         .collect();
     offers.sort_by(|one, other| other.0.total_cmp(&one.0));
     let mut taken: Vec<Option<f64>> = vec![None; spectra.len()];
     for (_, planet, frequency) in offers {
-        let free = taken.iter().flatten().all(|other| (other - frequency).abs() > resolution);
+        // Neither another's line nor that line shifted by a libration.
+        let apart = |other: f64| {
+            let sides = librations.iter().flat_map(|l| [-2.0 * l, -l, *l, 2.0 * l]);
+            sides.chain([0.0]).all(|side| (other + side - frequency).abs() > resolution)
+        };
+        let free = taken.iter().flatten().all(|other| apart(*other));
         let room = taken.iter().flatten().count() < most;
         if taken[planet].is_none() && free && room {
             taken[planet] = Some(frequency);

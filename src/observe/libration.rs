@@ -65,7 +65,8 @@ fn unwrapped(angles: &[f64]) -> Option<Vec<f64>> {
 ///
 /// The angle is unwrapped. A range of a turn or more with a net motion of at least one turn is circulation; without net
 /// motion it alternates. A range below a turn is libration only if the angle goes through its mean there and back in at
-/// least two whole periods of its strongest term, and its mean does not drift by more than half of its half-range over the
+/// least two whole periods of its strongest term and through its mean in each third of the span, and its mean does not
+/// drift by more than half of its half-range over the
 /// span (straight line through the angle less that term); else the span does not tell.
 /// Errors: [`FourierError`] for too few samples or values that are not finite.
 pub fn angle_motion(angles: &[f64], step_day: f64) -> Result<AngleMotion, FourierError> {
@@ -112,7 +113,8 @@ fn within_a_turn(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<AngleMo
     let Some(main) = waves.first() else {
         return Ok(AngleMotion::CannotTell(WhyNot::ShortSpan { range }));
     };
-    if main.frequency * span_day < FEWEST_PERIODS * TAU {
+    let returns = (0..3).all(|third| crosses(&swing[third * swing.len() / 3..(third + 1) * swing.len() / 3]));
+    if main.frequency * span_day < FEWEST_PERIODS * TAU || !returns {
         return Ok(AngleMotion::CannotTell(WhyNot::ShortSpan { range }));
     }
     let rest: Vec<f64> = swing
@@ -130,6 +132,11 @@ fn within_a_turn(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<AngleMo
         main_amplitude: main.amplitude,
         main_period_day: TAU / main.frequency,
     }))
+}
+
+/// Whether values go from one side of zero to the other.
+fn crosses(values: &[f64]) -> bool {
+    values.iter().any(|value| *value > 0.0) && values.iter().any(|value| *value < 0.0)
 }
 
 /// Mean with Hann's weights, so that a last piece of a period does not pull it aside.
@@ -213,6 +220,18 @@ mod tests {
             assert!(matches!(at(0.7), AngleMotion::CannotTell(_)), "{phase} {:?}", at(0.7));
             assert!(matches!(at(1.5), AngleMotion::CannotTell(_)), "{phase} {:?}", at(1.5));
             assert!(matches!(at(2.5), AngleMotion::Librates(_)), "{phase} {:?}", at(2.5));
+        }
+    }
+
+    /// A slow bend of less than two periods under fast terms, whatever line is the strongest of it.
+    #[test]
+    fn a_slow_bend_under_fast_terms_is_not_libration() {
+        for phase in 0..8 {
+            let motion = told(4000, |t| {
+                let slow = 0.9 * (TAU * 0.6 * t / 4000.0 + f64::from(phase)).cos().powi(3);
+                slow + 0.05 * (0.7 * t).sin()
+            });
+            assert!(matches!(motion, AngleMotion::CannotTell(_)), "{phase}: {motion:?}");
         }
     }
 

@@ -10,19 +10,22 @@ mod libration;
 mod quasi_periodic;
 mod resonance;
 mod series;
+mod told;
 mod watch;
 
 pub use combination::{Combination, Fundamental, Kind, Namer, Rule};
 pub use conserved::ConservedWatch;
 pub use extent::{Extent, ExtentWatch, Range};
 pub use frequency::{
-    FrequencyDrift, MotionDrift, frequency_drift, fundamental_nodes, fundamentals, motion_drift,
+    FrequencyDrift, MotionDrift, frequency_drift, frequency_drift_near, fundamental_nodes, fundamentals,
+    mean_motions, motion_drift,
 };
 pub use growth::{GrowthRecord, Lyapunov};
 pub use libration::{AngleMotion, Libration, WhyNot, angle_motion};
-pub use quasi_periodic::{NamedLine, QuasiPeriodic, quasi_periodic};
+pub use quasi_periodic::{NamedLine, QuasiPeriodic, Spectra, angle_lines, libration_frequency, named_angle};
 pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
 pub use series::{ElementSeries, SeriesError};
+pub use told::{AngleSamples, Arc, ToldAngle, ToldFrom, told_angle};
 pub use watch::{AngleWatch, MOST_ROWS, MotionWatch};
 
 use crate::coords::{Elements, elements_in};

@@ -48,6 +48,11 @@ impl ResonantAngle {
         wrap_turn(parts.sum())
     }
 
+    /// Σ j n for mean motions n: the rate of the angle but for its pericentres, in the unit of n.
+    pub fn rate(&self, motions: &[f64]) -> f64 {
+        self.longitudes.iter().zip(motions).map(|(j, n)| f64::from(*j) * n).sum()
+    }
+
     /// In words, as "3λ_c − 2λ_b − ϖ_b": positive terms first, outer planets before inner ones.
     pub fn words(&self, names: &[String]) -> String {
         let term = |letter: &'static str, list: &[i32]| -> Vec<(i32, String)> {

@@ -1,7 +1,7 @@
 //! What a run found, as tables and in words.
 //!
-//! [`Table`] is the one shape of every table; it is written as Enhanced CSV. [`cells_table`] and [`series_table`]
-//! fill it, [`Summary`] counts and says it in words or JSON, [`caption()`] is what stands under a figure.
+//! [`Table`] is the one shape of every table; it is written as Enhanced CSV. [`cells_table`], [`series_table`] and those of
+//! the motion fill it, [`Summary`] counts and says it in words or JSON, [`caption()`] is what stands under a figure.
 
 mod calibration;
 mod caption;
@@ -9,6 +9,7 @@ mod cells;
 mod criteria;
 mod ecsv;
 mod error;
+mod motion;
 mod series;
 mod summary;
 mod table;
@@ -19,6 +20,9 @@ pub use caption::caption;
 pub use cells::cells_table;
 pub use criteria::criteria_table;
 pub use error::ReportError;
+pub use motion::{
+    AngleWords, DEGREE_YEAR, MotionInput, frequencies_table, is_unturned, lines_table, resonances_table,
+};
 pub use series::{PlanetSeries, Series, series_table};
 pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};
 pub use table::{Column, Datatype, Entry, Meta, Table};

@@ -11,7 +11,7 @@ use abide::assess::{Assessment, Plan, run_batch};
 use abide::coords::{Configuration, configure};
 use abide::criteria::margin;
 use abide::input::{SystemFile, parse_system};
-use abide::system::{CoordinateChoice, Criterion, Encounter, Engine, Limits, Span, Step};
+use abide::system::{Criterion, Encounter, Engine, Limits, Span};
 use abide::verdict::Verdict;
 use random::Random;
 
@@ -188,12 +188,7 @@ pub fn draw(
 pub fn follow(drawn: &[Drawn], orbits: f64, hill: f64, chaos: bool) -> Vec<Assessment> {
     let year = TAU / (abide::units::GM_SUN).sqrt();
     let limits = Limits { escape_au: None, encounter: Encounter::Stop { hill }, stop_when_chaotic: false };
-    let engine = Engine {
-        scheme: "auto".to_string(),
-        coordinates: CoordinateChoice::Auto,
-        step: Step::Auto,
-        energy_error: 1e-5,
-    };
+    let engine = Engine { energy_error: 1e-5, ..Engine::default() };
     let mut plan = Plan::new(Span::Days(orbits * year), &limits, &engine, &drawn[0].configuration);
     plan.megno = chaos;
     let mut feed = drawn.iter().enumerate();

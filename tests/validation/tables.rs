@@ -39,6 +39,7 @@ use std::process::ExitCode;
 /// Name of a table and what makes it.
 const TABLES: &[(&str, fn())] = &[
     ("hd-45364", hd_45364::write),
+    ("hd-45364-map", hd_45364::write_map),
     ("catalogue", catalogue::write),
     ("inspect", inspect::write),
     ("variational", variational::write),

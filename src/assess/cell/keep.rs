@@ -83,6 +83,16 @@ impl Cell {
         self.redone
     }
 
+    /// Whether the adaptive engine does everything.
+    pub fn is_adaptive(&self) -> bool {
+        self.adaptive
+    }
+
+    /// Blocks that the adaptive engine did.
+    pub fn passages(&self) -> u64 {
+        self.passages
+    }
+
     pub fn blocks(&self) -> u64 {
         self.blocks
     }

@@ -1,6 +1,7 @@
 //! `abide follow`: one configuration → its series, its figure, and the verdict in words.
 
 mod checkpoint;
+mod motion;
 mod outputs;
 mod pace;
 mod view;
@@ -12,7 +13,7 @@ use std::process::ExitCode;
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::time::Instant;
 
-use crate::assess::{Assessment, Follower, Row};
+use crate::assess::{Analysed, Assessment, Follower, Row, analyse};
 use crate::cli::CliError;
 use crate::cli::args::FollowArgs;
 use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
@@ -35,15 +36,24 @@ pub fn run(args: FollowArgs) -> Result<ExitCode, CliError> {
     let checkpoint = Checkpoint::of(&wish);
     let follower = begin_or_go_on(&wish, &checkpoint, args.anew)?;
     let stop = stop_on_signal()?;
-    let Some((assessment, rows)) = follow(follower, &wish, &checkpoint, &stop)? else {
+    let Some(done) = follow(follower, &wish, &checkpoint, &stop)? else {
         wish.say(format_args!(
             "stopped; what was followed is kept in {}. The same command goes on from there",
             wish.folder.display()
         ));
         return Ok(ExitCode::from(INTERRUPTED));
     };
-    show(&wish, &assessment, &rows)?;
+    show(&wish, &done)?;
     Ok(ExitCode::SUCCESS)
+}
+
+/// A configuration that has come to its end.
+struct Done {
+    assessment: Assessment,
+    rows: Vec<Row>,
+    analysed: Analysed,
+    /// Of the angles to draw, with their times.
+    angles: Vec<outputs::AngleDrawn>,
 }
 
 /// Proves the folder writable and claims it for this process.
@@ -103,7 +113,7 @@ fn follow(
     wish: &Wish,
     checkpoint: &Checkpoint,
     stop: &AtomicBool,
-) -> Result<Option<(Assessment, Vec<Row>)>, CliError> {
+) -> Result<Option<Done>, CliError> {
     let mut pace = Pace::new(wish, &follower.progress());
     let (mut saved, mut pause) = (Instant::now(), wish.pause);
     while follower.assessment().is_none() {
@@ -126,16 +136,19 @@ fn follow(
     checkpoint.write(&follower)?;
     let end_day = follower.assessment().map_or(0.0, |assessment| assessment.end_time_day);
     pace.finish(end_day / wish.plan.span_day);
-    Ok(follower.finish())
+    let analysed = analyse(follower.samples(), &wish.configuration);
+    let angles =
+        analysed.as_ref().map_or(Vec::new(), |found| outputs::drawn(wish, found, follower.samples()));
+    Ok(follower.finish().map(|(assessment, rows)| Done { assessment, rows, analysed, angles }))
 }
 
-fn show(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Result<(), CliError> {
-    let view = View::new(wish, assessment);
-    let written = outputs::write(wish, &view, assessment, rows)?;
+fn show(wish: &Wish, done: &Done) -> Result<(), CliError> {
+    let view = View::new(wish, &done.assessment, &done.analysed);
+    let written = outputs::write(wish, &view, done)?;
     for path in &written {
         wish.say(format_args!("wrote {}", path.display()));
     }
-    if rows.len() < 2 {
+    if done.rows.len() < 2 {
         wish.say(format_args!("it ended before the second row: there is nothing to draw"));
     }
     if wish.json {

@@ -18,7 +18,12 @@ use crate::survey::{self, VERSION, sha256};
 pub const CHECKPOINT: &str = "follow.checkpoint";
 pub const SERIES: &str = "series.ecsv";
 pub const PICTURE: &str = "series.png";
-const FIRST_LINE: &[u8] = b"abide checkpoint 1\n";
+pub const FREQUENCIES: &str = "frequencies.ecsv";
+pub const LINES: &str = "lines.ecsv";
+pub const RESONANCES: &str = "resonances.ecsv";
+/// All that a command leaves.
+const FILES: [&str; 6] = [CHECKPOINT, SERIES, PICTURE, FREQUENCIES, LINES, RESONANCES];
+const FIRST_LINE: &[u8] = b"abide checkpoint 2\n";
 const SEAL_BYTES: usize = 32;
 
 /// Of what the numbers are.
@@ -70,8 +75,7 @@ impl Checkpoint {
         let Ok(entries) = fs::read_dir(&self.folder) else { return };
         for entry in entries.flatten() {
             let name = entry.file_name().to_string_lossy().into_owned();
-            let ours =
-                [CHECKPOINT, SERIES, PICTURE].iter().any(|file| name.starts_with(&format!(".{file}.")));
+            let ours = FILES.iter().any(|file| name.starts_with(&format!(".{file}.")));
             if ours && name.ends_with(".part") {
                 // A leftover that stays does no harm.
                 let _ = fs::remove_file(entry.path());
@@ -81,7 +85,7 @@ impl Checkpoint {
 
     /// Removes checkpoint and outputs of a former command, so that none of them is taken for those of this one.
     pub fn drop_outputs(&self) -> Result<(), CliError> {
-        for name in [CHECKPOINT, SERIES, PICTURE] {
+        for name in FILES {
             let path = self.folder.join(name);
             match fs::remove_file(&path) {
                 Err(error) if error.kind() != std::io::ErrorKind::NotFound => {

@@ -2,34 +2,76 @@
 
 use std::path::PathBuf;
 
-use super::checkpoint::{PICTURE, SERIES};
+use super::Done;
+use super::checkpoint::{FREQUENCIES, LINES, PICTURE, RESONANCES, SERIES};
 use super::view::View;
 use super::wish::Wish;
-use crate::assess::{Assessment, Range, Row};
+use crate::assess::{Analysis, AngleAnalysed, Assessment, Range, Row, Samples, angle_series};
 use crate::cli::CliError;
 use crate::disk;
 use crate::figure::render::{self, Width};
-use crate::figure::{self, Figure, PlanetCurves, SeriesInput};
-use crate::report::{PlanetSeries, Series, VERSION, printed, series_table};
+use crate::figure::{self, AngleCurve, Figure, PlanetCurves, SeriesInput};
+use crate::observe::Candidate;
+use crate::report::{
+    MotionInput, PlanetSeries, Series, VERSION, frequencies_table, lines_table, printed, resonances_table,
+    series_table,
+};
 use crate::system::Frame;
 
-/// Writes table and figure, and names them. A configuration that ends at its start has nothing to draw.
-pub fn write(
-    wish: &Wish,
-    view: &View<'_>,
-    assessment: &Assessment,
-    rows: &[Row],
-) -> Result<Vec<PathBuf>, CliError> {
-    let series = series(wish, assessment, rows);
-    let table = series_table(&series).to_ecsv().map_err(CliError::working)?;
-    let mut written = vec![wish.folder.join(SERIES)];
-    disk::write_beside_then_rename(&written[0], table.as_bytes())?;
-    if rows.len() > 1 {
-        let figure = picture(wish, view, assessment, rows)?;
-        let bytes = render::png(&figure, Width::PAGE).map_err(CliError::working)?;
-        let path = wish.folder.join(PICTURE);
-        disk::write_beside_then_rename(&path, &bytes)?;
+/// Most angles that are drawn.
+const MOST_DRAWN: usize = 3;
+
+/// An angle for the figure.
+pub struct AngleDrawn {
+    name: String,
+    points: Vec<(f64, f64)>,
+}
+
+/// The angles to draw: of every pair and chain that librates the calmest one, then apsides.
+pub fn drawn(wish: &Wish, analysis: &Analysis, samples: &Samples) -> Vec<AngleDrawn> {
+    let mut staying: Vec<&AngleAnalysed> = analysis.staying().collect();
+    let apsides = |found: &AngleAnalysed| matches!(found.candidate, Candidate::Apsides { .. });
+    staying.sort_by_key(|found| apsides(found));
+    let mut chosen: Vec<&AngleAnalysed> = Vec::new();
+    for found in staying {
+        if chosen.iter().all(|other| other.candidate != found.candidate) {
+            chosen.push(found);
+        }
+    }
+    let names = wish.names();
+    let angle = |found: &AngleAnalysed| AngleDrawn {
+        name: found.angle.words(&names),
+        points: angle_series(samples, &found.angle),
+    };
+    chosen.into_iter().take(MOST_DRAWN).map(angle).collect()
+}
+
+/// Writes tables and figure, and names them. A configuration that ends at its start has nothing to draw.
+pub fn write(wish: &Wish, view: &View<'_>, done: &Done) -> Result<Vec<PathBuf>, CliError> {
+    let mut written = Vec::new();
+    let mut put = |name: &str, bytes: &[u8]| -> Result<(), CliError> {
+        let path = wish.folder.join(name);
+        disk::write_beside_then_rename(&path, bytes)?;
         written.push(path);
+        Ok(())
+    };
+    let series = series(wish, &done.assessment, &done.rows);
+    put(SERIES, series_table(&series).to_ecsv().map_err(CliError::working)?.as_bytes())?;
+    if let Ok(analysis) = &done.analysed {
+        let names = wish.names();
+        let input = MotionInput { title: wish.title(), names: &names, analysis };
+        let tables = [
+            (FREQUENCIES, frequencies_table(&input)),
+            (LINES, lines_table(&input)),
+            (RESONANCES, resonances_table(&input)),
+        ];
+        for (name, table) in tables {
+            put(name, table.to_ecsv().map_err(CliError::working)?.as_bytes())?;
+        }
+    }
+    if done.rows.len() > 1 {
+        let figure = picture(wish, view, done)?;
+        put(PICTURE, &render::png(&figure, Width::PAGE).map_err(CliError::working)?)?;
     }
     Ok(written)
 }
@@ -68,7 +110,8 @@ fn has_bands(rows: &[Row]) -> bool {
     rows.len() >= BAND_ROWS && rows.iter().any(wide)
 }
 
-fn picture(wish: &Wish, view: &View<'_>, assessment: &Assessment, rows: &[Row]) -> Result<Figure, CliError> {
+fn picture(wish: &Wish, view: &View<'_>, done: &Done) -> Result<Figure, CliError> {
+    let (assessment, rows) = (&done.assessment, &done.rows);
     let bands = has_bands(rows);
     let each = |of: &dyn Fn(&Row) -> (f64, Range)| -> Vec<f64> {
         let points = rows.iter().map(of);
@@ -93,12 +136,14 @@ fn picture(wish: &Wish, view: &View<'_>, assessment: &Assessment, rows: &[Row]) 
         semi_major_axis_au: a,
     });
     let caption = caption(wish, view, assessment, bands);
+    let angles = done.angles.iter().map(|angle| AngleCurve { name: &angle.name, points: &angle.points });
     let input = SeriesInput {
         title: wish.title(),
         time_day: &once(|row| row.time_day),
         planets: &curves.collect::<Vec<_>>(),
         megno_mean: &once(|row| row.mean_megno.unwrap_or(f64::NAN)),
         energy_error: &once(|row| row.energy_error),
+        angles: &angles.collect::<Vec<_>>(),
         caption: &caption,
     };
     figure::series(&input).map_err(CliError::working)

@@ -2,10 +2,11 @@
 
 use serde_json::{Map, Value, json};
 
+use super::motion;
 use super::why::{Why, megno};
 use super::wish::{Wish, count};
 use crate::assess::{
-    ADAPTIVE, Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
+    ADAPTIVE, Analysed, Assessment, Extent, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
     outermost_period_day,
 };
 use crate::cli::CliError;
@@ -21,6 +22,7 @@ const LEAD: usize = 11;
 pub struct View<'a> {
     wish: &'a Wish,
     assessment: &'a Assessment,
+    analysed: &'a Analysed,
     pub why: Why,
     names: Vec<&'a str>,
     inner: Counted,
@@ -42,7 +44,7 @@ struct Passage {
 }
 
 impl<'a> View<'a> {
-    pub fn new(wish: &'a Wish, assessment: &'a Assessment) -> View<'a> {
+    pub fn new(wish: &'a Wish, assessment: &'a Assessment, analysed: &'a Analysed) -> View<'a> {
         let configuration = &wish.configuration;
         let names: Vec<&str> = configuration.planets.iter().map(|planet| planet.name.as_str()).collect();
         let frame = configuration.own_frame();
@@ -70,6 +72,37 @@ impl<'a> View<'a> {
             names,
             wish,
             assessment,
+            analysed,
+        }
+    }
+
+    /// What MEGNO says of chaos, whatever became of the planets; none where it does not tell.
+    fn is_chaotic(&self) -> Option<bool> {
+        let mean = self.assessment.megno?;
+        let long = self.outer.orbits >= LEAST_OUTER_ORBITS;
+        match mean {
+            y if y >= CHAOTIC_FROM => Some(true),
+            y if y <= REGULAR_UP_TO && long => Some(false),
+            _ => None,
+        }
+    }
+
+    /// What became of the planets, whatever MEGNO says.
+    fn survival(&self) -> String {
+        let a = self.assessment;
+        match (a.verdict, a.loss) {
+            (Verdict::Untrusted, _) => "not told, as the energy error was too large".to_owned(),
+            (_, Some(loss)) => format!(
+                "lost: {} by {} after {}",
+                self.names[loss.planet],
+                loss.how.word(),
+                time_words(a.end_time_day)
+            ),
+            (Verdict::Chaotic, _) => {
+                "all are still there at the end of the span; chaotic ones may be lost later, or never"
+                    .to_owned()
+            }
+            _ => "all are still there at the end of the span, which says nothing of later".to_owned(),
         }
     }
 
@@ -157,7 +190,13 @@ impl<'a> View<'a> {
 
     fn chaos(&self) -> String {
         let a = self.assessment;
+        let told = match self.is_chaotic() {
+            Some(true) => "yes; ",
+            Some(false) => "none seen; ",
+            None => "not told; ",
+        };
         let mean = a.megno.map_or("⟨Y⟩ not measured".to_owned(), |y| format!("⟨Y⟩ = {}", megno(y)));
+        let mean = format!("{told}{mean}");
         match self.lyapunov_yr() {
             Some((time, error)) => {
                 let (unit, size) = if time < 1.0 { ("d", YEAR_DAY) } else { ("yr", 1.0) };
@@ -213,6 +252,7 @@ impl<'a> View<'a> {
         let mut entries = vec![
             ("why", self.why.to_string()),
             ("span", self.span()),
+            ("survival", self.survival()),
             ("chaos", self.chaos()),
             ("scheme", self.scheme()),
             ("step", self.step()),
@@ -220,12 +260,17 @@ impl<'a> View<'a> {
             ("momentum", momentum),
         ];
         entries.extend(self.approach().map(|approach| ("approach", approach)));
+        let names = self.wish.names();
+        let drift = self.analysed.as_ref().map(|analysis| ("drift", motion::drift(analysis, &names)));
+        entries.splice(4..4, drift.ok());
         let mut out = vec![format!("{}: {}", self.wish.title(), self.headline()), String::new()];
         out.extend(entries.iter().map(|(lead, words)| wrapped(&format!("{lead:<LEAD$}"), words)));
         if !a.extent.is_empty() {
             out.push(String::new());
             out.extend(self.extents());
         }
+        out.push(String::new());
+        out.extend(motion::text(self.analysed, &names));
         out.join("\n") + "\n"
     }
 
@@ -245,24 +290,24 @@ impl<'a> View<'a> {
         lines(&["range of", "a (au)", "e", "i (deg)"], &rows.collect::<Vec<_>>(), &[])
     }
 
+    fn extents_json(&self) -> Map<String, Value> {
+        let pair = |range: &Range, scale: f64| json!([range.min / scale, range.max / scale]);
+        let ranges = |extent: &Extent| {
+            json!({
+                "a_au": pair(&extent.semi_major_axis_au, 1.0),
+                "e": pair(&extent.eccentricity, 1.0),
+                "i_deg": pair(&extent.inclination, DEGREE),
+            })
+        };
+        let named = self.names.iter().zip(&self.assessment.extent);
+        named.map(|(name, extent)| ((*name).to_owned(), ranges(extent))).collect()
+    }
+
     /// The same for scripts; what is absent is null. Ends in a newline.
     pub fn json(&self) -> Result<String, CliError> {
         let a = self.assessment;
         let name = |planet: usize| self.names[planet];
-        let extent: Map<String, Value> = self
-            .names
-            .iter()
-            .zip(&a.extent)
-            .map(|(name, extent)| {
-                let pair = |range: &Range, scale: f64| json!([range.min / scale, range.max / scale]);
-                let ranges = json!({
-                    "a_au": pair(&extent.semi_major_axis_au, 1.0),
-                    "e": pair(&extent.eccentricity, 1.0),
-                    "i_deg": pair(&extent.inclination, DEGREE),
-                });
-                ((*name).to_owned(), ranges)
-            })
-            .collect();
+        let (frequencies, resonances) = motion::json(self.analysed, &self.wish.names());
         let value = json!({
             "title": self.wish.title(),
             "version": VERSION,
@@ -283,6 +328,8 @@ impl<'a> View<'a> {
             "end_time_yr": a.end_time_day / YEAR_DAY,
             "inner": { "planet": name(self.inner.planet), "orbits": self.inner.orbits },
             "outer": { "planet": name(self.outer.planet), "orbits": self.outer.orbits },
+            "survived": (a.verdict != Verdict::Untrusted).then_some(a.loss.is_none()),
+            "chaotic": self.is_chaotic(),
             "megno_mean": a.megno,
             "lyapunov_time_yr": self.lyapunov_yr().map(|(time, error)| json!({ "value": time, "error": error })),
             "energy_error": a.energy_error,
@@ -300,7 +347,9 @@ impl<'a> View<'a> {
                 "hill": found.hill,
                 "au": found.au,
             })),
-            "extent": extent,
+            "extent": self.extents_json(),
+            "frequencies": frequencies,
+            "resonances": resonances,
         });
         let mut text = serde_json::to_string_pretty(&value).map_err(CliError::working)?;
         text.push('\n');

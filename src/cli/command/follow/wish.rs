@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 use std::time::Duration;
 
-use crate::assess::{Plan, auto_step_day, innermost_period_day, plan_for_rows};
+use crate::assess::{MOST_SAMPLES, Plan, auto_step_day, innermost_period_day, plan_for_rows};
 use crate::cli::CliError;
 use crate::cli::args::{CompensationWord, CoordinateWord, EngineWord, FollowArgs};
 use crate::cli::unfit;
@@ -97,7 +97,7 @@ impl Wish {
         plan.adaptive = args.engine == EngineWord::Adaptive;
         plan.compensated |=
             engine.compensated == Compensation::Auto && steps(&plan, &configuration) > COMPENSATED_FROM_STEPS;
-        let plan = plan_for_rows(&plan, &configuration, rows);
+        let plan = plan_for_rows(&plan, &configuration, rows.max(MOST_SAMPLES));
         check_plan(args, &plan, &configuration)?;
         let meanings = [
             ("--span", format!("{span:?}"), args.span.clone()),
@@ -135,6 +135,11 @@ impl Wish {
 
     pub fn title(&self) -> &str {
         &self.file.system.title
+    }
+
+    /// Of planets and companion, in the order of the configuration.
+    pub fn names(&self) -> Vec<String> {
+        self.configuration.planets.iter().map(|planet| planet.name.clone()).collect()
     }
 
     pub fn planet(&self, index: usize) -> &str {
