@@ -4,7 +4,7 @@ use super::cell::{Cell, Next};
 use super::{Assessment, Plan};
 use crate::coords::Configuration;
 use crate::integrate::{Advance, Block, advance, from_map};
-use crate::lanes::Level;
+use crate::lanes::{Level, WIDTH};
 
 /// Assesses one configuration. Same bits as [`run_batch`] gives it.
 pub fn assess(configuration: &Configuration, plan: &Plan) -> Assessment {
@@ -61,10 +61,11 @@ fn run_lanes(
     let level = Level::chosen();
     let width = width.unwrap_or(level.width() * level.groups(first.1.planets.len()));
     let mut block = plan.block(width, first.1.planets.len());
+    let (mut before, mut corrected) = (block.clone(), block.clone());
     let mut waiting = Some(first);
     let mut seats: Vec<Seat> = (0..width).map(|_| None).collect();
     loop {
-        for lane in 0..width {
+        for lane in 0..seats.len() {
             while seats[lane].is_none() {
                 let Some((number, configuration)) = waiting.take().or_else(&mut next) else { break };
                 assert_eq!(configuration.planets.len(), block.planets(), "one batch, one number of planets");
@@ -82,13 +83,21 @@ fn run_lanes(
                 }
             }
         }
-        if seats.iter().all(Option::is_none) {
+        let busy = seats.iter().flatten().count();
+        if busy == 0 {
             return work;
         }
-        work.offered += width as u64;
-        work.used += seats.iter().flatten().count() as u64;
-        let before = block.clone();
-        let corrected = one_block(&mut block, plan);
+        if busy.next_multiple_of(WIDTH) < block.width() {
+            // No cells are left to fill the lanes: those on their way move together.
+            (block, seats) = moved_together(&block, seats, plan);
+            (before, corrected) = (block.clone(), block.clone());
+        }
+        work.offered += block.width() as u64;
+        work.used += busy as u64;
+        before.copy_from(&block);
+        run_block(&mut block, plan);
+        corrected.copy_from(&block);
+        from_map(&mut corrected, plan.splitting());
         for (lane, seat) in seats.iter_mut().enumerate() {
             let Some((number, cell)) = seat else { continue };
             match cell.look(plan, &before, &mut block, &corrected, lane) {
@@ -110,11 +119,28 @@ fn run_lanes(
     }
 }
 
+/// The cells in as few groups of lanes as hold them.
+fn moved_together(block: &Block, seats: Vec<Seat>, plan: &Plan) -> (Block, Vec<Seat>) {
+    let busy = seats.iter().flatten().count();
+    let mut fewer = plan.block(busy.next_multiple_of(WIDTH), block.planets());
+    let mut kept: Vec<Seat> = Vec::with_capacity(fewer.width());
+    for (lane, seat) in seats.into_iter().enumerate().filter(|(_, seat)| seat.is_some()) {
+        block.copy_lane(lane, &mut fewer, kept.len());
+        kept.push(seat);
+    }
+    kept.resize_with(fewer.width(), || None);
+    (fewer, kept)
+}
+
 /// Advances every lane by one block of steps; gives the true states at its end.
 pub(super) fn one_block(block: &mut Block, plan: &Plan) -> Block {
+    run_block(block, plan);
+    as_true(block, plan)
+}
+
+fn run_block(block: &mut Block, plan: &Plan) {
     let scheme = plan.splitting();
     advance(Advance { block, scheme, steps: plan.block_steps, tangent: plan.megno });
-    as_true(block, plan)
 }
 
 /// The true states of a block in the map's variables.

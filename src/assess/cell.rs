@@ -10,7 +10,7 @@ mod long_watch;
 use super::assessment::{Approach, Assessment, Loss};
 use super::physics::{barycentric, forces, star_terms, symplectic_start};
 use super::plan::{Plan, innermost_period_day, outermost_period_day};
-use crate::coords::{Configuration, Elements};
+use crate::coords::{Configuration, Shape};
 use crate::integrate::forces::Forces;
 use crate::integrate::{Advance, Block, StarTerms, State, advance, from_map, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
@@ -185,11 +185,13 @@ impl Cell {
         if error > plan.energy_error {
             return self.again(error, plan);
         }
-        let orbits = moment.elements(plan.frame);
+        if self.long.is_on() {
+            self.long.see(&moment.elements(plan.frame));
+        }
+        let orbits = moment.shapes(plan.frame);
         if plan.extent {
             self.extent.see(&orbits);
         }
-        self.long.see(&orbits);
         if let Some(planet) = self.falls_into_star(&orbits) {
             let loss = Loss { time_day: moment.time_day, planet, other: None, how: LostHow::Star };
             return Next::End(Box::new(self.assessment(plan, Some(loss))));
@@ -246,7 +248,7 @@ impl Cell {
                 return at(planet, None, LostHow::Star);
             }
         }
-        if let Some(planet) = self.falls_into_star(&moment.elements(plan.frame)) {
+        if let Some(planet) = self.falls_into_star(&moment.shapes(plan.frame)) {
             return at(planet, None, LostHow::Star);
         }
         self.limits.pairs.iter().find_map(|pair| {
@@ -267,11 +269,11 @@ impl Cell {
     }
 
     /// A bound planet whose pericentre lies inside the star will reach it within one orbit.
-    fn falls_into_star(&self, orbits: &[Elements]) -> Option<usize> {
+    fn falls_into_star(&self, orbits: &[Shape]) -> Option<usize> {
         if !self.limits.orbits_tell {
             return None;
         }
-        let inside = |o: &Elements| o.pericentre_au() < self.limits.star_radius_au;
+        let inside = |o: &Shape| o.pericentre_au() < self.limits.star_radius_au;
         orbits.iter().position(inside)
     }
 
@@ -314,7 +316,7 @@ impl Cell {
             let state = last.state(0);
             let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
             self.conserved.see(&moment, &self.terms);
-            self.extent.see(&moment.elements(plan.frame));
+            self.extent.see(&moment.shapes(plan.frame));
         }
         self.part_steps = ended as u64;
         let at_end = run(ended);

@@ -48,7 +48,7 @@ impl Rows {
         let planets = start.gm.len();
         let moment = Moment { time_day: 0.0, state: start };
         let mut at_start = ExtentWatch::new(planets);
-        at_start.see(&moment.elements(frame));
+        at_start.see(&moment.shapes(frame));
         let first = Row {
             time_day: 0.0,
             elements: moment.elements(frame),
@@ -71,7 +71,7 @@ impl Rows {
         let state = corrected.state(0);
         let time_day = cell.time_day(plan);
         let moment = Moment { time_day, state: &state };
-        self.since.see(&moment.elements(self.frame));
+        self.since.see(&moment.shapes(self.frame));
         let done = cell.blocks_done();
         if !done.is_multiple_of(self.stride) && done != cell.blocks() {
             return;

@@ -31,6 +31,14 @@ pub struct Elements {
     pub mean_anomaly: f64,
 }
 
+/// Size, form and tilt of an orbit: the elements without the angles that need the body's place; cheaper, and the same bits.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Shape {
+    pub semi_major_axis_au: f64,
+    pub eccentricity: f64,
+    pub inclination: f64,
+}
+
 /// Where an orbit's plane lies, and where in it the body is.
 struct Orientation {
     inclination: f64,
@@ -39,12 +47,34 @@ struct Orientation {
     argument_of_latitude: f64,
 }
 
-/// The shape of an orbit, and where along it the body is.
-struct Along {
+/// The form of an orbit, and what tells where along it the body is.
+struct Form {
     semi_major_axis_au: f64,
     eccentricity: f64,
-    mean_anomaly: f64,
-    true_anomaly: f64,
+    /// e sin E, or e sinh E.
+    sine: f64,
+    /// e cos E of an ellipse.
+    cosine: f64,
+}
+
+impl Shape {
+    /// As [`Elements::from_state`].
+    pub fn from_state(gm: f64, position_au: [f64; 3], velocity_au_day: [f64; 3]) -> Shape {
+        let position = Vector3::from(position_au);
+        let velocity = Vector3::from(velocity_au_day);
+        let momentum = position.cross(&velocity);
+        let form = form(gm, &position, &velocity, momentum.norm());
+        Shape {
+            semi_major_axis_au: form.semi_major_axis_au,
+            eccentricity: circle_or(form.eccentricity),
+            inclination: inclination(&some_normal(&position, &momentum)),
+        }
+    }
+
+    /// a (1 − e), au.
+    pub fn pericentre_au(&self) -> f64 {
+        self.semi_major_axis_au * (1.0 - self.eccentricity)
+    }
 }
 
 impl Elements {
@@ -59,25 +89,26 @@ impl Elements {
         let position = Vector3::from(position_au);
         let velocity = Vector3::from(velocity_au_day);
         let momentum = position.cross(&velocity);
-        let along = along(gm, &position, &velocity, momentum.norm());
+        let form = form(gm, &position, &velocity, momentum.norm());
+        let (mean_anomaly, true_anomaly) = form.anomalies();
         let plane = orientation(&position, &momentum);
-        let circle = along.eccentricity < CIRCLE;
+        let circle = form.eccentricity < CIRCLE;
         Elements {
-            semi_major_axis_au: along.semi_major_axis_au,
-            eccentricity: if circle { 0.0 } else { along.eccentricity },
+            semi_major_axis_au: form.semi_major_axis_au,
+            eccentricity: circle_or(form.eccentricity),
             inclination: plane.inclination,
             ascending_node: wrap_turn(plane.ascending_node),
             argument_of_pericentre: if circle {
                 0.0
             } else {
-                wrap_turn(plane.argument_of_latitude - along.true_anomaly)
+                wrap_turn(plane.argument_of_latitude - true_anomaly)
             },
             mean_anomaly: if circle {
                 wrap_turn(plane.argument_of_latitude)
-            } else if along.eccentricity < 1.0 {
-                wrap_turn(along.mean_anomaly)
+            } else if form.eccentricity < 1.0 {
+                wrap_turn(mean_anomaly)
             } else {
-                along.mean_anomaly
+                mean_anomaly
             },
         }
     }
@@ -128,9 +159,14 @@ impl Elements {
             .then(|| std::f64::consts::TAU * (self.semi_major_axis_au.powi(3) / gm).sqrt())
     }
 
+    pub fn shape(&self) -> Shape {
+        let Elements { semi_major_axis_au, eccentricity, inclination, .. } = *self;
+        Shape { semi_major_axis_au, eccentricity, inclination }
+    }
+
     /// a (1 − e), au.
     pub fn pericentre_au(&self) -> f64 {
-        self.semi_major_axis_au * (1.0 - self.eccentricity)
+        self.shape().pericentre_au()
     }
 
     /// a (1 + e), au; infinite for a hyperbola.
@@ -153,7 +189,7 @@ impl Elements {
     }
 }
 
-fn along(gm: f64, position: &Vector3<f64>, velocity: &Vector3<f64>, momentum: f64) -> Along {
+fn form(gm: f64, position: &Vector3<f64>, velocity: &Vector3<f64>, momentum: f64) -> Form {
     let distance = position.norm();
     let radial = position.dot(velocity);
     let kinetic = distance * velocity.norm_squared() / gm;
@@ -162,52 +198,98 @@ fn along(gm: f64, position: &Vector3<f64>, velocity: &Vector3<f64>, momentum: f6
     let binding = if binding.abs() < f64::EPSILON { f64::EPSILON } else { binding };
     let semi_major_axis_au = distance / binding;
     let sine = radial / (gm * semi_major_axis_au.abs()).sqrt();
-    if binding > 0.0 {
-        let cosine = 1.0 - binding;
+    let cosine = 1.0 - binding;
+    let eccentricity = if binding > 0.0 {
         // A radial fall has e = 1; it is kept among the ellipses.
-        let eccentricity = cosine.hypot(sine).min(1.0 - 0.5 * f64::EPSILON);
-        let eccentric = sine.atan2(cosine);
-        // The true anomaly comes from this very E, so that what E misses for small e cancels in ω + M.
-        Along {
-            semi_major_axis_au,
-            eccentricity,
-            mean_anomaly: kepler::mean_from_eccentric(eccentric, eccentricity),
-            true_anomaly: kepler::true_from_eccentric(eccentric, eccentricity),
-        }
+        cosine.hypot(sine).min(1.0 - 0.5 * f64::EPSILON)
     } else {
         // e² − 1 = h²/(μ |a|) has no cancellation far out, where cosh and sinh have.
         let excess = momentum / (gm * semi_major_axis_au.abs()).sqrt();
-        let eccentricity = 1.0f64.hypot(excess).max(1.0 + f64::EPSILON);
-        let hyperbolic = (sine / eccentricity).asinh();
-        Along {
-            semi_major_axis_au,
-            eccentricity,
-            mean_anomaly: kepler::mean_from_hyperbolic(hyperbolic, eccentricity),
-            true_anomaly: kepler::true_from_hyperbolic(hyperbolic, eccentricity),
+        1.0f64.hypot(excess).max(1.0 + f64::EPSILON)
+    };
+    Form { semi_major_axis_au, eccentricity, sine, cosine }
+}
+
+impl Form {
+    /// Mean and true anomaly.
+    fn anomalies(&self) -> (f64, f64) {
+        let e = self.eccentricity;
+        if e < 1.0 {
+            // The true anomaly comes from this very E, so that what E misses for small e cancels in ω + M.
+            let eccentric = self.sine.atan2(self.cosine);
+            (kepler::mean_from_eccentric(eccentric, e), kepler::true_from_eccentric(eccentric, e))
+        } else {
+            let hyperbolic = (self.sine / e).asinh();
+            (kepler::mean_from_hyperbolic(hyperbolic, e), kepler::true_from_hyperbolic(hyperbolic, e))
         }
     }
 }
 
+fn circle_or(eccentricity: f64) -> f64 {
+    if eccentricity < CIRCLE { 0.0 } else { eccentricity }
+}
+
 fn orientation(position: &Vector3<f64>, momentum: &Vector3<f64>) -> Orientation {
-    let momentum = if momentum.norm() > 0.0 { *momentum } else { any_normal(position) };
+    let momentum = some_normal(position, momentum);
     let size = momentum.norm();
     let level = momentum.x.hypot(momentum.y);
-    let flat = level <= FLAT * size;
-    let node = if flat { Vector3::x() } else { Vector3::new(-momentum.y / level, momentum.x / level, 0.0) };
+    let node = if is_flat(&momentum) {
+        Vector3::x()
+    } else {
+        Vector3::new(-momentum.y / level, momentum.x / level, 0.0)
+    };
     let ahead = momentum.cross(&node) / size;
     Orientation {
-        inclination: match flat {
-            true if momentum.z > 0.0 => 0.0,
-            true => std::f64::consts::PI,
-            false => level.atan2(momentum.z),
-        },
+        inclination: inclination(&momentum),
         ascending_node: node.y.atan2(node.x),
         argument_of_latitude: position.dot(&ahead).atan2(position.dot(&node)),
     }
+}
+
+fn is_flat(momentum: &Vector3<f64>) -> bool {
+    momentum.x.hypot(momentum.y) <= FLAT * momentum.norm()
+}
+
+fn inclination(momentum: &Vector3<f64>) -> f64 {
+    match is_flat(momentum) {
+        true if momentum.z > 0.0 => 0.0,
+        true => std::f64::consts::PI,
+        false => momentum.x.hypot(momentum.y).atan2(momentum.z),
+    }
+}
+
+/// The angular momentum, or some normal of a radial orbit.
+fn some_normal(position: &Vector3<f64>, momentum: &Vector3<f64>) -> Vector3<f64> {
+    if momentum.norm() > 0.0 { *momentum } else { any_normal(position) }
 }
 
 /// A radial orbit lies in every plane through it; this is one of them.
 fn any_normal(position: &Vector3<f64>) -> Vector3<f64> {
     let axis = if position.x.abs() <= position.y.abs() { Vector3::x() } else { Vector3::y() };
     position.cross(&axis).normalize()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use proptest::prelude::*;
+
+    proptest! {
+        #[test]
+        fn the_shape_is_that_of_the_elements_to_the_bit(
+            pos in prop::array::uniform3(-3.0f64..3.0),
+            vel in prop::array::uniform3(-1.2f64..1.2),
+            kind in 0u8..4,
+        ) {
+            let (pos, vel) = match kind {
+                0 => ([pos[0], pos[1], 0.0], [vel[0], vel[1], 0.0]),
+                1 => (pos, pos.map(|x| 0.3 * x)),
+                2 => ([1.0, 0.0, 0.0], [0.0, 1.0, vel[2]]),
+                _ => (pos, vel),
+            };
+            let (elements, shape) = (Elements::from_state(1.0, pos, vel), Shape::from_state(1.0, pos, vel));
+            let bits = |s: Shape| [s.semi_major_axis_au, s.eccentricity, s.inclination].map(f64::to_bits);
+            prop_assert_eq!(bits(elements.shape()), bits(shape));
+        }
+    }
 }

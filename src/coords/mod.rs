@@ -12,7 +12,7 @@ mod start;
 
 pub use configure::{StatedState, configure};
 pub use convert::{States, elements_in, star_centred};
-pub use elements::Elements;
+pub use elements::{Elements, Shape};
 pub use error::CoordsError;
 pub use hierarchy::Orbit;
 pub use restate::restate;

@@ -272,6 +272,13 @@ impl Block {
         (self.planet(place, NEAR2, lane).sqrt(), self.planet(place, FAR2, lane).sqrt())
     }
 
+    /// Takes everything from a block of the same kind and size, in the memory there is.
+    pub fn copy_from(&mut self, other: &Block) {
+        self.orders.clone_from(&other.orders);
+        self.star_terms = other.star_terms;
+        self.data.copy_from_slice(&other.data);
+    }
+
     /// Copies one lane into lane `to` of another block.
     pub fn copy_lane(&self, lane: usize, other: &mut Block, to: usize) {
         debug_assert_eq!(self.data.len() / self.width, other.data.len() / other.width);

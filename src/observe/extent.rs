@@ -1,6 +1,6 @@
 //! Ranges of a, e and i over the moments seen.
 
-use crate::coords::Elements;
+use crate::coords::Shape;
 use crate::num::{Kept, KeptReader};
 
 /// Smallest and largest value seen.
@@ -77,12 +77,12 @@ impl ExtentWatch {
         Some(())
     }
 
-    /// Takes the osculating astrocentric elements of every planet at a moment.
-    pub fn see(&mut self, orbits: &[Elements]) {
-        for (extent, elements) in self.0.iter_mut().zip(orbits) {
-            extent.semi_major_axis_au.take(elements.semi_major_axis_au);
-            extent.eccentricity.take(elements.eccentricity);
-            extent.inclination.take(elements.inclination);
+    /// Takes the osculating orbit of every planet at a moment.
+    pub fn see(&mut self, orbits: &[Shape]) {
+        for (extent, orbit) in self.0.iter_mut().zip(orbits) {
+            extent.semi_major_axis_au.take(orbit.semi_major_axis_au);
+            extent.eccentricity.take(orbit.eccentricity);
+            extent.inclination.take(orbit.inclination);
         }
     }
 

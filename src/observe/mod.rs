@@ -28,7 +28,7 @@ pub use series::{ElementSeries, SeriesError};
 pub use told::{AngleSamples, Arc, ToldAngle, ToldFrom, told_angle};
 pub use watch::{AngleWatch, MOST_ROWS, MotionWatch};
 
-use crate::coords::{Elements, elements_in};
+use crate::coords::{Elements, Shape, elements_in};
 use crate::integrate::State;
 use crate::system::Frame;
 
@@ -43,6 +43,26 @@ pub struct Moment<'a> {
 impl Moment<'_> {
     /// Osculating elements of every body in a frame.
     pub fn elements(&self, frame: Frame) -> Vec<Elements> {
+        let (state, vel) = (self.state, self.velocities());
+        if frame != Frame::Astrocentric {
+            return elements_in(frame, state.star_gm, &state.gm, &state.pos, &vel);
+        }
+        let each = state.gm.iter().zip(&state.pos).zip(&vel);
+        each.map(|((gm, pos), vel)| Elements::from_state(state.star_gm + gm, *pos, *vel)).collect()
+    }
+
+    /// Size, form and tilt of every osculating orbit: those of [`Moment::elements`].
+    pub fn shapes(&self, frame: Frame) -> Vec<Shape> {
+        if frame != Frame::Astrocentric {
+            return self.elements(frame).iter().map(Elements::shape).collect();
+        }
+        let (state, vel) = (self.state, self.velocities());
+        let each = state.gm.iter().zip(&state.pos).zip(&vel);
+        each.map(|((gm, pos), vel)| Shape::from_state(state.star_gm + gm, *pos, *vel)).collect()
+    }
+
+    /// Relative to the star.
+    fn velocities(&self) -> Vec<[f64; 3]> {
         let state = self.state;
         let mut star = [0.0; 3];
         for (gm, vel) in state.gm.iter().zip(&state.vel) {
@@ -51,11 +71,6 @@ impl Moment<'_> {
             }
         }
         let relative = |vel: &[f64; 3]| [0, 1, 2].map(|k| vel[k] - star[k]);
-        let vel: Vec<[f64; 3]> = state.vel.iter().map(relative).collect();
-        if frame != Frame::Astrocentric {
-            return elements_in(frame, state.star_gm, &state.gm, &state.pos, &vel);
-        }
-        let each = state.gm.iter().zip(&state.pos).zip(&vel);
-        each.map(|((gm, pos), vel)| Elements::from_state(state.star_gm + gm, *pos, *vel)).collect()
+        state.vel.iter().map(relative).collect()
     }
 }

@@ -27,6 +27,11 @@ impl LongWatch {
         self.angle = plan.angle.clone().map(|angle| AngleWatch::new(angle, parameters, block_day));
     }
 
+    /// Whether anything is watched.
+    pub fn is_on(&self) -> bool {
+        self.motion.is_some() || self.angle.is_some()
+    }
+
     pub fn see(&mut self, orbits: &[Elements]) {
         if let Some(motion) = &mut self.motion {
             motion.see(orbits);
