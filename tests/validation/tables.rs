@@ -15,6 +15,8 @@ mod classics;
 mod cost_figure;
 mod de406;
 mod fifty;
+mod fifty_losses;
+mod fifty_passages;
 mod giants;
 mod hd_45364;
 mod long_runs;
@@ -31,7 +33,7 @@ mod variational;
 use std::process::ExitCode;
 
 /// Name of a table and what makes it.
-const TABLES: [(&str, fn()); 13] = [
+const TABLES: [(&str, fn()); 14] = [
     ("hd-45364", hd_45364::write),
     ("catalogue", catalogue::write),
     ("variational", variational::write),
@@ -45,6 +47,7 @@ const TABLES: [(&str, fn()); 13] = [
     ("round-off", round_off::write),
     ("schemes-cost", schemes_cost::write),
     ("fifty", fifty::write),
+    ("fifty-losses", fifty_losses::write),
 ];
 
 fn main() -> ExitCode {
