@@ -77,3 +77,31 @@ fn a_target_the_scheme_cannot_meet_goes_to_the_adaptive_engine() {
     assert_eq!((outcome.scheme, outcome.redone), (ADAPTIVE, 3), "{outcome:?}");
     assert!(outcome.energy_error.unwrap() < 1e-12, "{outcome:?}");
 }
+
+#[test]
+fn a_step_is_shortened_by_no_more_than_the_schemes_order_asks() {
+    let configuration = demo("ombra.toml");
+    // The first look that shows more than the target sees an error between once and three times it, so that the step
+    // must become between the root of 1/4 and that of 1/12 of itself: the square root, or the fourth of (8,4).
+    for (scheme, root) in [("(8,4)", 0.25), ("(2,2)", 0.5)] {
+        let free = Plan {
+            scheme,
+            step_day: Some(12.0),
+            energy_error: f64::INFINITY,
+            ..plan(&configuration, 300.0, Encounter::Stop { hill: 1.0 }, 1e-6)
+        };
+        let coarse = assess(&configuration, &free);
+        let asked = Plan { energy_error: coarse.energy_error.unwrap() / 3.0, ..free.clone() };
+        let fine = assess(&configuration, &asked);
+        assert_eq!((fine.scheme, fine.redone), (scheme, 1), "{fine:?}");
+        assert!(fine.energy_error.unwrap() <= asked.energy_error, "{fine:?}");
+        let found = fine.step_day / coarse.step_day;
+        let [least, most] = [12.0f64, 4.0].map(|parts| (1.0 / parts).powf(root));
+        // Shorter by up to a block, so that the span holds a whole number of blocks.
+        let blocks = asked.span_day / (coarse.step_day * most * asked.block_steps as f64);
+        assert!(
+            found <= most && found > least * (1.0 - 1.0 / blocks),
+            "{scheme}: {found} in {least} … {most}"
+        );
+    }
+}

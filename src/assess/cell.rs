@@ -22,9 +22,6 @@ use long_watch::LongWatch;
 /// The name of the adaptive engine where a scheme is named.
 pub const ADAPTIVE: &str = "adaptive";
 
-/// How often a cell that misses the energy target is done again with a smaller step.
-const MOST_REDONE: u32 = 2;
-
 /// A cell between two blocks.
 #[derive(Clone, Debug)]
 pub(super) struct Cell {
@@ -217,23 +214,6 @@ impl Cell {
             return self.passage_error;
         }
         self.conserved.worst_energy.max(self.passage_error)
-    }
-
-    /// What to do about an energy error above the target: smaller steps twice, then the adaptive engine, then give up.
-    ///
-    /// The error of a corrected leapfrog falls with the square of the step; aim at a quarter of the target.
-    fn again(&mut self, error: f64, plan: &Plan) -> Next {
-        if self.adaptive {
-            return Next::End(Box::new(self.assessment(plan, None)));
-        }
-        if self.redone == MOST_REDONE {
-            self.redone += 1;
-            return self.all_adaptive(plan);
-        }
-        let factor = (0.25 * plan.energy_error / error).sqrt().clamp(0.125, 0.5);
-        self.redone += 1;
-        self.set_step(self.step_day * factor, plan);
-        Next::Again
     }
 
     fn lost_at_start(&self, plan: &Plan) -> Option<Loss> {

@@ -126,6 +126,17 @@ impl Scheme {
         &SCHEMES[0]
     }
 
+    /// The generalised orders (n₁, n₂, …) that the name states.
+    pub fn orders(&self) -> Vec<i32> {
+        let words = self.name.trim_matches(['(', ')']).split(',');
+        words.map(|n| n.parse().expect("the names are ours: numbers in brackets")).collect()
+    }
+
+    /// The least power of the step in the energy error, whatever the perturbation's size: the smallest of the orders.
+    pub fn least_order(&self) -> i32 {
+        self.orders().into_iter().fold(i32::MAX, i32::min)
+    }
+
     /// The longest drift between two kicks, in steps.
     pub fn longest_drift(&self) -> f64 {
         let within = self.a[1..self.b.len()].iter().fold(0.0f64, |most, a| most.max(a.abs()));
@@ -146,8 +157,8 @@ mod tests {
     #[test]
     fn every_scheme_has_the_order_it_is_named_for() {
         for s in Scheme::all() {
-            let orders: Vec<i32> =
-                s.name.trim_matches(['(', ')']).split(',').map(|n| n.parse().unwrap()).collect();
+            let orders = s.orders();
+            assert_eq!(s.least_order(), *orders.last().unwrap(), "{}: the last is the least", s.name);
             let n = s.stages();
             let c: Vec<f64> = (0..n).map(|i| s.a[..=i].iter().sum()).collect();
             let t: Vec<f64> = (0..n).map(|i| 0.5 * s.b[i] + s.b[i + 1..].iter().sum::<f64>()).collect();

@@ -20,9 +20,16 @@ and latitude, model minus ephemeris, arcsec; `stated` is that integration's depa
 Spans give the largest departure at any century in them. Start: the ephemeris's node JD 2451536.5, found from the `DE406-NODE-MEANEMB` rows by going back 8.5 days with
 the model that had carried them; `mean-emb-start` has the velocity of the Earth-Moon barycentre times 1 + 1.76252e-9, fitted to DE406, since one body for Earth and Moon lacks their monthly
 wobble: the Earth rows of these models are no independent prediction within 1000 years. `rate-matched-start`: velocities for the potential, the `…-RATEPOT` rows.
-(10,6,4): steps of 4 days, where its own error and rounding are alike small (reference-integrations), J2000 reached by the adaptive integrator.
+(10,6,4): steps of 4 days, where its own error and rounding are alike small (reference-integrations), J2000 reached by the adaptive integrator. What rounding does is measured without a look at the
+ephemeris: eight runs of the model `newton+potential+quad|mean-emb-start|rate-matched-start` whose start velocities differ by some 1e-15 are compared with the adaptive integrator, which has
+the same model and start. The standard deviation is the rounding of one run that goes either way; the mean is the error of the step (Mercury, 6 and 8 days) and rounding that goes one way.
 ";
 
+/// Steps that are weighed, day.
+const STEP_DAY: f64 = 4.0;
+const STEPS_DAY: [f64; 4] = [3.0, 4.0, 6.0, 8.0];
+/// Years at which they are.
+const WEIGHED_AT: [i32; 3] = [-3000, -1000, 1000];
 const NODE_DAY: f64 = -8.5;
 const MEAN_EMB: f64 = 1.762_52e-9;
 pub const BEST: &str = "newton+1pn+quad|mean-emb-start";
@@ -47,6 +54,7 @@ pub type Departures = BTreeMap<i32, Vec<[f64; 2]>>;
 pub fn write() {
     let ephemeris = ephemeris();
     let adaptive: Vec<Departures> = MODELS.par_iter().map(|name| adaptive(name, &ephemeris)).collect();
+    let rounding = rounding_in_words(&ephemeris, &adaptive[7]);
     let symplectic = symplectic(&ephemeris);
     let mut rows = Vec::new();
     for (name, found) in MODELS.iter().zip(&adaptive) {
@@ -60,7 +68,7 @@ pub fn write() {
     let report = Report {
         name: "de406",
         title: "Eight planets against JPL DE406 over 1000 and 3000 years",
-        words: format!("{}\n\n{}", WORDS.trim(), words.join("\n")),
+        words: format!("{}\n\n{}\n{rounding}", WORDS.trim(), words.join("\n")),
         columns: vec![
             "model",
             "engine",
@@ -148,11 +156,53 @@ fn symplectic(ephemeris: &BTreeMap<i32, Vec<[f64; 2]>>) -> Vec<Departures> {
     });
     let scheme = Scheme::named("(10,6,4)").unwrap();
     let years: BTreeSet<i32> = ephemeris.keys().copied().collect();
-    let places = Symplectic { lanes: lanes.into(), scheme, step_day: 4.0 }.places(&years);
+    let places = Symplectic { lanes: lanes.into(), scheme, step_day: STEP_DAY }.places(&years);
     let of = |index: usize| {
         years.iter().map(|year| (*year, departures(&places[&(index, *year)], &ephemeris[year]))).collect()
     };
     (0..POTENTIALS.len()).map(of).collect()
+}
+
+/// What step and rounding do to Mercury and the Earth in eight runs, in words.
+fn rounding_in_words(ephemeris: &BTreeMap<i32, Vec<[f64; 2]>>, exact: &Departures) -> String {
+    let (names, _) = solar_system("DE406");
+    let mut words = String::new();
+    for step_day in STEPS_DAY {
+        let runs: Vec<Departures> =
+            [0, 4].into_par_iter().flat_map(|first| neighbours(ephemeris, step_day, first)).collect();
+        let mut found = Vec::new();
+        for body in [0, EARTH] {
+            for year in WEIGHED_AT {
+                let off: Vec<f64> =
+                    runs.iter().map(|run| run[&year][body][0] - exact[&year][body][0]).collect();
+                let mean = off.iter().sum::<f64>() / off.len() as f64;
+                let squares = off.iter().map(|x| (x - mean).powi(2)).sum::<f64>();
+                let deviation = (squares / (off.len() - 1) as f64).sqrt();
+                found.push(format!("{} {year}: {mean:.5} ± {deviation:.5}", names[body]));
+            }
+        }
+        words += &format!(
+            "* steps of {step_day} days, mean ± deviation of eight, arcsec of longitude: {}.\n",
+            found.join("; ")
+        );
+    }
+    words
+}
+
+/// Four runs of the rate-matched model whose velocities differ in a far digit.
+fn neighbours(ephemeris: &BTreeMap<i32, Vec<[f64; 2]>>, step_day: f64, first: i32) -> Vec<Departures> {
+    let (_, state, _) = start(MATCHED);
+    let lanes = (first..first + 4).map(|k| {
+        let mut near = state.clone();
+        near.vel.iter_mut().flatten().for_each(|v| *v *= 1.0 + f64::from(k) * f64::EPSILON);
+        Lane { state: near, terms: light_terms(true, true) }
+    });
+    let scheme = Scheme::named("(10,6,4)").unwrap();
+    let years = BTreeSet::from(WEIGHED_AT);
+    let places = Symplectic { lanes: lanes.collect(), scheme, step_day }.places(&years);
+    let of =
+        |lane: usize| years.iter().map(|y| (*y, departures(&places[&(lane, *y)], &ephemeris[y]))).collect();
+    (0..4).map(of).collect()
 }
 
 /// What is to be compared: a name for it, and the years of which the largest departure counts.

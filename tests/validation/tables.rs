@@ -18,6 +18,8 @@ mod cost_figure;
 mod criteria;
 mod de406;
 mod fifty;
+mod fifty_losses;
+mod fifty_passages;
 mod giants;
 mod hd_45364;
 mod inspect;
@@ -54,6 +56,7 @@ const TABLES: &[(&str, fn())] = &[
     ("round-off-kepler", round_off_kepler::write),
     ("schemes-cost", schemes_cost::write),
     ("fifty", fifty::write),
+    ("fifty-losses", fifty_losses::write),
     ("overlap", overlap::write),
     ("criteria", criteria::write),
 ];

@@ -8,6 +8,13 @@ use crate::integrate::radau::{Engine, EventKind, RadauError, Stop, TOLERANCE, Wa
 use crate::integrate::{Block, SAMPLE_EVERY, from_map, to_map};
 use crate::verdict::LostHow;
 
+/// How often a cell that misses the energy target is done again with a smaller step.
+const MOST_REDONE: u32 = 2;
+/// The smaller step aims at this share of the target.
+const AIM: f64 = 0.25;
+/// No step is shortened by more than this at once.
+const MOST_SHORTER: f64 = 0.125;
+
 /// A block done, or the end met in it (time since the start of the block).
 enum Passed {
     Through,
@@ -51,6 +58,23 @@ impl Cell {
                 Next::End(Box::new(self.assessment(plan, None)))
             }
         }
+    }
+
+    /// What to do about an energy error above the target: smaller steps twice, then the adaptive engine, then give up.
+    pub(super) fn again(&mut self, error: f64, plan: &Plan) -> Next {
+        if self.adaptive {
+            return Next::End(Box::new(self.assessment(plan, None)));
+        }
+        if self.redone == MOST_REDONE {
+            self.redone += 1;
+            return self.all_adaptive(plan);
+        }
+        self.redone += 1;
+        self.set_step(
+            self.step_day * shorter(error / plan.energy_error, plan.splitting().least_order()),
+            plan,
+        );
+        Next::Again
     }
 
     /// From the start again, every block with the adaptive engine.
@@ -141,5 +165,32 @@ impl Cell {
             self.passages += 1;
             self.passage_error = self.passage_error.max(error);
         }
+    }
+}
+
+/// Factor for the step when the error is `excess` > 1 times the target: error ∝ stepⁿ with n the scheme's least order,
+/// since the terms of higher order fall faster still. n is taken down to a power of two, so that the root is made of
+/// square roots, which have the same bits on every machine.
+fn shorter(excess: f64, order: i32) -> f64 {
+    let mut factor = AIM / excess;
+    for _ in 0..order.ilog2() {
+        factor = factor.sqrt();
+    }
+    factor.max(MOST_SHORTER)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::integrate::Scheme;
+
+    #[test]
+    fn a_step_shrinks_by_the_root_of_the_schemes_least_order() {
+        // Four times the target, a quarter of it aimed at: the error must fall sixteenfold.
+        for (name, factor) in [("(2,2)", 0.25), ("(8,2)", 0.25), ("(8,4)", 0.5), ("(10,6,4)", 0.5)] {
+            let found = shorter(4.0, Scheme::named(name).unwrap().least_order());
+            assert!((found - factor).abs() < 1e-15, "{name}: {found}");
+        }
+        assert_eq!(shorter(f64::INFINITY, 4), MOST_SHORTER);
     }
 }
