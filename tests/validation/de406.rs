@@ -20,7 +20,7 @@ and latitude, model minus ephemeris, arcsec; `stated` is that integration's depa
 Spans give the largest departure at any century in them. Start: the ephemeris's node JD 2451536.5, found from the `DE406-NODE-MEANEMB` rows by going back 8.5 days with
 the model that had carried them; `mean-emb-start` has the velocity of the Earth-Moon barycentre times 1 + 1.76252e-9, fitted to DE406, since one body for Earth and Moon lacks their monthly
 wobble: the Earth rows of these models are no independent prediction within 1000 years. `rate-matched-start`: velocities for the potential, the `…-RATEPOT` rows.
-(10,6,4): steps of 4 days, where its own error and rounding are alike small (reference-integrations), J2000 reached by the adaptive integrator. What rounding does is measured without a look at the
+(10,6,4): steps of 4 days with compensated sums, J2000 reached by the adaptive integrator. What rounding does is measured without a look at the
 ephemeris: eight runs of the model `newton+potential+quad|mean-emb-start|rate-matched-start` whose start velocities differ by some 1e-15 are compared with the adaptive integrator, which has
 the same model and start. The standard deviation is the rounding of one run that goes either way; the mean is the error of the step (Mercury, 6 and 8 days) and rounding that goes one way.
 ";

@@ -43,7 +43,7 @@ impl Symplectic {
         let count = self.lanes.len();
         assert!(2 * count <= WIDTH);
         let steps = (36_525.0 / self.step_day).ceil();
-        let mut block = Block::new(WIDTH, self.lanes[0].state.gm.len());
+        let mut block = Block::new(WIDTH, self.lanes[0].state.gm.len()).compensated();
         for (index, lane) in self.lanes.iter().enumerate() {
             let tangent = Tangent { pos: lane.state.pos.clone(), vel: lane.state.vel.clone() };
             for (slot, way) in [(index, -1.0), (count + index, 1.0)] {

@@ -13,7 +13,7 @@ const WORDS: &str = "
 Source: tests/truth/reference-integrations.csv, independent Gauss-Legendre collocation of order 16 in 80 bits (its own error < 1e-13 au); start: JPL DE406 at J2000,
 Sun and nine bodies. Columns named for bodies: distance from the stated place, au. The row's `limit` is that of the body whose error is the
 largest part of its limit (`worst`). Adaptive integrator: rounding, 1e-13 au per century and 4e-12 au × (centuries)^1.5, for Mercury twice that and
-the measured steady drift of the energy, 4e-19 per step. (10,6,4): rounding, 3 × 2.2e-16 × √substeps × 3π per turn × a, and the scheme's own error: one and a half
+the measured steady drift of the energy, 4e-19 per step. (10,6,4), with compensated sums: rounding as of plain sums, 3 × 2.2e-16 × √substeps × 3π per turn × a, and the scheme's own error: one and a half
 times the body's change on halving the step, for the shortest step half its change from the step before (the order is at least 2).
 ";
 
