@@ -233,11 +233,8 @@ fn orientation(position: &Vector3<f64>, momentum: &Vector3<f64>) -> Orientation 
     let momentum = some_normal(position, momentum);
     let size = momentum.norm();
     let level = momentum.x.hypot(momentum.y);
-    let node = if is_flat(&momentum) {
-        Vector3::x()
-    } else {
-        Vector3::new(-momentum.y / level, momentum.x / level, 0.0)
-    };
+    let flat = level <= FLAT * size;
+    let node = if flat { Vector3::x() } else { Vector3::new(-momentum.y / level, momentum.x / level, 0.0) };
     let ahead = momentum.cross(&node) / size;
     Orientation {
         inclination: inclination(&momentum),
@@ -246,15 +243,12 @@ fn orientation(position: &Vector3<f64>, momentum: &Vector3<f64>) -> Orientation 
     }
 }
 
-fn is_flat(momentum: &Vector3<f64>) -> bool {
-    momentum.x.hypot(momentum.y) <= FLAT * momentum.norm()
-}
-
 fn inclination(momentum: &Vector3<f64>) -> f64 {
-    match is_flat(momentum) {
+    let level = momentum.x.hypot(momentum.y);
+    match level <= FLAT * momentum.norm() {
         true if momentum.z > 0.0 => 0.0,
         true => std::f64::consts::PI,
-        false => momentum.x.hypot(momentum.y).atan2(momentum.z),
+        false => level.atan2(momentum.z),
     }
 }
 

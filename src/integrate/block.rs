@@ -203,7 +203,7 @@ impl Block {
     pub fn state(&self, lane: usize) -> State {
         let (pos, vel) = self.unpacked(POS, VEL, lane);
         let gm: Vec<f64> = (0..self.planets).map(|k| self.planet(k, GM, lane)).collect();
-        State { star_gm: self.get(Global::StarGm, lane), gm: self.placed(lane, &gm), pos, vel }
+        State { star_gm: self.get(Global::StarGm, lane), gm: self.placed(lane, gm), pos, vel }
     }
 
     /// The tangent vector in a lane, as a displacement of [`Block::state`]; multiply by exp([`Block::log_taken`]) for
@@ -221,11 +221,14 @@ impl Block {
             let gm: Vec<f64> = (0..self.planets).map(|k| self.planet(k, GM, lane)).collect();
             (pos, vel) = jacobi::from_jacobi(self.get(Global::StarGm, lane), &gm, &pos, &vel);
         }
-        (self.placed(lane, &pos), self.placed(lane, &vel))
+        (self.placed(lane, pos), self.placed(lane, vel))
     }
 
     /// From the places of the lane to the order of the state.
-    fn placed<T: Copy + Default>(&self, lane: usize, from: &[T]) -> Vec<T> {
+    fn placed<T: Copy + Default>(&self, lane: usize, from: Vec<T>) -> Vec<T> {
+        if self.orders[lane].is_sorted() {
+            return from;
+        }
         let mut out = vec![T::default(); from.len()];
         for (place, planet) in self.orders[lane].iter().enumerate() {
             out[*planet] = from[place];
