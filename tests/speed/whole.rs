@@ -4,8 +4,7 @@
 //! that the work of the kernel is known: steps made (from the run's own records) × planets × the kernel's nanoseconds
 //! per planet-step, measured in the same run between the surveys. Times are processor times, since the
 //! machine may be shared; the clock on the wall is given beside them. `batch` is the same cells in one thread of this
-//! process without journal, tables and figure. The figure costs the same for any grid, which weighs on one as small as
-//! this; so the loss is given with it and without.
+//! process without journal, tables and figure. The figure costs nearly the same for any grid; the loss is given with it and without.
 //!
 //! `cargo bench --bench whole` writes reports/speed/whole.csv; `cargo bench --bench whole -- memory` follows a
 //! million cells for a very short span and writes reports/speed/memory.csv.
@@ -116,11 +115,11 @@ fn batch_seconds(folder: &Path) -> f64 {
 }
 
 fn survey() {
-    const REPEAT: usize = 5;
+    const REPEAT: usize = 3;
     let folder = tempfile::tempdir().expect("a folder");
     std::fs::write(folder.path().join("pair.toml"), SYSTEM).expect("written");
-    std::fs::write(folder.path().join("study.toml"), study("1e4 orbits", [24, 16])).expect("written");
-    let cells = 24.0 * 16.0;
+    std::fs::write(folder.path().join("study.toml"), study("1e4 orbits", [100, 100])).expect("written");
+    let cells = 100.0 * 100.0;
     let mut columns = vec![Vec::new(); 8];
     for turn in 0..REPEAT {
         let mut kernel = vec![kernel_ns()];
