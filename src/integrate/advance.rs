@@ -8,7 +8,7 @@ use super::kick::{kick, kick_keeping};
 use super::megno::Sums;
 use super::slots::Global;
 use super::splitting::Scheme;
-use crate::kepler::{Body, Low, Midway, drift, drift_keeping};
+use crate::kepler::{Body, Low, Midway, drift_keeping};
 use crate::lanes::{Job, Real, groups_at_once, run_one, run_wide};
 
 /// The tangent vector's length is sampled every so many steps; blocks are whole multiples of it.
@@ -289,50 +289,70 @@ impl Job for Sequence<'_> {
     type Output = ();
     #[inline(always)]
     fn run<R: Real>(mut self) {
-        for from in (0..self.block.width()).step_by(R::LANES) {
+        let block = &self.block;
+        let alike = block.coordinates() == Coordinates::Heliocentric && !block.has_star_terms();
+        let several = if R::IN_GROUPS && alike { groups_at_once(block.planets()) } else { 1 };
+        let groups = if block.width().is_multiple_of(several * R::LANES) { several } else { 1 };
+        for from in (0..block.width()).step_by(groups * R::LANES) {
             match self.block.coordinates() {
-                Coordinates::Heliocentric => sequence::<R, false>(&mut self, from),
-                Coordinates::Jacobi => sequence::<R, true>(&mut self, from),
+                Coordinates::Heliocentric => sequence::<R, false>(&mut self, from, groups),
+                Coordinates::Jacobi => sequence::<R, true>(&mut self, from, groups),
             }
         }
     }
 }
 
+/// The groups of lanes from lane `from` on; one only where the star has terms of its own or in Jacobi coordinates.
 #[inline(always)]
-fn sequence<R: Real, const JACOBI: bool>(call: &mut Sequence<'_>, from: usize) {
+fn sequence<R: Real, const JACOBI: bool>(call: &mut Sequence<'_>, from: usize, groups: usize) {
     let Sequence { block, stages } = call;
-    let n = block.planets();
-    let mut bodies = vec![Body::<R>::still(); n];
-    let mut midway = vec![Midway::<R>::blank(); n];
-    let mut pairs = vec![R::splat(0.0); block.pairs()];
+    let (n, pairs_each) = (block.planets(), block.pairs());
+    let mut bodies = vec![Body::<R>::still(); groups * n];
+    let mut midway = vec![Midway::<R>::blank(); groups * n];
+    let mut pairs = vec![R::splat(0.0); groups * pairs_each];
     let mut satellites = vec![R::splat(0.0); n];
     let mut relative = vec![Relative::<R>::new(); if JACOBI { n } else { 0 }];
-    read(block, from, &mut bodies, &mut pairs);
+    let first = Own::<R>::read(block, from, 0.0);
+    let mut own = vec![first; groups];
+    let mut active = vec![first.active; groups];
+    for g in 0..groups {
+        let from = from + g * R::LANES;
+        own[g] = Own::read(block, from, 0.0);
+        active[g] = own[g].active;
+        read(block, from, of_group(&mut bodies, g, n), of_group(&mut pairs, g, pairs_each));
+    }
     let beside = read_beside(block, from, &mut satellites);
     let pulling = block.pulling();
-    let star_gm: R = global(block, from, Global::StarGm);
-    let h: R = global(block, from, Global::Step);
-    let active = R::splat(0.5).lt(global(block, from, Global::Active));
+    let mut h = vec![first.h; groups];
     for (a, b) in *stages {
-        drift::<R, false, false>(&mut bodies, &mut midway, h * R::splat(*a), active);
-        let length = h * R::splat(*b);
-        if JACOBI {
-            jacobi::kick::<R, false, true, false>(
-                &mut bodies,
-                &mut [],
-                &mut relative,
-                &mut pairs,
-                star_gm,
-                &beside,
-                length,
-                h,
-            );
-        } else {
-            kick::<R, false, false, true>(&mut bodies, pulling, &mut pairs, star_gm, &beside, length, h);
+        for (h, own) in h.iter_mut().zip(&own) {
+            *h = own.h * R::splat(*a);
+        }
+        drift_keeping::<R, false, false, false>(&mut bodies, &mut [], &mut midway, &h, &active);
+        for (g, own) in own.iter().enumerate() {
+            let (bodies, pairs) = (of_group(&mut bodies, g, n), of_group(&mut pairs, g, pairs_each));
+            let (impulse, star_gm) = (own.h * R::splat(*b), own.star_gm);
+            if JACOBI {
+                let low = &mut [];
+                jacobi::kick::<R, false, true, false>(
+                    bodies,
+                    low,
+                    &mut relative,
+                    pairs,
+                    star_gm,
+                    &beside,
+                    impulse,
+                    own.h,
+                );
+            } else {
+                kick::<R, false, false, true>(bodies, pulling, pairs, star_gm, &beside, impulse, own.h);
+            }
         }
     }
     // What was met on the way to other times is not part of the motion: the watch is not written.
-    write(block, from, &bodies);
+    for g in 0..groups {
+        write(block, from + g * R::LANES, of_group(&mut bodies, g, n));
+    }
 }
 
 /// Runs a [`Sequence`] at the width of its block.
