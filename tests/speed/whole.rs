@@ -120,7 +120,7 @@ fn survey() {
     std::fs::write(folder.path().join("pair.toml"), SYSTEM).expect("written");
     std::fs::write(folder.path().join("study.toml"), study("1e4 orbits", [100, 100])).expect("written");
     let cells = 100.0 * 100.0;
-    let mut columns = vec![Vec::new(); 8];
+    let mut columns = vec![Vec::new(); 10];
     for turn in 0..REPEAT {
         let mut kernel = vec![kernel_ns()];
         let into = |threads: usize| format!("run-{turn}-{threads}");
@@ -135,6 +135,7 @@ fn survey() {
             folder.path(),
             &["survey", "study.toml", "--quiet", "--threads", "2", "--into", &into(2)],
         );
+        let wall_pair = two_at_once(folder.path(), turn);
         let (draw, _, _) = run_program(folder.path(), &["draw", &into(1)]);
         let stored = read_run(&folder.path().join(into(1))).expect("a finished run");
         assert_eq!(stored.records.len() as f64, cells);
@@ -149,6 +150,8 @@ fn survey() {
             100.0 * (1.0 - in_kernel / (one - draw)),
             draw,
             wall_one / wall_two,
+            2.0 * wall_one / wall_pair,
+            two / one,
         ]) {
             column.push(value);
         }
@@ -165,6 +168,8 @@ fn survey() {
         "survey_lost_percent_but_for_drawing",
         "draw_processor_seconds",
         "wall_one_thread_over_two",
+        "wall_two_programs_one_after_the_other_over_at_once",
+        "processor_time_two_threads_over_one",
     ];
     let rows: Vec<String> = names
         .iter()
@@ -173,6 +178,26 @@ fn survey() {
         .collect();
     rows.iter().for_each(|row| println!("{row}"));
     write_table("whole", "quantity,median,spread_percent", &rows);
+}
+
+/// Seconds on the wall of two programs of one thread each at the same time: what the machine's processors allow.
+fn two_at_once(folder: &Path, turn: usize) -> f64 {
+    let start = Instant::now();
+    let mut both: Vec<_> = ["left", "right"]
+        .iter()
+        .map(|side| {
+            Command::new(env!("CARGO_BIN_EXE_abide"))
+                .args(["survey", "study.toml", "--quiet", "--threads", "1", "--into"])
+                .arg(format!("{side}-{turn}"))
+                .current_dir(folder)
+                .spawn()
+                .expect("the program starts")
+        })
+        .collect();
+    for child in &mut both {
+        assert!(child.wait().expect("a child can be waited for").success());
+    }
+    start.elapsed().as_secs_f64()
 }
 
 fn memory() {
