@@ -172,3 +172,14 @@ fn it_goes_away_cleanly_and_refuses_what_makes_no_sense() {
     let left: Vec<_> = std::fs::read_dir(desk.path("")).unwrap().collect();
     assert_eq!(left.len(), 2, "no file is left behind");
 }
+
+/// Over 3000 orbits the apsides of b and c are seen to librate in one transit rule, and nothing is known of them in the other:
+/// that is no difference between the readings. Of the resonant angle both are known.
+#[test]
+fn what_the_span_does_not_tell_is_not_called_a_difference() {
+    let desk = Desk::new().file("a.toml", include_str!("../systems/lanthorn.toml"));
+    let done = desk.abide("inspect").args(["a.toml", "--readings", "--span", "3000 orbits"]).run().done();
+    assert!(done.stdout.contains("turns         ?"), "{}", done.stdout);
+    assert!(done.stdout.contains("A librates in 1, 3, 5 and not in 2, 4, 6."), "{}", done.stdout);
+    assert!(!done.stdout.contains("B librates in"), "{}", done.stdout);
+}

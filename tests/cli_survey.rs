@@ -232,3 +232,15 @@ fn an_impossible_system_is_refused_and_an_impossible_cell_is_recorded() {
     let last = table.lines().last().unwrap();
     assert!(last.starts_with("62,") && last.contains("lost") && last.contains("star"), "{last}");
 }
+
+/// Every table that a run leaves is named.
+#[test]
+fn margins_of_criteria_are_named_among_what_was_written() {
+    let map = format!("{PAIR_MAP}[figure]\ncriteria = [\"hill\"]\n");
+    let desk = Desk::new().file("pair.toml", PAIR).file("map.toml", &map);
+    let done = desk.abide("survey").args(["map.toml", "--into", "out"]).run().done();
+    assert!(done.stderr.contains("wrote out/criteria.ecsv"), "{}", done.stderr);
+    assert!(desk.text("out/criteria.ecsv").contains("name: \"hill\""));
+    let without = Desk::with_pair().abide("survey").args(["map.toml", "--into", "out"]).run().done();
+    assert!(!without.stderr.contains("criteria.ecsv"), "{}", without.stderr);
+}

@@ -13,7 +13,7 @@ use figure_world::{SPAN_DAY, assessment, axis, plan, records, study, system};
 const WIDTHS: [f64; 4] = [60.0, 88.0, 130.0, 180.0];
 
 fn drawn(study: &Study, records: &[Record], column: &str) -> Figure {
-    let caption = report::caption(study, &system(), &plan(), records);
+    let caption = report::caption(study, &system(), &plan(), records, column);
     map(&MapInput {
         study,
         system: &system(),
@@ -87,7 +87,7 @@ fn figures() -> Vec<(String, Figure)> {
     three.planets.push(outer);
     let mut wide = study(120, 90);
     wide.axes[0] = axis(1, Key::Period, (14.0, 25.0, 120));
-    let caption = report::caption(&wide, &three, &plan(), &found);
+    let caption = report::caption(&wide, &three, &plan(), &found, "megno");
     let input = MapInput {
         study: &wide,
         system: &three,
@@ -387,4 +387,20 @@ fn the_scale_rises_evenly_in_lightness() {
     assert!(steps.iter().all(|s| *s > 0.4 * mean && *s < 2.0 * mean), "{steps:?}");
     assert_eq!(scale.colour(f64::NAN), None);
     assert_eq!(scale.colour(-3.0), scale.colour(0.0));
+}
+
+/// The words of the angle that a study watches stand under a map of that angle only.
+#[test]
+fn the_angle_is_told_where_it_is_shown() {
+    let mut watched = plan();
+    watched.angle = Some(abide::observe::ResonantAngle::new(vec![-2, 3], vec![-1, 0]).unwrap());
+    let words = |column: &str| {
+        report::caption(&study(3, 3), &system(), &watched, &records(&study(3, 3)), column).join(" ")
+    };
+    assert!(
+        words("angle.amplitude").contains("The angle is 3λ_c − 2λ_b − ϖ_b."),
+        "{}",
+        words("angle.amplitude")
+    );
+    assert!(!words("megno").contains("The angle"), "{}", words("megno"));
 }

@@ -233,8 +233,8 @@ fn top_limits_and_engine() {
     check(&changed("1e5 orbits", "1e5 orbts"), Fault::UnknownUnit, 3, 13, &["orbits, s, min", "\"orbits\"?"]);
     check(&changed("1e5 orbits", "-1 orbits"), Fault::OutOfRange, 3, 9, &["above 0"]);
     check(&changed("\"megno\", ", "\"megna\", "), Fault::UnknownWord, 4, 12, &["did you mean \"megno\"?"]);
-    check(&changed("\"extent\"]", "\"megno\"]"), Fault::Conflict, 4, 21, &["twice"]);
-    check(&changed("[\"megno\", \"extent\"]", "[]"), Fault::MissingKey, 4, 11, &["at least one"]);
+    check(&changed("\"extent\"]", "\"megno\"]"), Fault::Twice, 4, 21, &["twice"]);
+    check(&changed("[\"megno\", \"extent\"]", "[]"), Fault::Count, 4, 11, &["at least one"]);
     check(&changed("\"100 au\"", "\"100 d\""), Fault::WrongUnit, 17, 15, &["a length"]);
     check(&changed("\"100 au\"", "\"0 au\""), Fault::OutOfRange, 17, 11, &["above 0"]);
     check(&changed("\"2.5 hill\"", "\"2.5\""), Fault::MissingUnit, 18, 14, &["1 hill"]);
@@ -360,6 +360,7 @@ fn wrong_angles() {
     wrong("99999999999 c.mean_longitude", Fault::OutOfRange, 10, &["1 to 1000"]);
     wrong("", Fault::BadAngle, 10, &["finish"]);
     wrong("nonsense", Fault::BadAngle, 10, &["body.key"]);
+    wrong("1.5 c.mean_longitude - 1.5 b.mean_longitude", Fault::BadAngle, 10, &["whole numbers; multiply"]);
     check(&with_angle("3"), Fault::WrongType, 4, 9, &["in quotes"]);
 }
 

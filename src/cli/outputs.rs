@@ -66,14 +66,15 @@ impl Finished<'_> {
     }
 
     fn map(&self) -> Result<Vec<u8>, CliError> {
-        let caption = report::caption(self.study, self.system, self.plan, self.records);
         let measured = self.records.iter().any(|record| record.assessment.megno.is_some());
+        let column = if measured { "megno" } else { "verdict" };
+        let caption = report::caption(self.study, self.system, self.plan, self.records, column);
         let input = MapInput {
             study: self.study,
             system: self.system,
             records: self.records,
             reach: 0,
-            column: if measured { "megno" } else { "verdict" },
+            column,
             span_day: self.plan.span_day,
             caption: &caption,
         };

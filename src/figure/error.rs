@@ -3,7 +3,7 @@
 /// Why a figure could not be made.
 #[derive(Debug, thiserror::Error)]
 pub enum FigureError {
-    #[error("there is no column {found:?} to draw; this run has: {}", known.join(", "))]
+    #[error("there is no column {found:?} with numbers to draw; this run has: {}", known.join(", "))]
     UnknownColumn { found: String, known: Vec<String> },
     #[error("a map has one or two axes, but the study has {found}")]
     Axes { found: usize },

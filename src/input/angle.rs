@@ -51,6 +51,8 @@ fn terms(text: &str, system: &System) -> Result<AngleTerms, Fail> {
             if pending.count.replace(count.ok_or_else(refuse)?).is_some() {
                 return Err(malformed(at, word, "write one number before each angle"));
             }
+        } else if word.parse::<f64>().is_ok() {
+            return Err(malformed(at, word, "coefficients are whole numbers; multiply all of them"));
         } else {
             let (index, key) = place(word, &at, system)?;
             let coefficient = pending.sign.unwrap_or(1) * pending.count.unwrap_or(1);

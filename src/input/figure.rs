@@ -19,14 +19,14 @@ pub(crate) fn criteria(source: &Source, top: &RawTable) -> Result<Vec<Criterion>
         let one = Entry { value: RawValue::Text(text.to_string()), value_at: at, ..entry.clone() };
         let criterion = one.choice(source, about, &words)?;
         if found.contains(&criterion) {
-            let complaint = Complaint::new(Fault::Conflict, format!("\"{text}\" twice"));
+            let complaint = Complaint::new(Fault::Twice, format!("\"{text}\" twice"));
             let complaint = complaint.allowed("each criterion once");
             return Err(one.refuse(source, about, complaint.advice("take one of them out")));
         }
         found.push(criterion);
     }
     if found.len() > Criterion::MOST_ON_A_MAP {
-        let complaint = Complaint::new(Fault::Conflict, format!("{} criteria", found.len()));
+        let complaint = Complaint::new(Fault::Count, format!("{} criteria", found.len()));
         let complaint =
             complaint.allowed(format!("up to {}, which can be told apart", Criterion::MOST_ON_A_MAP));
         let advice =

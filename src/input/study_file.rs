@@ -159,14 +159,14 @@ fn measure(source: &Source, top: &RawTable) -> Result<Vec<Measure>, InputError> 
         let measure = one.choice(source, "", &MEASURES)?;
         if measures.contains(&measure) {
             let complaint =
-                Complaint::new(Fault::Conflict, format!("\"{text}\" twice")).allowed("each measure once");
+                Complaint::new(Fault::Twice, format!("\"{text}\" twice")).allowed("each measure once");
             return Err(one.refuse(source, "", complaint.advice("take one of them out")));
         }
         measures.push(measure);
     }
     if measures.is_empty() {
-        let complaint = Complaint::new(Fault::MissingKey, "an empty list")
-            .allowed("megno, lyapunov, extent, frequency_drift");
+        let complaint =
+            Complaint::new(Fault::Count, "an empty list").allowed("megno, lyapunov, extent, frequency_drift");
         return Err(entry.refuse(
             source,
             "",

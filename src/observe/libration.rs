@@ -5,8 +5,8 @@ use std::f64::consts::{PI, TAU};
 
 /// Fewest libration periods that the span must hold.
 const FEWEST_PERIODS: f64 = 2.0;
-/// A drift over the span, against the half-range of the angle, beyond which it may be leaving.
-const LEAVING: f64 = 0.5;
+/// A drift over the span, against the amplitude of the swing, beyond which the angle may be leaving.
+pub(super) const LEAVING: f64 = 0.5;
 /// A step between samples larger than this may be a turn in the other direction.
 pub(super) const LARGEST_STEP: f64 = 0.8 * PI;
 /// Share of such steps beyond which the angle cannot be followed from sample to sample.
@@ -63,11 +63,11 @@ fn unwrapped(angles: &[f64]) -> Option<Vec<f64>> {
 
 /// How an angle moves, from its values (rad, any turn) at even times.
 ///
-/// The angle is unwrapped. A range of a turn or more with a net motion of at least one turn is circulation; without net
-/// motion it alternates. A range below a turn is libration only if the angle goes through its mean there and back in at
+/// The angle is unwrapped. A range of a turn or more with a net motion of at least one turn is circulation; with a net motion
+/// of less than half the range it alternates, between them the span does not tell. A range below a turn is libration only if the angle goes through its mean there and back in at
 /// least two whole periods of its strongest term and through its mean in each third of the span, and its mean does not
-/// drift by more than half of its half-range over the
-/// span (straight line through the angle less that term); else the span does not tell.
+/// drift by more than half of that term's amplitude over the span (straight line through the angle less that term); else
+/// the span does not tell.
 /// Errors: [`FourierError`] for too few samples or values that are not finite.
 pub fn angle_motion(angles: &[f64], step_day: f64) -> Result<AngleMotion, FourierError> {
     if let Some(index) = angles.iter().position(|angle| !angle.is_finite()) {
@@ -95,11 +95,14 @@ pub(super) fn unwrapped_motion(
     let net = angle.last().zip(angle.first()).map_or(0.0, |(last, first)| last - first);
     let span_day = step_day * (angle.len() - 1) as f64;
     // Libration with circulation between: the way to and fro is longer than the way gained.
-    if net.abs() >= TAU && net.abs() >= 0.5 * range {
-        Ok(AngleMotion::Circulates { rate_rad_day: net / span_day })
+    Ok(if net.abs() < 0.5 * range {
+        AngleMotion::Alternates { turns: range / TAU }
+    } else if net.abs() >= TAU {
+        AngleMotion::Circulates { rate_rad_day: net / span_day }
     } else {
-        Ok(AngleMotion::Alternates { turns: range / TAU })
-    }
+        // One way, and not yet around: fast terms alone make the range a turn.
+        AngleMotion::CannotTell(WhyNot::ShortSpan { range })
+    })
 }
 
 fn within_a_turn(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<AngleMotion, FourierError> {
@@ -123,7 +126,7 @@ fn within_a_turn(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<AngleMo
         .map(|(k, x)| x - main.amplitude * (main.frequency * step_day * k as f64 + main.phase).cos())
         .collect();
     let drift = slope(&rest) * (rest.len() - 1) as f64;
-    if drift.abs() > LEAVING * 0.5 * range {
+    if drift.abs() > LEAVING * main.amplitude {
         return Ok(AngleMotion::CannotTell(WhyNot::Drifting { half_range: 0.5 * range, drift }));
     }
     Ok(AngleMotion::Librates(Libration {
@@ -147,7 +150,7 @@ fn centre(angle: &[f64]) -> f64 {
 }
 
 /// Slope of the straight line through values at 0, 1, 2 …
-fn slope(values: &[f64]) -> f64 {
+pub(super) fn slope(values: &[f64]) -> f64 {
     let middle = 0.5 * (values.len() as f64 - 1.0);
     let (mut up, mut across) = (0.0, 0.0);
     for (k, value) in values.iter().enumerate() {
@@ -204,9 +207,11 @@ mod tests {
                 // Sticky: slow near 0, fast elsewhere.
                 let motion = told(1000, |t| rate * t + 0.9 * (rate * t + f64::from(phase)).sin());
                 assert!(matches!(motion, AngleMotion::CannotTell(_)), "{turns} {phase}: {motion:?}");
-                // With fast terms on top, as synodic ones are.
-                let motion = told(1000, |t| rate * t + 0.1 * (0.9 * t + f64::from(phase)).sin());
-                assert!(matches!(motion, AngleMotion::CannotTell(_)), "{turns} {phase}: {motion:?}");
+                // With fast terms on top, as synodic ones are, and stronger ones, as of nearly circular orbits.
+                for size in [0.1, 0.5] {
+                    let motion = told(1000, |t| rate * t + size * (0.9 * t + f64::from(phase)).sin());
+                    assert!(matches!(motion, AngleMotion::CannotTell(_)), "{turns} {phase}: {motion:?}");
+                }
             }
         }
     }

@@ -1,6 +1,6 @@
 //! How an angle moves, told from samples over the whole span and from dense windows at its ends together.
 
-use super::libration::{AngleMotion, Libration, WhyNot, angle_motion};
+use super::libration::{AngleMotion, LEAVING, Libration, WhyNot, angle_motion, slope};
 use crate::num::{Complex, FourierError, wrap_half_turn, wrap_turn};
 use std::f64::consts::{PI, TAU};
 
@@ -66,8 +66,8 @@ pub struct AngleSamples<'a> {
 /// change between two of them, as the windows show it (or `rate_rad_day`, a mean rate of circulation expected from the
 /// mean motions, where there are no windows), stays below 0.6 π, and a libration only while the angle does not swing
 /// to and fro between two samples. Else the windows tell circulation, and they tell libration if the
-/// angle is confined besides: all samples of the whole span leave 20 deg of the circle free. One that librates in the
-/// windows and is not confined alternates. Errors: [`FourierError`].
+/// angle is confined besides: all samples of the whole span leave 20 deg of the circle free, and do not drift over the span
+/// by more than half of the main amplitude. One that librates in the windows and is not confined alternates. Errors: [`FourierError`].
 pub fn told_angle(
     whole: AngleSamples<'_>,
     windows: &[AngleSamples<'_>],
@@ -93,7 +93,7 @@ pub fn told_angle(
         .iter()
         .map(|window| angle_motion(window.values, window.step_day))
         .collect::<Result<Vec<_>, _>>()?;
-    Ok(ToldAngle { motion: joined(&seen, arc), from: ToldFrom::Windows, arc })
+    Ok(ToldAngle { motion: joined(&seen, arc, whole.values), from: ToldFrom::Windows, arc })
 }
 
 fn larger(most: Option<f64>, next: f64) -> Option<f64> {
@@ -101,7 +101,7 @@ fn larger(most: Option<f64>, next: f64) -> Option<f64> {
 }
 
 /// What windows and confinement say together.
-fn joined(seen: &[AngleMotion], arc: Option<Arc>) -> AngleMotion {
+fn joined(seen: &[AngleMotion], arc: Option<Arc>, whole: &[f64]) -> AngleMotion {
     let circulates = |motion: &AngleMotion| matches!(motion, AngleMotion::Circulates { .. });
     if seen.iter().all(circulates) {
         let rates: Vec<f64> = seen
@@ -127,12 +127,23 @@ fn joined(seen: &[AngleMotion], arc: Option<Arc>) -> AngleMotion {
     });
     match (first, arc) {
         (Some(libration), Some(arc)) => {
+            let drift = drift_within(arc, whole);
+            if drift.abs() > LEAVING * libration.main_amplitude {
+                return AngleMotion::CannotTell(WhyNot::Drifting { half_range: arc.half_width, drift });
+            }
             AngleMotion::Librates(Libration { centre: arc.middle, amplitude: arc.half_width, ..libration })
         }
         // In the windows it librates, over the span it is everywhere.
         (Some(_), None) => AngleMotion::Alternates { turns: 1.0 },
         (None, _) => AngleMotion::CannotTell(WhyNot::SparseSamples),
     }
+}
+
+/// How far an angle that stays within an arc moves over the span (straight line through its samples), rad: a window is too
+/// short to show slow circulation under a fast swing, and the span may not hold a turn of it.
+fn drift_within(arc: Arc, whole: &[f64]) -> f64 {
+    let about: Vec<f64> = whole.iter().map(|value| wrap_half_turn(value - arc.middle)).collect();
+    slope(&about) * (about.len().max(1) - 1) as f64
 }
 
 /// Whether a window shows an angle to swing to and fro between two samples of the whole span: over some shorter time it
@@ -246,6 +257,18 @@ mod tests {
             away + 0.9 * (t / 12.3).sin()
         });
         assert!(matches!(found.motion, AngleMotion::Alternates { .. }), "{found:?}");
+    }
+
+    /// A pericentre that circulates slowly, less than a turn in the span, with a fast forced swing on top: both windows see the
+    /// swing only, and all samples stay within an arc.
+    #[test]
+    fn slow_circulation_under_a_fast_swing_is_not_libration() {
+        for drift in [0.4, 0.8, -1.5, 3.0] {
+            let found = told(|t| 1.0 + drift * t / 200_000.0 + 0.5 * (TAU * t / 77.0).sin());
+            assert!(found.libration().is_none(), "{drift}: {found:?}");
+        }
+        let found = told(|t| 1.0 + 0.5 * (TAU * t / 77.0).sin());
+        assert!(found.libration().is_some(), "{found:?}");
     }
 
     /// Too slow for the windows and too fast for the whole span: the arc is all that is known.

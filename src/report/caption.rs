@@ -7,7 +7,7 @@ use crate::survey::Record;
 use crate::system::{Study, System};
 
 /// Sentences for the foot of a figure, one per topic; the figure breaks them into lines.
-pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) -> Vec<String> {
+pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record], column: &str) -> Vec<String> {
     let errors = records.iter().filter_map(|r| r.assessment.energy_error);
     let energy = Spread::of(errors).map_or_else(
         || "energy error not measured".to_owned(),
@@ -39,7 +39,8 @@ pub fn caption(study: &Study, system: &System, plan: &Plan, records: &[Record]) 
     };
     let early = words::early_end_words(plan).map_or_else(String::new, |w| format!(" Chaotic cells: {w}."));
     let names: Vec<String> = system.orbiting().map(|body| body.name.clone()).collect();
-    let angle = plan.angle.as_ref().map(|angle| format!(" The angle is {}.", angle.words(&names)));
+    let angle = plan.angle.as_ref().filter(|_| column.starts_with("angle."));
+    let angle = angle.map(|angle| format!(" The angle is {}.", angle.words(&names)));
     vec![
         followed + &early + angle.as_deref().unwrap_or_default(),
         format!(

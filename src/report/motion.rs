@@ -51,9 +51,10 @@ fn finite(value: f64) -> Entry {
     Some(value).filter(|value| value.is_finite()).into()
 }
 
-/// Whether a frequency makes no whole turn in the span, and so is little more than a guess.
+/// Whether a frequency makes fewer than two turns in the span, and so is little more than a guess: with Hann's window a
+/// line is two resolution elements wide, and nearer to 0 it is not told from what stands still.
 pub fn is_unturned(analysis: &Analysis, rad_day: f64) -> bool {
-    rad_day.abs() * analysis.sampling.span_day < TAU
+    rad_day.abs() * analysis.sampling.span_day < 2.0 * TAU
 }
 
 /// How far a fundamental frequency is known: whole turns per sample may be missing from slow ones.
@@ -92,7 +93,7 @@ pub fn frequencies_table(input: &MotionInput<'_>) -> Table {
             drift.map(|d| d.second_rad_day / DEGREE_YEAR).into(),
             drift.map(|d| d.log10()).into(),
             if is_unturned(analysis, f.rad_day) {
-                "its period is longer than the span".into()
+                "fewer than two turns in the span".into()
             } else {
                 Entry::Absent
             },

@@ -57,7 +57,7 @@ fn draw(file: &StudyFile, records: &[Record], asked: Option<&str>) -> Result<(Fi
     let plan = survey::plan_of(study, system, &nominal);
     let measured = records.iter().any(|record| record.assessment.megno.is_some());
     let column = asked.unwrap_or(if measured { FIRST_CHOICE } else { SECOND_CHOICE });
-    let caption = report::caption(study, system, &plan, records);
+    let caption = report::caption(study, system, &plan, records, column);
     // Cells are integrated coarse grid first, so that a run that is not complete has a coarse map.
     let reach = COARSEST / 2;
     let map = MapInput { study, system, records, reach, column, span_day: plan.span_day, caption: &caption };

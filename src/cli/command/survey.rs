@@ -11,7 +11,7 @@ use crate::assess::{self, BatchWork, Plan};
 use crate::cli::CliError;
 use crate::cli::args::SurveyArgs;
 use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
-use crate::cli::outputs::Finished;
+use crate::cli::outputs::{Finished, MARGINS};
 use crate::cli::progress::Progress;
 use crate::cli::unfit::unfit;
 use crate::cli::vary;
@@ -143,6 +143,9 @@ impl Wish {
         let finished = Finished { study, system, plan: &self.plan, criteria, records: &records };
         for name in names {
             finished.write(&self.folder, name)?;
+            if name == "map.png" && !criteria.is_empty() {
+                self.say(format_args!("wrote {}", self.folder.join(MARGINS).display()));
+            }
             self.say(format_args!("wrote {}", self.folder.join(name).display()));
         }
         if self.json {

@@ -87,7 +87,7 @@ fn frequencies(analysis: &Analysis) -> Vec<String> {
         ));
     }
     if analysis.fundamentals.iter().any(|f| is_unturned(analysis, f.rad_day)) {
-        words.push_str(". * longer than the span: little more than a guess");
+        words.push_str(". * fewer than two turns in the span: little more than a guess");
     }
     if let Some(relation) = &analysis.relation {
         words.push_str(&format!(". Locked: {} = 0", relation.words(&analysis.fundamentals)));

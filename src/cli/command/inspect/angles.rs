@@ -105,7 +105,8 @@ fn in_common(first: &AnglesView, views: &[AnglesView]) -> String {
         words.push_str(", which is 180 deg from the stated one, the star's");
     }
     let when = first.epoch_jd.map_or("time 0".to_string(), |epoch| format!("the epoch, JD {epoch}"));
-    words.push_str(&format!("; mean anomalies are those of the {} orbits at {when}", first.frame));
+    let frame = if first.frame == "jacobi" { "Jacobi" } else { first.frame };
+    words.push_str(&format!("; mean anomalies are those of the {frame} orbits at {when}"));
     let from = |key: Key| views.iter().any(|view| view.phase_from == Some(key.word()));
     if from(Key::MeanLongitude) {
         words.push_str("; a mean longitude is node + argument, as stated, + mean anomaly");

@@ -161,7 +161,7 @@ fn keys(view: &View) -> Vec<String> {
         let words = match view.angles_looked_at {
             0 => "No resonant angle was looked at: there is none, or no reading lived through the span"
                 .to_string(),
-            count => format!("No angle librates in any reading; looked at were {count}"),
+            count => format!("No angle librates in any reading, of {count} looked at"),
         };
         return vec![wrapped("  ", &words), engine];
     }
@@ -242,9 +242,13 @@ fn conclusion(view: &View) -> String {
     };
     let locked = view.telling_angles.iter().enumerate().filter_map(|(index, _)| {
         let (mut yes, mut no) = (Vec::new(), Vec::new());
-        for reading in view.readings.iter().filter(|reading| !reading.telling.is_empty()) {
-            let librates = matches!(reading.telling.get(index), Some(StateView::Librates { .. }));
-            if librates { yes.push(reading.number) } else { no.push(reading.number) }
+        for reading in &view.readings {
+            match reading.telling.get(index) {
+                Some(StateView::Librates { .. }) => yes.push(reading.number),
+                Some(StateView::Circulates { .. } | StateView::Alternates { .. }) => no.push(reading.number),
+                // What the span does not tell is no difference between readings.
+                Some(StateView::CannotTell { .. }) | None => {}
+            }
         }
         (!yes.is_empty() && !no.is_empty())
             .then(|| format!(" {} librates in {} and not in {}.", letter(index), list(&yes), list(&no)))
