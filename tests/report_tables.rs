@@ -324,13 +324,13 @@ fn what_is_held_goes_body_by_body() {
 fn the_caption_says_when_cells_are_missing() {
     let study = study(40, 30);
     let mut found = records(&study);
-    let whole = report::caption(&study, &system(), &plan(), &found).join(" ");
+    let whole = report::caption(&study, &system(), &plan(), &found, "megno").join(" ");
     assert!(
         whole.contains("1200 cells") && whole.contains("10⁴ inner orbits") && !whole.contains("ncomplete"),
         "{whole}"
     );
     found.truncate(7);
-    let part = report::caption(&study, &system(), &plan(), &found).join(" ");
+    let part = report::caption(&study, &system(), &plan(), &found, "megno").join(" ");
     assert!(part.contains("Incomplete: 7 of 1200 cells"), "{part}");
     assert!(
         part.contains("step 0.42 d")
@@ -364,7 +364,8 @@ fn second_attempts_are_counted_by_what_they_ended_with() {
         (&summary.json()["redone_with_smaller_steps"], &summary.json()["adaptive"]),
         (&2.into(), &2.into())
     );
-    let caption = |records: &[Record]| report::caption(&study, &system(), &plan(), records).join(" ");
+    let caption =
+        |records: &[Record]| report::caption(&study, &system(), &plan(), records, "megno").join(" ");
     let all = caption(&records);
     assert!(all.contains("; 2 cells redone with smaller steps, 2 cells by the adaptive engine;"), "{all}");
     assert!(all.contains("Scheme (2,2) with corrector in"), "{all}");

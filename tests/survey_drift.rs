@@ -273,7 +273,8 @@ fn a_survey_carries_drift_and_libration() {
     let file = abide::input::read_study(desk.path("map.toml")).unwrap();
     let nominal = configure(&file.system.system).unwrap();
     let plan = Plan::for_study(&file.study, &nominal, &[]);
-    let caption = abide::report::caption(&file.study, &file.system.system, &plan, &[], "angle.amplitude").join(" ");
+    let caption =
+        abide::report::caption(&file.study, &file.system.system, &plan, &[], "angle.amplitude").join(" ");
     assert!(caption.contains("The angle is 2λ_b + ϖ_b − 3λ_c."), "{caption}");
     for column in ["angle.amplitude", "angle.centre", "frequency_drift", "c.frequency_drift", "b.e_range"] {
         let picture = format!("map-{column}.png");

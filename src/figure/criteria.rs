@@ -106,7 +106,6 @@ pub fn add_criteria(
         let mut border = border(study, system, *criterion);
         words.extend(silence_words(&border));
         if border.parts.is_empty() {
-            words.push(nowhere_words(&border));
             continue;
         }
         if study.axes.len() == 1 {
@@ -139,27 +138,70 @@ fn upright(parts: &mut [Vec<(f64, f64)>], (from, to): (f64, f64)) {
     }
 }
 
-/// Where a criterion says nothing, and why.
+/// Where a criterion has no border, and why; none where its curve lacks nothing.
 fn silence_words(border: &Border) -> Option<String> {
+    let name = name(border.criterion);
+    let answer = if border.quiet == 0 { "on its other side" } else { "on its quiet side" };
     if border.said == border.asked {
-        return None;
+        return border.parts.is_empty().then(|| format!("No curve ({name}): all of the map is {answer}."));
     }
     let needs: Vec<String> =
         border.silent.iter().map(|(what, allowed)| format!("{what}: {allowed}")).collect();
-    let share = 100.0 * (border.asked - border.said) as f64 / border.asked as f64;
-    let share = if share < 1.0 { "under 1".to_owned() } else { format!("{share:.0}") };
     let needs = needs.join("; ");
-    Some(format!(
-        "No curve ({}) in {share} % of the map, outside its domain ({needs}).",
-        name(border.criterion)
-    ))
+    if border.said == 0 {
+        return Some(format!("No curve ({name}): all of the map is outside its domain ({needs})."));
+    }
+    let share = match 100.0 * (border.asked - border.said) as f64 / border.asked as f64 {
+        share if share < 1.0 => "under 1".to_owned(),
+        share if share > 99.0 => "over 99".to_owned(),
+        share => format!("{share:.0}"),
+    };
+    Some(if border.parts.is_empty() {
+        format!(
+            "No curve ({name}): {share} % of the map is outside its domain ({needs}), and all the rest {answer}."
+        )
+    } else {
+        format!("No curve ({name}) in {share} % of the map, outside its domain ({needs}).")
+    })
 }
 
-fn nowhere_words(border: &Border) -> String {
-    let name = name(border.criterion);
-    match (border.said, border.quiet) {
-        (0, _) => format!("No curve ({name}): it says nothing anywhere on the map."),
-        (_, 0) => format!("No curve ({name}): nowhere on the map is its quiet side."),
-        _ => format!("No curve ({name}): all of the map is on its quiet side."),
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn one_sentence_says_where_there_is_no_curve() {
+        let words = |said: usize, quiet: usize, part: bool| {
+            silence_words(&Border {
+                criterion: Criterion::Crossing,
+                parts: if part { vec![vec![(0.0, 0.0), (1.0, 1.0)]] } else { Vec::new() },
+                asked: 1000,
+                said,
+                quiet,
+                silent: vec![("e", "e < 1")],
+            })
+        };
+        assert_eq!(words(1000, 400, true), None);
+        for (said, quiet, part, end) in [
+            (1000, 1000, false, ": all of the map is on its quiet side."),
+            (1000, 0, false, ": all of the map is on its other side."),
+            (0, 0, false, ": all of the map is outside its domain (e: e < 1)."),
+            (
+                3,
+                3,
+                false,
+                ": over 99 % of the map is outside its domain (e: e < 1), and all the rest on its quiet side.",
+            ),
+            (
+                500,
+                0,
+                false,
+                ": 50 % of the map is outside its domain (e: e < 1), and all the rest on its other side.",
+            ),
+            (997, 400, true, " in under 1 % of the map, outside its domain (e: e < 1)."),
+        ] {
+            let found = words(said, quiet, part).unwrap();
+            assert!(found.starts_with("No curve (") && found.ends_with(&format!("){end}")), "{found}");
+        }
     }
 }

@@ -108,13 +108,19 @@ fn resonances(analysis: &Analysis, names: &[String]) -> Vec<String> {
     listed.extend(of(|found| matches!(found.told.motion, AngleMotion::Alternates { .. })));
     let circulating = of(|found| matches!(found.told.motion, AngleMotion::Circulates { .. })).len();
     let untold = all - listed.len() - circulating;
-    let count = |number: usize| if number == 0 { "none".to_owned() } else { number.to_string() };
-    let mut words = format!("{} of {all} resonant angles circulate", count(circulating));
+    let count = |number: usize, one: &str, many: &str| match number {
+        0 => format!("none {one}"),
+        1 => format!("1 {one}"),
+        _ => format!("{number} {many}"),
+    };
+    let angles = if all == 1 { "angle" } else { "angles" };
+    let mut words = format!("of {all} resonant {angles} {}", count(circulating, "circulates", "circulate"));
     if listed.is_empty() {
-        words = format!("none of {all} resonant angles librates, {} circulate", count(circulating));
+        words.push_str(", none librates");
     }
     if untold > 0 {
-        words.push_str(&format!(", {untold} are not told: the span is too short or the samples too sparse"));
+        let untold = count(untold, "is not told", "are not told");
+        words.push_str(&format!(", {untold}: the span is too short or the samples too sparse"));
     }
     let left = listed.len().saturating_sub(MOST_ANGLES);
     if left > 0 {
