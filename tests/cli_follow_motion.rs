@@ -136,3 +136,32 @@ fn what_ends_at_once_has_no_frequencies_and_leaves_none_behind() {
     let value = json(&follow(&desk, "500 orbits", &["--escape", "0.09 au", "--json"]).done());
     assert_eq!((&value["frequencies"], &value["survived"]), (&Value::Null, &Value::Bool(false)));
 }
+
+/// Two planets beside the 2:1 resonance, from circles: the line that the resonance forces, 2n_c − n_b, stands in the place of a g
+/// and is called what it is; in the locked pair, where the same sum is g itself, nothing is said.
+#[test]
+fn a_forced_line_is_not_passed_off_as_a_mode() {
+    let planet = |name: &str, period: &str, anomaly: &str| {
+        format!(
+            "[[planet]]\nname = \"{name}\"\nperiod = \"{period}\"\nmass = \"10 Mearth\"\nmean_anomaly = \"{anomaly}\"\n"
+        )
+    };
+    let beside = format!(
+        "epoch = \"2460000.5 JD\"\n[star]\nmass = \"1 Msun\"\n{}{}",
+        planet("b", "10 d", "0 deg"),
+        planet("c", "20.5 d", "100 deg")
+    );
+    let desk = Desk::new().file("system.toml", &beside);
+    follow(&desk, "3000 orbits", &[]).done().printed("g1 is also 2n_c − n_b: perhaps forced");
+    let frequencies = rows(&desk.text("out/frequencies.ecsv"));
+    let of = |name: &str| frequencies.iter().find(|row| row["name"] == name).unwrap();
+    let forced = 2.0 * number(of("n_c"), "frequency") - number(of("n_b"), "frequency");
+    let g1 = of("g1");
+    // A resolution element of 82.1 years is 4.4 deg/yr.
+    assert!((number(g1, "frequency") - forced).abs() < 4.4, "{g1:?} {forced}");
+    assert_eq!(g1["remark"], "also 2n_c − n_b: perhaps forced and no mode");
+    let locked = Desk::new().file("system.toml", LOCKED);
+    follow(&locked, "6000 orbits", &[]).done();
+    let all = rows(&locked.text("out/frequencies.ecsv"));
+    assert!(all.iter().all(|row| !row["remark"].contains("forced")), "{all:?}");
+}

@@ -21,7 +21,8 @@ pub use cells::cells_table;
 pub use criteria::criteria_table;
 pub use error::ReportError;
 pub use motion::{
-    AngleWords, DEGREE_YEAR, MotionInput, frequencies_table, is_unturned, lines_table, resonances_table,
+    AngleWords, DEGREE_YEAR, MotionInput, forced, frequencies_table, is_unturned, lines_table,
+    resonances_table,
 };
 pub use series::{PlanetSeries, Series, series_table};
 pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};

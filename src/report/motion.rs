@@ -57,6 +57,52 @@ pub fn is_unturned(analysis: &Analysis, rad_day: f64) -> bool {
     rad_day.abs() * analysis.sampling.span_day < 2.0 * TAU
 }
 
+/// Largest k that [`forced`] looks at: first-order resonances up to 9:8, from either side.
+const MOST_FORCED: i32 = 9;
+
+/// The combination k n_i + (1 − k) n_j that a g or s is within a resolution element of, in words: eccentricities and
+/// inclinations forced by a near resonance have such lines, and the line is then perhaps no mode of its own. None where an angle of
+/// that pair librates (the resonance ties g to the mean motions) or where the frequency is known up to whole turns only.
+pub fn forced(analysis: &Analysis, frequency: &Fundamental) -> Option<String> {
+    known_up_to(analysis, frequency.kind).map_or(Some(()), |_| None)?;
+    if !matches!(frequency.kind, Kind::Pericentre | Kind::Node) {
+        return None;
+    }
+    let motions: Vec<&Fundamental> =
+        analysis.fundamentals.iter().filter(|f| f.kind == Kind::Motion).collect();
+    let resolution = TAU / analysis.sampling.span_day;
+    let locked = |i: usize, j: usize| {
+        analysis.staying().any(|found| match found.candidate {
+            Candidate::Pair { inner, outer, .. } => (inner, outer) == (i, j) || (inner, outer) == (j, i),
+            _ => false,
+        })
+    };
+    for k in 2..=MOST_FORCED {
+        for i in 0..motions.len() {
+            for j in (0..motions.len()).filter(|j| *j != i && !locked(i, *j)) {
+                let sum = f64::from(k) * motions[i].rad_day - f64::from(k - 1) * motions[j].rad_day;
+                if (sum - frequency.rad_day).abs() < resolution {
+                    let less = if k == 2 { String::new() } else { (k - 1).to_string() };
+                    return Some(format!("{k}{} − {less}{}", motions[i].name, motions[j].name));
+                }
+            }
+        }
+    }
+    None
+}
+
+/// What else must be known of a frequency.
+fn remark(analysis: &Analysis, frequency: &Fundamental) -> Entry {
+    let mut words = Vec::new();
+    if is_unturned(analysis, frequency.rad_day) {
+        words.push("fewer than two turns in the span".to_owned());
+    }
+    if let Some(combination) = forced(analysis, frequency) {
+        words.push(format!("also {combination}: perhaps forced and no mode"));
+    }
+    if words.is_empty() { Entry::Absent } else { Entry::Text(words.join("; ")) }
+}
+
 /// How far a fundamental frequency is known: whole turns per sample may be missing from slow ones.
 fn known_up_to(analysis: &Analysis, kind: Kind) -> Option<f64> {
     let slow = matches!(kind, Kind::Pericentre | Kind::Node);
@@ -92,11 +138,7 @@ pub fn frequencies_table(input: &MotionInput<'_>) -> Table {
             drift.map(|d| d.first_rad_day / DEGREE_YEAR).into(),
             drift.map(|d| d.second_rad_day / DEGREE_YEAR).into(),
             drift.map(|d| d.log10()).into(),
-            if is_unturned(analysis, f.rad_day) {
-                "fewer than two turns in the span".into()
-            } else {
-                Entry::Absent
-            },
+            remark(analysis, f),
         ]
     });
     Table { meta: meta(input), columns, rows: motions.collect() }

@@ -7,7 +7,7 @@ use serde_json::{Value, json};
 use crate::assess::{Analysis, AngleAnalysed, DriftFrom, NotAnalysed};
 use crate::cli::command::inspect::table::{PAGE_WIDTH, lines, short, significant, wrapped};
 use crate::observe::{AngleMotion, Kind};
-use crate::report::{AngleWords, DEGREE_YEAR, is_unturned, time_words};
+use crate::report::{AngleWords, DEGREE_YEAR, forced, is_unturned, time_words};
 use crate::units::YEAR_DAY;
 
 /// Longest names in the angles of the terminal: the first with which the lines fit.
@@ -88,6 +88,14 @@ fn frequencies(analysis: &Analysis) -> Vec<String> {
     }
     if analysis.fundamentals.iter().any(|f| is_unturned(analysis, f.rad_day)) {
         words.push_str(". * fewer than two turns in the span: little more than a guess");
+    }
+    for frequency in &analysis.fundamentals {
+        if let Some(combination) = forced(analysis, frequency) {
+            words.push_str(&format!(
+                ". {} is also {combination}: perhaps forced by the near resonance and no mode",
+                frequency.name
+            ));
+        }
     }
     if let Some(relation) = &analysis.relation {
         words.push_str(&format!(". Locked: {} = 0", relation.words(&analysis.fundamentals)));
