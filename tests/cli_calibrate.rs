@@ -44,6 +44,9 @@ fn the_calibration_is_written_and_said() {
     let right_survived = rows.iter().filter(|row| &row[3] == "survived" && !above(row)).count();
     assert!(words.contains(&format!("{right_lost} of {lost} above it")), "{words}");
     assert!(words.contains(&format!("{right_survived} of {survived} not above it")), "{words}");
+    // A threshold that hangs on single cells says so.
+    assert_eq!(words.contains("take the interval, not the threshold"), lost.min(survived) < 10, "{words}");
+    assert!(lost.min(survived) < 10, "{lost} lost: no longer a test of that line");
     // Of use: better than a coin for both together.
     let shares = right_lost as f64 / lost as f64 + right_survived as f64 / survived as f64;
     assert!(shares > 1.2, "{words}");

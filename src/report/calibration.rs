@@ -91,10 +91,20 @@ impl CalibrationReport<'_> {
                 }
             }
         }
+        let rarer = lost.min(self.outcomes.len() - lost);
+        if self.threshold.is_some() && rarer < FEW {
+            lines.push(format!(
+                "  few        only {rarer} {}: take the interval, not the threshold, or calibrate with more cells or for longer",
+                if lost == rarer { "lost" } else { "survived" }
+            ));
+        }
         lines.push("  used       for reporting only; no verdict depends on it".to_owned());
         lines.iter().map(|line| format!("{line}\n")).collect()
     }
 }
+
+/// With fewer of either end a threshold hangs on single cells.
+const FEW: usize = 10;
 
 fn calls(what: &str, calls: &Calls) -> String {
     let [low, high] = calls.interval();
