@@ -2,11 +2,11 @@
 
 mod figure_world;
 
-use abide::figure::render::{self, Page, Width, page};
+use abide::figure::render::{self, Width, page};
 use abide::figure::{Figure, Legend, MapInput, map};
 use abide::survey::Record;
 use abide::system::{Key, Measured, Study, System};
-use figure_world::{SPAN_DAY, axis, records, study, system};
+use figure_world::{Pixels, SPAN_DAY, axis, records, study, system};
 
 fn drawn(study: &Study, records: &[Record]) -> Figure {
     drawn_of(study, &system(), records)
@@ -16,27 +16,6 @@ fn drawn_of(study: &Study, system: &System, records: &[Record]) -> Figure {
     let input =
         MapInput { study, system, records, column: "megno", span_day: SPAN_DAY, reach: 0, caption: &[] };
     map(&input).unwrap()
-}
-
-struct Pixels {
-    info: png::Info<'static>,
-    rgb: Vec<u8>,
-}
-
-impl Pixels {
-    fn of(bytes: &[u8]) -> Pixels {
-        let mut reader = png::Decoder::new(std::io::Cursor::new(bytes)).read_info().unwrap();
-        let mut rgb = vec![0; reader.output_buffer_size().unwrap()];
-        reader.next_frame(&mut rgb).unwrap();
-        Pixels { info: reader.info().clone(), rgb }
-    }
-
-    /// At a place in points.
-    fn at(&self, page: &Page, (x, y): (f64, f64)) -> [u8; 3] {
-        let pixel = |points: f64| (points / 72.0 * f64::from(page.pixels_per_inch)) as usize;
-        let start = (pixel(y) * self.info.width as usize + pixel(x)) * 3;
-        self.rgb[start..start + 3].try_into().unwrap()
-    }
 }
 
 #[test]

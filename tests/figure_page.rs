@@ -8,7 +8,7 @@ use abide::report;
 use abide::survey::Record;
 use abide::system::{Key, Spacing, Study};
 use abide::verdict::Verdict;
-use figure_world::{SPAN_DAY, assessment, axis, plan, records, study, system};
+use figure_world::{Pixels, SPAN_DAY, assessment, axis, plan, records, study, system};
 
 const WIDTHS: [f64; 4] = [60.0, 88.0, 130.0, 180.0];
 
@@ -226,27 +226,6 @@ fn ticks_are_round_inside_and_not_too_many() {
             let all = found.major.iter().map(|t| t.at).chain(found.minor);
             assert!(all.into_iter().all(|at| at >= from - slack && at <= from + width + slack));
         }
-    }
-}
-
-struct Pixels {
-    info: png::Info<'static>,
-    rgb: Vec<u8>,
-}
-
-impl Pixels {
-    fn of(bytes: &[u8]) -> Pixels {
-        let mut reader = png::Decoder::new(std::io::Cursor::new(bytes)).read_info().unwrap();
-        let mut rgb = vec![0; reader.output_buffer_size().unwrap()];
-        reader.next_frame(&mut rgb).unwrap();
-        Pixels { info: reader.info().clone(), rgb }
-    }
-
-    /// At a place in points.
-    fn at(&self, page: &Page, (x, y): (f64, f64)) -> [u8; 3] {
-        let pixel = |points: f64| (points / 72.0 * f64::from(page.pixels_per_inch)) as usize;
-        let start = (pixel(y) * self.info.width as usize + pixel(x)) * 3;
-        self.rgb[start..start + 3].try_into().unwrap()
     }
 }
 

@@ -1,115 +1,13 @@
 //! Work counters: how many operations a kick is made of.
 
-use std::cell::Cell;
-use std::ops::{Add, Div, Mul, Neg, Sub};
+#[path = "speed/counted.rs"]
+mod counted;
+#[path = "speed/systems.rs"]
+mod systems;
 
 use abide::integrate::{Beside, kick};
 use abide::kepler::Body;
-use abide::lanes::{Piece, Real};
-
-/// Operations done so far on this thread.
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
-struct Work {
-    add: usize,
-    mul: usize,
-    fused: usize,
-    div: usize,
-    sqrt: usize,
-}
-
-thread_local!(static WORK: Cell<Work> = const { Cell::new(Work { add: 0, mul: 0, fused: 0, div: 0, sqrt: 0 }) });
-
-fn count(what: fn(&mut Work) -> &mut usize) {
-    let mut work = WORK.get();
-    *what(&mut work) += 1;
-    WORK.set(work);
-}
-
-/// An `f64` that counts; sign changes, comparisons and blends are free.
-#[derive(Clone, Copy)]
-struct Counted(f64);
-
-impl Add for Counted {
-    type Output = Self;
-    fn add(self, other: Self) -> Self {
-        count(|w| &mut w.add);
-        Counted(self.0 + other.0)
-    }
-}
-impl Sub for Counted {
-    type Output = Self;
-    fn sub(self, other: Self) -> Self {
-        count(|w| &mut w.add);
-        Counted(self.0 - other.0)
-    }
-}
-impl Mul for Counted {
-    type Output = Self;
-    fn mul(self, other: Self) -> Self {
-        count(|w| &mut w.mul);
-        Counted(self.0 * other.0)
-    }
-}
-impl Div for Counted {
-    type Output = Self;
-    fn div(self, other: Self) -> Self {
-        count(|w| &mut w.div);
-        Counted(self.0 / other.0)
-    }
-}
-impl Neg for Counted {
-    type Output = Self;
-    fn neg(self) -> Self {
-        Counted(-self.0)
-    }
-}
-
-impl Real for Counted {
-    type Mask = bool;
-    const LANES: usize = 1;
-    fn splat(value: f64) -> Self {
-        Counted(value)
-    }
-    fn load(from: &[f64]) -> Self {
-        Counted(from[0])
-    }
-    fn store(self, to: &mut [f64]) {
-        to[0] = self.0;
-    }
-    fn apart<P: Piece>(piece: P) -> P::Output {
-        piece.run()
-    }
-    fn sqrt(self) -> Self {
-        count(|w| &mut w.sqrt);
-        Counted(self.0.sqrt())
-    }
-    fn abs(self) -> Self {
-        Counted(self.0.abs())
-    }
-    fn round(self) -> Self {
-        Counted(self.0.round_ties_even())
-    }
-    fn mul_add(self, factor: Self, term: Self) -> Self {
-        count(|w| &mut w.fused);
-        Counted(self.0.mul_add(factor.0, term.0))
-    }
-    fn max(self, other: Self) -> Self {
-        Counted(self.0.max(other.0))
-    }
-    fn min(self, other: Self) -> Self {
-        Counted(self.0.min(other.0))
-    }
-    fn lt(self, other: Self) -> bool {
-        self.0 < other.0
-    }
-    fn select(mask: bool, yes: Self, no: Self) -> Self {
-        if mask { yes } else { no }
-    }
-    fn mantissa_exponent(self) -> (Self, Self) {
-        let (m, e) = self.0.mantissa_exponent();
-        (Counted(m), Counted(e))
-    }
-}
+use counted::{Counted, Work};
 
 fn bodies(n: usize) -> Vec<Body<Counted>> {
     let body = |k: usize| {
@@ -127,10 +25,18 @@ fn bodies(n: usize) -> Vec<Body<Counted>> {
 
 fn work_of<const TANGENT: bool, const WATCH: bool>(n: usize) -> Work {
     let (mut bodies, mut pairs) = (bodies(n), vec![Counted(f64::MAX); n * n.saturating_sub(1) / 2]);
-    WORK.set(Work::default());
     let (star, step, window) = (Counted(1.0), Counted(0.1), Counted(0.05));
-    kick::<Counted, TANGENT, WATCH, false>(&mut bodies, n, &mut pairs, star, &Beside::none(), step, window);
-    WORK.get()
+    counted::work_of(|| {
+        kick::<Counted, TANGENT, WATCH, false>(
+            &mut bodies,
+            n,
+            &mut pairs,
+            star,
+            &Beside::none(),
+            step,
+            window,
+        );
+    })
 }
 
 /// What one body and one pair cost, and what is done once: 1/M and its product with the time.

@@ -5,6 +5,7 @@ mod assessment;
 mod batch;
 mod calibrate;
 mod cell;
+mod kept_orbit;
 mod one;
 mod physics;
 mod plan;

@@ -6,6 +6,7 @@ use nalgebra::{Rotation3, Vector3};
 use super::Plan;
 use super::batch::as_true;
 use super::cell::Cell;
+use super::kept_orbit::{keep_orbit, restored_orbit};
 use crate::coords::Elements;
 use crate::integrate::{Advance, Block, State, advance, angular_momentum};
 use crate::num::{Kept, KeptReader};
@@ -175,7 +176,7 @@ impl Samples {
         kept.count(u64::from(self.windows.is_some()));
         for (count, rows) in counts.into_iter().zip(self.lists()) {
             kept.count(count as u64);
-            rows[..count].iter().flatten().for_each(|orbit| orbit_floats(orbit, kept));
+            rows[..count].iter().flatten().for_each(|orbit| keep_orbit(orbit, kept));
         }
     }
 
@@ -193,7 +194,7 @@ impl Samples {
         let planets = self.whole[0].len();
         let mut list = |most: usize| -> Option<Vec<Vec<Elements>>> {
             let count = kept.size().filter(|count| *count <= most)?;
-            (0..count).map(|_| (0..planets).map(|_| restored(kept)).collect()).collect()
+            (0..count).map(|_| (0..planets).map(|_| restored_orbit(kept)).collect()).collect()
         };
         self.whole = list(MOST_SAMPLES + 1).filter(|whole| !whole.is_empty())?;
         let (first, last) = (list(2 * WINDOW_SAMPLES)?, list(2 * WINDOW_SAMPLES)?);
@@ -207,26 +208,4 @@ impl Samples {
 fn bound(rows: &[Vec<Elements>]) -> Vec<Vec<Elements>> {
     let whole = |row: &&Vec<Elements>| row.iter().all(|orbit| (0.0..1.0).contains(&orbit.eccentricity));
     rows.iter().take_while(whole).cloned().collect()
-}
-
-fn orbit_floats(e: &Elements, kept: &mut Kept) {
-    kept.floats(&[
-        e.semi_major_axis_au,
-        e.eccentricity,
-        e.inclination,
-        e.ascending_node,
-        e.argument_of_pericentre,
-        e.mean_anomaly,
-    ]);
-}
-
-fn restored(kept: &mut KeptReader<'_>) -> Option<Elements> {
-    Some(Elements {
-        semi_major_axis_au: kept.float()?,
-        eccentricity: kept.float()?,
-        inclination: kept.float()?,
-        ascending_node: kept.float()?,
-        argument_of_pericentre: kept.float()?,
-        mean_anomaly: kept.float()?,
-    })
 }

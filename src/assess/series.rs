@@ -2,6 +2,7 @@
 //! dropped and rows come half as often. So an early end leaves many rows, and a long way no more than asked.
 
 use super::cell::Cell;
+use super::kept_orbit::{keep_orbit, restored_orbit};
 use super::{Extent, Plan};
 use crate::coords::Elements;
 use crate::integrate::{Block, State};
@@ -152,14 +153,7 @@ impl Row {
     fn keep(&self, kept: &mut Kept) {
         kept.floats(&[self.time_day, self.energy_error, self.angular_momentum_error]);
         for (e, extent) in self.elements.iter().zip(&self.extent) {
-            kept.floats(&[
-                e.semi_major_axis_au,
-                e.eccentricity,
-                e.inclination,
-                e.ascending_node,
-                e.argument_of_pericentre,
-                e.mean_anomaly,
-            ]);
+            keep_orbit(e, kept);
             extent.keep(kept);
         }
         for number in [self.megno, self.mean_megno, self.lyapunov_per_day] {
@@ -172,14 +166,7 @@ impl Row {
         let (time_day, energy_error, angular_momentum_error) = (kept.float()?, kept.float()?, kept.float()?);
         let (mut elements, mut extent) = (Vec::new(), Vec::new());
         for _ in 0..planets {
-            elements.push(Elements {
-                semi_major_axis_au: kept.float()?,
-                eccentricity: kept.float()?,
-                inclination: kept.float()?,
-                ascending_node: kept.float()?,
-                argument_of_pericentre: kept.float()?,
-                mean_anomaly: kept.float()?,
-            });
+            elements.push(restored_orbit(kept)?);
             extent.push(Extent::restored(kept)?);
         }
         let mut number = || Some((kept.count()? != 0, kept.float()?)).map(|(some, x)| some.then_some(x));

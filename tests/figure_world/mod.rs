@@ -2,6 +2,7 @@
 #![allow(dead_code)]
 
 use abide::assess::{Approach, Assessment, Extent, Loss, Lyapunov, Plan, Range};
+use abide::figure::render::Page;
 use abide::survey::Record;
 use abide::system::{
     Axis, Body, BodyRef, Convention, Encounter, Engine, Key, Limits, Measure, Measured, Quantity, Spacing,
@@ -181,4 +182,26 @@ pub fn records(study: &Study) -> Vec<Record> {
             Record { cell, values: std::iter::once(period).chain(e).collect(), assessment, filled: None }
         })
         .collect()
+}
+
+/// A decoded picture.
+pub struct Pixels {
+    pub info: png::Info<'static>,
+    pub rgb: Vec<u8>,
+}
+
+impl Pixels {
+    pub fn of(bytes: &[u8]) -> Pixels {
+        let mut reader = png::Decoder::new(std::io::Cursor::new(bytes)).read_info().unwrap();
+        let mut rgb = vec![0; reader.output_buffer_size().unwrap()];
+        reader.next_frame(&mut rgb).unwrap();
+        Pixels { info: reader.info().clone(), rgb }
+    }
+
+    /// At a place in points.
+    pub fn at(&self, page: &Page, (x, y): (f64, f64)) -> [u8; 3] {
+        let pixel = |points: f64| (points / 72.0 * f64::from(page.pixels_per_inch)) as usize;
+        let start = (pixel(y) * self.info.width as usize + pixel(x)) * 3;
+        self.rgb[start..start + 3].try_into().unwrap()
+    }
 }

@@ -1,5 +1,7 @@
 //! A number that counts what is done with it, so that the work of a step is measured and not believed.
 
+#![allow(dead_code, reason = "each user its own part")]
+
 use abide::integrate::{Advance, Scheme};
 use abide::lanes::{Job, Piece, Real};
 use std::cell::Cell;
@@ -8,18 +10,18 @@ use std::ops::{Add, Div, Mul, Neg, Sub};
 use super::systems;
 
 /// Operations done.
-#[derive(Clone, Copy, Debug, Default)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub struct Work {
-    pub add: u64,
-    pub mul: u64,
-    pub fused: u64,
-    pub div: u64,
-    pub sqrt: u64,
+    pub add: usize,
+    pub mul: usize,
+    pub fused: usize,
+    pub div: usize,
+    pub sqrt: usize,
 }
 
 impl Work {
     /// A fused multiply-add counts two, everything else one.
-    pub fn flops(&self) -> u64 {
+    pub fn flops(&self) -> usize {
         self.add + self.mul + 2 * self.fused + self.div + self.sqrt
     }
 }
@@ -32,9 +34,16 @@ fn count(what: impl FnOnce(&mut Work)) {
     WORK.set(work);
 }
 
+/// What `job` does.
+pub fn work_of(job: impl FnOnce()) -> Work {
+    WORK.set(Work::default());
+    job();
+    WORK.get()
+}
+
 /// An `f64` that counts; sign changes, comparisons and blends are free.
 #[derive(Clone, Copy)]
-struct Counted(f64);
+pub struct Counted(pub f64);
 
 macro_rules! counted {
     ($($trait:ident $name:ident $field:ident),*) => {$(
@@ -107,7 +116,7 @@ impl Real for Counted {
 pub fn flops_per_planet_step(n: usize, tangent: bool) -> f64 {
     const STEPS: usize = 400;
     let mut block = systems::block(n, 1, 20.0);
-    WORK.set(Work::default());
-    Advance { block: &mut block, scheme: Scheme::leapfrog(), steps: STEPS, tangent }.run::<Counted>();
-    WORK.get().flops() as f64 / (STEPS * n) as f64
+    let scheme = Scheme::leapfrog();
+    let work = work_of(|| Advance { block: &mut block, scheme, steps: STEPS, tangent }.run::<Counted>());
+    work.flops() as f64 / (STEPS * n) as f64
 }

@@ -2,6 +2,9 @@
 //!
 //! `cargo bench --bench figure` reads reports/speed/{kernel,schemes}.csv and writes reports/speed/{planets,schemes}.png.
 
+mod hues;
+
+use hues::HUES;
 use plotters::prelude::*;
 use plotters::style::{FontStyle, register_font};
 use std::path::PathBuf;
@@ -40,17 +43,6 @@ fn lines(
     }
     Ok(lines)
 }
-
-/// Hues told apart by colour-blind readers; lines beyond are told apart by their markers.
-const HUES: [RGBColor; 7] = [
-    RGBColor(0, 114, 178),
-    RGBColor(213, 94, 0),
-    RGBColor(0, 158, 115),
-    RGBColor(204, 121, 167),
-    RGBColor(86, 180, 233),
-    RGBColor(230, 159, 0),
-    RGBColor(60, 60, 60),
-];
 
 /// A number on a logarithmic axis: 10⁻⁸, or 2×10³ between the powers.
 fn power_of_ten(value: f64) -> String {

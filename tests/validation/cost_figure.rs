@@ -2,6 +2,7 @@
 
 use std::path::Path;
 
+use super::hues::HUES;
 use abide::integrate::Coordinates;
 use plotters::coord::Shift;
 use plotters::prelude::*;
@@ -14,17 +15,6 @@ pub struct Curve {
     pub scheme: &'static str,
     pub points: Vec<(f64, f64)>,
 }
-
-/// Hues told apart by colour-blind readers.
-const HUES: [RGBColor; 7] = [
-    RGBColor(0, 114, 178),
-    RGBColor(213, 94, 0),
-    RGBColor(0, 158, 115),
-    RGBColor(204, 121, 167),
-    RGBColor(86, 180, 233),
-    RGBColor(230, 159, 0),
-    RGBColor(60, 60, 60),
-];
 
 /// One panel per system and coordinate set.
 pub fn draw(curves: &[Curve], file: &Path) {

@@ -5,6 +5,8 @@
 
 #[path = "../criteria_support/mod.rs"]
 mod criteria_support;
+#[path = "../speed/hues.rs"]
+mod hues;
 #[path = "../radau_support/mod.rs"]
 mod radau_support;
 #[path = "../shelf/mod.rs"]
