@@ -222,7 +222,7 @@ impl Summary {
             })
             .collect();
         if !drift.is_empty() {
-            lines.push(format!("drift        log10 |dn/n| of {}", drift.join("; ")));
+            lines.push(format!("drift        log10 |1 - n2/n1| of {}", drift.join("; ")));
         }
         if let Some((words, [librates, circulates, alternates, untold])) = &self.angle {
             lines.push(format!(
