@@ -82,7 +82,12 @@ pub(super) fn calibrate(
         trial: Some((chosen.error, 1 + corners.len())),
     };
     let steps = steps * chosen.steps_per_passage / STEPS_PER_PASSAGE;
-    Plan { scheme: chosen.scheme.name, step_why: why, block_steps: Plan::block_for(steps), ..plan }
+    Plan {
+        scheme: chosen.scheme.name,
+        step_why: why,
+        block_steps: Plan::block_for(steps, plan.resolve),
+        ..plan
+    }
 }
 
 /// Largest relative energy error of the short runs.

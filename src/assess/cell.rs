@@ -6,13 +6,14 @@ mod early;
 mod keep;
 mod limits;
 mod long_watch;
+mod loss;
 
 use super::assessment::{Approach, Assessment, Loss};
 use super::physics::{barycentric, forces, star_terms, symplectic_start};
 use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Shape};
 use crate::integrate::forces::Forces;
-use crate::integrate::{Advance, Block, StarTerms, State, advance, from_map, to_map};
+use crate::integrate::{Block, StarTerms, State, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
 use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, judge};
 use displacement::generic_tangent;
@@ -269,58 +270,6 @@ impl Cell {
                 || block.nearest_pair_au(pair.i, pair.j, lane) < pair.leave_au
         };
         stars || self.limits.pairs.iter().any(met)
-    }
-
-    /// Repeats the block from `before`, alone, to find the first step after which the cell has ended.
-    ///
-    /// A shorter run of the same steps has the same bits, so the end is found by halving.
-    fn find_loss(&mut self, plan: &Plan, before: &Block, lane: usize) -> Loss {
-        let fresh = self.alone(plan);
-        let run = |steps: usize| {
-            let mut alone = fresh.clone();
-            before.copy_lane(lane, &mut alone, 0);
-            advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: plan.megno });
-            alone
-        };
-        let (mut alive, mut ended) = (0, plan.block_steps);
-        while ended - alive > 1 {
-            let middle = (alive + ended) / 2;
-            if self.must_leave(&run(middle), 0) { ended = middle } else { alive = middle }
-        }
-        if self.blocks_done == 0 {
-            // Nothing was seen yet, but a verdict needs its energy error: look just before the end, out of reach of
-            // the corrector's kicks (three steps), which would feel the meeting itself.
-            let steps = alive.saturating_sub(4);
-            let mut last = run(steps);
-            from_map(&mut last, plan.splitting());
-            let state = last.state(0);
-            let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
-            self.conserved.see(&moment, &self.terms);
-            self.extent.see(&moment.shapes(plan.frame));
-        }
-        self.part_steps = ended as u64;
-        let at_end = run(ended);
-        let time_day = self.time_day(plan) + ended as f64 * self.step_day;
-        self.note_approach(&at_end, 0);
-        for pair in &self.limits.pairs {
-            let nearest = at_end.nearest_pair_au(pair.i, pair.j, 0);
-            if nearest < pair.end_au {
-                let (planet, other) = self.lighter_first(pair);
-                return Loss { time_day, planet, other: Some(other), how: pair.how(nearest) };
-            }
-        }
-        for planet in 0..self.start.gm.len() {
-            let (near, far) = at_end.star_distances_au(planet, 0);
-            if near < self.limits.star_radius_au {
-                return Loss { time_day, planet, other: None, how: LostHow::Star };
-            }
-            if far > self.limits.escape_au {
-                return Loss { time_day, planet, other: None, how: LostHow::Escape };
-            }
-        }
-        // Only what is not a number is left, and that comes from a passage through the star's centre.
-        self.conserved.worst_energy = f64::INFINITY;
-        Loss { time_day, planet: 0, other: None, how: LostHow::Star }
     }
 
     fn note_approach(&mut self, block: &Block, lane: usize) {

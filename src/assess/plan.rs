@@ -20,11 +20,13 @@ pub const STEPS_PER_PASSAGE: f64 = 20.0;
 /// Fewer than this draw a warning.
 pub const FEWEST_STEPS_PER_PASSAGE: f64 = 15.0;
 /// Steps between two looks at a cell. Times a step of 1/20 of a period this is no whole number of orbits, so that
-/// samples do not always meet a planet at the same phase.
-const BLOCK_STEPS: usize = 127 * SAMPLE_EVERY;
+/// samples do not always meet a planet at the same phase. A look costs as much as some 35 steps, so it must be rare.
+const BLOCK_STEPS: usize = 254 * SAMPLE_EVERY;
+/// The same where encounters are resolved: the adaptive engine does a whole block around each of them.
+const RESOLVED_BLOCK_STEPS: usize = 127 * SAMPLE_EVERY;
 /// Samples of a shorter block that is still no whole number of orbits of 20 steps: no multiples of 5.
-pub(super) const BLOCK_SAMPLES: [usize; 18] =
-    [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127];
+pub(super) const BLOCK_SAMPLES: [usize; 22] =
+    [1, 2, 3, 4, 7, 11, 13, 17, 19, 23, 31, 37, 47, 61, 73, 89, 107, 127, 151, 179, 211, 254];
 /// Looks at a cell whose frequency drift is measured, at least: half of them are one Fourier transform.
 const DRIFT_SAMPLES: f64 = 1000.0;
 /// Inner orbits between two looks at an angle, times √(mass of the planets / star): six looks in a libration of 0.8 of
@@ -198,6 +200,7 @@ impl Plan {
             Encounter::Off | Encounter::Resolve => None,
         };
         let (coordinates, coordinates_why) = coordinates(engine.coordinates, nominal);
+        let resolve = limits.encounter == Encounter::Resolve;
         let plan = Plan {
             span_day,
             step_day,
@@ -206,7 +209,7 @@ impl Plan {
             coordinates,
             coordinates_why,
             frame: nominal.own_frame(),
-            resolve: limits.encounter == Encounter::Resolve,
+            resolve,
             adaptive: false,
             compensated: engine.compensated == Compensation::On,
             massless: corners.iter().map(massless).fold(massless(nominal), usize::min),
@@ -218,7 +221,7 @@ impl Plan {
             frequency_drift: false,
             angle: None,
             stop_when_chaotic: limits.stop_when_chaotic,
-            block_steps: Plan::block_for(span_day / step_day.unwrap_or(auto)),
+            block_steps: Plan::block_for(span_day / step_day.unwrap_or(auto), resolve),
         };
         let steps = span_day / step_day.unwrap_or(auto);
         calibrate(plan, steps, Scheme::named(&engine.scheme).is_none(), nominal, corners)
@@ -237,9 +240,10 @@ impl Plan {
 
     /// Steps between two looks for that many steps in all: fewer when the span is short, so that it is still looked at
     /// often enough.
-    pub(super) fn block_for(steps: f64) -> usize {
-        let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, BLOCK_STEPS as f64);
-        (block as usize).next_multiple_of(SAMPLE_EVERY).min(BLOCK_STEPS)
+    pub(super) fn block_for(steps: f64, resolve: bool) -> usize {
+        let most = if resolve { RESOLVED_BLOCK_STEPS } else { BLOCK_STEPS };
+        let block = (steps / FEWEST_BLOCKS).clamp(SAMPLE_EVERY as f64, most as f64);
+        (block as usize).next_multiple_of(SAMPLE_EVERY).min(most)
     }
 
     /// An empty block of the plan's kind.

@@ -6,6 +6,9 @@ use abide::coords::{Elements, star_centred};
 use abide::integrate::{Block, State, Tangent};
 use abide::system::Frame;
 
+/// Of every planet in the first lane, and of the innermost in all.
+pub const ECCENTRICITY: f64 = 0.05;
+
 /// Mass and semi-major axis of each planet.
 fn planets(n: usize) -> Vec<(f64, f64)> {
     match n {
@@ -25,7 +28,7 @@ pub fn start(n: usize, lane: usize) -> (State, Tangent) {
             let nudge = if k == 1 { 1.0 + 1e-3 * lane as f64 } else { 1.0 };
             let elements = Elements {
                 semi_major_axis_au: axis * nudge,
-                eccentricity: 0.05 + if k == 1 { 2e-3 * lane as f64 } else { 0.0 },
+                eccentricity: ECCENTRICITY + if k == 1 { 2e-3 * lane as f64 } else { 0.0 },
                 inclination: 0.02 * k as f64,
                 ascending_node: 1.1 * k as f64,
                 argument_of_pericentre: 0.7 * k as f64,

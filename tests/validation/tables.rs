@@ -26,6 +26,7 @@ mod giants;
 mod hd_45364;
 mod inspect;
 mod long_runs;
+mod lyapunov;
 mod mercury;
 mod overlap;
 mod random;
@@ -47,6 +48,7 @@ const TABLES: &[(&str, fn())] = &[
     ("catalogue", catalogue::write),
     ("inspect", inspect::write),
     ("variational", variational::write),
+    ("lyapunov", lyapunov::write),
     ("solar-system", solar_system::write),
     ("schemes", schemes::write),
     ("classics", classics::write),
