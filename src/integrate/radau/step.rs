@@ -280,7 +280,7 @@ impl Step {
 
     /// Puts the middle of the step, by the polynomial, where [`Step::node`] shows it.
     pub fn place_middle(&mut self, start: &Phase) {
-        const MIDDLE: Weights = Weights::at(0.5);
+        const MIDDLE: Weights = Weights::plain(0.5);
         self.place(&MIDDLE, start, true);
     }
 
@@ -291,7 +291,7 @@ impl Step {
 
     /// Separation and relative velocity of two bodies at s of the step, by the polynomial.
     pub fn apart(&self, start: &Phase, i: usize, j: usize, s: f64) -> ([f64; 3], [f64; 3]) {
-        let weights = Weights::at(s);
+        let weights = Weights::plain(s);
         let b: [&[f64]; STAGES] = self.b.each_ref().map(|b| b.as_slice());
         let (d, v) = start.apart(i, j);
         let between =

@@ -41,7 +41,7 @@ pub(super) struct Weights {
 
 impl Weights {
     /// As doubles: s^{k+1}/(k + 1) and s^{k+2}/((k + 1)(k + 2)).
-    pub const fn at(s: f64) -> Weights {
+    pub const fn plain(s: f64) -> Weights {
         let mut all = Weights { s, vel: Series::NONE, at: Series::NONE };
         let (mut power, mut k) = (s, 0);
         while k <= STAGES {
@@ -55,7 +55,7 @@ impl Weights {
 
     /// With the rests of the first ones.
     const fn with_rests(s: f64) -> Weights {
-        let mut all = Weights::at(s);
+        let mut all = Weights::plain(s);
         let (mut power, mut k): (Pair, usize) = ((s, 0.0), 0);
         while k < KEPT {
             all.vel.low[k] = rest(over(power, (k + 1) as f64), all.vel.high[k]);
@@ -72,7 +72,7 @@ const fn rest(exact: Pair, high: f64) -> f64 {
 }
 
 pub(super) const AT_NODE: [Weights; STAGES + 1] = {
-    let mut all = [Weights::at(0.0); STAGES + 1];
+    let mut all = [Weights::plain(0.0); STAGES + 1];
     let mut i = 1;
     while i <= STAGES {
         all[i] = Weights::with_rests(NODES[i]);
@@ -83,7 +83,7 @@ pub(super) const AT_NODE: [Weights; STAGES + 1] = {
 
 /// At the end of a step; the rests also take back by how much the rounded tables miss the integrals of s and s².
 pub(super) const END: Weights = {
-    let mut end = Weights::at(1.0);
+    let mut end = Weights::plain(1.0);
     let mut degree = 1;
     while degree < KEPT {
         let (vel, at) = integrals(degree, &end);
