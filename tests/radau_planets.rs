@@ -33,20 +33,21 @@ fn errors(name: &str, years: &[i32]) -> Vec<(i32, Vec<f64>, f64)> {
     all
 }
 
-/// Rounding walks in the mean motion, so the place along the orbit is off like t^1.5; Mercury turns fastest. On top
-/// comes the steady drift of the energy, up to 4e-19 per step as measured on the giant planets (its cause is not known),
-/// with 25 steps per turn of Mercury, which moves its place like t². (The reference's own double-precision run
-/// was 5e-10 au off for Mercury after 500 years and grew about linearly: 3e-9 after 3000.)
+/// Rounding walks in the mean motion, so the place along the orbit is off like t^1.5; Mercury turns fastest. (The reference's
+/// own double-precision run was 5e-10 au off for Mercury after 500 years and grew about linearly: 3e-9 after 3000.)
+fn rounding_au(body: usize, years: f64) -> f64 {
+    let walk = 1e-13 * (years / 100.0) + 4e-12 * (years / 100.0).powf(1.5);
+    if body == 0 { 2.0 * walk } else { walk }
+}
+
 fn check(name: &str, years: &[i32]) {
     for (year, off, energy) in errors(name, years) {
         let list: Vec<String> = off.iter().map(|x| format!("{x:.1e}")).collect();
         println!("{name} {year}: {} au; energy {energy:.1e}", list.join(" "));
         let span = f64::from(year.abs());
-        let walk = 1e-13 * (span / 100.0) + 4e-12 * (span / 100.0).powf(1.5);
-        let turns = span / 0.2408;
-        let drift = 1.5 * 4e-19 * 25.0 * std::f64::consts::PI * turns * turns * 0.387;
-        assert!(off[0] < 2.0 * walk + drift, "{name} {year} Mercury: {:e} au", off[0]);
-        assert!(off[1..].iter().all(|&x| x < walk), "{name} {year}: {list:?}");
+        for (body, off) in off.iter().enumerate() {
+            assert!(*off < rounding_au(body, span), "{name} {year}, body {body}: {off:e} au of {list:?}");
+        }
         assert!(energy.abs() < 2e-14 * (span / 10.0).sqrt().max(1.0), "{name} {year}: energy {energy:e}");
     }
 }
@@ -161,13 +162,39 @@ fn giant_planets_keep_their_energy_to_rounding() {
     assert_eq!(work.pairs, 10 * work.evaluations);
 }
 
+/// Rounding has no preferred sense: of starts that differ in the ninth digit the energies walk apart, and their mean stays
+/// within three of its standard errors. (With weights 1/3 and 1/6 as bare doubles it rose by 2.6e-19 per step, 8e-15 in all.)
+#[test]
+fn rounding_moves_the_energy_of_the_giant_planets_either_way() {
+    let (_, all) = solar_system("DE406");
+    let state = only(&all, &[4, 5, 6, 7]);
+    let count = 24;
+    let errors: Vec<f64> = (0..count)
+        .map(|k| {
+            let mut near = state.clone();
+            near.pos.iter_mut().flatten().for_each(|x| *x *= 1.0 + 1e-9 * f64::from(k));
+            let mut engine = Engine::from_state(&near, &[], &Forces::newton(), TOLERANCE).unwrap();
+            run(&mut engine, 2e4 * 365.25);
+            engine.energy_error().unwrap()
+        })
+        .collect();
+    let mean = errors.iter().sum::<f64>() / f64::from(count);
+    let squares: f64 = errors.iter().map(|x| (x - mean).powi(2)).sum();
+    let error = (squares / f64::from(count * (count - 1))).sqrt();
+    println!("mean {mean:.2e} ± {error:.1e}");
+    assert!(mean.abs() < 3.0 * error, "{mean:e} ± {error:e}");
+    // So that the error is small enough to have seen it.
+    assert!(error < 2e-15, "{error:e}");
+}
+
+/// As far off as rounding makes a run of both ways together: from forty starts Mercury comes back to 1.4e-12 au (rms), 3e-12 at worst.
 #[test]
 fn there_and_back() {
     let (_, all) = solar_system("DE406");
     let state = only(&all, &[0, 1, 2, 3, 4]);
     let there = advance(&state, None, &model("newton+1pn"), 20_000.0, TOLERANCE).unwrap();
     let back = advance(&there.state, None, &model("newton+1pn"), -20_000.0, TOLERANCE).unwrap();
-    for (a, b) in state.pos.iter().zip(&back.state.pos) {
-        assert!(distance(a, b) < 1e-12, "{:e}", distance(a, b));
+    for (body, (a, b)) in state.pos.iter().zip(&back.state.pos).enumerate() {
+        assert!(distance(a, b) < rounding_au(body, 40_000.0 / 365.25), "{body}: {:e}", distance(a, b));
     }
 }

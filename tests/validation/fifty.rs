@@ -1,37 +1,48 @@
-//! Fifty random compact systems with both engines, over two spans.
+//! Fifty random compact systems with both engines, over two spans and at several accuracies.
 
-use std::f64::consts::{PI, TAU};
-use std::ops::ControlFlow;
-
-use abide::assess::{Assessment, Plan, assess, innermost_period_day};
-use abide::coords::{Configuration, configure};
-use abide::input::parse_system;
-use abide::integrate::forces::Forces;
-use abide::integrate::radau::{Engine, TOLERANCE, Watch};
-use abide::integrate::{Advance, Block, State, Tangent, advance, from_map, to_map};
+use abide::assess::{ADAPTIVE, Assessment, Plan, assess, innermost_period_day};
+use abide::coords::Configuration;
 use abide::system::Span;
 use abide::verdict::Verdict;
 use rayon::prelude::*;
 
-use super::random::Random;
-use super::report::{Report, short};
-use super::truth_support::{plan, state};
+use super::fifty_ends::{agrees, ends, parted_orbits};
+use super::fifty_systems::{SYSTEMS, systems};
+use super::report::{Report, met, short};
+use super::truth_support::plan;
 
-const SYSTEMS: usize = 50;
-/// Spans in inner orbits: the first was chosen for its cost alone, the second is what the program takes where nothing is asked.
-const SPANS: [f64; 2] = [1500.0, 1e4];
-const SEED: u64 = 4711;
+/// One comparison: the span in inner orbits, and the energy error asked of the symplectic scheme.
+struct Case {
+    orbits: f64,
+    asked: f64,
+}
+
+/// The first span was chosen for its cost alone, the second is what the program takes where nothing is asked.
+const CASES: [Case; 4] = [
+    Case { orbits: 1500.0, asked: 1e-6 },
+    Case { orbits: 1500.0, asked: 1e-9 },
+    Case { orbits: 1500.0, asked: 1e-12 },
+    Case { orbits: 1e4, asked: 1e-6 },
+];
+
+/// From this accuracy on the comparison is held to 49, over the shorter span.
+const HELD: f64 = 1e-9;
 
 const WORDS: &str = "
 Invented systems drawn with seed 4711: star of 0.7 to 1.2 solar masses, 2 to 4 planets, innermost period 5 to 30 d, neighbours' periods in ratios between
 1.25 and 2.1, masses 1 to 40 Earth masses (uniform in the logarithm), e from 0 to 0.12, inclinations to the plane up to 2 deg, all angles by chance. Encounters
-end a cell at one mutual Hill radius, energy error 1e-6 asked. Symplectic: the plan that the program chooses by itself. Adaptive: the same plan with
-`adaptive`. Limit: the same verdict on at least 49 of 50.
+end a cell at one mutual Hill radius. Symplectic: the plan that the program chooses by itself for the energy error `asked`. Adaptive: the same plan with `adaptive`. Seed and systems have
+been the same since the first table.
 
-Two spans, `orbits` of the innermost planet. The first table made had 1500, chosen for its cost alone; 1e4 is the program's own default. Before the longer runs were made it was
-written down here why both are shown: whether a chaotic system meets with an encounter before a given moment is not decided by the stated numbers beyond some Lyapunov times, so two engines
-can differ there by chance, as two starts that differ in a far digit do; a longer span leaves fewer systems half way. How often chance alone makes two engines differ, and whether one of them
-loses systems more easily, is measured in [fifty-losses](fifty-losses.md).
+What is compared. A verdict about a chaotic system follows from the stated numbers only as long as exp(λt) times the engines' errors is small: until then both engines are on one trajectory and must
+agree, after that each is on a trajectory of its own, and whether it meets with an encounter before the span ends is a matter of chance. So the engines are compared at several accuracies of the
+symplectic one over a span of 1500 `orbits` of the innermost planet (λT of 5 to 100 for the chaotic ones, column `growth`, from the adaptive run), and at the program's default accuracy over its default span
+of 1e4. `parted_orbits`: when any planet's two places were first farther apart than 0.03 of its distance from the star; empty where that never was while both lived (not measured where both say regular or the adaptive engine did all in the end). `near`: the
+adaptive engine from a start whose velocities are one unit in the last place larger; where its verdict differs from that of the adaptive engine itself, no calculation in double precision decides it.
+Held to 49 of 50 are the accuracies from 1e-9 on; at 1e-6, the default, a difference is no error of either engine once the trajectories have parted. More than 1e-12 says nothing new: at 1e-13 (tried once; 49 of 50) the
+rounding of plain sums is met and the program hands most of the chaotic systems to the adaptive engine, which is then compared with itself. The systems that it hands over are counted under `schemes`; at 1e-12 they are
+those lost, since the encounter that ends them takes the energy of the splitting with it. How often chance alone
+makes two engines differ, and whether one of them loses systems more easily, is measured in [fifty-losses](fifty-losses.md).
 
 End states, where both say regular: the symplectic scheme of that plan from the start to the end of the span in steps no longer than those used, against
 the adaptive engine alone. `gap_rad` is the largest distance of any planet over its distance from the star. `expected_rad` is the phase error expected of the step: the same
@@ -42,30 +53,37 @@ expected + rounding. The estimate does not use the adaptive run.
 
 /// What became of one system.
 struct Outcome {
-    planets: usize,
     symplectic: Assessment,
     adaptive: Assessment,
+    /// By the adaptive engine from a start that differs in the last digit.
+    near: Verdict,
     /// Gap, expected and rounding, rad.
     ends: Option<[f64; 3]>,
+    /// λT of the adaptive run.
+    growth: Option<f64>,
+    /// Inner orbits.
+    parted: Option<f64>,
 }
 
-/// The systems in their order.
-pub fn systems() -> Vec<Configuration> {
-    let mut random = Random::new(SEED);
-    (0..SYSTEMS).map(|_| system(&mut random)).collect()
+impl Outcome {
+    fn agrees(&self) -> bool {
+        self.symplectic.verdict == self.adaptive.verdict
+    }
 }
 
 pub fn write() {
     let systems = systems();
-    let (mut rows, mut found) = (Vec::new(), String::new());
-    for orbits in SPANS {
-        let outcomes: Vec<Outcome> = systems.par_iter().map(|system| outcome(system, orbits)).collect();
-        found += &in_words(orbits, &outcomes);
+    let (mut rows, mut summary, mut differ) = (Vec::new(), SUMMARY.to_string(), String::new());
+    for case in CASES {
+        let outcomes: Vec<Outcome> = systems.par_iter().map(|system| outcome(system, &case)).collect();
+        summary += &in_short(&case, &outcomes);
+        differ += &differing(&case, &outcomes, &systems);
         let all = outcomes.iter().zip(&systems).enumerate();
-        rows.extend(all.map(|(k, (o, s))| row(k + 1, orbits, o, s)));
+        rows.extend(all.map(|(k, (o, s))| row(k + 1, &case, o, s)));
     }
     let columns = vec![
         "orbits",
+        "asked",
         "system",
         "planets",
         "symplectic",
@@ -78,6 +96,10 @@ pub fn write() {
         "energy_symplectic",
         "energy_adaptive",
         "scheme",
+        "steps_per_orbit",
+        "growth",
+        "near",
+        "parted_orbits",
         "gap_rad",
         "expected_rad",
         "rounding_rad",
@@ -86,54 +108,77 @@ pub fn write() {
     Report {
         name: "fifty",
         title: "Fifty random systems with both engines",
-        words: format!("{WORDS}\n{found}"),
+        words: format!("{WORDS}{summary}\nThe systems on which they differ:\n\n{differ}"),
         columns,
         rows,
     }
     .write();
 }
 
-/// What came out over one span, a paragraph.
-fn in_words(orbits: f64, outcomes: &[Outcome]) -> String {
-    let same = outcomes.iter().filter(|o| o.symplectic.verdict == o.adaptive.verdict).count();
-    let regular = outcomes.iter().filter(|o| o.ends.is_some()).count();
-    let within = outcomes.iter().filter(|o| o.ends.is_some_and(agrees)).count();
-    let unstable = |v: Verdict| matches!(v, Verdict::Chaotic | Verdict::Lost);
-    let merged = |o: &&Outcome| {
-        let (s, a) = (o.symplectic.verdict, o.adaptive.verdict);
-        s == a || (unstable(s) && unstable(a))
+const SUMMARY: &str = "
+| orbits | asked | schemes | same verdict | limit | met | of those that stayed together | of those that parted | chaotic and lost as one | adaptive and near | regular ends within limit |
+| --- | --- | --- | --- | --- | --- | --- | --- | --- | --- | --- |
+";
+
+/// What came out of one comparison, a line of the summary.
+fn in_short(case: &Case, outcomes: &[Outcome]) -> String {
+    let count = |which: &dyn Fn(&Outcome) -> bool| outcomes.iter().filter(|o| which(o)).count();
+    let same = count(&Outcome::agrees);
+    let together = count(&|o| o.parted.is_none());
+    let scheme = |name: &str| format!("{name} {}", count(&|o| o.symplectic.scheme == name));
+    let held = case.orbits == CASES[0].orbits && case.asked <= HELD;
+    let cells = [
+        case.orbits.to_string(),
+        format!("{:e}", case.asked),
+        ["(2,2)", "(8,4)", "(10,6,4)", ADAPTIVE].map(scheme).join(", "),
+        same.to_string(),
+        if held { "49" } else { "" }.to_string(),
+        if held { met((SYSTEMS - same) as f64, 1.0) } else { String::new() },
+        format!("{} of {together}", count(&|o| o.parted.is_none() && o.agrees())),
+        format!("{} of {}", count(&|o| o.parted.is_some() && o.agrees()), SYSTEMS - together),
+        count(&|o| o.agrees() || (is_unstable(&o.symplectic) && is_unstable(&o.adaptive))).to_string(),
+        count(&|o| o.near == o.adaptive.verdict).to_string(),
+        format!("{} of {}", count(&|o| o.ends.is_some_and(agrees)), count(&|o| o.ends.is_some())),
+    ];
+    format!("| {} |\n", cells.join(" | "))
+}
+
+/// The systems on which the engines differ, a sentence each.
+fn differing(case: &Case, outcomes: &[Outcome], systems: &[Configuration]) -> String {
+    let differ = outcomes.iter().enumerate().filter(|(_, o)| !o.agrees());
+    let one = |(k, o): (usize, &Outcome)| {
+        let period = innermost_period_day(&systems[k]);
+        let end = |a: &Assessment| format!("{} at {:.0}", a.verdict.word(), a.end_time_day / period);
+        let number = |x: Option<f64>| x.map_or("unknown".to_string(), |x| format!("{x:.0}"));
+        format!(
+            "* {} orbits, {:e} asked, system {}: {} by the symplectic, {} by the adaptive engine, {} from the start next to it; λT {}, parted after {} orbits.\n",
+            case.orbits,
+            case.asked,
+            k + 1,
+            end(&o.symplectic),
+            end(&o.adaptive),
+            o.near.word(),
+            number(o.growth),
+            number(o.parted),
+        )
     };
-    let merged = outcomes.iter().filter(merged).count();
-    let count = |verdict| outcomes.iter().filter(|o| o.adaptive.verdict == verdict).count();
-    format!(
-        "Found over {orbits} orbits: the same verdict on {same} of {SYSTEMS} ({}), with chaotic and lost taken together on {merged}; of {regular} regular systems {within} end \
-         within the limit ({}). Adaptive verdicts: {} regular, {} chaotic, {} lost, {} undecided, {} untrusted.\n\n",
-        if same + 1 >= SYSTEMS { "met" } else { "NOT met" },
-        if regular == within { "met" } else { "NOT met" },
-        count(Verdict::Regular),
-        count(Verdict::Chaotic),
-        count(Verdict::Lost),
-        count(Verdict::Undecided),
-        count(Verdict::Untrusted),
-    )
+    differ.map(one).collect()
 }
 
-fn agrees([gap, expected, rounding]: [f64; 3]) -> bool {
-    gap <= 1.5 * expected + rounding
-}
-
-fn row(number: usize, orbits: f64, outcome: &Outcome, system: &Configuration) -> Vec<String> {
-    let Outcome { planets, symplectic: s, adaptive: a, ends } = outcome;
+fn row(number: usize, case: &Case, outcome: &Outcome, system: &Configuration) -> Vec<String> {
+    let Outcome { symplectic: s, adaptive: a, ends, .. } = outcome;
     let word = |yes: bool| if yes { "yes" } else { "NO" }.to_string();
     let maybe = |x: Option<f64>| x.map_or(String::new(), short);
-    let share = |x: &Assessment| short(x.end_time_day / (orbits * innermost_period_day(system)));
+    let period = innermost_period_day(system);
+    let share = |x: &Assessment| short(x.end_time_day / (case.orbits * period));
     vec![
-        orbits.to_string(),
+        case.orbits.to_string(),
+        format!("{:e}", case.asked),
         number.to_string(),
-        planets.to_string(),
+        system.planets.len().to_string(),
         s.verdict.word().to_string(),
         a.verdict.word().to_string(),
-        word(s.verdict == a.verdict),
+        word(outcome.agrees()),
         maybe(s.megno),
         maybe(a.megno),
         share(s),
@@ -141,6 +186,10 @@ fn row(number: usize, orbits: f64, outcome: &Outcome, system: &Configuration) ->
         maybe(s.energy_error),
         maybe(a.energy_error),
         s.scheme.to_string(),
+        format!("{:.0}", period / s.step_day),
+        maybe(outcome.growth),
+        outcome.near.word().to_string(),
+        maybe(outcome.parted),
         maybe(ends.map(|e| e[0])),
         maybe(ends.map(|e| e[1])),
         maybe(ends.map(|e| e[2])),
@@ -148,68 +197,29 @@ fn row(number: usize, orbits: f64, outcome: &Outcome, system: &Configuration) ->
     ]
 }
 
-fn system(random: &mut Random) -> Configuration {
-    let planets = random.between(2.0, 5.0) as usize;
-    let mut period = random.between(5.0, 30.0);
-    let mut text = format!(
-        "title = \"Drawn\"\n[star]\nmass = \"{} Msun\"\nradius = \"1 Rsun\"\n",
-        random.between(0.7, 1.2)
-    );
-    for k in 0..planets {
-        let mass = random.between(0.0, 40f64.ln()).exp();
-        text += &format!(
-            "[[planet]]\nname = \"{}\"\nperiod = \"{period} d\"\nmass = \"{mass} Mearth\"\nradius = \"2 Rearth\"\n\
-             eccentricity = {}\ninclination = \"{} deg\"\nascending_node = \"{} deg\"\nargument_of_pericentre = \"{} deg\"\n\
-             mean_anomaly = \"{} deg\"\n",
-            ["b", "c", "d", "e"][k],
-            random.between(0.0, 0.12),
-            90.0 + random.between(-2.0, 2.0),
-            random.between(-2.0, 2.0),
-            random.between(0.0, 360.0),
-            random.between(0.0, 360.0),
-        );
-        period *= random.between(1.25, 2.1);
-    }
-    configure(&parse_system("drawn.toml", &text).unwrap_or_else(|e| panic!("{e}")).system).unwrap()
-}
-
-fn outcome(system: &Configuration, orbits: f64) -> Outcome {
-    let symplectic_plan = plan(system, Span::Orbits(orbits), 1e-6);
+fn outcome(system: &Configuration, case: &Case) -> Outcome {
+    let symplectic_plan = plan(system, Span::Orbits(case.orbits), case.asked);
     let symplectic = assess(system, &symplectic_plan);
-    let adaptive = assess(system, &Plan { adaptive: true, ..symplectic_plan.clone() });
+    let adaptive_plan = Plan { adaptive: true, ..symplectic_plan.clone() };
+    let adaptive = assess(system, &adaptive_plan);
+    let near = assess(&last_digit(system), &adaptive_plan).verdict;
     let both = [&symplectic, &adaptive].iter().all(|a| a.verdict == Verdict::Regular);
-    let ends = both.then(|| ends(system, orbits, &symplectic_plan, symplectic.step_day));
-    Outcome { planets: system.planets.len(), symplectic, adaptive, ends }
+    let step_day = symplectic.step_day;
+    let ends = both.then(|| ends(system, case.orbits, &symplectic_plan, step_day));
+    let alive_day = symplectic.end_time_day.min(adaptive.end_time_day);
+    let known = both || symplectic.scheme == ADAPTIVE;
+    let parted = if known { None } else { parted_orbits(system, alive_day, &symplectic_plan, step_day) };
+    let growth = adaptive.lyapunov.map(|l| l.per_day * adaptive.end_time_day);
+    Outcome { symplectic, adaptive, near, ends, growth, parted }
 }
 
-/// Gap of the ends, the expected error of the step, and what rounding may add; rad.
-fn ends(system: &Configuration, orbits: f64, plan: &Plan, step_day: f64) -> [f64; 3] {
-    let start = state(system);
-    let day = orbits * innermost_period_day(system);
-    let steps = (day / step_day).ceil() as usize;
-    let coarse = symplectic_end(&start, plan, day, steps);
-    let fine = symplectic_end(&start, plan, day, 2 * steps);
-    let mut engine = Engine::from_state(&start, &[], &Forces::newton(), TOLERANCE).unwrap();
-    engine.advance(day, &Watch::default(), |_| ControlFlow::Continue(())).unwrap();
-    let kicks = (steps * plan.splitting().stages()) as f64;
-    let rounding = 3.0 * PI * orbits * 4.0 * f64::EPSILON * kicks.sqrt();
-    debug_assert!(rounding < TAU);
-    [apart(&coarse, &engine.state()), apart(&coarse, &fine) / 0.75, rounding]
+fn is_unstable(assessment: &Assessment) -> bool {
+    matches!(assessment.verdict, Verdict::Chaotic | Verdict::Lost)
 }
 
-fn symplectic_end(start: &State, plan: &Plan, day: f64, steps: usize) -> State {
-    let mut block = Block::in_coordinates(plan.coordinates, 1, start.gm.len());
-    let still = Tangent { pos: start.pos.clone(), vel: start.vel.clone() };
-    block.start(0, start, &still, day / steps as f64, 1.0);
-    to_map(&mut block, plan.splitting());
-    advance(Advance { block: &mut block, scheme: plan.splitting(), steps, tangent: false });
-    from_map(&mut block, plan.splitting());
-    block.state(0)
-}
-
-/// Largest distance of a planet's two places over its distance from the star.
-fn apart(a: &State, b: &State) -> f64 {
-    let length = |v: [f64; 3]| v.iter().map(|x| x * x).sum::<f64>().sqrt();
-    let each = a.pos.iter().zip(&b.pos);
-    each.map(|(p, q)| length([0, 1, 2].map(|k| p[k] - q[k])) / length(*q)).fold(0.0, f64::max)
+/// The same start, every velocity component larger by one part in 2⁵².
+fn last_digit(system: &Configuration) -> Configuration {
+    let mut near = system.clone();
+    near.planets.iter_mut().flat_map(|p| &mut p.velocity_au_day).for_each(|v| *v *= 1.0 + f64::EPSILON);
+    near
 }

@@ -6,8 +6,8 @@ use abide::system::Span;
 use abide::verdict::Verdict;
 use rayon::prelude::*;
 
-use super::fifty::systems;
 use super::fifty_passages::{Passage, in_words as passages_in_words, passages};
+use super::fifty_systems::systems;
 use super::random::Random;
 use super::report::Report;
 use super::truth_support::plan;

@@ -7,7 +7,7 @@ use abide::integrate::{Advance, Block, Scheme, StarTerms, State, Tangent, advanc
 use abide::lanes::WIDTH;
 
 use super::radau_support::planets::{EARTH, MOON_K_AU2};
-use super::radau_support::{LIGHT, Row, SUN_GM, distance, number, table, triple};
+use super::radau_support::{LIGHT, Row, SUN_GM, distance, table, triple};
 
 /// Semi-major axes, au, Mercury to Pluto.
 pub const AXES_AU: [f64; 9] = [0.387, 0.723, 1.0, 1.524, 5.203, 9.58, 19.2, 30.1, 39.5];
@@ -76,9 +76,11 @@ pub struct Truth {
 }
 
 impl Truth {
-    pub fn read(file: &str, names: &[String]) -> Truth {
+    /// The four models of reference-integrations.csv, and [`matched_model`] of those with relativity in full.
+    pub fn read(names: &[String]) -> Truth {
         let key = |r: &Row| (r["model"].clone(), r["years"].parse().unwrap(), r["body"].clone());
-        let rows: HashMap<_, _> = table(file).into_iter().map(|r| (key(&r), r)).collect();
+        let files = ["reference-integrations.csv", "rate-matched-integrations.csv"];
+        let rows: HashMap<_, _> = files.iter().flat_map(|file| table(file)).map(|r| (key(&r), r)).collect();
         let years = rows.keys().map(|k| k.1).collect();
         Truth { rows, names: names.to_vec(), years }
     }
@@ -91,33 +93,33 @@ impl Truth {
         years
     }
 
-    /// How far each body is from its stated place, au.
-    pub fn off(&self, model: &str, year: i32, at: &[[f64; 3]]) -> Vec<f64> {
-        let stated = |name: &String| {
+    fn stated(&self, model: &str, year: i32) -> Vec<[f64; 3]> {
+        let one = |name: &String| {
             let row = &self.rows[&(model.to_string(), year, name.clone())];
             triple(row, ["x_au", "y_au", "z_au"])
         };
-        self.names.iter().zip(at).map(|(name, at)| distance(&stated(name), at)).collect()
+        self.names.iter().map(one).collect()
     }
+
+    /// How far each body is from its stated place, au.
+    pub fn off(&self, model: &str, year: i32, at: &[[f64; 3]]) -> Vec<f64> {
+        self.stated(model, year).iter().zip(at).map(|(stated, at)| distance(stated, at)).collect()
+    }
+
+    /// What rate-matched velocities leave of relativity in full, au: the distance of the independent integrations of both, and
+    /// a tenth more.
+    pub fn unmatched_au(&self, model: &str, year: i32) -> Vec<f64> {
+        let left = self.off(model, year, &self.stated(&matched_model(model), year));
+        left.iter().map(|au| 1.1 * au).collect()
+    }
+}
+
+/// The model that the symplectic scheme has for one with relativity in full.
+pub fn matched_model(model: &str) -> String {
+    format!("{}|rate-matched-start", model.replace("1pn", "potential"))
 }
 
 /// Revolutions of a body in so many years.
 pub fn turns(body: usize, year: i32) -> f64 {
     f64::from(year.abs()) / AXES_AU[body].powf(1.5)
-}
-
-/// What rate-matched velocities may leave, au: 10 GM/c² of periodic terms, and what closed form and fit of
-/// tests/truth/start-corrections.csv do not share of the mean motion.
-pub fn unmatched_au(year: i32) -> Vec<f64> {
-    let rows: Vec<Row> = table("start-corrections.csv");
-    let light = LIGHT * LIGHT;
-    let one = |body: usize| {
-        let (closed, fitted) =
-            (number(&rows[body], "potential_dv_over_v"), &rows[body]["potential_dv_over_v_fitted"]);
-        let power: i32 = fitted.rsplit('e').next().unwrap().parse().unwrap();
-        let missed = (closed - fitted.parse::<f64>().unwrap()).abs() + 0.5e-4 * 10f64.powi(power);
-        let phase = 3.0 * std::f64::consts::TAU * turns(body, year) * missed;
-        phase * AXES_AU[body] + 10.0 * SUN_GM / light
-    };
-    (0..9).map(one).collect()
 }

@@ -11,9 +11,11 @@ mod engine;
 mod error;
 mod event;
 mod nodes;
+mod pair;
 mod pass;
 mod phase;
 mod step;
+mod weights;
 
 pub use bodies::Bodies;
 pub use engine::{Engine, RadauWork, StepLimits, Stop, TOLERANCE};

@@ -4,8 +4,9 @@
 //! coefficients are divided differences that a new force value changes one at a time (Everhart 1985).
 
 use super::super::forces::{Cast, Forces};
-use super::nodes::{NODES, STAGES, TABLE, WEIGHTS};
+use super::nodes::{STAGES, TABLE, WEIGHTS};
 use super::phase::{Phase, two_sum};
+use super::weights::{AT_NODE, END, Series, Weights};
 
 /// More sweeps than this in one step and the step is too long.
 const MOST_SWEEPS: u32 = 16;
@@ -51,36 +52,6 @@ pub(super) struct Step {
     pub evaluations: u64,
     pub pairs: u64,
 }
-
-/// Weights of F₀, B₁ … B₇ in velocity (per length) and position (per length²) at s.
-#[derive(Clone, Copy)]
-struct Weights {
-    s: f64,
-    vel: [f64; STAGES + 1],
-    at: [f64; STAGES + 1],
-}
-
-const fn weights(s: f64) -> Weights {
-    let mut all = Weights { s, vel: [0.0; STAGES + 1], at: [0.0; STAGES + 1] };
-    let (mut power, mut k) = (s, 0);
-    while k <= STAGES {
-        all.vel[k] = power / (k + 1) as f64;
-        power *= s;
-        all.at[k] = power / ((k + 1) * (k + 2)) as f64;
-        k += 1;
-    }
-    all
-}
-
-const AT_NODE: [Weights; STAGES + 1] = {
-    let mut all = [weights(0.0); STAGES + 1];
-    let mut i = 1;
-    while i <= STAGES {
-        all[i] = weights(NODES[i]);
-        i += 1;
-    }
-    all
-};
 
 impl Step {
     pub fn new(len: usize) -> Step {
@@ -228,14 +199,14 @@ impl Step {
         let (vel, vel_low) = (&start.vel[..len], &start.vel_low[..len]);
         let (to, to_low) = (&mut self.node.at[..len], &mut self.node.at_low[..len]);
         for c in 0..len {
-            let bent = square * weigh(&weights.at, force, &b, c);
+            let bent = square * weights.at.sum(force, &b, c);
             let moved = drift * vel[c] + (drift * vel_low[c] + bent);
             (to[c], to_low[c]) = two_sum(at[c], moved + at_low[c]);
         }
         if velocities {
             let to = &mut self.node.vel[..len];
             for c in 0..len {
-                to[c] = vel[c] + (length * weigh(&weights.vel, force, &b, c) + vel_low[c]);
+                to[c] = vel[c] + (length * weights.vel.sum(force, &b, c) + vel_low[c]);
             }
         }
     }
@@ -296,21 +267,20 @@ impl Step {
 
     /// The state at the end of the step.
     pub fn finish(&self, start: &Phase, end: &mut Phase) {
-        const END: Weights = weights(1.0);
         let (length, square) = (self.length, self.length * self.length);
         let b: [&[f64]; STAGES] = self.b.each_ref().map(|b| b.as_slice());
         for c in 0..self.force.len() {
-            let bent = square * weigh(&END.at, &self.force, &b, c);
+            let bent = square * END.at.sum(&self.force, &b, c);
             let moved = length * start.vel[c] + (length * start.vel_low[c] + bent);
             (end.at[c], end.at_low[c]) = two_sum(start.at[c], moved + start.at_low[c]);
-            let change = length * weigh(&END.vel, &self.force, &b, c);
+            let change = length * END.vel.sum(&self.force, &b, c);
             (end.vel[c], end.vel_low[c]) = two_sum(start.vel[c], change + start.vel_low[c]);
         }
     }
 
     /// Puts the middle of the step, by the polynomial, where [`Step::node`] shows it.
     pub fn place_middle(&mut self, start: &Phase) {
-        const MIDDLE: Weights = weights(0.5);
+        const MIDDLE: Weights = Weights::plain(0.5);
         self.place(&MIDDLE, start, true);
     }
 
@@ -321,12 +291,11 @@ impl Step {
 
     /// Separation and relative velocity of two bodies at s of the step, by the polynomial.
     pub fn apart(&self, start: &Phase, i: usize, j: usize, s: f64) -> ([f64; 3], [f64; 3]) {
-        let weights = weights(s);
+        let weights = Weights::plain(s);
         let b: [&[f64]; STAGES] = self.b.each_ref().map(|b| b.as_slice());
         let (d, v) = start.apart(i, j);
-        let between = |w: &[f64; STAGES + 1], k: usize| {
-            weigh(w, &self.force, &b, 3 * j + k) - weigh(w, &self.force, &b, 3 * i + k)
-        };
+        let between =
+            |w: &Series, k: usize| w.sum(&self.force, &b, 3 * j + k) - w.sum(&self.force, &b, 3 * i + k);
         let (length, square) = (self.length, self.length * self.length);
         (
             [0, 1, 2].map(|k| d[k] + (s * length * v[k] + square * between(&weights.at, k))),
@@ -366,16 +335,6 @@ impl Step {
         }
         tail
     }
-}
-
-/// Smallest terms first.
-#[inline(always)]
-fn weigh(weights: &[f64; STAGES + 1], force: &[f64], b: &[&[f64]; STAGES], c: usize) -> f64 {
-    let mut sum = weights[STAGES] * b[STAGES - 1][c];
-    for k in (1..STAGES).rev() {
-        sum += weights[k] * b[k - 1][c];
-    }
-    sum + weights[0] * force[c]
 }
 
 /// Binomial coefficients.
