@@ -2,9 +2,9 @@
 
 use std::f64::consts::TAU;
 
-use abide::integrate::{Scheme, State};
+use abide::integrate::{Coordinates, Scheme, State};
 
-use super::{placed, state, worst_energy};
+use super::{placed, state, worst_energy_in};
 
 /// Measured slopes of one scheme. Generalised order (n₁, …, n_last): error = O(ε hⁿ¹) + … + O(εᵏ hⁿˡᵃˢᵗ), relative.
 #[derive(Clone, Debug)]
@@ -33,18 +33,21 @@ fn near(mass_ratio: f64) -> State {
 }
 
 /// Largest relative energy error over twelve inner revolutions.
-pub fn energy_error(start: &State, scheme: &Scheme, per_orbit: usize) -> f64 {
-    worst_energy(start, scheme, TAU / per_orbit as f64, 12 * per_orbit, 1)
+pub fn energy_error(coordinates: Coordinates, start: &State, scheme: &Scheme, per_orbit: usize) -> f64 {
+    worst_energy_in(coordinates, start, scheme, TAU / per_orbit as f64, 12 * per_orbit, 1)
 }
 
 /// Measures a scheme.
-pub fn slopes(scheme: &'static Scheme) -> Slopes {
-    let orders: Vec<i32> =
-        scheme.name.trim_matches(['(', ')']).split(',').map(|n| n.parse().unwrap()).collect();
+pub fn slopes(coordinates: Coordinates, scheme: &'static Scheme) -> Slopes {
+    let orders = scheme.orders();
     // The higher the order, the longer the steps at which its term still stands above rounding.
-    let (coarse, fine) = if orders[0] < 8 { (8, 16) } else { (3, 5) };
-    let first = |ratio: f64, per_orbit| energy_error(&far(ratio), scheme, per_orbit);
-    let last = |ratio: f64, per_orbit| energy_error(&near(ratio), scheme, per_orbit);
+    let (coarse, fine) = match orders[0] {
+        0..=5 => (8, 16),
+        6..=7 => (4, 8),
+        _ => (3, 5),
+    };
+    let first = |ratio: f64, per_orbit| energy_error(coordinates, &far(ratio), scheme, per_orbit);
+    let last = |ratio: f64, per_orbit| energy_error(coordinates, &near(ratio), scheme, per_orbit);
     Slopes {
         scheme,
         orders,
