@@ -147,8 +147,8 @@ fn tangent_is_the_derivative_of_each_map() {
     }
 }
 
-/// Growth and MEGNO of a regular orbit do not depend on the scheme that carries it: samples come at the same place in every
-/// step, wherever a scheme begins.
+/// MEGNO of a regular orbit does not depend on the scheme that carries it, but for where in its step the first sample is
+/// taken, on which the slow logarithm rests: 0.03 of Y here between the earliest and the latest.
 #[test]
 fn every_scheme_measures_the_same_growth() {
     for coordinates in BOTH {
@@ -158,7 +158,7 @@ fn every_scheme_measures_the_same_growth() {
             let found = of(scheme);
             assert_eq!(found.samples, best.samples);
             let label = format!("{} {coordinates:?}: {found:?} {best:?}", scheme.name);
-            println!("{label}");
+            assert!((found.y - best.y).abs() < 0.05 && (found.mean_y - best.mean_y).abs() < 0.01, "{label}");
         }
     }
 }
@@ -173,11 +173,19 @@ fn the_stars_terms_keep_the_order() {
         advance(Advance { block: &mut block, scheme, steps: 24 * per_unit, tangent: true });
         block.state(0)
     };
+    let mut compared = 0;
     for coordinates in BOTH {
         let truth = end(coordinates, Scheme::named("(8,6,4)").unwrap(), 128);
         for scheme in Scheme::all().iter().filter(|s| s.least_order() == 2) {
             let [coarse, fine] = [32, 64].map(|per_unit| gap(&end(coordinates, scheme, per_unit), &truth));
-            println!("{} {coordinates:?}: {coarse:e} {fine:e} {}", scheme.name, coarse / fine);
+            let found = coarse / fine;
+            assert!(
+                (found - 4.0).abs() < 0.1,
+                "{} {coordinates:?}: {coarse:e} {fine:e} {found}",
+                scheme.name
+            );
+            compared += 1;
         }
     }
+    assert_eq!(compared, 24);
 }
