@@ -67,6 +67,13 @@ pub enum SchemeWhy {
     },
 }
 
+impl SchemeWhy {
+    /// Whether there was anything to choose.
+    pub fn is_choice(&self) -> bool {
+        matches!(self, SchemeWhy::Tried { .. })
+    }
+}
+
 impl fmt::Display for SchemeWhy {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         let SchemeWhy::Tried { chosen, each, dearer, at_asked_step } = self else {

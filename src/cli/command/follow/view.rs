@@ -6,8 +6,8 @@ use super::motion;
 use super::why::{Why, megno};
 use super::wish::{Wish, count};
 use crate::assess::{
-    ADAPTIVE, Analysed, Assessment, Extent, FEWEST_STEPS_PER_PASSAGE, Range, SchemeWhy, StepWhy,
-    innermost_period_day, outermost_period_day,
+    ADAPTIVE, Analysed, Assessment, Extent, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
+    outermost_period_day,
 };
 use crate::cli::CliError;
 use crate::cli::command::inspect::table::{lines, significant, wrapped};
@@ -152,11 +152,11 @@ impl<'a> View<'a> {
 
     /// [`View::scheme`] with the reason for the choice, where there was one to make.
     fn scheme_and_why(&self) -> String {
-        match &self.wish.plan.scheme_why {
-            why @ SchemeWhy::Tried { .. } if self.assessment.scheme != ADAPTIVE => {
-                format!("{}. Chosen: {why}", self.scheme())
-            }
-            _ => self.scheme(),
+        let why = &self.wish.plan.scheme_why;
+        if why.is_choice() && self.assessment.scheme != ADAPTIVE {
+            format!("{}. Chosen: {why}", self.scheme())
+        } else {
+            self.scheme()
         }
     }
 
@@ -346,7 +346,6 @@ impl<'a> View<'a> {
             "energy_error_asked": self.wish.plan.energy_error,
             "angular_momentum_error": a.angular_momentum_error,
             "scheme": a.scheme,
-            "scheme_why": self.wish.plan.scheme_why.to_string(),
             "compensated": self.wish.plan.compensated,
             "step_d": a.step_day,
             "step_why": self.wish.plan.step_why.to_string(),
