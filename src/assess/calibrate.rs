@@ -148,14 +148,14 @@ struct Runs<'a> {
 impl Runs<'_> {
     /// Trials of all schemes in the order of their cost until one meets the target: so it is the cheapest that does.
     fn cheapest(&self, schemes: &[&'static Scheme]) -> Found {
-        let first = |scheme: &&'static Scheme| Next {
-            scheme: *scheme,
+        let first = |scheme: &'static Scheme| Next {
+            scheme,
             steps_per_passage: STEPS_PER_PASSAGE,
             left: TRIALS,
             best: f64::INFINITY,
             fruitless: 0,
         };
-        let mut open: Vec<Next> = schemes.iter().map(first).collect();
+        let mut open: Vec<Next> = schemes.iter().copied().map(first).collect();
         let mut trials: Vec<Trial> = Vec::new();
         while let Some(at) = (0..open.len()).min_by(|a, b| open[*a].cost().total_cmp(&open[*b].cost())) {
             let trial = self.trial(open[at].scheme, open[at].steps_per_passage);
