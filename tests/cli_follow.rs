@@ -41,6 +41,7 @@ fn leaves_series_and_figure_and_prints_the_verdict() {
         "span ",
         "orbits of c",
         "scheme     (2,2)",
+        "Chosen:",
         "step ",
         "energy ",
         "(1e-6 asked)",

@@ -34,7 +34,17 @@ fn the_manifest_says_program_input_host_plan_and_columns() {
     assert!(!manifest["host"].as_str().unwrap().is_empty());
     assert!(manifest["started"].as_str().unwrap().ends_with('Z'));
     assert!(manifest["plan"]["span_day"].as_f64().unwrap() > 2000.0);
-    assert!(!manifest["plan"]["step_why"].as_str().unwrap().is_empty());
+    for (key, words) in [("step_why", "err by at most"), ("scheme_why", "in short runs")] {
+        let why = manifest["plan"][key].as_str().unwrap();
+        assert!(why.contains(words), "{key}: {why}");
+    }
+    let summary = desk.text("out/summary.txt");
+    for words in [
+        "  why        the fewest kicks per passage",
+        "  why        short runs of 3 configurations (2 more were lost in them)",
+    ] {
+        assert!(summary.contains(words), "{words}: {summary}");
+    }
     let columns: Vec<&str> =
         manifest["journal_columns"].as_array().unwrap().iter().map(|c| c.as_str().unwrap()).collect();
     assert_eq!(&columns[..3], ["cell", "c.period", "c.eccentricity"]);

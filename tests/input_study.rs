@@ -292,7 +292,7 @@ fn compensated_sums() {
 #[test]
 fn later_work_is_refused_as_such() {
     let not_yet = |text: String, line, column| check(&text, Fault::NotYet, line, column, &["this version"]);
-    not_yet(changed("\"(2,2)\"", "\"(6,2)\""), 20, 10);
+    not_yet(format!("{STUDY}seed = 3\n"), 24, 1);
     not_yet(format!("{STUDY}[samples]\nfile = \"p.csv\"\n"), 24, 2);
 }
 

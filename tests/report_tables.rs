@@ -249,6 +249,8 @@ fn the_summary_counts_and_says_what_was_done() {
         "energy error median 3.6e-9, 95 % of cells below 8.1e-9, largest 8.1e-9 (target 1e-7)",
         "scheme       (2,2) with corrector",
         "step         0.42 d (1/20 of the shortest pericentre passage)",
+        &format!("  why        {}", plan().scheme_why),
+        &format!("  why        {}", plan().step_why.outcome().unwrap()),
     ] {
         assert!(text.lines().any(|l| l == line), "missing {line:?} in\n{text}");
     }

@@ -17,6 +17,7 @@ use crate::integrate::{Block, StarTerms, State, to_map};
 use crate::observe::{ConservedWatch, ExtentWatch, GrowthRecord, Moment};
 use crate::verdict::{CHAOTIC_FROM, Evidence, LostHow, Verdict, judge};
 use displacement::generic_tangent;
+pub(super) use limits::RESOLVE_HILL;
 use limits::{Limits, Pair};
 use long_watch::LongWatch;
 

@@ -11,6 +11,7 @@ mod physics;
 mod plan;
 mod samples;
 mod series;
+mod why;
 
 pub use analysis::{
     Analysed, Analysis, AngleAnalysed, DriftFrom, NotAnalysed, Sampling, analyse, angle_series,
@@ -20,8 +21,9 @@ pub use batch::{BatchWork, assess, run_batch};
 pub use cell::ADAPTIVE;
 pub use one::{FollowProgress, Follower, follow, plan_for_rows};
 pub use plan::{
-    CoordinatesWhy, FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, StepWhy, auto_step_day,
-    innermost_period_day, outermost_period_day,
+    FEWEST_STEPS_PER_PASSAGE, Plan, STEPS_PER_PASSAGE, auto_step_day, innermost_period_day,
+    outermost_period_day,
 };
 pub use samples::{MOST_SAMPLES, Samples, Track};
 pub use series::Row;
+pub use why::{CoordinatesWhy, SchemeWhy, StepWhy, Trial};

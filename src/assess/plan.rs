@@ -1,9 +1,8 @@
 //! What will be done to every cell of a study, decided before anything runs.
 
-use std::fmt;
-
 use super::calibrate::calibrate;
 use super::physics::{has_companion, massless};
+use super::why::{CoordinatesWhy, HEAVY, SchemeWhy, StepWhy};
 use crate::coords::{BodyKind, Configuration};
 use crate::integrate::{Block, Coordinates, SAMPLE_EVERY, Scheme};
 use crate::kepler::pericentre_passage_day;
@@ -37,80 +36,26 @@ const FEWEST_BLOCKS: f64 = 32.0;
 /// Default escape distance in units of the largest apocentre.
 const ESCAPE_APOCENTRES: f64 = 20.0;
 
-/// Why the step is what it is (a value, so that it can be tested, stored and printed).
-#[derive(Clone, Debug, PartialEq)]
-pub enum StepWhy {
-    /// So many steps in the shortest pericentre passage time scale of each cell's own orbits; with the largest energy
-    /// error of the short runs that settled it and how many configurations they followed.
-    Pericentre { steps_per_passage: f64, trial: Option<(f64, usize)> },
-    /// The study asked for it; how many steps it makes per passage in the stated configuration.
-    Asked { steps_per_passage: f64 },
-}
-
-/// Why the coordinates are what they are.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum CoordinatesWhy {
-    Asked,
-    /// A second star makes a hierarchy.
-    Companion,
-    /// A planet heavier than this share of the star.
-    Heavy,
-    /// Every planet is much lighter than the star, where heliocentric coordinates are as exact and cheaper.
-    Light,
-}
-
-/// Above this share of the star's mass the star's own motion (the jump) is no small part of B.
-const HEAVY: f64 = 0.03;
-
-impl fmt::Display for CoordinatesWhy {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        match self {
-            CoordinatesWhy::Asked => f.write_str("as asked"),
-            CoordinatesWhy::Companion => f.write_str("a second star makes a hierarchy"),
-            CoordinatesWhy::Heavy => write!(f, "a planet has more than {HEAVY} of the star's mass"),
-            CoordinatesWhy::Light => f.write_str("the planets are light, and these are the cheaper"),
-        }
-    }
-}
-
-fn coordinates(choice: CoordinateChoice, nominal: &Configuration) -> (Coordinates, CoordinatesWhy) {
-    let heaviest = nominal.planets.iter().map(|p| p.gm).fold(0.0, f64::max);
+/// The choice, or what the heaviest planet of the stated configuration and the corners asks for.
+fn coordinates(
+    choice: CoordinateChoice,
+    nominal: &Configuration,
+    corners: &[Configuration],
+) -> (Coordinates, CoordinatesWhy) {
+    let share = |one: &Configuration| {
+        let planets = one.planets.iter().filter(|p| p.kind == BodyKind::Planet);
+        planets.map(|p| p.gm).fold(0.0, f64::max) / one.star_gm
+    };
+    let (stated, extreme) = (share(nominal), corners.iter().map(share).fold(0.0, f64::max));
     match choice {
         CoordinateChoice::Heliocentric => (Coordinates::Heliocentric, CoordinatesWhy::Asked),
         CoordinateChoice::Jacobi => (Coordinates::Jacobi, CoordinatesWhy::Asked),
         CoordinateChoice::Auto if has_companion(nominal) => (Coordinates::Jacobi, CoordinatesWhy::Companion),
-        CoordinateChoice::Auto if heaviest > HEAVY * nominal.star_gm => {
-            (Coordinates::Jacobi, CoordinatesWhy::Heavy)
+        CoordinateChoice::Auto if stated.max(extreme) > HEAVY => {
+            let (share, in_a_corner) = (stated.max(extreme), extreme > stated);
+            (Coordinates::Jacobi, CoordinatesWhy::Heavy { share, in_a_corner })
         }
         CoordinateChoice::Auto => (Coordinates::Heliocentric, CoordinatesWhy::Light),
-    }
-}
-
-impl fmt::Display for StepWhy {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        match self {
-            StepWhy::Pericentre { steps_per_passage, trial } => {
-                write!(
-                    f,
-                    "{steps_per_passage:.0} steps in the shortest pericentre passage of each configuration"
-                )?;
-                if let Some((error, configurations)) = trial {
-                    let s = if *configurations == 1 { "" } else { "s" };
-                    write!(
-                        f,
-                        "; short runs of {configurations} configuration{s} err by at most {error:.1e} then"
-                    )?;
-                }
-                Ok(())
-            }
-            StepWhy::Asked { steps_per_passage } => {
-                write!(f, "as asked; {steps_per_passage:.1} steps in the shortest pericentre passage")?;
-                if *steps_per_passage < FEWEST_STEPS_PER_PASSAGE {
-                    write!(f, "; below {FEWEST_STEPS_PER_PASSAGE} step resonance can feign chaos")?;
-                }
-                Ok(())
-            }
-        }
     }
 }
 
@@ -123,6 +68,7 @@ pub struct Plan {
     pub step_why: StepWhy,
     /// "(2,2)" with corrector.
     pub scheme: &'static str,
+    pub scheme_why: SchemeWhy,
     pub coordinates: Coordinates,
     pub coordinates_why: CoordinatesWhy,
     /// Of the elements that are observed: astrocentric, or Jacobi where planets circle a pair of stars.
@@ -199,13 +145,14 @@ impl Plan {
             Encounter::Stop { hill } => Some(hill),
             Encounter::Off | Encounter::Resolve => None,
         };
-        let (coordinates, coordinates_why) = coordinates(engine.coordinates, nominal);
+        let (coordinates, coordinates_why) = coordinates(engine.coordinates, nominal, corners);
         let resolve = limits.encounter == Encounter::Resolve;
         let plan = Plan {
             span_day,
             step_day,
             step_why,
             scheme,
+            scheme_why: SchemeWhy::Asked,
             coordinates,
             coordinates_why,
             frame: nominal.own_frame(),

@@ -60,7 +60,8 @@ pub struct FollowArgs {
     /// Step: "auto", a time such as "0.5 d", or "30 per orbit" of the innermost planet
     #[arg(long, default_value = "auto", allow_hyphen_values = true)]
     pub step: String,
-    /// Splitting: "auto", or a generalised order such as "(2,2)" or "(10,6,4)"
+    /// Splitting: "auto", or a generalised order: "(2,2)" (with corrector), "(4,2)" to "(12,2)", "(8,4)", "(10,4)",
+    /// "(8,6,4)", "(10,6,4)"; "(2,2) kick-first" to "(12,2) kick-first" begin each step with a kick
     #[arg(long, default_value = "auto")]
     pub scheme: String,
     /// Coordinates of the splitting

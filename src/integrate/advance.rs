@@ -190,33 +190,33 @@ fn steps<
     read_low(block, from, low);
     let beside = read_beside(block, from, satellites);
     let pulling = if BESIDE { block.pulling() } else { planets };
-    let (a, b) = (&scheme.a[..], &scheme.b[..]);
-    let kicks = *steps * b.len();
+    let stages = scheme.stages();
+    let rounds = *steps * stages;
     let (mut step, mut stage) = (0, 0);
     let active = own.map(|own| own.active);
     // One place for drift and one for kick: each is a large piece of code.
-    for done in 0..=kicks {
-        let merged = stage == 0 && 0 < done && done < kicks;
-        let length = if merged { 2.0 * a[0] } else { a[if done == kicks { b.len() } else { stage }] };
-        let mut h = [R::splat(length); GROUPS];
-        for g in 0..GROUPS {
-            h[g] = own[g].h * h[g];
+    for round in 0..=rounds {
+        let (drift, kick) = scheme.round(stage, round == 0, round == rounds);
+        if let Some(length) = drift {
+            let mut h = [R::splat(length); GROUPS];
+            for g in 0..GROUPS {
+                h[g] = own[g].h * h[g];
+            }
+            if JACOBI {
+                drift_keeping::<R, TANGENT, false, LOW>(bodies, low, midway, &h, &active);
+            } else {
+                drift_keeping::<R, TANGENT, true, LOW>(bodies, low, midway, &h, &active);
+            }
         }
-        if JACOBI {
-            drift_keeping::<R, TANGENT, false, LOW>(bodies, low, midway, &h, &active);
-        } else {
-            drift_keeping::<R, TANGENT, true, LOW>(bodies, low, midway, &h, &active);
-        }
-        if done == kicks {
-            break;
-        }
-        let sampled = TANGENT && stage == 0 && step % SAMPLE_EVERY == 0;
+        let Some(impulse) = kick else { break };
+        // After the first drift of a step, so always at the same place within it.
+        let sampled = TANGENT && drift.is_some() && stage == 0 && step % SAMPLE_EVERY == 0;
         for (g, own) in own.iter_mut().enumerate() {
             let (bodies, pairs) = (of_group(bodies, g, planets), of_group(pairs, g, pairs_each));
             if sampled {
                 own.growth.sample(bodies);
             }
-            let h = own.h * R::splat(b[stage]);
+            let h = own.h * R::splat(impulse);
             if JACOBI {
                 let star_gm = own.star_gm;
                 jacobi::kick::<R, TANGENT, BESIDE, LOW>(
@@ -236,8 +236,11 @@ fn steps<
                 );
             }
         }
+        if drift.is_none() {
+            continue;
+        }
         stage += 1;
-        if stage == b.len() {
+        if stage == stages {
             (step, stage) = (step + 1, 0);
         }
     }

@@ -62,9 +62,12 @@ pub struct Summary {
     pub span: String,
     pub span_day: f64,
     pub scheme: &'static str,
+    pub scheme_why: String,
     /// Of the splitting, and why.
     pub coordinates: String,
     pub step: String,
+    /// What the short runs that settled the step said.
+    pub short_runs: Option<String>,
     pub energy_error_target: f64,
     pub held: String,
     pub convention: String,
@@ -114,8 +117,10 @@ impl Summary {
             span: words::span_words(study, plan, words::short),
             span_day: plan.span_day,
             scheme: plan.scheme,
+            scheme_why: plan.scheme_why.to_string(),
             coordinates: format!("{} ({})", plan.coordinates.words(), plan.coordinates_why),
             step: words::step_words(plan, records),
+            short_runs: plan.step_why.outcome(),
             energy_error_target: plan.energy_error,
             held: words::held_words(study, system),
             lyapunov_time_yr: Spread::of(chaotic_times_yr(records)),
@@ -166,8 +171,10 @@ impl Summary {
         lines.extend(self.indicator_lines());
         lines.push(format!("energy error {}", self.energy_words()));
         lines.push(format!("scheme       {}", words::scheme_words(self.scheme)));
+        lines.push(format!("  why        {}", self.scheme_why));
         lines.push(format!("coordinates  {}", self.coordinates));
         lines.push(format!("step         {}", self.step));
+        lines.extend(self.short_runs.iter().map(|words| format!("  why        {words}")));
         lines.push(format!(
             "redone       {} cells with smaller steps, {} cells by the adaptive engine",
             self.redone, self.adaptive
@@ -277,8 +284,10 @@ impl Summary {
             "span": self.span,
             "span_d": self.span_day,
             "scheme": self.scheme,
+            "scheme_why": self.scheme_why,
             "coordinates": self.coordinates,
             "step": self.step,
+            "short_runs": self.short_runs,
             "lyapunov_time_yr": self.lyapunov_time_yr.map(|s| json!({ "median": s.median, "largest": s.largest })),
             "frequency_drift": self.drift.iter().any(Option::is_some).then(|| json!({
                 "regular": self.drift[0].map(|[median, largest]| json!({ "median": median, "largest": largest })),

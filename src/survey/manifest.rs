@@ -36,6 +36,8 @@ pub struct Manifest {
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct PlanWords {
     pub scheme: String,
+    #[serde(default)]
+    pub scheme_why: String,
     pub coordinates: String,
     pub coordinates_why: String,
     #[serde(default)]
@@ -65,6 +67,7 @@ impl PlanWords {
     pub fn of(plan: &Plan, planets: &[String]) -> PlanWords {
         PlanWords {
             scheme: plan.scheme.to_string(),
+            scheme_why: plan.scheme_why.to_string(),
             coordinates: plan.coordinates.word().to_string(),
             coordinates_why: plan.coordinates_why.to_string(),
             compensated: plan.compensated,

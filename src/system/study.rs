@@ -116,13 +116,30 @@ pub enum Step {
     PerOrbit(f64),
 }
 
-/// The splittings that a study may name, beside "auto": their generalised orders, cheapest first.
-pub const SCHEMES: [&str; 7] = ["(2,2)", "(4,2)", "(8,2)", "(8,4)", "(10,4)", "(8,6,4)", "(10,6,4)"];
+/// The splittings that a study may name, beside "auto": their generalised orders, those whose steps begin with a kick last.
+pub const SCHEMES: [&str; 16] = [
+    "(2,2)",
+    "(4,2)",
+    "(6,2)",
+    "(8,2)",
+    "(10,2)",
+    "(12,2)",
+    "(8,4)",
+    "(10,4)",
+    "(8,6,4)",
+    "(10,6,4)",
+    "(2,2) kick-first",
+    "(4,2) kick-first",
+    "(6,2) kick-first",
+    "(8,2) kick-first",
+    "(10,2) kick-first",
+    "(12,2) kick-first",
+];
 
 /// In which coordinates the study wants its cells integrated.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Default)]
 pub enum CoordinateChoice {
-    /// Jacobi where a companion makes a hierarchy, else heliocentric.
+    /// Jacobi where a companion makes a hierarchy or a planet is heavy, else heliocentric.
     #[default]
     Auto,
     /// Democratic heliocentric.

@@ -6,7 +6,9 @@ pub mod order;
 
 use std::f64::consts::TAU;
 
-use abide::integrate::{Advance, Block, Scheme, State, Tangent, advance, energy, from_map, to_map};
+use abide::integrate::{
+    Advance, Block, Coordinates, Scheme, State, Tangent, advance, energy, from_map, to_map,
+};
 
 /// A problem with a known end.
 pub struct Problem {
@@ -42,8 +44,20 @@ pub fn gap(a: &State, b: &State) -> f64 {
 
 /// Largest |E − E₀|/|E₀| at every `every`-th step.
 pub fn worst_energy(start: &State, scheme: &Scheme, step: f64, steps: usize, every: usize) -> f64 {
+    worst_energy_in(Coordinates::Heliocentric, start, scheme, step, steps, every)
+}
+
+/// The same in the coordinates given.
+pub fn worst_energy_in(
+    coordinates: Coordinates,
+    start: &State,
+    scheme: &Scheme,
+    step: f64,
+    steps: usize,
+    every: usize,
+) -> f64 {
     let tangent = Tangent { pos: start.pos.clone(), vel: start.vel.clone() };
-    let mut block = Block::new(1, start.gm.len());
+    let mut block = Block::in_coordinates(coordinates, 1, start.gm.len());
     block.start(0, start, &tangent, step, 1.0);
     to_map(&mut block, scheme);
     let first = energy(start);

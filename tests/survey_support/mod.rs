@@ -26,6 +26,7 @@ pub fn plan() -> Plan {
         step_day: None,
         step_why: StepWhy::Pericentre { steps_per_passage: 20.0, trial: None },
         scheme: "(2,2)",
+        scheme_why: abide::assess::SchemeWhy::Asked,
         energy_error: 1e-7,
         escape_au: Some(100.0),
         encounter_hill: Some(1.0),

@@ -17,7 +17,7 @@ pub struct Curve {
 }
 
 /// One panel per system and coordinate set.
-pub fn draw(curves: &[Curve], file: &Path) {
+pub fn draw(curves: &[&Curve], file: &Path) {
     register_font("words", FontStyle::Normal, dejavu::sans::regular()).ok().unwrap();
     let page = BitMapBackend::new(file, (1500, 1250)).into_drawing_area();
     page.fill(&WHITE).unwrap();
@@ -32,7 +32,7 @@ pub fn draw(curves: &[Curve], file: &Path) {
         let set = if coordinates == Coordinates::Jacobi { "Jacobi" } else { "heliocentric" };
         let title = format!("{title}, {set} coordinates");
         let of = |c: &&Curve| c.system == system && c.coordinates == coordinates;
-        draw_panel(panel, &curves.iter().filter(of).collect::<Vec<_>>(), &title);
+        draw_panel(panel, &curves.iter().copied().filter(of).collect::<Vec<_>>(), &title);
     }
     page.present().unwrap();
 }

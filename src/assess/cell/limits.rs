@@ -10,7 +10,7 @@ use crate::verdict::LostHow;
 ///
 /// The kick's error grows like (Hill radius / distance)³ times the square of the step; at three Hill radii the planets'
 /// pull on each other is still a few percent of the star's tide, and the splitting holds.
-const RESOLVE_HILL: f64 = 3.0;
+pub(in crate::assess) const RESOLVE_HILL: f64 = 3.0;
 
 #[derive(Clone, Debug)]
 pub(super) struct Limits {

@@ -150,6 +150,16 @@ impl<'a> View<'a> {
         )
     }
 
+    /// [`View::scheme`] with the reason for the choice, where there was one to make.
+    fn scheme_and_why(&self) -> String {
+        let why = &self.wish.plan.scheme_why;
+        if why.is_choice() && self.assessment.scheme != ADAPTIVE {
+            format!("{}. Chosen: {why}", self.scheme())
+        } else {
+            self.scheme()
+        }
+    }
+
     fn step(&self) -> String {
         let a = self.assessment;
         let per_passage = self.passage.day / a.step_day;
@@ -254,7 +264,7 @@ impl<'a> View<'a> {
             ("span", self.span()),
             ("survival", self.survival()),
             ("chaos", self.chaos()),
-            ("scheme", self.scheme()),
+            ("scheme", self.scheme_and_why()),
             ("step", self.step()),
             ("energy", self.energy()),
             ("momentum", momentum),
