@@ -108,7 +108,7 @@ impl Samples {
         if !cell.blocks_done().is_multiple_of(self.stride) {
             return;
         }
-        self.whole.push(self.seen(&corrected.state(0)));
+        self.whole.push(self.seen(&cell.shown(corrected.state(0))));
         if self.settled.is_none() && self.whole.len() > MOST_SAMPLES {
             self.whole = std::mem::take(&mut self.whole).into_iter().step_by(2).collect();
             self.stride *= 2;
@@ -130,7 +130,7 @@ impl Samples {
         while next < per_block {
             let steps = (next - done) as usize;
             advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: false });
-            seen.push(self.seen(&as_true(&alone, plan).state(0)));
+            seen.push(self.seen(&cell.shown(as_true(&alone, plan).state(0))));
             done = next;
             next += windows.every;
         }
