@@ -111,6 +111,7 @@ fn near_the_star(physics: &str, axis_au: f64, eccentricity: f64, ahead_deg: f64)
     let text = format!(
         "title = \"Passing\"\n[star]\nmass = \"1 Msun\"\nradius = \"0.5 Rsun\"\n{physics}\n\
          [[planet]]\nname = \"b\"\nsemi_major_axis = \"0.04 au\"\nmass = \"10 Mearth\"\nradius = \"1.5 Rearth\"\n\
+         mean_anomaly = \"0 deg\"\n\
          [[planet]]\nname = \"c\"\nsemi_major_axis = \"{axis_au} au\"\nmass = \"10 Mearth\"\nradius = \"2.5 Rearth\"\n\
          eccentricity = {eccentricity}\nmean_anomaly = \"{ahead_deg} deg\"\n"
     );

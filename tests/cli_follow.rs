@@ -272,6 +272,7 @@ relativity = true
 name = "b"
 semi_major_axis = "0.04 au"
 mass = "10 Mearth"
+mean_anomaly = "0 deg"
 [[planet]]
 name = "c"
 semi_major_axis = "0.0445 au"
