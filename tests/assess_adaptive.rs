@@ -179,6 +179,9 @@ fn a_crash_course_ends_as_an_encounter_with_either_engine() {
     let late = lost.time_day - also.time_day;
     assert!(late >= 0.0 && late <= a.step_day, "{late} {} {a:?} {b:?}", a.step_day);
     assert!((b.smallest_approach.unwrap().hill - 1.0).abs() < 1e-12, "{b:?}");
+    assert!(b.energy_error.unwrap() < 1e-13, "{b:?}");
+    // It ended within its first block of 128 steps, at the end of which the momentum would have been looked at.
+    assert_eq!((b.steps < 128, b.angular_momentum_error), (true, None), "{b:?}");
     // Only contact ends what is not to end at encounters, and that is later.
     for encounter in [Encounter::Resolve, Encounter::Off] {
         for adaptive in [false, true] {

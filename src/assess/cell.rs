@@ -325,7 +325,10 @@ impl Cell {
             angle: if whole { self.long.angle() } else { None },
             smallest_approach: self.approach,
             energy_error,
-            angular_momentum_error: energy_error.map(|_| self.conserved.worst_momentum),
+            // The adaptive engine's own account of a block in which a cell ends has the energy only.
+            angular_momentum_error: energy_error
+                .filter(|_| self.blocks_done > 0 || !(self.adaptive || plan.resolve))
+                .map(|_| self.conserved.worst_momentum),
             passages,
             passage_energy_error: passages.filter(|blocks| *blocks > 0).map(|_| self.passage_error),
             scheme: if self.adaptive { ADAPTIVE } else { plan.scheme },

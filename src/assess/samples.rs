@@ -78,7 +78,7 @@ impl Samples {
     /// From the beginning, for the blocks that the cell has now.
     #[must_use]
     pub(super) fn again(&self, cell: &Cell, plan: &Plan) -> Samples {
-        let mut samples = Samples::new(cell.start(), self.frame, self.period_day);
+        let mut samples = Samples::new(cell.stated(), self.frame, self.period_day);
         samples.block_day = plan.span_day / cell.blocks() as f64;
         let per_block = plan.block_steps as u64;
         let every = (self.period_day / (PER_ORBIT * cell.step_day())).floor().max(1.0) as u64;

@@ -75,8 +75,8 @@ impl Cell {
         self.mean_megno
     }
 
-    /// As stated.
-    pub fn start(&self) -> &State {
+    /// The start as stated.
+    pub fn stated(&self) -> &State {
         &self.stated
     }
 

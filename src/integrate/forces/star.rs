@@ -200,8 +200,8 @@ mod tests {
         let light = 173.144_632_674;
         let gm = 2.959_122_08e-4;
         // Between a fall and a hyperbola, at the surface of a star like the Sun and further out.
-        for (distance, speed) in [(0.0047, 0.3), (0.0047, 1.2), (0.04, 0.9), (1.0, 1.0), (1.0, 3.0)] {
-            let v = speed * (gm / distance as f64).sqrt();
+        for (distance, speed) in [(0.0047_f64, 0.3_f64), (0.0047, 1.2), (0.04, 0.9), (1.0, 1.0), (1.0, 3.0)] {
+            let v = speed * (gm / distance).sqrt();
             let state = State {
                 star_gm: gm,
                 gm: vec![1e-3 * gm, 0.1 * gm],
