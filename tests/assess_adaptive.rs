@@ -2,7 +2,7 @@
 
 use std::path::Path;
 
-use abide::assess::{ADAPTIVE, Plan, assess};
+use abide::assess::{ADAPTIVE, Assessment, Plan, assess, follow};
 use abide::coords::{Configuration, configure};
 use abide::input::{parse_system, read_system};
 use abide::system::{Encounter, Engine, Limits, Span};
@@ -104,4 +104,130 @@ fn a_step_is_shortened_by_no_more_than_the_schemes_order_asks() {
             "{scheme}: {found} in {least} … {most}"
         );
     }
+}
+
+/// Two planets of ten earth masses in the star's plane, `c` further out at `axis_au`, ahead of `b` by `ahead_deg`.
+fn near_the_star(physics: &str, axis_au: f64, eccentricity: f64, ahead_deg: f64) -> Configuration {
+    let text = format!(
+        "title = \"Passing\"\n[star]\nmass = \"1 Msun\"\nradius = \"0.5 Rsun\"\n{physics}\n\
+         [[planet]]\nname = \"b\"\nsemi_major_axis = \"0.04 au\"\nmass = \"10 Mearth\"\nradius = \"1.5 Rearth\"\n\
+         mean_anomaly = \"0 deg\"\n\
+         [[planet]]\nname = \"c\"\nsemi_major_axis = \"{axis_au} au\"\nmass = \"10 Mearth\"\nradius = \"2.5 Rearth\"\n\
+         eccentricity = {eccentricity}\nmean_anomaly = \"{ahead_deg} deg\"\n"
+    );
+    configure(&parse_system("passing.toml", &text).unwrap().system).unwrap()
+}
+
+const RELATIVITY: &str = "[physics]\nrelativity = true";
+
+/// Forty steps per orbit of the scheme of the smallest error.
+fn fine(configuration: &Configuration, orbits: f64, encounter: Encounter) -> Plan {
+    let engine =
+        Engine { scheme: "(10,6,4)".to_string(), step: abide::system::Step::PerOrbit(40.0), ..engine(1e-6) };
+    let limits = Limits { escape_au: None, encounter, stop_when_chaotic: false };
+    Plan::new(Span::Orbits(orbits), &limits, &engine, configuration)
+}
+
+/// Handed to another law and back, the same passages cost 1.3e-7 at each kick: only the law of the scheme keeps the energy.
+#[test]
+fn the_passages_of_a_scheme_obey_its_law() {
+    for physics in ["", RELATIVITY] {
+        let configuration = near_the_star(physics, 0.0445, 0.04, 60.0);
+        let outcome = assess(&configuration, &fine(&configuration, 100.0, Encounter::Resolve));
+        assert_eq!((outcome.loss, outcome.redone), (None, 0), "{physics} {outcome:?}");
+        assert!(outcome.passages.unwrap() >= 2, "{physics} {outcome:?}");
+        assert!(outcome.passage_energy_error.unwrap() < 1e-13, "{physics} {outcome:?}");
+        assert!(outcome.energy_error.unwrap() < 1e-12, "{physics} {outcome:?}");
+        assert!(outcome.energy_error >= outcome.passage_energy_error);
+    }
+}
+
+/// What is told is in the velocities that were stated, not in those that give the potential its mean motion.
+#[test]
+fn the_first_row_is_the_stated_orbit_with_relativity_too() {
+    let configuration = near_the_star(RELATIVITY, 0.06, 0.04, 60.0);
+    let symplectic = fine(&configuration, 200.0, Encounter::Stop { hill: 1.0 });
+    let adaptive = Plan { adaptive: true, ..symplectic.clone() };
+    let told = |plan: &Plan| follow(&configuration, plan, 20, |_| true).unwrap();
+    let (a, b) = (told(&symplectic), told(&adaptive));
+    for (planet, axis_au) in [0.04, 0.06].into_iter().enumerate() {
+        for rows in [&a.1, &b.1] {
+            let first = rows[0].elements[planet].semi_major_axis_au;
+            assert!((first / axis_au - 1.0).abs() < 1e-13, "{first}");
+        }
+        // 6 GM/(c² r) = 1.5e-6 at 0.04 au is what the velocities differ by, twice that in the axis.
+        let middle = |outcome: &Assessment| {
+            let range = outcome.extent[planet].semi_major_axis_au;
+            0.5 * (range.min + range.max)
+        };
+        let apart = middle(&a.0) / middle(&b.0) - 1.0;
+        assert!(apart.abs() < 3e-7, "{planet}: {apart:e}");
+    }
+}
+
+#[test]
+fn a_crash_course_ends_as_an_encounter_with_either_engine() {
+    let configuration = near_the_star("", 0.0422, 0.0, 30.0);
+    let symplectic = fine(&configuration, 100.0, Encounter::Stop { hill: 1.0 });
+    let adaptive = Plan { adaptive: true, ..symplectic.clone() };
+    let (a, b) = (assess(&configuration, &symplectic), assess(&configuration, &adaptive));
+    assert_eq!((a.scheme, b.scheme), ("(10,6,4)", ADAPTIVE));
+    let (lost, also) = (a.loss.unwrap(), b.loss.unwrap());
+    assert_eq!((lost.how, lost.planet, lost.other), (LostHow::Encounter, also.planet, also.other));
+    assert_eq!(also.how, LostHow::Encounter);
+    // The kernel notices at the end of the step, the adaptive engine where it happens.
+    let late = lost.time_day - also.time_day;
+    assert!(late >= 0.0 && late <= a.step_day, "{late} {} {a:?} {b:?}", a.step_day);
+    assert!((b.smallest_approach.unwrap().hill - 1.0).abs() < 1e-12, "{b:?}");
+    assert!(b.energy_error.unwrap() < 1e-13, "{b:?}");
+    // It ended within its first block of 128 steps, at the end of which the momentum would have been looked at.
+    assert_eq!((b.steps < 128, b.angular_momentum_error), (true, None), "{b:?}");
+    // Only contact ends what is not to end at encounters, and that is later.
+    for encounter in [Encounter::Resolve, Encounter::Off] {
+        for adaptive in [false, true] {
+            let plan = Plan { adaptive, ..fine(&configuration, 100.0, encounter) };
+            let through = assess(&configuration, &plan);
+            assert!(through.loss.is_none_or(|loss| loss.how == LostHow::Collision), "{through:?}");
+            assert!(through.end_time_day > lost.time_day, "{through:?}");
+        }
+    }
+}
+
+#[test]
+fn a_collision_is_as_near_as_the_radii_say() {
+    let configuration = near_the_star("", 0.0422, 0.0, 30.0);
+    let resolved = fine(&configuration, 100.0, Encounter::Resolve);
+    for plan in [resolved.clone(), Plan { adaptive: true, ..resolved }] {
+        let outcome = assess(&configuration, &plan);
+        let loss = outcome.loss.unwrap();
+        assert_eq!(loss.how, LostHow::Collision, "{outcome:?}");
+        // 1.5 + 2.5 nominal earth radii of 6378.1 km (IAU 2015 B3), in au (IAU 2012 B2).
+        let contact_au = 4.0 * 6378.1 / 149_597_870.7;
+        let nearest = outcome.smallest_approach.unwrap();
+        assert!((nearest.au / contact_au - 1.0).abs() < 1e-9, "{outcome:?}");
+        assert_eq!(nearest.pair, (0, 1));
+    }
+}
+
+/// At one step per orbit the planets seem to meet in the first step, before any energy error can show.
+#[test]
+fn a_loss_in_the_first_steps_is_looked_at_with_shorter_ones() {
+    let configuration = demo("lanthorn.toml");
+    let engine = Engine { step: abide::system::Step::PerOrbit(1.0), ..engine(1e-6) };
+    let limits =
+        Limits { escape_au: None, encounter: Encounter::Stop { hill: 1.0 }, stop_when_chaotic: false };
+    let plan = Plan::new(Span::Orbits(300.0), &limits, &engine, &configuration);
+    let outcome = assess(&configuration, &plan);
+    assert_eq!(outcome.verdict, Verdict::Regular, "{outcome:?}");
+    assert!(outcome.redone > 0 && outcome.energy_error.unwrap() <= 1e-6, "{outcome:?}");
+    // Where no error is too large, it is not known at least.
+    let anything = Plan { energy_error: f64::INFINITY, ..plan };
+    let outcome = assess(&configuration, &anything);
+    assert_eq!((outcome.verdict, outcome.energy_error), (Verdict::Lost, None), "{outcome:?}");
+    // A true loss as early is found again.
+    let configuration = near_the_star("", 0.0405, 0.0, 4.64);
+    let early = Plan { step_day: Some(0.1), ..fine(&configuration, 100.0, Encounter::Stop { hill: 2.5 }) };
+    let outcome = assess(&configuration, &early);
+    assert_eq!(outcome.loss.map(|loss| loss.how), Some(LostHow::Encounter), "{outcome:?}");
+    assert!(outcome.redone > 0 && outcome.energy_error.unwrap() <= 1e-6, "{outcome:?}");
 }

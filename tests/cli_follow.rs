@@ -261,3 +261,43 @@ fn compensated_sums_are_told() {
     assert_eq!(refused.code, Some(2), "{refused:#?}");
     assert!(refused.stderr.contains("--compensated"), "{refused:#?}");
 }
+
+/// Two planets that pass each other at three mutual Hill radii, every nine orbits.
+const PASSING: &str = r#"
+title = "Passing"
+[star]
+mass = "1 Msun"
+[physics]
+relativity = true
+[[planet]]
+name = "b"
+semi_major_axis = "0.04 au"
+mass = "10 Mearth"
+mean_anomaly = "0 deg"
+[[planet]]
+name = "c"
+semi_major_axis = "0.0445 au"
+mass = "10 Mearth"
+eccentricity = 0.04
+mean_anomaly = "60 deg"
+"#;
+
+#[test]
+fn passages_are_told_where_there_were_any() {
+    let desk = desk().file("passing.toml", PASSING);
+    let run = |more: &[&str]| {
+        let options = ["passing.toml", "--span", "100 orbits", "--encounter", "resolve", "--anew"];
+        desk.abide("follow").args(options).args(["--into", "out"]).args(more).run().done()
+    };
+    let value: Value = serde_json::from_str(&run(&["--json"]).stdout).unwrap();
+    let passages = &value["passages"];
+    assert!(passages["blocks"].as_u64().unwrap() >= 1, "{value}");
+    assert!(passages["largest_energy_error"].as_f64().unwrap() < 1e-13, "{value}");
+    run(&[]).printed("\npassages   ").printed("around close approaches");
+    let alone = desk.abide("follow").args(["pair.toml", "--into", "other", "--json", "--quiet"]).run().done();
+    let value: Value = serde_json::from_str(&alone.stdout).unwrap();
+    assert!(value["passages"].is_null(), "{value}");
+    // The stated axis, though the scheme moves with other velocities.
+    let first = column(&table(&desk.text("out/series.ecsv")), "b.a")[0];
+    assert!((first / 0.04 - 1.0).abs() < 1e-12, "{first}");
+}

@@ -82,6 +82,31 @@ fn two_bodies_at_rest_touch_when_free_fall_says() {
     }
 }
 
+/// As above, at a distance beyond contact; the way out of it is no event.
+#[test]
+fn a_pair_is_near_when_free_fall_says_and_only_on_its_way_in() {
+    let (share, near): (f64, f64) = (1e-3, 0.3);
+    let state =
+        State { star_gm: 1.0 - share, gm: vec![share], pos: vec![[1.0, 0.0, 0.0]], vel: vec![[0.0; 3]] };
+    let watch = Watch { near: vec![(1, 0, near)], ..Watch::default() };
+    let day = (near.sqrt().acos() + (near * (1.0 - near)).sqrt()) / 2f64.sqrt();
+    let (seen, _) = events(&state, 1.1, &watch);
+    assert_eq!(seen.len(), 1, "{seen:?}");
+    assert_eq!((seen[0].kind, seen[0].first, seen[0].second), (EventKind::Near, 0, 1));
+    assert!((seen[0].day - day).abs() < 2e-15, "{:e}", seen[0].day - day);
+    assert!((seen[0].distance_au - near).abs() < 1e-15);
+    // An ellipse goes in once a turn: where r = a (1 − e cos E) is that distance before pericentre.
+    let (axis, eccentricity): (f64, f64) = (1.0, 0.9);
+    let watch = Watch { near: vec![(0, 1, 0.5)], ..Watch::default() };
+    let (seen, _) = events(&ellipse(axis, eccentricity, share), 3.0 * TAU, &watch);
+    let anomaly = TAU - (0.5 / eccentricity).acos();
+    let day = anomaly - eccentricity * anomaly.sin();
+    assert_eq!(seen.len(), 3, "{seen:?}");
+    for (turn, event) in seen.iter().enumerate() {
+        assert!((event.day - day - TAU * turn as f64).abs() < 1e-12, "{event:?} {day}");
+    }
+}
+
 #[test]
 fn a_run_stopped_at_an_event_goes_on_without_meeting_it_again() {
     let state = ellipse(1.0, 0.4, 1e-3);

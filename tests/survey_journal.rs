@@ -42,12 +42,13 @@ fn a_line_reads_back_to_the_same_bits() {
 fn a_layout_without_the_later_columns_is_understood() {
     let words = r#"{"axes": ["c.period"], "planets": ["b", "c"], "extent": true, "seal": "x"}"#;
     let old: Layout = serde_json::from_str(words).unwrap();
-    assert!(!old.frequency_drift && !old.angle);
-    let all = Layout { frequency_drift: true, angle: true, ..old.clone() };
-    assert_eq!(all.columns().len(), old.columns().len() + 2 + 3);
+    assert!(!old.frequency_drift && !old.angle && !old.passages);
+    let all = Layout { frequency_drift: true, angle: true, passages: true, ..old.clone() };
+    assert_eq!(all.columns().len(), old.columns().len() + 2 + 3 + 2);
     let mut record = record(3);
     record.values.truncate(1);
     (record.assessment.frequency_drift, record.assessment.angle) = (Vec::new(), None);
+    (record.assessment.passages, record.assessment.passage_energy_error) = (None, None);
     let line = old.encode(&record);
     assert_eq!(old.decode(line.as_bytes()), Some(record));
     assert_eq!(all.decode(line.as_bytes()), None, "no line of a journal that has the columns");

@@ -112,6 +112,11 @@ pub struct Assessment {
     pub energy_error: Option<f64>,
     /// Largest relative error of the total angular momentum.
     pub angular_momentum_error: Option<f64>,
+    /// Blocks of steps that the adaptive engine did for the scheme, around close approaches; absent where it could not do
+    /// any, and where it did all.
+    pub passages: Option<u64>,
+    /// Largest relative energy error over one of them; absent where there was none.
+    pub passage_energy_error: Option<f64>,
     /// As used in the end, e.g. "(2,2)".
     pub scheme: &'static str,
     pub step_day: f64,
@@ -136,6 +141,8 @@ impl Assessment {
             smallest_approach: None,
             energy_error: None,
             angular_momentum_error: None,
+            passages: None,
+            passage_energy_error: None,
             scheme: "",
             step_day: 0.0,
             steps: 0,

@@ -9,7 +9,7 @@ mod long_watch;
 mod loss;
 
 use super::assessment::{Approach, Assessment, Loss};
-use super::physics::{barycentric, forces, star_terms, symplectic_start};
+use super::physics::{barycentric, forces, potential_forces, star_terms, symplectic_start};
 use super::plan::{Plan, innermost_period_day, outermost_period_day};
 use crate::coords::{Configuration, Shape};
 use crate::integrate::forces::Forces;
@@ -32,7 +32,9 @@ pub(super) struct Cell {
     /// As stated, for the adaptive engine.
     stated: State,
     terms: StarTerms,
+    /// For the adaptive engine: all of a cell from its stated state, and passages of the symplectic scheme's state.
     forces: Forces,
+    passage_forces: Forces,
     limits: Limits,
     outer_period_day: f64,
     metric_day: f64,
@@ -53,6 +55,8 @@ pub(super) struct Cell {
     /// Blocks that the adaptive engine did, and its largest relative energy error over one of them.
     passages: u64,
     passage_error: f64,
+    /// The cell was lost before its energy could be measured.
+    unmeasured: bool,
 }
 
 /// What a look at a cell says.
@@ -82,6 +86,7 @@ impl Cell {
             stated: barycentric(configuration),
             terms,
             forces: forces(configuration),
+            passage_forces: potential_forces(configuration),
             limits,
             step_day: step_most,
             blocks: 0,
@@ -93,6 +98,7 @@ impl Cell {
             adaptive: plan.adaptive,
             passages: 0,
             passage_error: 0.0,
+            unmeasured: false,
         };
         if let Some(loss) = cell.lost_at_start(plan) {
             return Err(Box::new(cell.assessment(plan, Some(loss))));
@@ -113,6 +119,7 @@ impl Cell {
         self.conserved = ConservedWatch::new(start, &self.terms);
         self.passages = 0;
         self.passage_error = 0.0;
+        self.unmeasured = false;
         self.extent = ExtentWatch::new(self.start.gm.len());
         self.growth = GrowthRecord::new(self.step_day * per_block);
         self.long.begin(plan, self.step_day * per_block);
@@ -157,7 +164,8 @@ impl Cell {
                 return self.pass(plan, before, after, lane);
             }
             let loss = self.find_loss(plan, before, lane);
-            let error = self.conserved.worst_energy;
+            // What tells nothing of its error may be anything: smaller steps will tell.
+            let error = if self.unmeasured { f64::INFINITY } else { self.conserved.worst_energy };
             if error > plan.energy_error {
                 return self.again(error, plan);
             }
@@ -177,13 +185,14 @@ impl Cell {
         lane: usize,
     ) -> Next {
         self.blocks_done += 1;
-        let state = corrected.state(from);
-        let moment = Moment { time_day: self.time_day(plan), state: &state };
-        self.conserved.see(&moment, &self.terms);
+        let (state, time_day) = (corrected.state(from), self.time_day(plan));
+        self.conserved.see(&Moment { time_day, state: &state }, &self.terms);
         let error = self.energy_error_seen();
         if error > plan.energy_error {
             return self.again(error, plan);
         }
+        let state = self.shown(state);
+        let moment = Moment { time_day, state: &state };
         if self.long.is_on() {
             self.long.see(&moment.elements(plan.frame));
         }
@@ -220,7 +229,7 @@ impl Cell {
 
     fn lost_at_start(&self, plan: &Plan) -> Option<Loss> {
         let at = |planet, other, how| Some(Loss { time_day: 0.0, planet, other, how });
-        let moment = Moment { time_day: 0.0, state: &self.start };
+        let moment = Moment { time_day: 0.0, state: &self.stated };
         for (planet, pos) in self.start.pos.iter().enumerate() {
             let distance = length(pos);
             if distance > self.limits.escape_au {
@@ -274,8 +283,13 @@ impl Cell {
     }
 
     fn note_approach(&mut self, block: &Block, lane: usize) {
+        self.note_distances(|pair| block.nearest_pair_au(pair.i, pair.j, lane));
+    }
+
+    /// Keeps the smallest approach, with the distance of each pair at one time or over some.
+    fn note_distances(&mut self, distance_au: impl Fn(&Pair) -> f64) {
         let nearest = |pair: &Pair| {
-            let au = block.nearest_pair_au(pair.i, pair.j, lane);
+            let au = distance_au(pair);
             Approach { au, hill: au / pair.hill_au, pair: (pair.i, pair.j) }
         };
         let now = self.limits.pairs.iter().map(nearest).min_by(|a, b| a.hill.total_cmp(&b.hill));
@@ -287,7 +301,8 @@ impl Cell {
 
     fn assessment(&self, plan: &Plan, loss: Option<Loss>) -> Assessment {
         let end_time_day = loss.map_or(self.time_day_or_zero(plan), |l| l.time_day);
-        let seen = self.blocks_done + self.part_steps > 0;
+        let seen = self.blocks_done + self.part_steps > 0 && !self.unmeasured;
+        let passages = (plan.resolve && !self.adaptive).then_some(self.passages);
         let energy_error = seen.then_some(self.energy_error_seen());
         let evidence = Evidence {
             lost: loss.is_some(),
@@ -311,7 +326,12 @@ impl Cell {
             angle: if whole { self.long.angle() } else { None },
             smallest_approach: self.approach,
             energy_error,
-            angular_momentum_error: energy_error.map(|_| self.conserved.worst_momentum),
+            // The adaptive engine's own account of a block in which a cell ends has the energy only.
+            angular_momentum_error: energy_error
+                .filter(|_| self.blocks_done > 0 || !(self.adaptive || plan.resolve))
+                .map(|_| self.conserved.worst_momentum),
+            passages,
+            passage_energy_error: passages.filter(|blocks| *blocks > 0).map(|_| self.passage_error),
             scheme: if self.adaptive { ADAPTIVE } else { plan.scheme },
             step_day: self.step_day,
             steps: self.blocks_done * plan.block_steps as u64 + self.part_steps,

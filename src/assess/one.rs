@@ -81,8 +81,8 @@ impl Follower {
             Ok(cell) => {
                 let mut block = plan.block(1, configuration.planets.len());
                 cell.enter(&mut block, 0, &plan);
-                let rows = Rows::new(cell.start(), plan.frame, rows);
-                let samples = Samples::new(cell.start(), plan.frame, period_day).again(&cell, &plan);
+                let rows = Rows::new(cell.stated(), plan.frame, rows);
+                let samples = Samples::new(cell.stated(), plan.frame, period_day).again(&cell, &plan);
                 Follower { plan, rows, samples, on_its_way: Some(OnItsWay { cell, block }), assessment: None }
             }
             Err(assessment) => {
@@ -132,7 +132,7 @@ impl Follower {
             Next::GoOn => {}
             Next::Again => {
                 now.cell.enter(&mut now.block, 0, &self.plan);
-                self.rows = self.rows.again(now.cell.start());
+                self.rows = self.rows.again(now.cell.stated());
                 self.samples = self.samples.again(&now.cell, &self.plan);
             }
             Next::End(assessment) => {
@@ -200,7 +200,7 @@ impl Follower {
         if let Some(OnItsWay { cell, block }) = &mut follower.on_its_way {
             cell.restore(&mut reader)?;
             block.restore(&mut reader)?;
-            follower.rows = follower.rows.again(cell.start());
+            follower.rows = follower.rows.again(cell.stated());
             follower.rows.restore(&mut reader)?;
             follower.samples = follower.samples.again(cell, &follower.plan);
             follower.samples.restore(&mut reader)?;

@@ -3,7 +3,7 @@
 use crate::coords::{BodyKind, Configuration};
 use crate::integrate::StarTerms;
 use crate::integrate::State;
-use crate::integrate::forces::{Forces, StarTerm, rate_matched};
+use crate::integrate::forces::{Forces, StarTerm, rate_matched, rate_unmatched};
 use crate::units::LIGHT;
 
 /// Heliocentric positions with barycentric velocities.
@@ -30,6 +30,11 @@ pub(super) fn symplectic_start(configuration: &Configuration) -> State {
     if configuration.terms.relativity { rate_matched(&state, LIGHT) } else { state }
 }
 
+/// The way back from [`symplectic_start`], for a state that a symplectic scheme with relativity has reached.
+pub(super) fn as_stated(state: &State) -> State {
+    rate_unmatched(state, LIGHT)
+}
+
 /// The star's terms as potentials, for the symplectic schemes.
 pub(super) fn star_terms(configuration: &Configuration) -> StarTerms {
     let gm = configuration.star_gm;
@@ -42,11 +47,21 @@ pub(super) fn star_terms(configuration: &Configuration) -> StarTerms {
     StarTerms { relativity, oblateness, pole, satellites }
 }
 
-/// The same in full, for the adaptive engine.
+/// The same in full, for the adaptive engine from the stated start on.
 pub(super) fn forces(configuration: &Configuration) -> Forces {
+    with_relativity(configuration, StarTerm::Relativity { light_au_day: LIGHT })
+}
+
+/// The law of [`star_terms`], for the adaptive engine on states of a symplectic scheme: those have the velocities of
+/// [`symplectic_start`], and the energy that is conserved is that of the potentials.
+pub(super) fn potential_forces(configuration: &Configuration) -> Forces {
+    with_relativity(configuration, StarTerm::PrecessionPotential { light_au_day: LIGHT })
+}
+
+fn with_relativity(configuration: &Configuration, relativity: StarTerm) -> Forces {
     let mut forces = Forces::newton();
     if configuration.terms.relativity {
-        forces = forces.with(StarTerm::Relativity { light_au_day: LIGHT });
+        forces = forces.with(relativity);
     }
     if let Some(o) = configuration.terms.oblateness {
         forces = forces.with(StarTerm::Oblateness { j2: o.j2, radius_au: o.radius_au, pole: o.pole });

@@ -78,7 +78,7 @@ impl Samples {
     /// From the beginning, for the blocks that the cell has now.
     #[must_use]
     pub(super) fn again(&self, cell: &Cell, plan: &Plan) -> Samples {
-        let mut samples = Samples::new(cell.start(), self.frame, self.period_day);
+        let mut samples = Samples::new(cell.stated(), self.frame, self.period_day);
         samples.block_day = plan.span_day / cell.blocks() as f64;
         let per_block = plan.block_steps as u64;
         let every = (self.period_day / (PER_ORBIT * cell.step_day())).floor().max(1.0) as u64;
@@ -108,7 +108,7 @@ impl Samples {
         if !cell.blocks_done().is_multiple_of(self.stride) {
             return;
         }
-        self.whole.push(self.seen(&corrected.state(0)));
+        self.whole.push(self.seen(&cell.shown(corrected.state(0))));
         if self.settled.is_none() && self.whole.len() > MOST_SAMPLES {
             self.whole = std::mem::take(&mut self.whole).into_iter().step_by(2).collect();
             self.stride *= 2;
@@ -130,7 +130,7 @@ impl Samples {
         while next < per_block {
             let steps = (next - done) as usize;
             advance(Advance { block: &mut alone, scheme: plan.splitting(), steps, tangent: false });
-            seen.push(self.seen(&as_true(&alone, plan).state(0)));
+            seen.push(self.seen(&cell.shown(as_true(&alone, plan).state(0))));
             done = next;
             next += windows.every;
         }

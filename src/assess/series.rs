@@ -69,7 +69,7 @@ impl Rows {
     }
 
     pub fn see(&mut self, cell: &Cell, plan: &Plan, block: &Block, corrected: &Block) {
-        let state = corrected.state(0);
+        let state = cell.shown(corrected.state(0));
         let time_day = cell.time_day(plan);
         let moment = Moment { time_day, state: &state };
         self.since.see(&moment.shapes(self.frame));

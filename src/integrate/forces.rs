@@ -8,7 +8,7 @@ mod cast;
 mod star;
 
 pub use cast::Cast;
-pub use star::{Acting, StarTerm, rate_matched};
+pub use star::{Acting, StarTerm, rate_matched, rate_unmatched};
 
 /// The terms beside Newton's.
 #[derive(Clone, Debug, Default, PartialEq)]

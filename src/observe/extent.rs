@@ -11,8 +11,14 @@ pub struct Range {
 }
 
 impl Range {
-    fn empty() -> Range {
+    /// Of nothing: joined with any other it is that other.
+    pub fn empty() -> Range {
         Range { min: f64::INFINITY, max: f64::NEG_INFINITY }
+    }
+
+    /// Whether nothing was taken.
+    pub fn is_empty(&self) -> bool {
+        self.min > self.max
     }
 
     fn take(&mut self, value: f64) {
@@ -24,6 +30,7 @@ impl Range {
 /// Ranges of one planet's astrocentric osculating elements.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Extent {
+    /// While the planet was bound: the axis of a hyperbola is negative and no size. Empty if it never was.
     pub semi_major_axis_au: Range,
     pub eccentricity: Range,
     /// To the reference plane, rad.
@@ -80,7 +87,9 @@ impl ExtentWatch {
     /// Takes the osculating orbit of every planet at a moment.
     pub fn see(&mut self, orbits: &[Shape]) {
         for (extent, orbit) in self.0.iter_mut().zip(orbits) {
-            extent.semi_major_axis_au.take(orbit.semi_major_axis_au);
+            if (0.0..f64::INFINITY).contains(&orbit.semi_major_axis_au) {
+                extent.semi_major_axis_au.take(orbit.semi_major_axis_au);
+            }
             extent.eccentricity.take(orbit.eccentricity);
             extent.inclination.take(orbit.inclination);
         }
@@ -99,5 +108,26 @@ impl ExtentWatch {
             return Vec::new();
         }
         self.0.clone()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_axis_of_a_hyperbola_is_no_size() {
+        let shape =
+            |semi_major_axis_au, eccentricity| Shape { semi_major_axis_au, eccentricity, inclination: 0.1 };
+        let mut watch = ExtentWatch::new(2);
+        watch.see(&[shape(1.0, 0.2), shape(-3.0, 1.5)]);
+        watch.see(&[shape(-8.1, 4.5), shape(f64::INFINITY, 1.0)]);
+        watch.see(&[shape(1.2, 0.1), shape(-3.0, 1.4)]);
+        let found = watch.finish();
+        assert_eq!(found[0].semi_major_axis_au, Range { min: 1.0, max: 1.2 });
+        assert_eq!(found[0].eccentricity, Range { min: 0.1, max: 4.5 });
+        assert!(found[1].semi_major_axis_au.is_empty() && found[1].eccentricity.max == 1.5);
+        let joined = found[1].joined(&found[0]);
+        assert_eq!(joined.semi_major_axis_au, found[0].semi_major_axis_au);
     }
 }

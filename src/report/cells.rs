@@ -57,7 +57,7 @@ pub fn cells_table(study: &Study, planets: &[String], plan: &Plan, records: &[Re
         }
     }
     closeness_columns(&mut columns, planets);
-    trust_columns(&mut columns);
+    trust_columns(&mut columns, plan);
     let rows = records.iter().map(|r| columns.0.iter().map(|(_, take)| take(r)).collect()).collect();
     Table { meta: meta(study, plan), columns: columns.0.into_iter().map(|(c, _)| c).collect(), rows }
 }
@@ -160,7 +160,8 @@ fn extent_columns(columns: &mut Columns<'_>, planet: usize, name: &str) {
     add("e_max", "", "largest eccentricity", |x| x.eccentricity.max);
     add("e_min", "", "smallest eccentricity", |x| x.eccentricity.min);
     add("e_range", "", "largest - smallest eccentricity", |x| x.eccentricity.max - x.eccentricity.min);
-    let meaning = "(largest - smallest) / middle of the range, semi-major axis";
+    let meaning =
+        "(largest - smallest) / middle of the range, semi-major axis while bound (not always if e_max >= 1)";
     add("a_range", "", meaning, |x| relative_width(x.semi_major_axis_au));
     add("i_max", "deg", "largest inclination to the sky plane", |x| x.inclination.max / DEGREE);
 }
@@ -177,10 +178,17 @@ fn closeness_columns<'a>(columns: &mut Columns<'a>, planets: &'a [String]) {
     });
 }
 
-fn trust_columns(columns: &mut Columns<'_>) {
+fn trust_columns(columns: &mut Columns<'_>, plan: &Plan) {
     columns.float("energy_error", "", "largest relative energy error seen", |r| r.assessment.energy_error);
     let meaning = "largest relative error of the total angular momentum seen";
     columns.float("angular_momentum_error", "", meaning, |r| r.assessment.angular_momentum_error);
+    if plan.resolve {
+        let meaning =
+            "blocks of steps done by the adaptive engine around close approaches; absent where it did all";
+        columns.count("passages", meaning, |r| r.assessment.passages);
+        let meaning = "largest relative energy error over one of the passages; absent where there was none";
+        columns.float("passage_energy_error", "", meaning, |r| r.assessment.passage_energy_error);
+    }
     columns.text("scheme", "integration scheme", |r| computed(r).map(|a| a.scheme.to_owned()));
     columns.float("step", "d", "step of the final attempt", |r| computed(r).map(|a| a.step_day));
     columns.count("steps", "steps of the final attempt", |r| computed(r).map(|a| a.steps));

@@ -68,7 +68,7 @@ pub fn series_table(series: &Series) -> Table {
 type Part = (&'static str, &'static str, &'static str, fn(&Elements) -> f64);
 
 const PARTS: [Part; 6] = [
-    ("a", "au", "osculating semi-major axis", |e| e.semi_major_axis_au),
+    ("a", "au", "osculating semi-major axis (negative on a hyperbola)", |e| e.semi_major_axis_au),
     ("e", "", "eccentricity", |e| e.eccentricity),
     ("i", "deg", "inclination to the sky plane", |e| e.inclination / DEGREE),
     ("ascending_node", "deg", "ascending node", |e| e.ascending_node / DEGREE),
@@ -87,8 +87,8 @@ fn push_planet(table: &mut Table, planet: &PlanetSeries) {
 type Bound = (&'static str, &'static str, &'static str, fn(&Extent) -> f64);
 
 const BOUNDS: [Bound; 6] = [
-    ("a_min", "au", "smallest semi-major axis", |e| e.semi_major_axis_au.min),
-    ("a_max", "au", "largest semi-major axis", |e| e.semi_major_axis_au.max),
+    ("a_min", "au", "smallest semi-major axis while bound", |e| e.semi_major_axis_au.min),
+    ("a_max", "au", "largest semi-major axis while bound", |e| e.semi_major_axis_au.max),
     ("e_min", "", "smallest eccentricity", |e| e.eccentricity.min),
     ("e_max", "", "largest eccentricity", |e| e.eccentricity.max),
     ("i_min", "deg", "smallest inclination", |e| e.inclination.min / DEGREE),

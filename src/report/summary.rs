@@ -31,6 +31,42 @@ impl Spread {
     }
 }
 
+/// What the adaptive engine did for the scheme, around close approaches.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Passages {
+    /// Cells that had any.
+    pub cells: u64,
+    /// Blocks of steps in all of them.
+    pub blocks: u64,
+    /// Relative, over one of them.
+    pub largest_energy_error: f64,
+}
+
+impl Passages {
+    /// Absent where there were none.
+    fn of(records: &[Record]) -> Option<Passages> {
+        let each =
+            records.iter().filter_map(|r| r.assessment.passages.zip(r.assessment.passage_energy_error));
+        each.fold(None, |sum, (blocks, error)| {
+            let sum = sum.unwrap_or(Passages { cells: 0, blocks: 0, largest_energy_error: 0.0 });
+            Some(Passages {
+                cells: sum.cells + 1,
+                blocks: sum.blocks + blocks,
+                largest_energy_error: sum.largest_energy_error.max(error),
+            })
+        })
+    }
+
+    fn words(self) -> String {
+        format!(
+            "{} blocks of steps in {} cells done by the adaptive engine; largest relative energy error over one {}",
+            self.blocks,
+            self.cells,
+            words::short(self.largest_energy_error)
+        )
+    }
+}
+
 /// The cell nearest to the stated values.
 #[derive(Clone, Debug, PartialEq)]
 pub struct NominalCell {
@@ -57,6 +93,7 @@ pub struct Summary {
     /// Cells that ended in the adaptive engine.
     pub adaptive: u64,
     pub energy_error: Option<Spread>,
+    pub passages: Option<Passages>,
     /// Absent when the stated values lie outside the axes.
     pub nominal: Option<NominalCell>,
     pub span: String,
@@ -110,6 +147,7 @@ impl Summary {
             redone,
             adaptive,
             energy_error: Spread::of(records.iter().filter_map(|r| r.assessment.energy_error)),
+            passages: Passages::of(records),
             nominal: nominal_cell.map(|cell| NominalCell {
                 cell,
                 assessment: records.iter().find(|r| r.cell == cell).map(|r| r.assessment.clone()),
@@ -170,6 +208,7 @@ impl Summary {
         lines.push(format!("nominal      {}", self.nominal_words()));
         lines.extend(self.indicator_lines());
         lines.push(format!("energy error {}", self.energy_words()));
+        lines.extend(self.passages.map(|passages| format!("passages     {}", passages.words())));
         lines.push(format!("scheme       {}", words::scheme_words(self.scheme)));
         lines.push(format!("  why        {}", self.scheme_why));
         lines.push(format!("coordinates  {}", self.coordinates));
@@ -281,6 +320,9 @@ impl Summary {
                 "median": s.median, "q95": s.q95, "largest": s.largest,
             })),
             "energy_error_target": self.energy_error_target,
+            "passages": self.passages.map(|p| json!({
+                "cells": p.cells, "blocks": p.blocks, "largest_energy_error": p.largest_energy_error,
+            })),
             "span": self.span,
             "span_d": self.span_day,
             "scheme": self.scheme,

@@ -1,13 +1,13 @@
 //! One finished cell as one line of text with a checksum, and back.
 
-use std::collections::BTreeSet;
-use std::sync::Mutex;
+mod fields;
 
 use serde::{Deserialize, Serialize};
 
 use super::record::{Filled, Record};
 use crate::assess::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Range};
 use crate::verdict::{LostHow, Verdict};
+use fields::{Fields, Line, kept, number, optional, quoted, whole};
 
 /// What the lines of one journal hold.
 #[derive(Clone, Debug, PartialEq, Eq, Serialize, Deserialize)]
@@ -24,6 +24,9 @@ pub struct Layout {
     /// Whether the state of an angle is kept; likewise.
     #[serde(default)]
     pub angle: bool,
+    /// Whether the blocks done by the adaptive engine are counted; likewise.
+    #[serde(default)]
+    pub passages: bool,
     /// Goes into every checksum, so that a line of another run is not taken for one of this.
     pub seal: String,
 }
@@ -49,7 +52,9 @@ const OF_PLANET: [&str; 6] = ["a_min_au", "a_max_au", "e_min", "e_max", "i_min_r
 const DRIFT_OF_PLANET: &str = "frequency_drift";
 /// Columns of the angle.
 const OF_ANGLE: [&str; 3] = ["angle_motion", "angle_centre_rad", "angle_amplitude_rad"];
-/// Columns after the planets and the angle.
+/// Columns of the passages.
+const OF_PASSAGES: [&str; 2] = ["passages", "passage_energy_error"];
+/// Columns after the planets, the angle and the passages.
 const AFTER_PLANETS: [&str; 11] = [
     "approach_au",
     "approach_hill",
@@ -80,6 +85,9 @@ impl Layout {
         }
         if self.angle {
             names.extend(OF_ANGLE.map(String::from));
+        }
+        if self.passages {
+            names.extend(OF_PASSAGES.map(String::from));
         }
         names.extend(AFTER_PLANETS.map(String::from));
         names
@@ -123,6 +131,10 @@ impl Layout {
             line.put(optional(libration.map(|[centre, _]| centre)));
             line.put(optional(libration.map(|[_, amplitude]| amplitude)));
         }
+        if self.passages {
+            line.put(a.passages.map(|blocks| blocks.to_string()).unwrap_or_default());
+            line.put(optional(a.passage_energy_error));
+        }
         line.put(optional(a.smallest_approach.map(|approach| approach.au)));
         line.put(optional(a.smallest_approach.map(|approach| approach.hill)));
         line.put(whole(a.smallest_approach.map(|approach| approach.pair.0)));
@@ -156,7 +168,9 @@ impl Layout {
         let of_planet = if self.extent { OF_PLANET.len() } else { 0 } + usize::from(self.frequency_drift);
         let planets = self.planets.len() * of_planet;
         let angle = if self.angle { OF_ANGLE.len() } else { 0 };
-        BEFORE_PLANETS.len() - 2 - LOST_HOW_AFTER_VERDICT + planets + angle + AFTER_PLANETS.len() - 1
+        let passages = if self.passages { OF_PASSAGES.len() } else { 0 };
+        BEFORE_PLANETS.len() - 2 - LOST_HOW_AFTER_VERDICT + planets + angle + passages + AFTER_PLANETS.len()
+            - 1
     }
 
     fn encode_extent(&self, extent: &[Extent], line: &mut Line) {
@@ -168,6 +182,7 @@ impl Layout {
                 extent.map(|e| e.inclination),
             ];
             for range in ranges {
+                let range = range.filter(|range| !range.is_empty());
                 line.put(optional(range.map(|r| r.min)));
                 line.put(optional(range.map(|r| r.max)));
             }
@@ -222,6 +237,8 @@ impl Layout {
             extent: self.decode_extent(fields)?,
             frequency_drift: self.decode_drift(fields)?,
             angle: if self.angle { decode_angle(fields)? } else { None },
+            passages: if self.passages { fields.whole()? } else { None },
+            passage_energy_error: if self.passages { fields.number()? } else { None },
             smallest_approach: decode_approach(fields)?,
             energy_error: fields.number()?,
             angular_momentum_error: fields.number()?,
@@ -237,7 +254,8 @@ impl Layout {
         let mut extents = Vec::with_capacity(planets);
         for _ in 0..planets {
             let (a, e, i) = (fields.range()?, fields.range()?, fields.range()?);
-            if let (Some(semi_major_axis_au), Some(eccentricity), Some(inclination)) = (a, e, i) {
+            if let (Some(eccentricity), Some(inclination)) = (e, i) {
+                let semi_major_axis_au = a.unwrap_or(Range::empty());
                 extents.push(Extent { semi_major_axis_au, eccentricity, inclination });
             }
         }
@@ -296,90 +314,4 @@ fn decode_approach(fields: &mut Fields) -> Option<Option<Approach>> {
         }
         _ => None,
     })
-}
-
-/// A line being written.
-struct Line(String);
-
-impl Line {
-    fn put(&mut self, field: impl AsRef<str>) {
-        self.0.push(',');
-        self.0.push_str(field.as_ref());
-    }
-}
-
-/// The shortest text that reads back to the same bits.
-fn number(value: f64) -> String {
-    format!("{value:?}")
-}
-
-fn optional(value: Option<f64>) -> String {
-    value.map(number).unwrap_or_default()
-}
-
-fn whole(value: Option<usize>) -> String {
-    value.map(|v| v.to_string()).unwrap_or_default()
-}
-
-/// In double quotes when it has a comma or a quote, as RFC 4180 does.
-fn quoted(word: &str) -> String {
-    if word.contains([',', '"']) { format!("\"{}\"", word.replace('"', "\"\"")) } else { word.to_string() }
-}
-
-/// What is left of a line: fields with a comma before each but the first; empty after the last.
-struct Fields<'a>(&'a str);
-
-impl Fields<'_> {
-    fn next(&mut self) -> Option<String> {
-        let rest = self.0.strip_prefix(',').unwrap_or(self.0);
-        if self.0.is_empty() {
-            return None;
-        }
-        let mut open = false;
-        let end = rest
-            .find(|c| {
-                open ^= c == '"';
-                c == ',' && !open
-            })
-            .unwrap_or(rest.len());
-        self.0 = &rest[end..];
-        let field = &rest[..end];
-        Some(match field.strip_prefix('"').and_then(|f| f.strip_suffix('"')) {
-            Some(inner) => inner.replace("\"\"", "\""),
-            None => field.to_string(),
-        })
-    }
-
-    /// Nothing where nothing must be.
-    fn empty(&mut self) -> Option<()> {
-        self.next()?.is_empty().then_some(())
-    }
-
-    /// Outer `None`: no number; inner `None`: absent.
-    fn number(&mut self) -> Option<Option<f64>> {
-        let field = self.next()?;
-        if field.is_empty() { Some(None) } else { field.parse().ok().map(Some) }
-    }
-
-    fn whole(&mut self) -> Option<Option<u64>> {
-        let field = self.next()?;
-        if field.is_empty() { Some(None) } else { field.parse().ok().map(Some) }
-    }
-
-    fn range(&mut self) -> Option<Option<Range>> {
-        let (min, max) = (self.number()?, self.number()?);
-        Some(min.zip(max).map(|(min, max)| Range { min, max }))
-    }
-}
-
-/// A word that lives as long as the program; each different one is stored once (there are a handful of schemes).
-fn kept(word: &str) -> &'static str {
-    static WORDS: Mutex<BTreeSet<&'static str>> = Mutex::new(BTreeSet::new());
-    let mut words = WORDS.lock().unwrap_or_else(|poisoned| poisoned.into_inner());
-    if let Some(known) = words.get(word) {
-        return known;
-    }
-    let new: &'static str = Box::leak(word.to_string().into_boxed_str());
-    words.insert(new);
-    new
 }

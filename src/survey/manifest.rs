@@ -111,6 +111,7 @@ impl Identity {
             extent: self.plan.extent,
             frequency_drift: self.plan.frequency_drift,
             angle: self.plan.angle.is_some(),
+            passages: self.plan.resolve,
             seal: settings_sha256.clone(),
         };
         Manifest {

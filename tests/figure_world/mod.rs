@@ -128,6 +128,8 @@ pub fn assessment(verdict: Verdict, how: Option<LostHow>, megno: f64, share_live
         smallest_approach: Some(Approach { au: 0.03 / megno, hill: 12.0 / megno, pair: (0, 1) }),
         energy_error: Some(1e-10 * megno * megno),
         angular_momentum_error: Some(3e-15),
+        passages: None,
+        passage_energy_error: None,
         scheme: "(2,2)",
         step_day: 0.42,
         steps: (SPAN_DAY * share_lived / 0.42) as u64,

@@ -39,7 +39,7 @@ pub fn plan() -> Plan {
         coordinates: abide::integrate::Coordinates::Heliocentric,
         coordinates_why: abide::assess::CoordinatesWhy::Light,
         frame: Frame::Astrocentric,
-        resolve: false,
+        resolve: true,
         adaptive: false,
         compensated: false,
         massless: 0,
@@ -76,7 +76,8 @@ pub fn answer(cell: u64) -> Assessment {
         |which: u64| (!scramble(cell + which * 7919).is_multiple_of(4)).then(|| share(cell, which) * 1e-7);
     let range = |which| Range { min: share(cell, which), max: share(cell, which) + 1e-17 };
     let lost = scramble(cell).is_multiple_of(3);
-    let extent = Extent { semi_major_axis_au: range(5), eccentricity: range(6), inclination: range(7) };
+    let axis = if cell.is_multiple_of(7) { Range::empty() } else { range(5) };
+    let extent = Extent { semi_major_axis_au: axis, eccentricity: range(6), inclination: range(7) };
     Assessment {
         verdict: if lost { Verdict::Lost } else { Verdict::ALL[(scramble(cell) % 5) as usize] },
         end_time_day: share(cell, 1) * 1e9,
@@ -104,6 +105,8 @@ pub fn answer(cell: u64) -> Assessment {
         step_day: share(cell, 11),
         steps: scramble(cell),
         redone: (cell % 3) as u32,
+        passages: (cell % 4).checked_sub(1),
+        passage_energy_error: some(16),
     }
 }
 

@@ -2,9 +2,9 @@
 
 use std::ops::ControlFlow;
 
-use super::{Approach, Cell, Loss, Next};
+use super::{Cell, Loss, Next, Pair, length};
 use crate::assess::plan::Plan;
-use crate::integrate::radau::{Engine, EventKind, RadauError, Stop, TOLERANCE, Watch};
+use crate::integrate::radau::{Engine, Event, EventKind, RadauError, Stop, TOLERANCE, Watch};
 use crate::integrate::{Block, SAMPLE_EVERY, from_map, to_map};
 use crate::verdict::LostHow;
 
@@ -87,13 +87,10 @@ impl Cell {
     /// Advances the true state in lane 0 of `alone` by one block, with the samples of the kernel.
     fn run(&mut self, plan: &Plan, alone: &mut Block) -> Result<Passed, RadauError> {
         let tangents: Vec<_> = if plan.megno { vec![alone.tangent(0)] } else { Vec::new() };
-        let mut engine = Engine::from_state(&alone.state(0), &tangents, &self.forces, TOLERANCE)?;
-        let watch = Watch {
-            approach_au: f64::INFINITY,
-            radii_au: self.limits.radii_au.clone(),
-            escape_au: Some(self.limits.escape_au),
-            apart: None,
-        };
+        let forces = if self.adaptive { &self.forces } else { &self.passage_forces };
+        let mut engine = Engine::from_state(&alone.state(0), &tangents, forces, TOLERANCE)?;
+        let watch = self.watch();
+        self.note_gaps(&engine);
         let step = self.step_day;
         let mut scratch = alone.clone();
         for sample in 0..=plan.block_steps / SAMPLE_EVERY {
@@ -101,30 +98,13 @@ impl Cell {
             let last = sample * SAMPLE_EVERY == plan.block_steps;
             let day =
                 step * if last { plan.block_steps as f64 } else { (sample * SAMPLE_EVERY) as f64 + 0.5 };
-            let mut met = None;
             let stop = engine.advance(day, &watch, |event| {
-                if event.kind != EventKind::Approach {
-                    return ControlFlow::Break(());
-                }
-                if event.first > 0 && self.approach_ends(event.first - 1, event.second - 1, event.distance_au)
-                {
-                    met = Some((event.first - 1, event.second - 1, event.distance_au));
-                    return ControlFlow::Break(());
-                }
-                ControlFlow::Continue(())
+                if self.ends(event) { ControlFlow::Break(()) } else { ControlFlow::Continue(()) }
             })?;
             if let Stop::At(event) = stop {
-                let (first, second) = (event.first.saturating_sub(1), event.second - 1);
-                let end = match (event.kind, met) {
-                    (EventKind::Escape, _) => End { planet: second, other: None, how: LostHow::Escape },
-                    (EventKind::Collision, _) if event.first == 0 => {
-                        End { planet: second, other: None, how: LostHow::Star }
-                    }
-                    (_, Some((i, j, au))) => self.met(i, j, au),
-                    _ => self.met(first, second, 0.0),
-                };
                 self.note_energy(&engine);
-                return Ok(Passed::Ended(event.day, end));
+                self.note_gaps(&engine);
+                return Ok(Passed::Ended(event.day, self.end_at(&event)));
             }
             if plan.megno && !last {
                 let tangent = engine.tangent(0).unwrap_or_else(|| alone.tangent(0));
@@ -133,32 +113,66 @@ impl Cell {
             }
         }
         self.note_energy(&engine);
+        self.note_gaps(&engine);
         let tangent = engine.tangent(0).unwrap_or_else(|| alone.tangent(0));
         scratch.replace(0, &engine.state(), &tangent);
         *alone = scratch;
         Ok(Passed::Through)
     }
 
-    fn met(&self, i: usize, j: usize, au: f64) -> End {
-        let pair = self.limits.pairs.iter().find(|p| (p.i, p.j) == (i.min(j), i.max(j)));
-        let how = pair.map_or(LostHow::Collision, |pair| pair.how(au));
-        let (planet, other) = if self.start.gm[i] < self.start.gm[j] { (i, j) } else { (j, i) };
-        End { planet, other: Some(other), how }
-    }
-
-    /// Keeps the smallest approach, located to rounding; says whether it ends the configuration.
-    fn approach_ends(&mut self, i: usize, j: usize, au: f64) -> bool {
-        let Some(pair) = self.limits.pairs.iter().find(|p| (p.i, p.j) == (i.min(j), i.max(j))) else {
-            return false;
-        };
-        let now = Approach { au, hill: au / pair.hill_au, pair: (pair.i, pair.j) };
-        if self.approach.is_none_or(|old| now.hill < old.hill) {
-            self.approach = Some(now);
+    /// What ends the configuration, and every closest approach.
+    fn watch(&self) -> Watch {
+        let apart = self.limits.pairs.iter().filter(|pair| pair.ends_apart());
+        Watch {
+            approach_au: f64::INFINITY,
+            radii_au: self.limits.radii_au.clone(),
+            escape_au: Some(self.limits.escape_au),
+            apart: None,
+            near: apart.map(|pair| (pair.i + 1, pair.j + 1, pair.end_au)).collect(),
         }
-        au < pair.end_au
     }
 
-    /// The error of the passage itself counts too: with relativity in full the potential's energy says nothing of it.
+    fn pair_of(&self, event: &Event) -> Option<Pair> {
+        let of = |pair: &&Pair| (pair.i + 1, pair.j + 1) == (event.first, event.second);
+        self.limits.pairs.iter().find(of).copied()
+    }
+
+    /// Whether the configuration ends here. The distance of two planets is kept, located to rounding.
+    fn ends(&mut self, event: &Event) -> bool {
+        let pair = self.pair_of(event);
+        if let Some(pair) = pair {
+            self.note_distances(|one| if one.is(&pair) { event.distance_au } else { f64::INFINITY });
+        }
+        match event.kind {
+            // Only rounding, where a block begins, can let a pair in unseen.
+            EventKind::Approach => pair.is_some_and(|pair| event.distance_au < pair.end_au),
+            _ => true,
+        }
+    }
+
+    fn end_at(&self, event: &Event) -> End {
+        let second = event.second - 1;
+        let lost = |how| End { planet: second, other: None, how };
+        match (event.kind, self.pair_of(event)) {
+            (EventKind::Escape, _) => lost(LostHow::Escape),
+            (_, Some(pair)) => {
+                let (planet, other) = self.lighter_first(&pair);
+                End { planet, other: Some(other), how: pair.how_on_crossing() }
+            }
+            _ => lost(LostHow::Star),
+        }
+    }
+
+    /// A distance may be smallest where the engine begins or stops.
+    fn note_gaps(&mut self, engine: &Engine) {
+        let pos = engine.state().pos;
+        self.note_distances(|pair| {
+            let (a, b) = (&pos[pair.i], &pos[pair.j]);
+            length(&[a[0] - b[0], a[1] - b[1], a[2] - b[2]])
+        });
+    }
+
+    /// The error over the block itself counts too; with relativity in full no potential's energy tells of it.
     fn note_energy(&mut self, engine: &Engine) {
         if let Some(error) = engine.energy_error() {
             let error = if error.is_finite() { error.abs() } else { f64::INFINITY };

@@ -1,6 +1,7 @@
 //! A cell on its way seen from outside, put down to the last bit, and taken up again.
 
 use super::{Approach, Cell};
+use crate::assess::physics::as_stated;
 use crate::integrate::State;
 use crate::num::{Kept, KeptReader};
 use crate::observe::ConservedWatch;
@@ -58,9 +59,12 @@ impl Cell {
         self.blocks_done as f64 / self.blocks as f64
     }
 
-    /// Relative errors of energy and angular momentum at the last look.
+    /// Relative errors of energy and angular momentum at the last look; of the energy the largest so far where the adaptive
+    /// engine's own account is all there is.
     pub fn last_errors(&self) -> (f64, f64) {
-        (self.conserved.last_energy, self.conserved.last_momentum)
+        let own = self.adaptive && self.terms.relativity != 0.0;
+        let energy = if own { self.passage_error } else { self.conserved.last_energy };
+        (energy, self.conserved.last_momentum)
     }
 
     pub fn worst_energy_error(&self) -> f64 {
@@ -71,8 +75,15 @@ impl Cell {
         self.mean_megno
     }
 
-    pub fn start(&self) -> &State {
-        if self.adaptive { &self.stated } else { &self.start }
+    /// The start as stated.
+    pub fn stated(&self) -> &State {
+        &self.stated
+    }
+
+    /// A state that the cell has reached, for elements to be told of: with relativity a symplectic scheme moves with
+    /// velocities of its own (`rate_matched`), which are taken back.
+    pub fn shown(&self, state: State) -> State {
+        if self.adaptive || self.terms.relativity == 0.0 { state } else { as_stated(&state) }
     }
 
     pub fn step_day(&self) -> f64 {

@@ -37,8 +37,23 @@ pub(super) struct Pair {
 }
 
 impl Pair {
+    pub fn is(&self, other: &Pair) -> bool {
+        (self.i, self.j) == (other.i, other.j)
+    }
+
+    /// Of a pair that is met so near.
     pub fn how(&self, distance_au: f64) -> LostHow {
         if distance_au < self.contact_au { LostHow::Collision } else { LostHow::Encounter }
+    }
+
+    /// Whether the configuration ends before the two touch.
+    pub fn ends_apart(&self) -> bool {
+        self.end_au > self.contact_au
+    }
+
+    /// Of a pair that comes in from outside: it ends where the first limit is crossed, whatever would come then.
+    pub fn how_on_crossing(&self) -> LostHow {
+        if self.ends_apart() { LostHow::Encounter } else { LostHow::Collision }
     }
 }
 

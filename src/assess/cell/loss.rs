@@ -6,22 +6,27 @@ use crate::integrate::{Advance, Block, advance, from_map};
 use crate::observe::Moment;
 use crate::verdict::LostHow;
 
+/// The energy of a cell that ends in its first block is measured so many steps before the end: out of reach of the
+/// corrector's kicks (three steps), which would feel the meeting itself. It must then be as far from the start, where
+/// there is no error yet.
+const BEFORE_END: usize = 5;
+
 impl Cell {
     /// Repeats the block from `before`, alone, to find the first step after which the cell has ended, and how.
     pub(super) fn find_loss(&mut self, plan: &Plan, before: &Block, lane: usize) -> Loss {
         let mut first = self.alone(plan);
         before.copy_lane(lane, &mut first, 0);
         let (steps, at_end) = self.end_step(plan, &first);
-        if self.blocks_done == 0 {
-            // Nothing was seen yet, but a verdict needs its energy error: look just before the end, out of reach of
-            // the corrector's kicks (three steps), which would feel the meeting itself.
-            let steps = steps.saturating_sub(5);
+        // Nothing was seen yet, but a verdict needs its energy error.
+        self.unmeasured = self.blocks_done == 0 && steps < 2 * BEFORE_END;
+        if self.blocks_done == 0 && !self.unmeasured {
+            let steps = steps - BEFORE_END;
             let mut last = onward(plan, &first, steps);
             from_map(&mut last, plan.splitting());
-            let state = last.state(0);
-            let moment = Moment { time_day: steps as f64 * self.step_day, state: &state };
-            self.conserved.see(&moment, &self.terms);
-            self.extent.see(&moment.shapes(plan.frame));
+            let (state, time_day) = (last.state(0), steps as f64 * self.step_day);
+            self.conserved.see(&Moment { time_day, state: &state }, &self.terms);
+            let state = self.shown(state);
+            self.extent.see(&Moment { time_day, state: &state }.shapes(plan.frame));
         }
         self.part_steps = steps as u64;
         let time_day = self.time_day(plan) + steps as f64 * self.step_day;
@@ -30,7 +35,7 @@ impl Cell {
             let nearest = at_end.nearest_pair_au(pair.i, pair.j, 0);
             if nearest < pair.end_au {
                 let (planet, other) = self.lighter_first(pair);
-                return Loss { time_day, planet, other: Some(other), how: pair.how(nearest) };
+                return Loss { time_day, planet, other: Some(other), how: pair.how_on_crossing() };
             }
         }
         for planet in 0..self.start.gm.len() {

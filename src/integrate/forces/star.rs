@@ -132,14 +132,34 @@ fn oblateness_factor(star_gm: f64, j2: f64, radius_au: f64, square: f64) -> f64 
 /// E' = v'²/2 − M/r − 3M²/(c²r²), and (−2E)^{3/2}/M · (1 + 15 E/(4c²)) with the conserved energy of the first
 /// post-Newtonian motion (Damour & Deruelle 1985). First order in 1/c².
 pub fn rate_matched(state: &State, light_au_day: f64) -> State {
-    let star = star_velocity(state);
-    let helio: Vec<[f64; 3]> = (state.pos.iter().zip(&state.vel))
-        .map(|(r, u)| {
-            let v = [0, 1, 2].map(|k| u[k] - star[k]);
+    with_heliocentric(state, |r, v| {
+        let factor = 1.0 + rate_shift(state.star_gm, r, &v, light_au_day);
+        v.map(|x| x * factor)
+    })
+}
+
+/// The state that [`rate_matched`] makes into this one, to rounding.
+///
+/// v/(1 + δ(v)) with δ at the velocity found so far: each round is nearer by a factor of about δ.
+pub fn rate_unmatched(state: &State, light_au_day: f64) -> State {
+    with_heliocentric(state, |r, matched| {
+        let mut v = matched;
+        for _ in 0..UNMATCHINGS {
             let factor = 1.0 + rate_shift(state.star_gm, r, &v, light_au_day);
-            v.map(|x| x * factor)
-        })
-        .collect();
+            v = matched.map(|x| x / factor);
+        }
+        v
+    })
+}
+
+/// δ is 1e-5 at 0.006 au from the Sun, so that the last round changes nothing.
+const UNMATCHINGS: usize = 4;
+
+/// The state with other heliocentric velocities, given position and velocity of each planet; barycentric again.
+fn with_heliocentric(state: &State, change: impl Fn(&[f64; 3], [f64; 3]) -> [f64; 3]) -> State {
+    let star = star_velocity(state);
+    let each = state.pos.iter().zip(&state.vel);
+    let helio: Vec<[f64; 3]> = each.map(|(r, u)| change(r, [0, 1, 2].map(|k| u[k] - star[k]))).collect();
     let total = state.star_gm + state.gm.iter().sum::<f64>();
     let mut star = [0.0; 3];
     for (gm, v) in state.gm.iter().zip(&helio) {
@@ -169,4 +189,33 @@ fn star_velocity(state: &State) -> [f64; 3] {
         }
     }
     star
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn matched_rates_are_taken_back_to_rounding() {
+        let light = 173.144_632_674;
+        let gm = 2.959_122_08e-4;
+        // Between a fall and a hyperbola, at the surface of a star like the Sun and further out.
+        for (distance, speed) in [(0.0047_f64, 0.3_f64), (0.0047, 1.2), (0.04, 0.9), (1.0, 1.0), (1.0, 3.0)] {
+            let v = speed * (gm / distance).sqrt();
+            let state = State {
+                star_gm: gm,
+                gm: vec![1e-3 * gm, 0.1 * gm],
+                pos: vec![[distance, 0.0, 0.0], [0.0, 3.0 * distance, 0.0]],
+                vel: vec![[0.2 * v, v, 0.1 * v], [-0.5 * v, 0.0, 0.0]],
+            };
+            let matched = rate_matched(&state, light);
+            let back = rate_unmatched(&matched, light);
+            for (one, (other, moved)) in state.vel.iter().zip(back.vel.iter().zip(&matched.vel)) {
+                for k in 0..3 {
+                    assert!((one[k] - other[k]).abs() < 4e-16 * v, "{distance} {speed}: {one:?} {other:?}");
+                }
+                assert!((one[0] - moved[0]).abs() > 1e-9 * v, "{distance} {speed}: nothing to take back");
+            }
+        }
+    }
 }

@@ -16,6 +16,8 @@ pub enum EventKind {
     Escape,
     /// The distance of the watched pair rises to the watched one.
     Apart,
+    /// The distance of a pair falls to that of [`Watch::near`].
+    Near,
 }
 
 /// An event between two bodies, `first` < `second`, where 0 is the star and k the planet k − 1.
@@ -40,6 +42,8 @@ pub struct Watch {
     pub escape_au: Option<f64>,
     /// A pair and the distance at which it counts as apart.
     pub apart: Option<(usize, usize, f64)>,
+    /// Pairs and the distance at which each counts as near.
+    pub near: Vec<(usize, usize, f64)>,
 }
 
 /// An event as the polynomial sees it.
@@ -60,17 +64,18 @@ impl Watch {
             && self.radii_au.is_empty()
             && self.escape_au.is_none()
             && self.apart.is_none()
+            && self.near.is_empty()
     }
 
     /// Distances whose crossing counts for a pair: kind, distance and whether it is crossed outward.
-    fn levels(&self, i: usize, j: usize) -> [Option<(EventKind, f64, bool)>; 3] {
+    fn levels(&self, i: usize, j: usize) -> [Option<(EventKind, f64, bool)>; 4] {
+        let this = |&(a, b, _): &(usize, usize, f64)| (a.min(b), a.max(b)) == (i, j);
         let radii = (!self.radii_au.is_empty()).then(|| self.radii_au[i] + self.radii_au[j]);
         [
             radii.filter(|&sum| sum > 0.0).map(|sum| (EventKind::Collision, sum, false)),
             self.escape_au.filter(|_| i == 0).map(|au| (EventKind::Escape, au, true)),
-            self.apart
-                .filter(|&(a, b, _)| (a.min(b), a.max(b)) == (i, j))
-                .map(|w| (EventKind::Apart, w.2, true)),
+            self.apart.filter(this).map(|w| (EventKind::Apart, w.2, true)),
+            self.near.iter().copied().find(this).map(|w| (EventKind::Near, w.2, false)),
         ]
     }
 

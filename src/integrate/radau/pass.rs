@@ -70,6 +70,7 @@ pub fn pass(
         radii_au: until.radii_au.clone(),
         escape_au: until.escape_au,
         apart: until.apart,
+        near: Vec::new(),
     };
     let forward = until.day >= from_day;
     let mut nearest: Option<Event> = None;
@@ -143,7 +144,10 @@ fn ending_of(event: &Event) -> Ending {
         EventKind::Approach | EventKind::Apart => Ending::Apart,
         EventKind::Escape => Ending::Escape { planet: event.second - 1 },
         EventKind::Collision if event.first == 0 => Ending::Star { planet: event.second - 1 },
-        EventKind::Collision => Ending::Collision { first: event.first - 1, second: event.second - 1 },
+        // Nearness beyond contact is not watched for in a passage.
+        EventKind::Collision | EventKind::Near => {
+            Ending::Collision { first: event.first - 1, second: event.second - 1 }
+        }
     }
 }
 

@@ -107,7 +107,7 @@ impl Pace {
 
     fn say_again(&self, at: &FollowProgress) {
         let line = format!(
-            "the energy error passed {}; begins again with a step of {} d",
+            "the energy error passed {}, or could not be told before a loss; begins again with a step of {} d",
             short(self.energy_error),
             short(at.step_day)
         );

@@ -253,6 +253,17 @@ impl<'a> View<'a> {
         ))
     }
 
+    /// What the adaptive engine did for the scheme; nothing where it did nothing.
+    fn passages(&self) -> Option<String> {
+        let (blocks, error) = self.assessment.passages.zip(self.assessment.passage_energy_error)?;
+        let s = if blocks == 1 { "" } else { "s" };
+        let error = short(error);
+        Some(format!(
+            "{blocks} block{s} of steps done by the adaptive engine around close approaches; largest relative energy \
+             error over one {error}"
+        ))
+    }
+
     /// Lines ending in a newline.
     pub fn text(&self) -> String {
         let a = self.assessment;
@@ -270,6 +281,7 @@ impl<'a> View<'a> {
             ("momentum", momentum),
         ];
         entries.extend(self.approach().map(|approach| ("approach", approach)));
+        entries.extend(self.passages().map(|passages| ("passages", passages)));
         let names = self.wish.names();
         let drift = self.analysed.as_ref().map(|analysis| ("drift", motion::drift(analysis, &names)));
         entries.splice(4..4, drift.ok());
@@ -290,9 +302,10 @@ impl<'a> View<'a> {
         };
         let rows = self.names.iter().zip(&self.assessment.extent).map(|(name, extent)| {
             let axes = extent.semi_major_axis_au;
+            let bound = || format!("{} to {}", significant(axes.min, 6), significant(axes.max, 6));
             vec![
                 (*name).to_owned(),
-                format!("{} to {}", significant(axes.min, 6), significant(axes.max, 6)),
+                if axes.is_empty() { "never bound".to_owned() } else { bound() },
                 from_to(&extent.eccentricity, 1.0, 5),
                 from_to(&extent.inclination, DEGREE, 3),
             ]
@@ -352,6 +365,10 @@ impl<'a> View<'a> {
             "steps_per_passage": self.passage.day / a.step_day,
             "steps": self.steps() as u64,
             "redone": a.redone,
+            "passages": a.passages.zip(a.passage_energy_error).map(|(blocks, error)| json!({
+                "blocks": blocks,
+                "largest_energy_error": error,
+            })),
             "smallest_approach": a.smallest_approach.map(|found| json!({
                 "pair": [name(found.pair.0), name(found.pair.1)],
                 "hill": found.hill,
