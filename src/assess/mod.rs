@@ -13,7 +13,8 @@ mod samples;
 mod series;
 
 pub use analysis::{
-    Analysed, Analysis, AngleAnalysed, DriftFrom, NotAnalysed, Sampling, analyse, angle_series,
+    Analysed, Analysis, AnalysisProgress, AnalysisWork, AngleAnalysed, DriftFrom, NotAnalysed, Sampling,
+    analyse, angle_series,
 };
 pub use assessment::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{BatchWork, assess, run_batch};

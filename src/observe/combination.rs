@@ -24,6 +24,15 @@ pub struct Fundamental {
     pub name: String,
     pub kind: Kind,
     pub rad_day: f64,
+    /// The massless body whose own it is: no other body's motion holds it. None for those of the bodies that pull.
+    pub own_of: Option<usize>,
+}
+
+impl Fundamental {
+    /// Whether it can be in the motion of a body: a massless one, or (none) those that pull.
+    pub fn is_seen_by(&self, massless: Option<usize>) -> bool {
+        self.own_of.is_none() || self.own_of == massless
+    }
 }
 
 /// Which combinations a signal can have (d'Alembert's rules).
@@ -93,8 +102,11 @@ impl fmt::Display for Kind {
 /// All combinations that a rule allows, ready to be compared with lines.
 #[derive(Clone, Debug)]
 pub struct Namer {
-    /// Σ k ν and k, by Σ|k|.
+    /// Σ k ν and k, by Σ|k|; k of the fundamentals at `places`.
     table: Vec<(f64, Vec<i32>)>,
+    /// Where in the list of `all` fundamentals those stand that a name may hold.
+    places: Vec<usize>,
+    all: usize,
     /// Whole turns per sample, rad/day: lines are known up to these; 0 when sampling folds nothing.
     fold_rad_day: f64,
 }
@@ -112,16 +124,48 @@ impl Namer {
     /// `fold_rad_day` is 2π over the sampling time when the lines come from samples too sparse for the fastest of them,
     /// else 0.
     pub fn new(fundamentals: &[Fundamental], rule: Rule, fold_rad_day: f64) -> Namer {
-        let mut table = Vec::new();
+        let places = (0..fundamentals.len()).collect();
+        Namer::among(fundamentals, places, rule, fold_rad_day)
+    }
+
+    /// [`Namer::new`] of the fundamentals that the motion of a massless body can hold (none: of the bodies that pull). A
+    /// name still counts through all of them.
+    pub fn seen_by(
+        massless: Option<usize>,
+        fundamentals: &[Fundamental],
+        rule: Rule,
+        fold_rad_day: f64,
+    ) -> Namer {
+        let places = (0..fundamentals.len()).filter(|k| fundamentals[*k].is_seen_by(massless)).collect();
+        Namer::among(fundamentals, places, rule, fold_rad_day)
+    }
+
+    fn among(fundamentals: &[Fundamental], places: Vec<usize>, rule: Rule, fold_rad_day: f64) -> Namer {
+        let seen: Vec<&Fundamental> = places.iter().map(|place| &fundamentals[*place]).collect();
+        let librations = seen.iter().rposition(|f| f.kind == Kind::Libration).map_or(0, |last| last + 1);
+        let mut filler =
+            Filler { rule, librations, k: vec![0; seen.len()], fundamentals: seen, table: Vec::new() };
         for size in 0..=LARGEST_SIZE {
-            let before = table.len();
-            fill(fundamentals, rule, size, &mut vec![0; fundamentals.len()], 0, &mut table);
-            if table.len() > MOST {
-                table.truncate(before);
+            let before = filler.table.len();
+            filler.fill(size, 0, 0);
+            if filler.table.len() > MOST {
+                filler.table.truncate(before);
                 break;
             }
         }
-        Namer { table, fold_rad_day }
+        Namer { table: filler.table, places, all: fundamentals.len(), fold_rad_day }
+    }
+
+    /// Whole turns per sample, rad/day; 0 where sampling folds nothing.
+    pub fn fold_rad_day(&self) -> f64 {
+        self.fold_rad_day
+    }
+
+    /// A combination that counts through all fundamentals.
+    fn named(&self, k: &[i32], misfit_rad_day: f64, rivals: usize) -> Combination {
+        let mut coefficients = vec![0; self.all];
+        self.places.iter().zip(k).for_each(|(place, k)| coefficients[*place] = *k);
+        Combination { coefficients, misfit_rad_day, rivals }
     }
 
     /// The simplest combination, not all of it 0, that vanishes within `tolerance_rad_day`: fundamentals that are not
@@ -135,7 +179,7 @@ impl Namer {
         let size: u32 = coefficients.iter().map(|k| k.unsigned_abs()).sum();
         let alike = |k: &[i32]| k.iter().map(|k| k.unsigned_abs()).sum::<u32>() == size;
         let rivals = fitting.take_while(|(_, k)| alike(k)).count();
-        Some(Combination { coefficients: coefficients.clone(), misfit_rad_day: -value, rivals })
+        Some(self.named(coefficients, -value, rivals))
     }
 
     /// The simplest combination within `tolerance_rad_day` of a frequency; the nearest of those equally simple.
@@ -160,11 +204,7 @@ impl Namer {
             return None;
         }
         let best = alike.iter().min_by(|one, other| misfit(one.0).abs().total_cmp(&misfit(other.0).abs()))?;
-        Some(Combination {
-            coefficients: best.1.clone(),
-            misfit_rad_day: misfit(best.0),
-            rivals: alike.len() - 1,
-        })
+        Some(self.named(&best.1, misfit(best.0), alike.len() - 1))
     }
 
     /// Share of the band that lies within the tolerance of a combination no larger than `size`.
@@ -180,38 +220,51 @@ impl Namer {
     }
 }
 
-/// Adds the combinations whose coefficients from `at` on have Σ|k| = `left` exactly.
-fn fill(
-    fundamentals: &[Fundamental],
+/// A table of combinations on its way.
+struct Filler<'a> {
+    fundamentals: Vec<&'a Fundamental>,
     rule: Rule,
-    left: u32,
-    k: &mut Vec<i32>,
-    at: usize,
-    table: &mut Vec<(f64, Vec<i32>)>,
-) {
-    if table.len() > MOST {
-        return;
-    }
-    if at == fundamentals.len() {
-        if left == 0 && allowed(fundamentals, rule, k) {
-            let value = k.iter().zip(fundamentals).map(|(k, f)| f64::from(*k) * f.rad_day).sum();
-            table.push((value, k.clone()));
-        }
-        return;
-    }
-    for size in 0..=left {
-        for sign in [1, -1] {
-            if size == 0 && sign < 0 {
-                continue;
-            }
-            k[at] = sign * size as i32;
-            fill(fundamentals, rule, left - size, k, at + 1, table);
-        }
-    }
-    k[at] = 0;
+    /// From here on there are no librations.
+    librations: usize,
+    k: Vec<i32>,
+    table: Vec<(f64, Vec<i32>)>,
 }
 
-fn allowed(fundamentals: &[Fundamental], rule: Rule, k: &[i32]) -> bool {
+impl Filler<'_> {
+    /// Adds the combinations whose coefficients from `at` on have Σ|k| = `left` exactly; those before it sum to `turns`.
+    fn fill(&mut self, left: u32, at: usize, turns: i32) {
+        if self.table.len() > MOST {
+            return;
+        }
+        // What is left must make up what the rule asks for; each turn too many must be taken back.
+        let missing = (self.rule.turns - turns).unsigned_abs();
+        let even = left.wrapping_sub(missing).is_multiple_of(2);
+        if missing > left || (at >= self.librations && !even) {
+            return;
+        }
+        if left == 0 || at == self.k.len() {
+            if left == 0 && allowed(&self.fundamentals, self.rule, &self.k) {
+                let terms = self.k.iter().zip(&self.fundamentals);
+                let value = terms.map(|(k, f)| f64::from(*k) * f.rad_day).sum();
+                self.table.push((value, self.k.clone()));
+            }
+            return;
+        }
+        let turning = i32::from(self.fundamentals[at].kind != Kind::Libration);
+        for size in 0..=left {
+            for sign in [1, -1] {
+                if size == 0 && sign < 0 {
+                    continue;
+                }
+                self.k[at] = sign * size as i32;
+                self.fill(left - size, at + 1, turns + turning * self.k[at]);
+            }
+        }
+        self.k[at] = 0;
+    }
+}
+
+fn allowed(fundamentals: &[&Fundamental], rule: Rule, k: &[i32]) -> bool {
     let of = |wanted: fn(Kind) -> bool| -> i32 {
         k.iter().zip(fundamentals).filter(|(_, f)| wanted(f.kind)).map(|(k, _)| k).sum()
     };
@@ -231,7 +284,7 @@ mod tests {
             ("g1", Kind::Pericentre, 1.17e-3),
             ("g2", Kind::Pericentre, 3.31e-4),
         ]
-        .map(|(name, kind, rad_day)| Fundamental { name: name.into(), kind, rad_day })
+        .map(|(name, kind, rad_day)| Fundamental { name: name.into(), kind, rad_day, own_of: None })
         .into()
     }
 
@@ -265,7 +318,12 @@ mod tests {
     #[test]
     fn nodes_come_in_pairs_in_the_plane() {
         let mut fundamentals = two_planets();
-        fundamentals.push(Fundamental { name: "s2".into(), kind: Kind::Node, rad_day: -9.1e-4 });
+        fundamentals.push(Fundamental {
+            name: "s2".into(),
+            kind: Kind::Node,
+            rad_day: -9.1e-4,
+            own_of: None,
+        });
         let plane = Namer::new(&fundamentals, Rule::PLANE, 0.0);
         let line = 2.0 * -9.1e-4 - 1.17e-3;
         assert_eq!(plane.name(line, 1e-10).unwrap().words(&fundamentals), "2s2 − g1");
@@ -277,8 +335,8 @@ mod tests {
     #[test]
     fn librations_do_not_count_as_turns() {
         let fundamentals = [
-            Fundamental { name: "g1".into(), kind: Kind::Pericentre, rad_day: 1e-3 },
-            Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: 0.0301 },
+            Fundamental { name: "g1".into(), kind: Kind::Pericentre, rad_day: 1e-3, own_of: None },
+            Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: 0.0301, own_of: None },
         ];
         let namer = Namer::new(&fundamentals, Rule::PLANE, 0.0);
         assert_eq!(namer.name(1e-3 + 2.0 * 0.0301, 1e-10).unwrap().words(&fundamentals), "g1 + 2l");
@@ -297,5 +355,50 @@ mod tests {
     fn folded_lines_are_found_too() {
         let namer = Namer::new(&two_planets(), Rule::PLANE, 0.2);
         assert_eq!(namer.name(0.713 - 0.8, 1e-10).unwrap().coefficients, [1, 0, 0, 0]);
+    }
+
+    /// The slow twin of the table: every list of small whole numbers, asked of the rule.
+    #[test]
+    fn the_table_leaves_nothing_out() {
+        let mut fundamentals = two_planets();
+        fundamentals.push(Fundamental {
+            name: "s2".into(),
+            kind: Kind::Node,
+            rad_day: -9.1e-4,
+            own_of: None,
+        });
+        fundamentals.push(Fundamental {
+            name: "l".into(),
+            kind: Kind::Libration,
+            rad_day: 0.03,
+            own_of: None,
+        });
+        for rule in [Rule::PLANE, Rule::NODE, Rule::ANGLE] {
+            let namer = Namer::new(&fundamentals, rule, 0.0);
+            let small = |k: &[i32]| k.iter().map(|k| k.abs()).sum::<i32>() <= 3;
+            let listed: std::collections::BTreeSet<Vec<i32>> =
+                namer.table.iter().map(|(_, k)| k.clone()).filter(|k| small(k)).collect();
+            let every = (0..7i32.pow(6)).map(|code| (0..6).map(|at| code / 7i32.pow(at) % 7 - 3).collect());
+            let of = fundamentals.iter().collect::<Vec<_>>();
+            let expected = every.filter(|k: &Vec<i32>| small(k) && allowed(&of, rule, k)).collect();
+            assert_eq!(listed, expected);
+        }
+    }
+
+    /// A name holds what the body can see, and counts through all.
+    #[test]
+    fn what_is_anothers_own_is_in_no_name() {
+        let mut fundamentals = two_planets();
+        for (body, rad_day) in [(2, 2.03e-3), (3, 2.41e-3)] {
+            let name = format!("g{}", body + 1);
+            fundamentals.push(Fundamental { name, kind: Kind::Pericentre, rad_day, own_of: Some(body) });
+        }
+        let seen_by = |body| Namer::seen_by(body, &fundamentals, Rule::PLANE, 0.0);
+        let own = seen_by(Some(3)).name(2.41e-3, 1e-10).unwrap();
+        assert_eq!(own.words(&fundamentals), "g4");
+        for other in [None, Some(2)] {
+            let found = seen_by(other).name(2.41e-3, 1e-10);
+            assert!(found.is_none_or(|name| name.coefficients[5] == 0), "{other:?}");
+        }
     }
 }

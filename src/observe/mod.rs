@@ -22,7 +22,9 @@ pub use frequency::{
 };
 pub use growth::{GrowthRecord, Lyapunov};
 pub use libration::{AngleMotion, Libration, WhyNot, angle_motion};
-pub use quasi_periodic::{NamedLine, QuasiPeriodic, Spectra, angle_lines, libration_frequency, named_angle};
+pub use quasi_periodic::{
+    NamedLine, QuasiPeriodic, Spectra, angle_lines, libration_frequency, named_angle, named_angle_by,
+};
 pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
 pub use series::{ElementSeries, SeriesError};
 pub use told::{AngleSamples, Arc, ToldAngle, ToldFrom, told_angle};
