@@ -6,10 +6,11 @@ use abide::input::parse_system;
 use abide::observe::Kind;
 use abide::system::{Compensation, CoordinateChoice, Encounter, Engine, Limits, Span, Step};
 
-/// A giant and massless bodies inside it: four orbits, each of them again and again at other phases.
+/// A giant and massless bodies inside it: four orbits, each of them again and again at other phases. Their pericentres turn once in 1500
+/// inner orbits or so (Laplace–Lagrange theory).
 fn belt(massless: usize) -> Configuration {
     let mut text =
-        "title = \"Belt\"\n[star]\nmass = \"1 Msun\"\n[[planet]]\nname = \"b\"\nmass = \"1 Mjup\"\n\
+        "title = \"Belt\"\n[star]\nmass = \"1 Msun\"\n[[planet]]\nname = \"b\"\nmass = \"10 Mjup\"\n\
                     semi_major_axis = \"5.2 au\"\neccentricity = 0.05\nargument_of_pericentre = \"0 deg\"\n\
                     mean_anomaly = \"0 deg\"\n"
             .to_owned();
@@ -18,7 +19,7 @@ fn belt(massless: usize) -> Configuration {
         text += &format!(
             "[[planet]]\nname = \"p{body}\"\nmass = \"0 Mearth\"\nsemi_major_axis = \"{} au\"\neccentricity = 0.02\n\
              argument_of_pericentre = \"{} deg\"\nmean_anomaly = \"{} deg\"\n",
-            2.2 + 0.23 * orbit as f64,
+            1.8 + 0.15 * orbit as f64,
             60 * orbit + 17 * turn,
             100 * orbit + 71 * turn,
         );
@@ -35,7 +36,7 @@ fn followed(configuration: &Configuration) -> Follower {
         step: Step::PerOrbit(24.0),
         energy_error: 1e-3,
     };
-    let plan = Plan::new(Span::Orbits(300.0), &limits, &engine, configuration);
+    let plan = Plan::new(Span::Orbits(5000.0), &limits, &engine, configuration);
     let plan = Plan { extent: false, megno: false, ..plan_for_rows(&plan, configuration, 2000) };
     let mut follower = Follower::new(configuration, &plan, 10);
     while follower.assessment().is_none() {

@@ -1,8 +1,9 @@
 //! The quasi-periodic decomposition of a motion: every line with the name of its combination.
 
 use super::ElementSeries;
-use super::combination::{Combination, Fundamental, Kind, Namer, Rule};
+use super::combination::{Combination, Fundamental, Kind, Rule};
 use super::frequency::{Choice, LibrationOf, MODE_SEARCH, mean_motions, numbered};
+use super::namer::Namer;
 use crate::num::{Complex, FourierError, Line, Search, Spectrum, decompose, decompose_real, turn_near};
 use std::f64::consts::TAU;
 
