@@ -94,6 +94,14 @@ fn json_is_alone_on_standard_output_and_quiet_says_nothing() {
     assert!((value["inner"]["orbits"].as_f64().unwrap() - 500.0).abs() < 1e-9);
     assert!(value["energy_error"].as_f64().unwrap() < 1e-6);
     assert_eq!(value["smallest_approach"]["pair"], serde_json::json!(["b", "c"]));
+    // What was chosen, and why.
+    assert_eq!((&value["scheme"], &value["coordinates"]), (&"(2,2)".into(), &"heliocentric".into()));
+    assert_eq!(value["coordinates_why"], "the planets are light, and these are the cheaper");
+    assert!(value["step_why"].as_str().unwrap().contains("steps in the shortest pericentre passage"));
+    assert_eq!((&value["asked"]["span"], &value["asked"]["escape"]), (&"500 orbits".into(), &Value::Null));
+    assert_eq!(value["system_sha256"].as_str().unwrap().len(), 64);
+    let kept: Value = serde_json::from_str(&desk.text("out/verdict.json")).unwrap();
+    assert_eq!(kept, value);
     let extent = &value["extent"]["c"]["e"];
     assert!(extent[0].as_f64().unwrap() <= 0.03 && extent[1].as_f64().unwrap() >= 0.03);
     let outcome =
@@ -300,4 +308,40 @@ fn passages_are_told_where_there_were_any() {
     // The stated axis, though the scheme moves with other velocities.
     let first = column(&table(&desk.text("out/series.ecsv")), "b.a")[0];
     assert!((first / 0.04 - 1.0).abs() < 1e-12, "{first}");
+}
+
+/// Scheme, step and coordinates stand in the header with their reasons, in the words that a survey's run.json has.
+#[test]
+fn the_header_says_what_was_chosen_and_why() {
+    let desk = Desk::with_pair();
+    let header = |more: &[&str]| {
+        follow(&desk, more).done();
+        let text = desk.text("out/series.ecsv");
+        let lines = text.lines().take_while(|line| line.starts_with('#'));
+        let entries =
+            lines.filter_map(|line| line.strip_prefix("# - {\"")?.strip_suffix('}')?.split_once("\": "));
+        entries
+            .map(|(name, value)| (name.to_owned(), value.trim_matches('"').to_owned()))
+            .collect::<std::collections::BTreeMap<_, _>>()
+    };
+    let found = header(&["--span", "200 orbits", "--step", "0.3 d"]);
+    assert_eq!((found["scheme"].as_str(), found["coordinates"].as_str()), ("(2,2)", "heliocentric"));
+    assert!((found["step_d"].parse::<f64>().unwrap() - 0.3).abs() < 0.01, "{found:?}");
+    assert_eq!(found["compensated"], "no");
+    assert!(found["step_why"].starts_with("as asked; "), "{found:?}");
+    let study = "system = \"pair.toml\"\nspan = \"200 orbits\"\n[[axis]]\nvary = \"c.eccentricity\"\nfrom = 0.0\n\
+                 to = 0.06\ncells = 3\n[engine]\nstep = \"0.3 d\"\n";
+    desk.write("few.toml", study);
+    desk.abide("survey").args(["few.toml", "--into", "few", "--quiet"]).run().done();
+    let run: Value = serde_json::from_str(&desk.text("few/run.json")).unwrap();
+    let reasons = run["plan"].as_object().unwrap().iter().filter(|(name, _)| name.ends_with("_why"));
+    let mut compared = 0;
+    for (name, words) in reasons {
+        assert_eq!(found[name], words.as_str().unwrap(), "{name}");
+        compared += 1;
+    }
+    assert!(compared >= 2, "{run:#}");
+    let found = header(&["--span", "20 orbits", "--engine", "adaptive", "--anew"]);
+    assert_eq!((found["scheme"].as_str(), found["scheme_why"].as_str()), ("adaptive", "as asked"));
+    assert!(!found.contains_key("coordinates") && !found.contains_key("coordinates_why"), "{found:?}");
 }

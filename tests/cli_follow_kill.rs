@@ -2,6 +2,7 @@
 
 mod cli_support;
 
+use std::io::Read;
 use std::time::Duration;
 
 use cli_support::{Desk, Line, PAIR, wait_until};
@@ -40,7 +41,9 @@ fn killed_at_ten_moments_gives_the_bytes_of_an_undisturbed_run() {
     assert!(went_on >= 9, "{went_on}");
     let last = line(&desk, "killed").run().done().said("killed: goes on, ");
     assert_eq!(last.stdout, plain.stdout);
-    for name in ["series.ecsv", "series.png", "frequencies.ecsv", "lines.ecsv", "resonances.ecsv"] {
+    let names =
+        ["series.ecsv", "series.png", "frequencies.ecsv", "lines.ecsv", "resonances.ecsv", "verdict.json"];
+    for name in names {
         assert!(desk.read(format!("killed/{name}")) == desk.read(format!("undisturbed/{name}")), "{name}");
     }
     let left = std::fs::read_dir(desk.path("killed")).unwrap();
@@ -74,4 +77,57 @@ fn two_processes_do_not_share_a_folder() {
     wait_until("a checkpoint", || desk.path("out/follow.checkpoint").exists());
     line(&desk, "out").run().refused().said("is held by another process (process ");
     running.kill();
+}
+
+/// A giant and forty massless bodies: their analysis takes longer than their motion.
+fn belt() -> String {
+    let mut text =
+        "title = \"Belt\"\n[star]\nmass = \"1 Msun\"\n[[planet]]\nname = \"b\"\nmass = \"1 Mjup\"\n\
+                    semi_major_axis = \"5.2 au\"\neccentricity = 0.05\nargument_of_pericentre = \"0 deg\"\n\
+                    mean_anomaly = \"0 deg\"\n"
+            .to_owned();
+    for body in 0..40 {
+        text += &format!(
+            "[[planet]]\nname = \"p{body}\"\nmass = \"0 Mearth\"\nsemi_major_axis = \"{} au\"\neccentricity = 0.03\n\
+             argument_of_pericentre = \"{} deg\"\nmean_anomaly = \"{} deg\"\ninclination = \"{} deg\"\n",
+            2.2 + 0.02 * f64::from(body),
+            60 * body,
+            100 * body,
+            89.0 + 0.03 * f64::from(body),
+        );
+    }
+    text
+}
+
+/// Stopped while frequencies and resonances are told: at once, with the way on, which needs no step of the motion again.
+#[test]
+fn the_analysis_is_left_at_once_and_taken_up() {
+    let desk = Desk::new().file("belt.toml", belt());
+    let line = || {
+        let words =
+            ["belt.toml", "--into", "out", "--span", "1500 orbits", "--encounter", "off", "--rows", "20"];
+        desk.abide("follow").args(words).args(["--step", "24 per orbit", "--energy-error", "1e-3"])
+    };
+    let mut running = line().start();
+    let checkpoint = desk.path("out/follow.checkpoint");
+    let finished = || {
+        // The head comes first, and in it the system as read.
+        let mut head = Vec::new();
+        let read = std::fs::File::open(&checkpoint).and_then(|file| file.take(40_000).read_to_end(&mut head));
+        read.is_ok() && head.windows(15).any(|words| words == b"\"finished\":true")
+    };
+    wait_until("the whole span is followed", || finished() || running.has_ended());
+    assert!(!running.has_ended(), "caught at the analysis");
+    let asked = std::time::Instant::now();
+    running
+        .interrupt()
+        .code(130)
+        .said("the whole span was followed and is kept in out, but its frequencies and resonances were not yet told")
+        .said("The same command");
+    assert!(asked.elapsed() < Duration::from_secs(5), "{:?}", asked.elapsed());
+    assert!(!desk.path("out/series.ecsv").exists() && !desk.path("out/.lock").exists());
+    line().run().done().said("out is finished").said("wrote out/resonances.ecsv");
+    let resonances = desk.text("out/resonances.ecsv");
+    let pairs = resonances.lines().filter(|line| line.contains(",apsides,"));
+    assert_eq!(pairs.count(), 40, "each with the giant only");
 }

@@ -113,7 +113,12 @@ fn lines_get_their_names() {
     let waves = decompose_real(&values, series.step_day(), Search { most: 8, window_power: 1 }).unwrap();
     let mut independent: Vec<Fundamental> = all.into_iter().filter(|f| f.name != "g1").collect();
     let libration = waves[0].frequency;
-    independent.push(Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: libration });
+    independent.push(Fundamental {
+        name: "l".into(),
+        kind: Kind::Libration,
+        rad_day: libration,
+        own_of: None,
+    });
     let namer = Namer::new(&independent, Rule::ANGLE, 0.0);
     let tolerance = 0.05 * TAU / series.span_day();
     let words: Vec<String> = waves
@@ -252,7 +257,7 @@ fn the_decomposition_of_hd_45364() {
     // The side lines of the mean longitudes tell the same.
     near(spectra.libration(&[0, 1], &lines).unwrap(), own, 1e-9);
     near(own / DEGREE_YEAR, published("libration frequency of 2 lambda_b-3 lambda_c+varpi_b"), 0.01);
-    all.push(Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: own });
+    all.push(Fundamental { name: "l".into(), kind: Kind::Libration, rad_day: own, own_of: None });
     assert_eq!(spectra.relation(&all).unwrap().words(&all), "2n_b − 3n_c + g1");
     let words = |lines: &[abide::observe::NamedLine]| -> Vec<String> {
         lines.iter().map(|line| line.name.as_ref().map_or("?".into(), |name| name.words(&all))).collect()

@@ -173,9 +173,15 @@ fn the_series_has_degrees_years_and_gaps() {
         lyapunov_per_day: vec![f64::NAN, 0.01],
         scheme: "(2,2)".to_owned(),
         step_day: 0.5,
+        coordinates: "jacobi".to_owned(),
+        reasons: vec![("step_why".to_owned(), "as asked".to_owned())],
         ..Series::default()
     };
     let table = series_table(&series);
+    let header = table.to_ecsv().unwrap();
+    for entry in ["scheme\": \"(2,2)", "step_d\": 0.5", "coordinates\": \"jacobi", "step_why\": \"as asked"] {
+        assert!(header.contains(entry), "{entry}: {header}");
+    }
     let names: Vec<&str> = table.columns.iter().map(|c| c.name.as_str()).collect();
     let expected = [
         "time",

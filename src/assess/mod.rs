@@ -14,7 +14,8 @@ mod series;
 mod why;
 
 pub use analysis::{
-    Analysed, Analysis, AngleAnalysed, DriftFrom, NotAnalysed, Sampling, analyse, angle_series,
+    Analysed, Analysis, AnalysisProgress, AnalysisWork, AngleAnalysed, DriftFrom, NotAnalysed, Sampling,
+    analyse, angle_series,
 };
 pub use assessment::{AngleFound, Approach, Assessment, Extent, Loss, Lyapunov, Range};
 pub use batch::{BatchWork, assess, run_batch};

@@ -2,8 +2,10 @@
 
 use super::fourier::Complex;
 use super::fourier_fit::Tone;
-use rustfft::FftPlanner;
+use super::wave::wave;
+use rustfft::{Fft, FftPlanner};
 use std::f64::consts::{PI, TAU};
+use std::sync::Arc;
 
 /// Weights (1 + cos πx)^p over the span, x from −1 to 1, summing to 1.
 ///
@@ -11,11 +13,16 @@ use std::f64::consts::{PI, TAU};
 pub(super) struct Window {
     power: u32,
     pub(super) weights: Vec<f64>,
+    /// Of the places from the middle on, each standing for itself and its mirror: w, wx and wx² twice, x from 0 to 1.
+    pub(super) mirrored: Vec<[f64; 3]>,
+    /// Of twice the samples and more.
+    padded: Arc<dyn Fft<f64>>,
 }
 
 impl Window {
     pub(super) fn new(count: usize, power: u32) -> Window {
-        let mut window = Window { power, weights: Vec::new() };
+        let padded = FftPlanner::new().plan_fft_forward((2 * count).next_power_of_two());
+        let mut window = Window { power, weights: Vec::new(), mirrored: Vec::new(), padded };
         let half = 0.5 * count as f64;
         let raw: Vec<f64> = (0..count)
             .map(|k| (k as f64 - 0.5 * (count as f64 - 1.0)) / half)
@@ -23,7 +30,19 @@ impl Window {
             .collect();
         let total: f64 = raw.iter().sum();
         window.weights = raw.into_iter().map(|weight| weight / total).collect();
+        let mirrored = (count / 2..count).map(|k| {
+            // The middle of an odd number of samples has no mirror.
+            let both = if window.place(k) == 0.0 { 1.0 } else { 2.0 };
+            let (weight, x) = (both * window.weights[k], window.place(k) / half);
+            [weight, weight * x, weight * x * x]
+        });
+        window.mirrored = mirrored.collect();
         window
+    }
+
+    /// exp(iωu) at every sample.
+    pub(super) fn wave(&self, frequency: f64) -> Vec<Complex> {
+        wave(frequency, self.place(0), self.weights.len())
     }
 
     /// Samples from the middle of the span.
@@ -57,10 +76,10 @@ impl Window {
 /// The strongest line of a signal: the maximum of |Σ w f exp(−iωu)|, frequency in rad per sample.
 pub(super) fn peak(window: &Window, signal: &[Complex]) -> Tone {
     let weighted: Vec<Complex> = signal.iter().zip(&window.weights).map(|(z, w)| z * w).collect();
-    let padded = (2 * signal.len()).next_power_of_two();
+    let padded = window.padded.len();
     let mut buffer = weighted.clone();
     buffer.resize(padded, Complex::new(0.0, 0.0));
-    FftPlanner::new().plan_fft_forward(padded).process(&mut buffer);
+    window.padded.process(&mut buffer);
     let strongest = (0..padded)
         .max_by(|one, other| buffer[*one].norm_sqr().total_cmp(&buffer[*other].norm_sqr()))
         .unwrap_or(0);
@@ -74,10 +93,9 @@ pub(super) fn peak(window: &Window, signal: &[Complex]) -> Tone {
 fn transform(window: &Window, weighted: &[Complex], frequency: f64) -> [Complex; 3] {
     let zero = Complex::new(0.0, 0.0);
     let mut sums = [zero; 3];
-    for (k, z) in weighted.iter().enumerate() {
+    for (k, (z, turn)) in weighted.iter().zip(window.wave(-frequency)).enumerate() {
         let place = window.place(k);
-        let (sin, cos) = (frequency * place).sin_cos();
-        let turned = z * Complex::new(cos, -sin);
+        let turned = z * turn;
         sums[0] += turned;
         sums[1] += turned * place;
         sums[2] += turned * (place * place);

@@ -6,6 +6,7 @@ mod fourier_fit;
 mod fourier_window;
 mod kept;
 mod root;
+mod wave;
 mod whole;
 
 pub use angle::{turn_near, wrap_half_turn, wrap_turn};

@@ -141,14 +141,21 @@ pub fn fundamentals(
     for (planet, name) in names.iter().enumerate().take(series.planets()) {
         let line = strongest_line(&series.motion_signal(planet), series.step_day(), MOTION_WINDOW)?;
         let frequency = series.unfolded(line, series.osculating_motion(planet));
-        all.push(Fundamental { name: format!("n_{name}"), kind: Kind::Motion, rad_day: frequency });
+        all.push(Fundamental {
+            name: format!("n_{name}"),
+            kind: Kind::Motion,
+            rad_day: frequency,
+            own_of: None,
+        });
     }
     let spectra = (0..series.planets())
         .map(|planet| decompose(&series.pericentre_signal(planet), series.step_day(), search))
         .collect::<Result<Vec<_>, _>>()?;
     let motions: Vec<f64> = all.iter().map(|f| f.rad_day).collect();
-    let modes = modes(&spectra, &motions, series.span_day(), series.planets(), &[]);
-    all.extend(numbered(modes, "g", Kind::Pericentre));
+    let massless = vec![false; series.planets()];
+    let choice =
+        Choice { motions: &motions, span_day: series.span_day(), massless: &massless, librations: &[] };
+    all.extend(numbered(choice.modes(&spectra, series.planets()), &massless, "g", Kind::Pericentre));
     Ok(all)
 }
 
@@ -169,17 +176,23 @@ pub fn fundamental_nodes(
         .collect::<Result<Vec<_>, FourierError>>()?;
     let most = series.planets().saturating_sub(1);
     let motions: Vec<f64> = (0..series.planets()).map(|planet| series.osculating_motion(planet)).collect();
-    Ok(numbered(modes(&spectra, &motions, series.span_day(), most, &[]), "s", Kind::Node))
+    let massless = vec![false; series.planets()];
+    let choice =
+        Choice { motions: &motions, span_day: series.span_day(), massless: &massless, librations: &[] };
+    Ok(numbered(choice.modes(&spectra, most), &massless, "s", Kind::Node))
 }
 
-pub(super) fn numbered(modes: Vec<Option<f64>>, letter: &str, kind: Kind) -> Vec<Fundamental> {
-    modes
-        .into_iter()
-        .enumerate()
-        .filter_map(|(planet, mode)| {
-            mode.map(|rad_day| Fundamental { name: format!("{letter}{}", planet + 1), kind, rad_day })
-        })
-        .collect()
+pub(super) fn numbered(
+    modes: Vec<Option<f64>>,
+    massless: &[bool],
+    letter: &str,
+    kind: Kind,
+) -> Vec<Fundamental> {
+    let mode = |(planet, (mode, massless)): (usize, (Option<f64>, &bool))| {
+        let (name, own_of) = (format!("{letter}{}", planet + 1), massless.then_some(planet));
+        mode.map(|rad_day| Fundamental { name, kind, rad_day, own_of })
+    };
+    modes.into_iter().zip(massless).enumerate().filter_map(mode).collect()
 }
 
 /// Smallest share of a signal that a mode of its own has.
@@ -187,47 +200,65 @@ const LEAST_SHARE: f64 = 0.005;
 /// Largest frequency of a slow variable, against the planet's own mean motion.
 const SLOW: f64 = 0.1;
 
-/// One line per planet, none taken twice and at most `most`: the largest share of its planet's signal chooses first.
-///
-/// Lines nearer than a resolution element are one mode.
-///
-/// Lines faster than a tenth of the planet's mean motion (`motions`, rad/day) are short-period terms and no modes, and so
-/// are lines of less than 0.5 % of the signal, and those that are another mode shifted by a libration (rad/day).
-pub(super) fn modes(
-    spectra: &[Spectrum],
-    motions: &[f64],
-    span_day: f64,
-    most: usize,
-    librations: &[f64],
-) -> Vec<Option<f64>> {
-    let resolution = std::f64::consts::TAU / span_day;
-    let mut offers: Vec<(f64, usize, f64)> = spectra
-        .iter()
-        .zip(motions)
-        .enumerate()
-        .flat_map(|(planet, (spectrum, motion))| {
-            let whole = spectrum.signal_rms;
-            let slow = move |line: &&Line| {
-                let share = line.amplitude.norm() / whole;
-                line.resolved && share >= LEAST_SHARE && line.frequency.abs() < SLOW * motion
-            };
-            let lines = spectrum.lines.iter().take(MODE_LINES).filter(slow);
-            lines.map(move |line| (line.amplitude.norm() / whole, planet, line.frequency))
-        })
-        .collect();
-    offers.sort_by(|one, other| other.0.total_cmp(&one.0));
-    let mut taken: Vec<Option<f64>> = vec![None; spectra.len()];
-    for (_, planet, frequency) in offers {
-        // Neither another's line nor that line shifted by a libration.
-        let apart = |other: f64| {
-            let sides = librations.iter().flat_map(|l| [-2.0 * l, -l, *l, 2.0 * l]);
-            sides.chain([0.0]).all(|side| (other + side - frequency).abs() > resolution)
-        };
-        let free = taken.iter().flatten().all(|other| apart(*other));
-        let room = taken.iter().flatten().count() < most;
-        if taken[planet].is_none() && free && room {
-            taken[planet] = Some(frequency);
+/// A libration, rad/day, and the massless body that has it (none: bodies that pull).
+pub(super) type LibrationOf = (f64, Option<usize>);
+
+/// What decides which lines are modes.
+pub(super) struct Choice<'a> {
+    /// rad/day per planet.
+    pub motions: &'a [f64],
+    pub span_day: f64,
+    pub massless: &'a [bool],
+    pub librations: &'a [LibrationOf],
+}
+
+impl Choice<'_> {
+    /// One line per planet, none taken twice and at most `most` of the planets that pull: the largest share of its planet's
+    /// signal chooses first. Then each massless body takes one that is of none of those: what another massless body has does not
+    /// matter to it.
+    ///
+    /// Lines nearer than a resolution element are one mode.
+    ///
+    /// Lines faster than a tenth of the planet's mean motion are short-period terms and no modes, and so are lines of less than
+    /// 0.5 % of the signal, and those that are another mode shifted by a libration.
+    pub fn modes(&self, spectra: &[Spectrum], most: usize) -> Vec<Option<f64>> {
+        let mut offers: Vec<(f64, usize, f64)> = spectra
+            .iter()
+            .zip(self.motions)
+            .enumerate()
+            .flat_map(|(planet, (spectrum, motion))| {
+                let whole = spectrum.signal_rms;
+                let slow = move |line: &&Line| {
+                    let share = line.amplitude.norm() / whole;
+                    line.resolved && share >= LEAST_SHARE && line.frequency.abs() < SLOW * motion
+                };
+                let lines = spectrum.lines.iter().take(MODE_LINES).filter(slow);
+                lines.map(move |line| (line.amplitude.norm() / whole, planet, line.frequency))
+            })
+            .collect();
+        offers.sort_by(|one, other| other.0.total_cmp(&one.0));
+        let mut shared: Vec<f64> = Vec::new();
+        let mut taken: Vec<Option<f64>> = vec![None; spectra.len()];
+        for (_, planet, frequency) in offers.iter().filter(|(_, planet, _)| !self.massless[*planet]) {
+            if taken[*planet].is_none() && shared.len() < most && self.is_free(*frequency, &shared, None) {
+                taken[*planet] = Some(*frequency);
+                shared.push(*frequency);
+            }
         }
+        for (_, planet, frequency) in offers.iter().filter(|(_, planet, _)| self.massless[*planet]) {
+            if taken[*planet].is_none() && self.is_free(*frequency, &shared, Some(*planet)) {
+                taken[*planet] = Some(*frequency);
+            }
+        }
+        taken
     }
-    taken
+
+    /// Neither one of the modes that are taken nor one of them shifted by a libration that the body can see.
+    fn is_free(&self, frequency: f64, taken: &[f64], massless: Option<usize>) -> bool {
+        let resolution = TAU / self.span_day;
+        let seen = self.librations.iter().filter(|(_, whose)| whose.is_none() || *whose == massless);
+        let sides: Vec<f64> = seen.flat_map(|(l, _)| [-2.0 * l, -l, *l, 2.0 * l]).chain([0.0]).collect();
+        let apart = |other: &f64| sides.iter().all(|side| (other + side - frequency).abs() > resolution);
+        taken.iter().all(apart)
+    }
 }

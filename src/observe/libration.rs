@@ -1,6 +1,6 @@
 //! Does an angle librate? Told from the whole span of the unwrapped angle.
 
-use crate::num::{FourierError, Search, decompose_real, wrap_half_turn, wrap_turn};
+use crate::num::{FEWEST_SAMPLES, FourierError, Search, decompose_real, wrap_half_turn, wrap_turn};
 use std::f64::consts::{PI, TAU};
 
 /// Fewest libration periods that the span must hold.
@@ -70,15 +70,20 @@ fn unwrapped(angles: &[f64]) -> Option<Vec<f64>> {
 /// the span does not tell.
 /// Errors: [`FourierError`] for too few samples or values that are not finite.
 pub fn angle_motion(angles: &[f64], step_day: f64) -> Result<AngleMotion, FourierError> {
+    Ok(told_motion(angles, step_day)?.0)
+}
+
+/// [`angle_motion`], and whether a Fourier fit was needed to tell it: the unwrapped angle alone tells most.
+pub(super) fn told_motion(angles: &[f64], step_day: f64) -> Result<(AngleMotion, bool), FourierError> {
     if let Some(index) = angles.iter().position(|angle| !angle.is_finite()) {
         return Err(FourierError::NotFinite { index });
     }
     let Some(angle) = unwrapped(angles) else {
-        return Ok(AngleMotion::CannotTell(WhyNot::SparseSamples));
+        return Ok((AngleMotion::CannotTell(WhyNot::SparseSamples), false));
     };
     let least = angle.iter().copied().fold(f64::MAX, f64::min);
     let most = angle.iter().copied().fold(f64::MIN, f64::max);
-    unwrapped_motion(&angle, [least, most], step_day)
+    motion_and_fit(&angle, [least, most], step_day)
 }
 
 /// [`angle_motion`] of an angle that has been unwrapped already; `ends` are its smallest and largest value, also between
@@ -88,36 +93,51 @@ pub(super) fn unwrapped_motion(
     ends: [f64; 2],
     step_day: f64,
 ) -> Result<AngleMotion, FourierError> {
+    Ok(motion_and_fit(angle, ends, step_day)?.0)
+}
+
+fn motion_and_fit(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<(AngleMotion, bool), FourierError> {
     let range = ends[1] - ends[0];
     if range < TAU {
-        return within_a_turn(angle, ends, step_day);
+        let mean = centre(angle);
+        let swing: Vec<f64> = angle.iter().map(|angle| angle - mean).collect();
+        // What does not come back to its mean in each third of the span is not told, whatever its terms are.
+        let third = |third: usize| &swing[third * swing.len() / 3..(third + 1) * swing.len() / 3];
+        if swing.len() >= FEWEST_SAMPLES && !(0..3).all(|part| crosses(third(part))) {
+            return Ok((AngleMotion::CannotTell(WhyNot::ShortSpan { range }), false));
+        }
+        return Ok((within_a_turn(&swing, mean, ends, step_day)?, true));
     }
     let net = angle.last().zip(angle.first()).map_or(0.0, |(last, first)| last - first);
     let span_day = step_day * (angle.len() - 1) as f64;
     // Libration with circulation between: the way to and fro is longer than the way gained.
-    Ok(if net.abs() < 0.5 * range {
+    let motion = if net.abs() < 0.5 * range {
         AngleMotion::Alternates { turns: range / TAU }
     } else if net.abs() >= TAU {
         AngleMotion::Circulates { rate_rad_day: net / span_day }
     } else {
         // One way, and not yet around: fast terms alone make the range a turn.
         AngleMotion::CannotTell(WhyNot::ShortSpan { range })
-    })
+    };
+    Ok((motion, false))
 }
 
-fn within_a_turn(angle: &[f64], ends: [f64; 2], step_day: f64) -> Result<AngleMotion, FourierError> {
+/// Of an angle that comes back to its mean: `swing` is what is left without that mean.
+fn within_a_turn(
+    swing: &[f64],
+    mean: f64,
+    ends: [f64; 2],
+    step_day: f64,
+) -> Result<AngleMotion, FourierError> {
     let range = ends[1] - ends[0];
-    let mean = centre(angle);
-    let swing: Vec<f64> = angle.iter().map(|angle| angle - mean).collect();
-    let span_day = step_day * (angle.len() - 1) as f64;
+    let span_day = step_day * (swing.len() - 1) as f64;
     let amplitude = (ends[1] - mean).max(mean - ends[0]);
-    let waves = decompose_real(&swing, step_day, Search { most: 4, window_power: 1 })?;
+    let waves = decompose_real(swing, step_day, Search { most: 4, window_power: 1 })?;
     // Noise, or an angle that stands still: nothing shows that it would come back.
     let Some(main) = waves.first() else {
         return Ok(AngleMotion::CannotTell(WhyNot::ShortSpan { range }));
     };
-    let returns = (0..3).all(|third| crosses(&swing[third * swing.len() / 3..(third + 1) * swing.len() / 3]));
-    if main.frequency * span_day < FEWEST_PERIODS * TAU || !returns {
+    if main.frequency * span_day < FEWEST_PERIODS * TAU {
         return Ok(AngleMotion::CannotTell(WhyNot::ShortSpan { range }));
     }
     let rest: Vec<f64> = swing

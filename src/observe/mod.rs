@@ -7,13 +7,14 @@ mod extent;
 mod frequency;
 mod growth;
 mod libration;
+mod namer;
 mod quasi_periodic;
 mod resonance;
 mod series;
 mod told;
 mod watch;
 
-pub use combination::{Combination, Fundamental, Kind, Namer, Rule};
+pub use combination::{Combination, Fundamental, Kind, Rule};
 pub use conserved::ConservedWatch;
 pub use extent::{Extent, ExtentWatch, Range};
 pub use frequency::{
@@ -22,7 +23,10 @@ pub use frequency::{
 };
 pub use growth::{GrowthRecord, Lyapunov};
 pub use libration::{AngleMotion, Libration, WhyNot, angle_motion};
-pub use quasi_periodic::{NamedLine, QuasiPeriodic, Spectra, angle_lines, libration_frequency, named_angle};
+pub use namer::Namer;
+pub use quasi_periodic::{
+    NamedLine, QuasiPeriodic, Spectra, angle_lines, libration_frequency, named_angle, named_angle_by,
+};
 pub use resonance::{AngleReport, Candidate, NotInvariant, ResonantAngle, resonant_motion};
 pub use series::{ElementSeries, SeriesError};
 pub use told::{AngleSamples, Arc, ToldAngle, ToldFrom, told_angle};

@@ -1,8 +1,9 @@
 //! The quasi-periodic decomposition of a motion: every line with the name of its combination.
 
 use super::ElementSeries;
-use super::combination::{Combination, Fundamental, Kind, Namer, Rule};
-use super::frequency::{MODE_SEARCH, mean_motions, modes, numbered};
+use super::combination::{Combination, Fundamental, Kind, Rule};
+use super::frequency::{Choice, LibrationOf, MODE_SEARCH, mean_motions, numbered};
+use super::namer::Namer;
 use crate::num::{Complex, FourierError, Line, Search, Spectrum, decompose, decompose_real, turn_near};
 use std::f64::consts::TAU;
 
@@ -31,6 +32,7 @@ pub struct Spectra {
     step_day: f64,
     span_day: f64,
     motions_rad_day: Vec<f64>,
+    massless: Vec<bool>,
 }
 
 /// Inclinations that are no more than rounding, rad.
@@ -41,55 +43,83 @@ impl Spectra {
     ///
     /// Nodes are looked at only where an inclination passes 1e-7 rad. Errors: [`FourierError`]. Source: Laskar (1990).
     pub fn of(series: &ElementSeries<'_>, near: &[f64]) -> Result<Spectra, FourierError> {
-        let planets = 0..series.planets();
-        let all = |signal: &dyn Fn(usize) -> Vec<Complex>| -> Result<Vec<Spectrum>, FourierError> {
-            planets.clone().map(|k| decompose(&signal(k), series.step_day(), MODE_SEARCH)).collect()
+        Spectra::step_by_step(series, near, &vec![false; series.planets()], || Ok(()))
+    }
+
+    /// [`Spectra::of`], of bodies some of which are `massless`; `before` is called before every signal and may end it.
+    pub fn step_by_step<E: From<FourierError>>(
+        series: &ElementSeries<'_>,
+        near: &[f64],
+        massless: &[bool],
+        mut before: impl FnMut() -> Result<(), E>,
+    ) -> Result<Spectra, E> {
+        let mut all = |signal: &dyn Fn(usize) -> Vec<Complex>| -> Result<Vec<Spectrum>, E> {
+            let each = (0..series.planets()).map(|planet| {
+                before()?;
+                Ok(decompose(&signal(planet), series.step_day(), MODE_SEARCH)?)
+            });
+            each.collect()
         };
-        let inclined = series.rows().iter().flatten().any(|orbit| orbit.inclination.sin() > FLAT);
         Ok(Spectra {
             motions: all(&|k| series.motion_signal(k))?,
             pericentres: all(&|k| series.pericentre_signal(k))?,
-            nodes: if inclined { all(&|k| series.node_signal(k))? } else { Vec::new() },
+            nodes: if Spectra::have_nodes(series) { all(&|k| series.node_signal(k))? } else { Vec::new() },
             step_day: series.step_day(),
             span_day: series.span_day(),
             motions_rad_day: mean_motions(series, near)?,
+            massless: massless.to_vec(),
         })
+    }
+
+    /// Signals of a series that [`Spectra::of`] decomposes.
+    pub fn signals(series: &ElementSeries<'_>) -> usize {
+        series.planets() * if Spectra::have_nodes(series) { 3 } else { 2 }
+    }
+
+    fn have_nodes(series: &ElementSeries<'_>) -> bool {
+        series.rows().iter().flatten().any(|orbit| orbit.inclination.sin() > FLAT)
     }
 
     /// n of every planet, then the g and s that planets have of their own, numbered as the planets.
     ///
     /// A planet whose strongest line of e exp(iϖ) belongs to another takes its next one; nodes lack the fixed line of the plane.
+    /// What a massless body has is its own, and no other body takes it or lacks it.
     ///
-    /// `librations` (rad/day) are those whose side lines are no modes.
-    pub fn fundamentals(&self, names: &[String], librations: &[f64]) -> Vec<Fundamental> {
-        let motions = self.motions_rad_day.iter().zip(names).map(|(rad_day, name)| Fundamental {
-            name: format!("n_{name}"),
-            kind: Kind::Motion,
-            rad_day: *rad_day,
-        });
-        let count = self.motions.len();
+    /// `librations` (rad/day, and whose) are those whose side lines are no modes.
+    pub fn fundamentals(&self, names: &[String], librations: &[LibrationOf]) -> Vec<Fundamental> {
+        let motions = self.motions_rad_day.iter().zip(names).enumerate();
+        let motions = motions.map(|(body, (rad_day, name))| self.motion(body, format!("n_{name}"), *rad_day));
         let resolution = TAU / self.span_day;
         let mut nodes = self.nodes.clone();
         nodes.iter_mut().for_each(|node| node.lines.retain(|line| line.frequency.abs() > 0.5 * resolution));
-        let pericentres = modes(&self.pericentres, &self.motions_rad_day, self.span_day, count, librations);
-        let nodes = modes(&nodes, &self.motions_rad_day, self.span_day, count.saturating_sub(1), librations);
+        let massless = &self.massless;
+        let choice = Choice { motions: &self.motions_rad_day, span_day: self.span_day, massless, librations };
+        let pulling = massless.iter().filter(|massless| !**massless).count();
+        let pericentres = choice.modes(&self.pericentres, pulling);
+        let nodes = choice.modes(&nodes, pulling.saturating_sub(1));
         motions
-            .chain(numbered(pericentres, "g", Kind::Pericentre))
-            .chain(numbered(nodes, "s", Kind::Node))
+            .chain(numbered(pericentres, massless, "g", Kind::Pericentre))
+            .chain(numbered(nodes, massless, "s", Kind::Node))
             .collect()
+    }
+
+    fn motion(&self, body: usize, name: String, rad_day: f64) -> Fundamental {
+        Fundamental { name, kind: Kind::Motion, rad_day, own_of: self.own_of(&[body]) }
+    }
+
+    /// The massless one of some bodies, which has what they have together.
+    pub fn own_of(&self, bodies: &[usize]) -> Option<usize> {
+        bodies.iter().copied().find(|body| self.massless[*body])
     }
 
     /// The libration of a resonance between bodies, from the side lines n ± l that it gives to a exp(iλ): the strongest of
     /// them, against n, that is a line of the resonant angle too and no combination of mean motions; rad/day.
     pub fn libration(&self, bodies: &[usize], angle: &[Line]) -> Option<f64> {
-        let motion = |(index, rad_day): (usize, &f64)| Fundamental {
-            name: format!("n{index}"),
-            kind: Kind::Motion,
-            rad_day: *rad_day,
-        };
-        let motions: Vec<Fundamental> = self.motions_rad_day.iter().enumerate().map(motion).collect();
+        let motions = self.motions_rad_day.iter().enumerate();
+        let motions: Vec<Fundamental> =
+            motions.map(|(body, rad_day)| self.motion(body, format!("n{body}"), *rad_day)).collect();
         let (fold, tolerance) = (self.fold_rad_day(), TOLERANCE * TAU / self.span_day);
-        let synodic = Namer::new(&motions, Rule::ANGLE, fold);
+        let synodic = Namer::seen_by(self.own_of(bodies), &motions, Rule::ANGLE, fold);
         let mut sides: Vec<(f64, f64)> = Vec::new();
         for spectrum in bodies.iter().map(|body| &self.motions[*body]) {
             let Some(main) = spectrum.lines.first() else { continue };
@@ -117,17 +147,23 @@ impl Spectra {
     /// Every line of every signal with its name; the frequency of a named line is moved by whole turns per sample to its
     /// combination.
     pub fn named(&self, fundamentals: &[Fundamental]) -> QuasiPeriodic {
-        let plane = Namer::new(fundamentals, Rule::PLANE, self.fold_rad_day());
-        let node = Namer::new(fundamentals, Rule::NODE, self.fold_rad_day());
-        let tables = |spectra: &[Spectrum], namer: &Namer| -> Vec<Vec<NamedLine>> {
-            let line = |line: &Line| self.line(*line, namer, fundamentals);
-            spectra.iter().map(|spectrum| spectrum.lines.iter().map(line).collect()).collect()
+        let fold = self.fold_rad_day();
+        let both = |massless: Option<usize>| {
+            [Rule::PLANE, Rule::NODE].map(|rule| Namer::seen_by(massless, fundamentals, rule, fold))
         };
-        QuasiPeriodic {
-            motions: tables(&self.motions, &plane),
-            pericentres: tables(&self.pericentres, &plane),
-            nodes: tables(&self.nodes, &node),
+        let shared = both(None);
+        let mut found = QuasiPeriodic { motions: Vec::new(), pericentres: Vec::new(), nodes: Vec::new() };
+        for body in 0..self.motions.len() {
+            let own = self.own_of(&[body]).map(|body| both(Some(body)));
+            let [plane, node] = own.as_ref().unwrap_or(&shared);
+            let named = |spectrum: &Spectrum, namer: &Namer| -> Vec<NamedLine> {
+                spectrum.lines.iter().map(|line| self.line(*line, namer, fundamentals)).collect()
+            };
+            found.motions.push(named(&self.motions[body], plane));
+            found.pericentres.push(named(&self.pericentres[body], plane));
+            found.nodes.extend(self.nodes.get(body).map(|spectrum| named(spectrum, node)));
         }
+        found
     }
 
     fn line(&self, line: Line, namer: &Namer, fundamentals: &[Fundamental]) -> NamedLine {
@@ -136,8 +172,14 @@ impl Spectra {
 
     /// The relation that a resonance lays on the fundamentals, as 2n_b − 3n_c + g1 = 0 in a 3:2 resonance.
     pub fn relation(&self, fundamentals: &[Fundamental]) -> Option<Combination> {
+        self.relation_of(None, fundamentals)
+    }
+
+    /// [`Spectra::relation`] of what a massless body can see (none: the bodies that pull).
+    pub fn relation_of(&self, massless: Option<usize>, fundamentals: &[Fundamental]) -> Option<Combination> {
         let free: Vec<Fundamental> = unlibrated(fundamentals);
-        let found = Namer::new(&free, Rule::ANGLE, 0.0).relation(TOLERANCE * TAU / self.span_day)?;
+        let namer = Namer::seen_by(massless, &free, Rule::ANGLE, 0.0);
+        let found = namer.relation(TOLERANCE * TAU / self.span_day)?;
         let moving = free.iter().zip(&found.coefficients).any(|(f, k)| f.kind == Kind::Motion && *k != 0);
         let padded = |mut found: Combination| {
             found.coefficients.resize(fundamentals.len(), 0);
@@ -204,13 +246,22 @@ pub fn named_angle(
     span_day: f64,
     fold: f64,
 ) -> Vec<NamedLine> {
-    let namer = Namer::new(fundamentals, Rule::ANGLE, fold);
-    let tolerance = TOLERANCE * TAU / span_day;
+    named_angle_by(&Namer::new(fundamentals, Rule::ANGLE, fold), lines, fundamentals, span_day)
+}
+
+/// [`named_angle`] with a namer of [`Rule::ANGLE`] that is at hand.
+pub fn named_angle_by(
+    namer: &Namer,
+    lines: Vec<Line>,
+    fundamentals: &[Fundamental],
+    span_day: f64,
+) -> Vec<NamedLine> {
+    let (tolerance, fold) = (TOLERANCE * TAU / span_day, namer.fold_rad_day());
     let name = |line: Line| {
         let mirrored = Line { frequency: -line.frequency, amplitude: line.amplitude.conj(), ..line };
         let (plain, mirrored) = (
-            named(line, &namer, fundamentals, tolerance, fold),
-            named(mirrored, &namer, fundamentals, tolerance, fold),
+            named(line, namer, fundamentals, tolerance, fold),
+            named(mirrored, namer, fundamentals, tolerance, fold),
         );
         // Of the two the simpler combination; of one and the same, the positive frequency.
         match (&plain.name, &mirrored.name) {

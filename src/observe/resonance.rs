@@ -48,6 +48,22 @@ impl ResonantAngle {
         wrap_turn(parts.sum())
     }
 
+    /// Its value in every row, rad in [0, 2π): only the bodies that it is of are looked at.
+    pub fn values(&self, rows: &[Vec<Elements>]) -> Vec<f64> {
+        let terms = self.longitudes.iter().zip(&self.pericentres).enumerate();
+        let terms: Vec<(usize, f64, f64)> = terms
+            .filter(|(_, (j, k))| **j != 0 || **k != 0)
+            .map(|(body, (j, k))| (body, f64::from(*j), f64::from(*k)))
+            .collect();
+        let value = |row: &Vec<Elements>| {
+            let parts = terms.iter().map(|(body, j, k)| {
+                j * row[*body].mean_longitude() + k * row[*body].longitude_of_pericentre()
+            });
+            wrap_turn(parts.sum())
+        };
+        rows.iter().map(value).collect()
+    }
+
     /// Σ j n for mean motions n: the rate of the angle but for its pericentres, in the unit of n.
     pub fn rate(&self, motions: &[f64]) -> f64 {
         self.longitudes.iter().zip(motions).map(|(j, n)| f64::from(*j) * n).sum()
@@ -91,6 +107,15 @@ pub enum Candidate {
 }
 
 impl Candidate {
+    /// Whose angles they are, in the order of the candidate.
+    pub fn bodies(&self) -> Vec<usize> {
+        match *self {
+            Candidate::Pair { inner, outer, .. } => vec![inner, outer],
+            Candidate::Chain { planets, .. } => planets.to_vec(),
+            Candidate::Apsides { one, other } => vec![one, other],
+        }
+    }
+
     /// The angles of this candidate among `count` planets.
     ///
     /// A pair of order m = p − q has p λ_outer − q λ_inner − k ϖ_inner − (m−k) ϖ_outer for k = m … 0 (those of eccentricity
@@ -157,7 +182,7 @@ pub fn resonant_motion(
     let mut reports = Vec::new();
     for candidate in candidates {
         for angle in candidate.angles(series.planets()) {
-            let values: Vec<f64> = series.rows().iter().map(|row| angle.value(row)).collect();
+            let values = angle.values(series.rows());
             let motion = angle_motion(&values, series.step_day())?;
             reports.push(AngleReport { candidate: *candidate, angle, motion });
         }
@@ -215,5 +240,10 @@ mod tests {
         let value = |turn: f64| angle.value(&[orbit(1.0 + turn, 0.3 + turn), orbit(0.5 + turn, 0.8 + turn)]);
         assert!((value(0.0) - (2.0 - 1.5 + 0.3)).abs() < 1e-12);
         assert!((value(2.2) - value(0.0)).abs() < 1e-12);
+        let rows: Vec<Vec<Elements>> =
+            (0..9).map(|k| vec![orbit(f64::from(k), 0.3), orbit(0.1, 2.0), orbit(0.5, 0.8)]).collect();
+        let angle = ResonantAngle::new(vec![2, 0, -3], vec![1]).unwrap();
+        let each: Vec<f64> = rows.iter().map(|row| angle.value(row)).collect();
+        assert_eq!(angle.values(&rows), each);
     }
 }

@@ -1,6 +1,6 @@
 //! How an angle moves, told from samples over the whole span and from dense windows at its ends together.
 
-use super::libration::{AngleMotion, LEAVING, Libration, WhyNot, angle_motion, slope};
+use super::libration::{AngleMotion, LEAVING, Libration, WhyNot, slope, told_motion};
 use crate::num::{Complex, FourierError, wrap_half_turn, wrap_turn};
 use std::f64::consts::{PI, TAU};
 
@@ -36,6 +36,8 @@ pub struct ToldAngle {
     pub from: ToldFrom,
     /// The arc that holds the angle at all samples of the whole span; none when they are all around the circle or few.
     pub arc: Option<Arc>,
+    /// Fourier fits that it took to tell.
+    pub fits: usize,
 }
 
 impl ToldAngle {
@@ -76,24 +78,28 @@ pub fn told_angle(
     let arc = arc(whole.values);
     let fastest = windows.iter().map(|window| change(window, whole.step_day)).fold(None, larger);
     let fastest = fastest.unwrap_or((rate_rad_day * whole.step_day).abs());
+    let mut fits = 0;
     if fastest < FOLLOWED {
-        let motion = angle_motion(whole.values, whole.step_day)?;
+        let (motion, fitted) = told_motion(whole.values, whole.step_day)?;
+        fits += usize::from(fitted);
         let folded = windows.iter().any(|window| swings_between(window, &whole));
         let sparse = matches!(motion, AngleMotion::CannotTell(WhyNot::SparseSamples));
         let doubtful = sparse || (folded && matches!(motion, AngleMotion::Librates(_)));
         if !doubtful {
-            return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc });
+            return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc, fits });
         }
     }
     if windows.is_empty() {
         let motion = AngleMotion::CannotTell(WhyNot::SparseSamples);
-        return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc });
+        return Ok(ToldAngle { motion, from: ToldFrom::Whole, arc, fits });
     }
     let seen = windows
         .iter()
-        .map(|window| angle_motion(window.values, window.step_day))
+        .map(|window| told_motion(window.values, window.step_day))
         .collect::<Result<Vec<_>, _>>()?;
-    Ok(ToldAngle { motion: joined(&seen, arc, whole.values), from: ToldFrom::Windows, arc })
+    fits += seen.iter().filter(|(_, fitted)| *fitted).count();
+    let seen: Vec<AngleMotion> = seen.into_iter().map(|(motion, _)| motion).collect();
+    Ok(ToldAngle { motion: joined(&seen, arc, whole.values), from: ToldFrom::Windows, arc, fits })
 }
 
 fn larger(most: Option<f64>, next: f64) -> Option<f64> {

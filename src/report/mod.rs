@@ -22,7 +22,7 @@ pub use criteria::criteria_table;
 pub use error::ReportError;
 pub use motion::{
     AngleWords, DEGREE_YEAR, MotionInput, forced, frequencies_table, is_unturned, lines_table,
-    resonances_table,
+    relation_words, resonances_table,
 };
 pub use series::{PlanetSeries, Series, series_table};
 pub use summary::{NominalCell, Spread, Summary, summary_json, summary_text};

@@ -68,8 +68,9 @@ pub fn forced(analysis: &Analysis, frequency: &Fundamental) -> Option<String> {
     if !matches!(frequency.kind, Kind::Pericentre | Kind::Node) {
         return None;
     }
-    let motions: Vec<&Fundamental> =
-        analysis.fundamentals.iter().filter(|f| f.kind == Kind::Motion).collect();
+    let motions = analysis.fundamentals.iter().filter(|f| f.kind == Kind::Motion).enumerate();
+    let motions: Vec<(usize, &Fundamental)> =
+        motions.filter(|(_, motion)| motion.is_seen_by(frequency.own_of)).collect();
     let resolution = TAU / analysis.sampling.span_day;
     let locked = |i: usize, j: usize| {
         analysis.staying().any(|found| match found.candidate {
@@ -78,17 +79,24 @@ pub fn forced(analysis: &Analysis, frequency: &Fundamental) -> Option<String> {
         })
     };
     for k in 2..=MOST_FORCED {
-        for i in 0..motions.len() {
-            for j in (0..motions.len()).filter(|j| *j != i && !locked(i, *j)) {
-                let sum = f64::from(k) * motions[i].rad_day - f64::from(k - 1) * motions[j].rad_day;
-                if (sum - frequency.rad_day).abs() < resolution {
+        for (i, one) in &motions {
+            for (j, other) in motions.iter().filter(|(j, _)| j != i) {
+                let sum = f64::from(k) * one.rad_day - f64::from(k - 1) * other.rad_day;
+                if (sum - frequency.rad_day).abs() < resolution && !locked(*i, *j) {
                     let less = if k == 2 { String::new() } else { (k - 1).to_string() };
-                    return Some(format!("{k}{} − {less}{}", motions[i].name, motions[j].name));
+                    return Some(format!("{k}{} − {less}{}", one.name, other.name));
                 }
             }
         }
     }
     None
+}
+
+/// What resonances lay on the frequencies, as "n_b − 2n_c + g1 = 0"; none where nothing is locked.
+pub fn relation_words(analysis: &Analysis) -> Option<String> {
+    let words = analysis.relations.iter().map(|r| format!("{} = 0", r.words(&analysis.fundamentals)));
+    let words: Vec<String> = words.collect();
+    if words.is_empty() { None } else { Some(words.join("; ")) }
 }
 
 /// What else must be known of a frequency.
@@ -179,11 +187,7 @@ pub fn lines_table(input: &MotionInput<'_>) -> Table {
         push(found.angle.words(input.names), "deg", DEGREE, &found.lines);
     }
     let mut meta = meta(input);
-    let relation = analysis.relation.as_ref();
-    meta.extend(relation.map(|relation| {
-        let words = format!("{} = 0", relation.words(&analysis.fundamentals));
-        ("relation".to_owned(), Meta::Text(words))
-    }));
+    meta.extend(relation_words(analysis).map(|words| ("relation".to_owned(), Meta::Text(words))));
     meta.push(("plane".to_owned(), Meta::Text("the invariable plane".to_owned())));
     Table { meta, columns, rows }
 }

@@ -33,20 +33,18 @@ pub struct Series {
     pub lyapunov_per_day: Vec<f64>,
     pub scheme: String,
     pub step_day: f64,
+    /// Of the engine; empty where it has none.
+    pub coordinates: String,
+    /// Whether positions and velocities were compensated sums.
+    pub compensated: bool,
+    /// Why scheme, step and coordinates are what they are: names as in `run.json`, and words.
+    pub reasons: Vec<(String, String)>,
 }
 
 /// The series as a table: time in yr, lengths in au, angles in deg.
 pub fn series_table(series: &Series) -> Table {
-    let mut table = Table {
-        meta: vec![
-            ("title".to_owned(), Meta::Text(series.title.clone())),
-            ("version".to_owned(), Meta::Text(VERSION.to_owned())),
-            ("scheme".to_owned(), Meta::Text(series.scheme.clone())),
-            ("step_d".to_owned(), Meta::Float(series.step_day)),
-        ],
-        rows: vec![Vec::new(); series.time_day.len()],
-        ..Table::default()
-    };
+    let rows = vec![Vec::new(); series.time_day.len()];
+    let mut table = Table { meta: meta(series), rows, ..Table::default() };
     let years: Vec<f64> = series.time_day.iter().map(|t| t / YEAR_DAY).collect();
     push(&mut table, "time", "yr", "time from the epoch", &years);
     for (index, planet) in series.planets.iter().enumerate() {
@@ -63,6 +61,23 @@ pub fn series_table(series: &Series) -> Table {
     let per_year: Vec<f64> = series.lyapunov_per_day.iter().map(|l| l * YEAR_DAY).collect();
     push(&mut table, "lyapunov", "1/yr", "maximal Lyapunov exponent, estimate up to this time", &per_year);
     table
+}
+
+/// What was followed, and how: scheme, step and coordinates with their reasons.
+fn meta(series: &Series) -> Vec<(String, Meta)> {
+    let text = |name: &str, words: &str| (name.to_owned(), Meta::Text(words.to_owned()));
+    let mut meta = vec![
+        text("title", &series.title),
+        text("version", VERSION),
+        text("scheme", &series.scheme),
+        ("step_d".to_owned(), Meta::Float(series.step_day)),
+    ];
+    if !series.coordinates.is_empty() {
+        meta.push(text("coordinates", &series.coordinates));
+    }
+    meta.push(text("compensated", if series.compensated { "yes" } else { "no" }));
+    meta.extend(series.reasons.iter().map(|(name, words)| text(name, words)));
+    meta
 }
 
 type Part = (&'static str, &'static str, &'static str, fn(&Elements) -> f64);

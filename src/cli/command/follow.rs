@@ -1,5 +1,6 @@
 //! `abide follow`: one configuration → its series, its figure, and the verdict in words.
 
+mod analysing;
 mod checkpoint;
 mod motion;
 mod outputs;
@@ -10,10 +11,11 @@ mod wish;
 
 use std::path::Path;
 use std::process::ExitCode;
+use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
 use std::time::Instant;
 
-use crate::assess::{Analysed, Assessment, Follower, Row, analyse};
+use crate::assess::{Analysed, Assessment, Follower, Row};
 use crate::cli::CliError;
 use crate::cli::args::FollowArgs;
 use crate::cli::manners::{INTERRUPTED, print, stop_on_signal};
@@ -36,10 +38,17 @@ pub fn run(args: FollowArgs) -> Result<ExitCode, CliError> {
     let checkpoint = Checkpoint::of(&wish);
     let follower = begin_or_go_on(&wish, &checkpoint, args.anew)?;
     let stop = stop_on_signal()?;
-    let Some(done) = follow(follower, &wish, &checkpoint, &stop)? else {
+    let folder = wish.folder.display();
+    let Some(follower) = follow(follower, &wish, &checkpoint, &stop)? else {
         wish.say(format_args!(
-            "stopped; what was followed is kept in {}. The same command goes on from there",
-            wish.folder.display()
+            "stopped; what was followed is kept in {folder}. The same command goes on from there"
+        ));
+        return Ok(ExitCode::from(INTERRUPTED));
+    };
+    let Some(done) = analyse(follower, &wish, &stop)? else {
+        wish.say(format_args!(
+            "stopped; the whole span was followed and is kept in {folder}, but its frequencies and resonances were not yet \
+             told. The same command begins with these and writes the tables"
         ));
         return Ok(ExitCode::from(INTERRUPTED));
     };
@@ -113,7 +122,7 @@ fn follow(
     wish: &Wish,
     checkpoint: &Checkpoint,
     stop: &AtomicBool,
-) -> Result<Option<Done>, CliError> {
+) -> Result<Option<Follower>, CliError> {
     let mut pace = Pace::new(wish, &follower.progress());
     let (mut saved, mut pause) = (Instant::now(), wish.pause);
     while follower.assessment().is_none() {
@@ -136,7 +145,12 @@ fn follow(
     checkpoint.write(&follower)?;
     let end_day = follower.assessment().map_or(0.0, |assessment| assessment.end_time_day);
     pace.finish(end_day / wish.plan.span_day);
-    let analysed = analyse(follower.samples(), &wish.configuration);
+    Ok(Some(follower))
+}
+
+/// Frequencies and resonances of what was followed; none when stopped before they were told.
+fn analyse(follower: Follower, wish: &Wish, stop: &Arc<AtomicBool>) -> Result<Option<Done>, CliError> {
+    let Some(analysed) = analysing::analysed(wish, follower.samples(), stop)? else { return Ok(None) };
     let angles =
         analysed.as_ref().map_or(Vec::new(), |found| outputs::drawn(wish, found, follower.samples()));
     Ok(follower.finish().map(|(assessment, rows)| Done { assessment, rows, analysed, angles }))

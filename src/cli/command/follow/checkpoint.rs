@@ -21,8 +21,9 @@ pub const PICTURE: &str = "series.png";
 pub const FREQUENCIES: &str = "frequencies.ecsv";
 pub const LINES: &str = "lines.ecsv";
 pub const RESONANCES: &str = "resonances.ecsv";
+pub const VERDICT: &str = "verdict.json";
 /// All that a command leaves.
-const FILES: [&str; 6] = [CHECKPOINT, SERIES, PICTURE, FREQUENCIES, LINES, RESONANCES];
+const FILES: [&str; 7] = [CHECKPOINT, SERIES, PICTURE, FREQUENCIES, LINES, RESONANCES, VERDICT];
 const FIRST_LINE: &[u8] = b"abide checkpoint 2\n";
 const SEAL_BYTES: usize = 32;
 

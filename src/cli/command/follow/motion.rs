@@ -7,7 +7,7 @@ use serde_json::{Value, json};
 use crate::assess::{Analysis, AngleAnalysed, DriftFrom, NotAnalysed};
 use crate::cli::command::inspect::table::{PAGE_WIDTH, lines, short, significant, wrapped};
 use crate::observe::{AngleMotion, Kind};
-use crate::report::{AngleWords, DEGREE_YEAR, forced, is_unturned, time_words};
+use crate::report::{AngleWords, DEGREE_YEAR, forced, is_unturned, relation_words, time_words};
 use crate::units::YEAR_DAY;
 
 /// Longest names in the angles of the terminal: the first with which the lines fit.
@@ -97,8 +97,8 @@ fn frequencies(analysis: &Analysis) -> Vec<String> {
             ));
         }
     }
-    if let Some(relation) = &analysis.relation {
-        words.push_str(&format!(". Locked: {} = 0", relation.words(&analysis.fundamentals)));
+    if let Some(relation) = relation_words(analysis) {
+        words.push_str(&format!(". Locked: {relation}"));
     }
     out.push(wrapped("  ", &words));
     out
@@ -179,7 +179,7 @@ pub fn json(analysed: &Result<Analysis, NotAnalysed>, names: &[String]) -> (Valu
     let frequencies = json!({
         "fundamental": fundamentals.collect::<Vec<_>>(),
         "slow_known_up_to_deg_per_yr": analysis.known_up_to_rad_day.map(|fold| fold / DEGREE_YEAR),
-        "relation": analysis.relation.as_ref().map(|r| format!("{} = 0", r.words(&analysis.fundamentals))),
+        "relation": relation_words(analysis),
         "drift_log10": drift.map(|(name, drift)| (name.clone(), json!(drift.log10()))).collect::<serde_json::Map<_, _>>(),
         "drift_log10_worst": analysis.drift.worst_log10(),
         "drift_worst_planet": names[analysis.drift.worst],

@@ -3,7 +3,7 @@
 use std::path::PathBuf;
 
 use super::Done;
-use super::checkpoint::{FREQUENCIES, LINES, PICTURE, RESONANCES, SERIES};
+use super::checkpoint::{FREQUENCIES, LINES, PICTURE, RESONANCES, SERIES, VERDICT};
 use super::view::View;
 use super::wish::Wish;
 use crate::assess::{Analysis, AngleAnalysed, Assessment, Range, Row, Samples, angle_series};
@@ -55,8 +55,7 @@ pub fn write(wish: &Wish, view: &View<'_>, done: &Done) -> Result<Vec<PathBuf>, 
         written.push(path);
         Ok(())
     };
-    let series = series(wish, &done.assessment, &done.rows);
-    put(SERIES, series_table(&series).to_ecsv().map_err(CliError::working)?.as_bytes())?;
+    put(SERIES, series_table(&series(wish, view, done)).to_ecsv().map_err(CliError::working)?.as_bytes())?;
     if let Ok(analysis) = &done.analysed {
         let names = wish.names();
         let input = MotionInput { title: wish.title(), names: &names, analysis };
@@ -69,6 +68,7 @@ pub fn write(wish: &Wish, view: &View<'_>, done: &Done) -> Result<Vec<PathBuf>, 
             put(name, table.to_ecsv().map_err(CliError::working)?.as_bytes())?;
         }
     }
+    put(VERDICT, view.json()?.as_bytes())?;
     if done.rows.len() > 1 {
         let figure = picture(wish, view, done)?;
         put(PICTURE, &render::png(&figure, Width::PAGE).map_err(CliError::working)?)?;
@@ -76,7 +76,8 @@ pub fn write(wish: &Wish, view: &View<'_>, done: &Done) -> Result<Vec<PathBuf>, 
     Ok(written)
 }
 
-fn series(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Series {
+fn series(wish: &Wish, view: &View<'_>, done: &Done) -> Series {
+    let (assessment, rows) = (&done.assessment, &done.rows);
     let planets = wish.configuration.planets.iter().enumerate();
     let absent = |number: Option<f64>| number.unwrap_or(f64::NAN);
     Series {
@@ -97,6 +98,9 @@ fn series(wish: &Wish, assessment: &Assessment, rows: &[Row]) -> Series {
         lyapunov_per_day: rows.iter().map(|row| absent(row.lyapunov_per_day)).collect(),
         scheme: assessment.scheme.to_owned(),
         step_day: assessment.step_day,
+        coordinates: view.coordinates().unwrap_or_default(),
+        compensated: wish.plan.compensated,
+        reasons: view.reasons(),
     }
 }
 

@@ -1,18 +1,17 @@
 //! The verdict with its numbers, in words and as JSON.
 
-use serde_json::{Map, Value, json};
+mod json;
 
 use super::motion;
 use super::why::{Why, megno};
 use super::wish::{Wish, count};
 use crate::assess::{
-    ADAPTIVE, Analysed, Assessment, Extent, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
+    ADAPTIVE, Analysed, Assessment, FEWEST_STEPS_PER_PASSAGE, Range, StepWhy, innermost_period_day,
     outermost_period_day,
 };
-use crate::cli::CliError;
 use crate::cli::command::inspect::table::{lines, significant, wrapped};
 use crate::kepler::pericentre_passage_day;
-use crate::report::{VERSION, short, time_words};
+use crate::report::{short, time_words};
 use crate::units::{DEGREE, YEAR_DAY};
 use crate::verdict::{CHAOTIC_FROM, LEAST_OUTER_ORBITS, REGULAR_UP_TO, Verdict};
 
@@ -169,14 +168,7 @@ impl<'a> View<'a> {
             match (&self.wish.plan.step_why, a.redone) {
                 (StepWhy::Asked { .. }, 0) => "as asked".to_owned(),
                 (why @ StepWhy::Pericentre { .. }, 0) => format!("auto: {why}"),
-                (_, redone) => format!(
-                    "made smaller {} for the energy error",
-                    match redone {
-                        1 => "once".to_owned(),
-                        2 => "twice".to_owned(),
-                        more => format!("{more} times"),
-                    }
-                ),
+                (_, redone) => made_smaller(redone),
             },
             self.names[self.passage.planet],
             significant(self.passage.day, 4),
@@ -312,74 +304,13 @@ impl<'a> View<'a> {
         });
         lines(&["range of", "a (au)", "e", "i (deg)"], &rows.collect::<Vec<_>>(), &[])
     }
+}
 
-    fn extents_json(&self) -> Map<String, Value> {
-        let pair = |range: &Range, scale: f64| json!([range.min / scale, range.max / scale]);
-        let ranges = |extent: &Extent| {
-            json!({
-                "a_au": pair(&extent.semi_major_axis_au, 1.0),
-                "e": pair(&extent.eccentricity, 1.0),
-                "i_deg": pair(&extent.inclination, DEGREE),
-            })
-        };
-        let named = self.names.iter().zip(&self.assessment.extent);
-        named.map(|(name, extent)| ((*name).to_owned(), ranges(extent))).collect()
-    }
-
-    /// The same for scripts; what is absent is null. Ends in a newline.
-    pub fn json(&self) -> Result<String, CliError> {
-        let a = self.assessment;
-        let name = |planet: usize| self.names[planet];
-        let (frequencies, resonances) = motion::json(self.analysed, &self.wish.names());
-        let value = json!({
-            "title": self.wish.title(),
-            "version": VERSION,
-            "verdict": a.verdict.word(),
-            "why": self.why.to_string(),
-            "thresholds": {
-                "regular_up_to": REGULAR_UP_TO,
-                "chaotic_from": CHAOTIC_FROM,
-                "least_outer_orbits": LEAST_OUTER_ORBITS,
-            },
-            "loss": a.loss.map(|loss| json!({
-                "time_yr": loss.time_day / YEAR_DAY,
-                "planet": name(loss.planet),
-                "other": loss.other.map(name),
-                "how": loss.how.word(),
-            })),
-            "span_yr": self.wish.plan.span_day / YEAR_DAY,
-            "end_time_yr": a.end_time_day / YEAR_DAY,
-            "inner": { "planet": name(self.inner.planet), "orbits": self.inner.orbits },
-            "outer": { "planet": name(self.outer.planet), "orbits": self.outer.orbits },
-            "survived": (a.verdict != Verdict::Untrusted).then_some(a.loss.is_none()),
-            "chaotic": self.is_chaotic(),
-            "megno_mean": a.megno,
-            "lyapunov_time_yr": self.lyapunov_yr().map(|(time, error)| json!({ "value": time, "error": error })),
-            "energy_error": a.energy_error,
-            "energy_error_asked": self.wish.plan.energy_error,
-            "angular_momentum_error": a.angular_momentum_error,
-            "scheme": a.scheme,
-            "compensated": self.wish.plan.compensated,
-            "step_d": a.step_day,
-            "step_why": self.wish.plan.step_why.to_string(),
-            "steps_per_passage": self.passage.day / a.step_day,
-            "steps": self.steps() as u64,
-            "redone": a.redone,
-            "passages": a.passages.zip(a.passage_energy_error).map(|(blocks, error)| json!({
-                "blocks": blocks,
-                "largest_energy_error": error,
-            })),
-            "smallest_approach": a.smallest_approach.map(|found| json!({
-                "pair": [name(found.pair.0), name(found.pair.1)],
-                "hill": found.hill,
-                "au": found.au,
-            })),
-            "extent": self.extents_json(),
-            "frequencies": frequencies,
-            "resonances": resonances,
-        });
-        let mut text = serde_json::to_string_pretty(&value).map_err(CliError::working)?;
-        text.push('\n');
-        Ok(text)
-    }
+fn made_smaller(redone: u32) -> String {
+    let times = match redone {
+        1 => "once".to_owned(),
+        2 => "twice".to_owned(),
+        more => format!("{more} times"),
+    };
+    format!("made smaller {times} for the energy error")
 }
