@@ -1,6 +1,6 @@
 //! The analysis of massless bodies: what it takes, and that it tells of each what it would tell of it alone.
 
-use abide::assess::{Analysis, AnalysisWork, Follower, NotAnalysed, Plan, analyse, plan_for_rows};
+use abide::assess::{Analysis, Follower, NotAnalysed, Plan, analyse, plan_for_rows};
 use abide::coords::{Configuration, configure};
 use abide::input::parse_system;
 use abide::observe::Kind;
@@ -54,19 +54,14 @@ fn analysed(configuration: &Configuration) -> Analysis {
 fn work_grows_in_proportion_to_the_massless_bodies() {
     let works = [4, 8, 16].map(|massless| analysed(&belt(massless)).work);
     let [four, eight, sixteen] = works;
-    println!("{works:?}");
+    // The same four orbits again and again: as many candidates of each.
     assert_eq!(sixteen.signals - eight.signals, 2 * (eight.signals - four.signals));
-    let nearly = |of: fn(AnalysisWork) -> usize| {
-        let (first, second) = (of(eight) - of(four), of(sixteen) - of(eight));
-        // Phases decide a little: whether an angle comes back to its mean in time, which resonance is the third nearest.
-        assert!(2 * second <= 5 * first + 8, "{works:?}");
-    };
-    nearly(|work| work.angles);
-    nearly(|work| work.fits + 4);
-    // Three signals and 28 angles of a pair at most; a fit of its motion and one of its lines.
+    assert_eq!(sixteen.angles - eight.angles, 2 * (eight.angles - four.angles));
+    // Phases decide whether an angle comes back to its mean in each third, so fits are no more than in proportion to the angles.
+    assert!(works.iter().all(|work| work.fits <= 2 * work.angles), "{works:?}");
+    // Bodies in one plane have two signals, of the whole span and of each window; a pair has 28 angles at most.
     let bodies = 17;
-    assert!(sixteen.signals <= 3 * bodies && sixteen.angles <= 28 * bodies, "{sixteen:?}");
-    assert!(sixteen.fits <= 2 * sixteen.angles && four.angles > 4, "{works:?}");
+    assert!(sixteen.signals <= 6 * bodies && sixteen.angles <= 28 * bodies && four.angles > 4, "{works:?}");
 }
 
 /// Neither names nor numbers of a body depend on the other massless ones beside it.
@@ -123,7 +118,10 @@ fn it_ends_where_it_is_told_to() {
         assert_eq!(seen.len(), after + 1);
         let last = seen[after];
         assert_eq!(last.signals + last.angles, after + 1);
-        assert_eq!(last.signals_of, all.signals);
+        // Those of the windows are wanted once the whole span has shown how fast slow variables are.
+        let known =
+            if after < all.signals { last.signals_of <= all.signals } else { last.signals_of == all.signals };
+        assert!(known && last.signals <= last.signals_of, "{last:?} {all:?}");
         assert_eq!(last.angles_of, if after < all.signals { 0 } else { all.angles });
     }
 }
