@@ -213,7 +213,8 @@ fn a_collision_is_as_near_as_the_radii_say() {
 #[test]
 fn a_loss_in_the_first_steps_is_looked_at_with_shorter_ones() {
     let configuration = demo("lanthorn.toml");
-    let engine = Engine { step: abide::system::Step::PerOrbit(1.0), ..engine(1e-6) };
+    let step = abide::system::Step::PerOrbit(1.0);
+    let engine = Engine { step, scheme: "(2,2)".to_owned(), ..engine(1e-6) };
     let limits =
         Limits { escape_au: None, encounter: Encounter::Stop { hill: 1.0 }, stop_when_chaotic: false };
     let plan = Plan::new(Span::Orbits(300.0), &limits, &engine, &configuration);
