@@ -19,7 +19,7 @@ fn hill_stable_pairs_never_meet() {
     };
     let bins = [(0.3, 0.7), (1.0, 1.1)];
     let drawn = draw(Criterion::Hill, &sampling, (1.02, 12.0), &bins, 24, 5);
-    let found = follow(&drawn, 3000.0, 0.5, false);
+    let found = follow(&drawn, 1e4, 0.5, false);
     let counts: Vec<usize> = bins
         .iter()
         .map(|bin| {
