@@ -1,5 +1,7 @@
 //! Study files: what is read, and what is refused where.
 
+mod input_support;
+
 use abide::input::{
     Fault, FileKind, InputError, StudyFile, axis_from_uncertainty, check_axes, parse_span, parse_step,
     parse_study, parse_system, parse_time, read_study, read_system, sniff,
@@ -10,81 +12,7 @@ use abide::system::{
 };
 use abide::units::{DEGREE, YEAR_DAY};
 
-const SYSTEM: &str = r#"epoch = "2460310.5 JD"
-[star]
-mass = "1 Msun"
-[[planet]]
-name = "b"
-period = "10 ± 0.1 d"
-mass = "5 +1 -2 Mearth"
-eccentricity = "0.05 ± 0.03"
-argument_of_pericentre = "75 ± 80 deg"
-mean_anomaly = "0 deg"
-[[planet]]
-name = "c"
-period = "15 d"
-mass = "8 ± 4 Mearth"
-e_cos_w = "0.1 ± 0.05"
-e_sin_w = "0.6 ± 0.05"
-mean_anomaly = "90 ± 5 deg"
-"#;
-
-const STUDY: &str = r#"title = "A map"
-system = "sys.toml"
-span = "1e5 orbits"
-measure = ["megno", "extent"]
-[[axis]]
-vary = "b.period"
-from = "9 d"
-to = "264 h"
-cells = 200
-spacing = "log"
-[[axis]]
-vary = "b.eccentricity"
-from = 0.0
-to = 0.3
-cells = 150
-[limits]
-escape = "100 au"
-encounter = "2.5 hill"
-[engine]
-scheme = "(2,2)"
-coordinates = "heliocentric"
-step = "30 per orbit"
-energy_error = 1e-7
-"#;
-
-fn read(text: &str) -> Result<StudyFile, InputError> {
-    let system = parse_system("sys.toml", SYSTEM).unwrap_or_else(|error| panic!("{error}"));
-    parse_study("runs/map.toml", text, system)
-}
-
-fn study(text: &str) -> Study {
-    read(text).unwrap_or_else(|error| panic!("{error}")).study
-}
-
-fn system() -> System {
-    parse_system("sys.toml", SYSTEM).expect("good").system
-}
-
-/// `STUDY` with one thing changed.
-fn changed(from: &str, to: &str) -> String {
-    assert_eq!(STUDY.matches(from).count(), 1, "{from} is there once");
-    STUDY.replace(from, to)
-}
-
-/// Refused with this fault at this line and column; the message holds all these words.
-#[track_caller]
-fn check(text: &str, fault: Fault, line: usize, column: usize, words: &[&str]) {
-    let error = read(text).expect_err("this text is wrong");
-    let message = error.to_string();
-    assert_eq!(error.fault, fault, "{message}");
-    assert!(message.starts_with(&format!("runs/map.toml:{line}:{column}: ")), "{message}");
-    assert!(message.contains("found:") && message.contains("to do:"), "{message}");
-    for word in words {
-        assert!(message.contains(word), "{word} is missing: {message}");
-    }
-}
+use input_support::{STUDY, SYSTEM, changed, check, read, study, system};
 
 #[test]
 fn every_key_is_read() {
@@ -294,74 +222,6 @@ fn later_work_is_refused_as_such() {
     let not_yet = |text: String, line, column| check(&text, Fault::NotYet, line, column, &["this version"]);
     not_yet(format!("{STUDY}seed = 3\n"), 24, 1);
     not_yet(format!("{STUDY}[samples]\nfile = \"p.csv\"\n"), 24, 2);
-}
-
-#[test]
-fn the_frequency_drift_is_measured_where_it_is_asked_for() {
-    let asked = study(&changed("\"extent\"]", "\"frequency_drift\"]"));
-    assert_eq!(asked.measure, [Measure::Megno, Measure::FrequencyDrift]);
-    let silent = study(&changed("measure = [\"megno\", \"extent\"]\n", ""));
-    assert_eq!(silent.measure, [Measure::Megno, Measure::Lyapunov, Measure::Extent]);
-    let wrong = changed("\"extent\"]", "\"frequency_drif\"]");
-    check(&wrong, Fault::UnknownWord, 4, 21, &["\"frequency_drift\"", "did you mean"]);
-}
-
-/// [`STUDY`] with an angle in its fourth line.
-fn with_angle(angle: &str) -> String {
-    STUDY.replace("measure", &format!("angle = {angle}\nmeasure"))
-}
-
-#[test]
-fn an_angle_is_whole_numbers_of_two_keys() {
-    assert_eq!(study(STUDY).angle, None);
-    // λ of b and c, then ϖ of b and c, by hand.
-    let forms: [(&str, [i32; 2], [i32; 2]); 5] = [
-        ("3 c.mean_longitude - 2 b.mean_longitude - b.longitude_of_pericentre", [-2, 3], [-1, 0]),
-        ("-2 b.mean_longitude +3 c.mean_longitude -b.longitude_of_pericentre", [-2, 3], [-1, 0]),
-        ("b.longitude_of_pericentre − c.longitude_of_pericentre", [0, 0], [1, -1]),
-        (
-            "+ c.mean_longitude + c.mean_longitude - b.mean_longitude - 1 c.longitude_of_pericentre",
-            [-1, 2],
-            [0, -1],
-        ),
-        ("  5 c.mean_longitude  -  3 b.mean_longitude - 2 b.longitude_of_pericentre ", [-3, 5], [-2, 0]),
-    ];
-    for (text, longitudes, pericentres) in forms {
-        let angle = study(&with_angle(&format!("\"{text}\""))).angle.unwrap();
-        assert_eq!(angle.text, text);
-        assert_eq!(
-            (&angle.longitudes[..], &angle.pericentres[..]),
-            (&longitudes[..], &pericentres[..]),
-            "{text}"
-        );
-    }
-}
-
-#[test]
-fn wrong_angles() {
-    let wrong = |angle: &str, fault, column, words: &[&str]| {
-        check(&with_angle(&format!("\"{angle}\"")), fault, 4, column, words);
-    };
-    let sum = ["sum to 1", "d'Alembert", "- b.longitude_of_pericentre"];
-    wrong("3 c.mean_longitude - 2 b.mean_longitude", Fault::BadAngle, 10, &sum);
-    wrong("b.mean_longitude - b.mean_longitude", Fault::BadAngle, 10, &["cancel"]);
-    wrong("2 e.mean_longitude - 2 b.mean_longitude", Fault::UnknownBody, 12, &["\"e\"", "b, c"]);
-    wrong("star.mean_longitude - b.mean_longitude", Fault::UnknownBody, 10, &["\"star\"", "b, c"]);
-    wrong("all.mean_longitude - b.mean_longitude", Fault::UnknownBody, 10, &["\"all\"", "b, c"]);
-    let near = ["did you mean \"mean_longitude\"?"];
-    wrong("c.mean_longitud - b.mean_longitude", Fault::UnknownKey, 12, &near);
-    wrong("c.ascending_node - b.ascending_node", Fault::UnknownKey, 12, &["only these two"]);
-    wrong("3 2 c.mean_longitude - b.mean_longitude", Fault::BadAngle, 12, &["one number"]);
-    wrong("c.mean_longitude b.mean_longitude", Fault::BadAngle, 27, &["+ or -"]);
-    wrong("c.mean_longitude - - b.mean_longitude", Fault::BadAngle, 29, &["a sign where"]);
-    wrong("c.mean_longitude - b.mean_longitude -", Fault::BadAngle, 46, &["finish"]);
-    wrong("2c.mean_longitude - 2 b.mean_longitude", Fault::UnknownBody, 10, &["\"2c\""]);
-    wrong("0 c.mean_longitude - b.mean_longitude", Fault::OutOfRange, 10, &["1 to 1000"]);
-    wrong("99999999999 c.mean_longitude", Fault::OutOfRange, 10, &["1 to 1000"]);
-    wrong("", Fault::BadAngle, 10, &["finish"]);
-    wrong("nonsense", Fault::BadAngle, 10, &["body.key"]);
-    wrong("1.5 c.mean_longitude - 1.5 b.mean_longitude", Fault::BadAngle, 10, &["whole numbers; multiply"]);
-    check(&with_angle("3"), Fault::WrongType, 4, 9, &["in quotes"]);
 }
 
 #[test]
