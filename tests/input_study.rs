@@ -3,16 +3,16 @@
 mod input_support;
 
 use abide::input::{
-    Fault, FileKind, InputError, StudyFile, axis_from_uncertainty, check_axes, parse_span, parse_step,
-    parse_study, parse_system, parse_time, read_study, read_system, sniff,
+    Fault, FileKind, axis_from_uncertainty, check_axes, parse_span, parse_step, parse_time, read_study,
+    read_system, sniff,
 };
 use abide::system::{
     BodyRef, Compensation, CoordinateChoice, Encounter, Key, Measure, Quantity, SCHEMES, Spacing, Span, Step,
-    Study, System, Target,
+    Target,
 };
 use abide::units::{DEGREE, YEAR_DAY};
 
-use input_support::{STUDY, SYSTEM, changed, check, read, study, system};
+use input_support::{STUDY, SYSTEM, changed, check, study, system};
 
 #[test]
 fn every_key_is_read() {
