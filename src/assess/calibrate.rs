@@ -33,7 +33,8 @@ const MOST_ASKED_STEPS: f64 = 4e5;
 /// is each configuration's own), never fewer than 20.
 ///
 /// `steps` is how many the span takes at 20 per passage. Every trial follows `nominal` and `corners` for a few hundred
-/// inner orbits; a configuration that does not survive them tells nothing. The cheapest trial whose largest relative energy
+/// inner orbits; a configuration that does not survive them tells nothing, and no trial wins by losing what another one held:
+/// only those count that were told by as many configurations as any. The cheapest of them whose largest relative energy
 /// error is below a quarter of the target wins; when none is, the one with the smallest error, and the plan says so. When
 /// no run tells anything, it is the first candidate at 20 steps or the step asked, and the plan says that.
 pub(super) fn calibrate(
@@ -85,20 +86,26 @@ struct Found {
 }
 
 impl Found {
-    /// From all trials in their order, at least one, of which only the last can have met the target.
+    /// From all trials, at least one, in the order of their cost.
     fn of(trials: &[Trial]) -> Found {
         let error = |trial: &Trial| trial.energy_error.unwrap_or(f64::INFINITY);
+        let most_told = trials.iter().map(|trial| trial.told).max().unwrap_or(0);
+        let better = |one: &Trial, other: &Trial| {
+            one.told > other.told || (one.told == other.told && error(one) < error(other))
+        };
         let mut each: Vec<Trial> = Vec::new();
         for trial in trials {
             match each.iter_mut().find(|best| best.scheme == trial.scheme) {
-                Some(best) if trial.met() || error(trial) < error(best) => *best = *trial,
+                Some(best) if better(trial, best) => *best = *trial,
                 Some(_) => {}
                 None => each.push(*trial),
             }
         }
-        let nearest = each.iter().copied().reduce(|a, b| if error(&b) < error(&a) { b } else { a });
-        let met = each.iter().copied().find(Trial::met);
+        let counted = || trials.iter().copied().filter(|trial| trial.told == most_told);
+        let nearest = counted().reduce(|a, b| if error(&b) < error(&a) { b } else { a });
+        let met = counted().find(Trial::met);
         let chosen = met.or(nearest).expect("at least one scheme was tried");
+        each.iter_mut().filter(|best| best.scheme == chosen.scheme).for_each(|best| *best = chosen);
         Found { chosen, each }
     }
 
@@ -146,7 +153,8 @@ struct Runs<'a> {
 }
 
 impl Runs<'_> {
-    /// Trials of all schemes in the order of their cost until one meets the target: so it is the cheapest that does.
+    /// Trials of all schemes in the order of their cost until one meets the target: so it is the cheapest that does. A scheme
+    /// that told nothing is left.
     fn cheapest(&self, schemes: &[&'static Scheme]) -> Found {
         let first = |scheme: &'static Scheme| Next {
             scheme,
@@ -160,21 +168,24 @@ impl Runs<'_> {
         while let Some(at) = (0..open.len()).min_by(|a, b| open[*a].cost().total_cmp(&open[*b].cost())) {
             let trial = self.trial(open[at].scheme, open[at].steps_per_passage);
             trials.push(trial);
-            let Some(error) = trial.energy_error.filter(|_| !trial.met()) else { break };
-            if !open[at].goes_on(error) {
+            let most_told = trials.iter().map(|trial| trial.told).max().unwrap_or(0);
+            if trial.met() && trial.told == most_told {
+                break;
+            }
+            if !trial.energy_error.is_some_and(|error| open[at].goes_on(error)) {
                 open.remove(at);
             }
         }
         Found::of(&trials)
     }
 
-    /// Trials of all schemes at the plan's own step, until one meets the target. A step too long for one scheme may lose
-    /// what another can hold, so nothing told is no reason to stop.
+    /// Trials of all schemes at the plan's own step, until one meets the target and lost nothing. A step too long for one
+    /// scheme may lose what another can hold.
     fn at_asked_step(&self, schemes: &[&'static Scheme], steps_per_passage: f64) -> Found {
         let mut trials: Vec<Trial> = Vec::new();
         for scheme in schemes {
             trials.push(self.trial(scheme, steps_per_passage));
-            if trials.last().is_some_and(Trial::met) {
+            if trials.last().is_some_and(|trial| trial.met() && trial.told == trial.followed) {
                 break;
             }
         }
@@ -220,5 +231,39 @@ impl Runs<'_> {
         };
         let outcome = assess(one, &trial);
         outcome.energy_error.filter(|error| outcome.loss.is_none() && error.is_finite())
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn trial(scheme: &'static str, told: usize, energy_error: Option<f64>) -> Trial {
+        Trial {
+            scheme,
+            kicks_per_step: 1,
+            steps_per_passage: 3.0,
+            followed: 5,
+            told,
+            energy_error,
+            wanted: 1e-7,
+        }
+    }
+
+    #[test]
+    fn losing_the_hard_corners_wins_nothing() {
+        let trials = [
+            trial("(2,2)", 1, Some(1e-8)),
+            trial("(4,2)", 0, None),
+            trial("(8,2)", 5, Some(3e-7)),
+            trial("(8,4)", 5, Some(9e-8)),
+            trial("(10,6,4)", 5, Some(1e-9)),
+        ];
+        // The first that keeps the target among those that all five told.
+        assert_eq!(Found::of(&trials).chosen, trials[3]);
+        // None keeps it: the nearest of them, though (2,2) keeps it with one.
+        assert_eq!(Found::of(&trials[..3]).chosen, trials[2]);
+        assert_eq!(Found::of(&trials[..2]).chosen, trials[0]);
+        assert_eq!(Found::of(&trials[1..2]).chosen, trials[1]);
     }
 }

@@ -52,8 +52,10 @@ pub struct FollowProgress {
     /// Largest relative energy error so far.
     pub energy_error: f64,
     pub mean_megno: Option<f64>,
-    /// How many times it began again with a smaller step.
+    /// How many times it began again, with smaller steps and then with the adaptive engine.
     pub redone: u32,
+    /// The adaptive engine does everything.
+    pub adaptive: bool,
 }
 
 /// A configuration on its way.
@@ -152,6 +154,7 @@ impl Follower {
                 energy_error: 0.0,
                 mean_megno: None,
                 redone: 0,
+                adaptive: self.plan.adaptive,
             };
         };
         FollowProgress {
@@ -161,6 +164,7 @@ impl Follower {
             energy_error: cell.worst_energy_error(),
             mean_megno: cell.mean_megno(),
             redone: cell.redone(),
+            adaptive: cell.is_adaptive(),
         }
     }
 

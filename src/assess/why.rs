@@ -107,7 +107,14 @@ impl fmt::Display for SchemeWhy {
             let lead = if index == 0 { "; dearer at their fewest steps: " } else { ", " };
             write!(f, "{lead}{scheme} {kicks:.0}")?;
         }
-        Ok(())
+        match chosen.followed - chosen.told {
+            // Where the runs settled the step too, the words on the step say it.
+            0 => Ok(()),
+            lost if *at_asked_step => {
+                write!(f, "; {lost} of {} configurations were lost in them", chosen.followed)
+            }
+            _ => Ok(()),
+        }
     }
 }
 
@@ -180,7 +187,8 @@ impl fmt::Display for CoordinatesWhy {
             CoordinatesWhy::Companion => f.write_str("a second star makes a hierarchy"),
             CoordinatesWhy::Heavy { share, in_a_corner } => {
                 let place = if *in_a_corner { " in a corner of the grid" } else { "" };
-                write!(f, "a planet has {share:.2} of the star's mass{place}, more than {HEAVY}")
+                let decimals = if *share < 0.1 { 4 } else { 3 };
+                write!(f, "a planet has {share:.decimals$} of the star's mass{place}, more than {HEAVY}")
             }
             CoordinatesWhy::Light => f.write_str("the planets are light, and these are the cheaper"),
         }

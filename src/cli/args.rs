@@ -50,7 +50,7 @@ pub struct FollowArgs {
     /// How long: "1e5 orbits" of the innermost planet, or a time such as "2 Myr"
     #[arg(long, default_value = "1e4 orbits", allow_hyphen_values = true)]
     pub span: String,
-    /// Folder for the tables series, frequencies, lines and resonances (.ecsv) and for series.png (default:
+    /// Folder for the tables series, frequencies, lines and resonances (.ecsv), verdict.json and series.png (default:
     /// reports/runs/NAME)
     #[arg(long, value_name = "DIR")]
     pub into: Option<PathBuf>,

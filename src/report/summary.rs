@@ -59,9 +59,9 @@ impl Passages {
 
     fn words(self) -> String {
         format!(
-            "{} blocks of steps in {} cells done by the adaptive engine; largest relative energy error over one {}",
-            self.blocks,
-            self.cells,
+            "{} in {} done by the adaptive engine; largest relative energy error over one {}",
+            words::counted(self.blocks, "block", " of steps"),
+            words::counted(self.cells, "cell", ""),
             words::short(self.largest_energy_error)
         )
     }
@@ -215,8 +215,9 @@ impl Summary {
         lines.push(format!("step         {}", self.step));
         lines.extend(self.short_runs.iter().map(|words| format!("  why        {words}")));
         lines.push(format!(
-            "redone       {} cells with smaller steps, {} cells by the adaptive engine",
-            self.redone, self.adaptive
+            "redone       {} with smaller steps, {} by the adaptive engine",
+            words::counted(self.redone, "cell", ""),
+            words::counted(self.adaptive, "cell", "")
         ));
         lines.push(format!("axes         {}", self.held));
         lines.push(format!("convention   {}", self.convention));

@@ -188,3 +188,9 @@ pub(crate) fn convention_words(convention: Convention, epoch_jd: Option<f64>) ->
     let epoch = epoch_jd.map_or_else(String::new, |jd| format!(", epoch JD {jd} TDB"));
     format!("{frame} elements, argument of pericentre {pericentre}, in transit at ν + ω = {transit}°{epoch}")
 }
+
+/// "1 cell", "2 cells", "2 blocks of steps": how many of a thing, and what follows its name.
+pub fn counted(number: u64, thing: &str, of: &str) -> String {
+    let s = if number == 1 { "" } else { "s" };
+    format!("{number} {thing}{s}{of}")
+}

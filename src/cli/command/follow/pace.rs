@@ -106,10 +106,13 @@ impl Pace {
     }
 
     fn say_again(&self, at: &FollowProgress) {
+        let how = match at.adaptive {
+            true => "the adaptive engine".to_owned(),
+            false => format!("a step of {} d", short(at.step_day)),
+        };
         let line = format!(
-            "the energy error passed {}, or could not be told before a loss; begins again with a step of {} d",
-            short(self.energy_error),
-            short(at.step_day)
+            "the energy error passed {}, or could not be told before a loss; begins again with {how}",
+            short(self.energy_error)
         );
         match &self.face {
             Face::Bar(bar) => bar.println(line),
@@ -155,6 +158,7 @@ mod tests {
             energy_error: 2e-9,
             mean_megno: Some(2.0004),
             redone: 0,
+            adaptive: false,
         };
         let now = Instant::now();
         let pace = Pace {

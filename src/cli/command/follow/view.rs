@@ -161,6 +161,14 @@ impl<'a> View<'a> {
 
     fn step(&self) -> String {
         let a = self.assessment;
+        if a.scheme == ADAPTIVE {
+            let own = "chosen anew by the engine all along";
+            return if self.wish.plan.adaptive {
+                own.to_owned()
+            } else {
+                format!("{own}; {}", self.missed())
+            };
+        }
         let per_passage = self.passage.day / a.step_day;
         let mut text = format!(
             "{} d, {}; {per_passage:.1} in the shortest pericentre passage ({}: {} d), {:.1} per orbit of {}",
@@ -183,6 +191,12 @@ impl<'a> View<'a> {
         let attempt = if a.redone > 0 { "at the last attempt" } else { "in all" };
         text.push_str(&format!(". {} steps {attempt}", count(self.steps())));
         text
+    }
+
+    /// Why the splitting was left.
+    fn missed(&self) -> String {
+        let (asked, scheme) = (short(self.wish.plan.energy_error), self.wish.plan.scheme);
+        format!("the energy error passed {asked}, or could not be told, with smaller steps of {scheme} too")
     }
 
     /// Steps up to the end, also of the last block when the end came within it.
@@ -306,11 +320,12 @@ impl<'a> View<'a> {
     }
 }
 
+/// Of a cell that the splitting did in the end.
 fn made_smaller(redone: u32) -> String {
     let times = match redone {
         1 => "once".to_owned(),
         2 => "twice".to_owned(),
         more => format!("{more} times"),
     };
-    format!("made smaller {times} for the energy error")
+    format!("made smaller {times} to keep the energy error or to tell it")
 }

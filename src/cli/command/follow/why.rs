@@ -105,7 +105,8 @@ impl fmt::Display for Why {
                 match redone {
                     0 => f.write_str("no smaller step was tried. ")?,
                     1 => f.write_str("beginning again with a smaller step did not help. ")?,
-                    more => write!(f, "beginning again {more} times with smaller steps did not help. ")?,
+                    2 => f.write_str("beginning again twice with smaller steps did not help. ")?,
+                    _ => f.write_str("neither smaller steps nor the adaptive engine did better. ")?,
                 }
                 f.write_str(if *asked < ROUND_OFF {
                     "So little is at the round-off of double precision: accept more with --energy-error"

@@ -5,7 +5,7 @@ use serde_json::{Map, Value, json};
 use super::{View, made_smaller, motion};
 use crate::assess::{ADAPTIVE, Extent, Range};
 use crate::cli::CliError;
-use crate::report::{VERSION, short};
+use crate::report::VERSION;
 use crate::survey::{PlanWords, sha256};
 use crate::units::{DEGREE, YEAR_DAY};
 use crate::verdict::{CHAOTIC_FROM, LEAST_OUTER_ORBITS, REGULAR_UP_TO, Verdict};
@@ -25,10 +25,8 @@ impl View<'_> {
         let (plan, a) = (&self.wish.plan, self.assessment);
         let reason = |name: &str, words: &str| (name.to_owned() + REASON, words.to_owned());
         if a.scheme == ADAPTIVE {
-            let asked = short(plan.energy_error);
-            let missed = format!("the energy error passed {asked} with smaller steps of {} too", plan.scheme);
-            let why = if plan.adaptive { "as asked" } else { &missed };
-            return vec![reason("scheme", why), reason("step", "chosen anew by the engine all along")];
+            let why = if plan.adaptive { "as asked".to_owned() } else { self.missed() };
+            return vec![reason("scheme", &why), reason("step", "chosen anew by the engine all along")];
         }
         let words = serde_json::to_value(PlanWords::of(plan, &self.wish.names())).unwrap_or_default();
         let entries = words.as_object().into_iter().flatten();
@@ -104,9 +102,9 @@ impl View<'_> {
             "steps_per_passage": self.passage.day / a.step_day,
             "steps": self.steps() as u64,
             "redone": a.redone,
-            "passages": a.passages.zip(a.passage_energy_error).map(|(blocks, error)| json!({
+            "passages": a.passages.map(|blocks| json!({
                 "blocks": blocks,
-                "largest_energy_error": error,
+                "largest_energy_error": a.passage_energy_error,
             })),
             "smallest_approach": a.smallest_approach.map(|found| json!({
                 "pair": [name(found.pair.0), name(found.pair.1)],
