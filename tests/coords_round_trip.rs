@@ -149,7 +149,11 @@ fn limit(key: Key, stated: f64, period_day: f64) -> f64 {
 }
 
 fn check(system: &System) -> Result<(), TestCaseError> {
-    let configuration = state_only(configure(system).unwrap());
+    let configuration = match configure(system) {
+        // Heavy planets with nearly the same period: whichever is inside, the other has the smaller orbit (refused, and tested as such).
+        Err(CoordsError::OrderNotSolvable) => return Err(TestCaseError::reject("no order of the orbits")),
+        other => state_only(other.unwrap()),
+    };
     let again = restate(system, &configuration).unwrap();
     for (stated, found) in system.orbiting().zip(again.orbiting()) {
         let period_day = 1000.0f64.min(stated.stated.value(Key::Period).unwrap_or(1.0));
