@@ -19,7 +19,7 @@ pub const STEPS_PER_PASSAGE: f64 = 20.0;
 /// Fewer than this draw a warning.
 pub const FEWEST_STEPS_PER_PASSAGE: f64 = 15.0;
 /// Steps between two looks at a cell. Times a step of 1/20 of a period this is no whole number of orbits, so that
-/// samples do not always meet a planet at the same phase. A look costs as much as some 35 steps, so it must be rare.
+/// samples do not always meet a planet at the same phase. A look costs as much as some 50 steps, so it must be rare.
 const BLOCK_STEPS: usize = 254 * SAMPLE_EVERY;
 /// The same where encounters are resolved: the adaptive engine does a whole block around each of them.
 const RESOLVED_BLOCK_STEPS: usize = 127 * SAMPLE_EVERY;
